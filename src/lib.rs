@@ -1,1 +1,3 @@
-//! map
+//! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
+
+pub mod core;

@@ -1,0 +1,17 @@
+//! The published documents: one type each for the API, the command line, files, statements and tests.
+
+pub mod amount;
+pub mod assessment;
+pub mod canonical;
+pub mod input;
+pub mod json;
+pub mod pathway;
+pub mod problem;
+pub mod read_input;
+pub mod read_pathway;
+pub mod reader;
+
+pub use amount::Amount;
+pub use assessment::Assessment;
+pub use pathway::Pathway;
+pub use problem::{Problem, Problems};
