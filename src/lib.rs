@@ -1,1 +1,3 @@
 //! map
+
+pub mod core;

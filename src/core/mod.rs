@@ -1,0 +1,3 @@
+//! The pure core: documents in, assessments and findings out. No I/O, no clock, no SQL, no HTTP.
+
+pub mod units;
