@@ -2,4 +2,5 @@
 
 pub mod documents;
 pub mod domain;
+pub mod engine;
 pub mod units;
