@@ -3,4 +3,5 @@
 pub mod documents;
 pub mod domain;
 pub mod engine;
+pub mod models;
 pub mod units;

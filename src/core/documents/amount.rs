@@ -70,8 +70,13 @@ pub enum Origin {
 
 impl Origin {
     /// Every origin.
-    pub const ALL: [Origin; 5] =
-        [Origin::Measured, Origin::Supplier, Origin::Calculated, Origin::Estimated, Origin::Default];
+    pub const ALL: [Origin; 5] = [
+        Origin::Measured,
+        Origin::Supplier,
+        Origin::Calculated,
+        Origin::Estimated,
+        Origin::Default,
+    ];
 
     /// The name used in documents.
     pub fn name(self) -> &'static str {

@@ -24,8 +24,12 @@ pub fn parse(bytes: &[u8]) -> Result<Value, Problems> {
             } else {
                 "Give one JSON document in UTF-8. NaN and Infinity are not JSON."
             };
-            Err(Problem { pointer: String::new(), detail: format!("This is not JSON: {text}."), remedy: remedy.into() }
-                .into())
+            Err(Problem {
+                pointer: String::new(),
+                detail: format!("This is not JSON: {text}."),
+                remedy: remedy.into(),
+            }
+            .into())
         }
     }
 }
@@ -63,7 +67,9 @@ impl<'de> Visitor<'de> for StrictValue {
         Ok(Value::Number(v.into()))
     }
     fn visit_f64<E: serde::de::Error>(self, v: f64) -> Result<Value, E> {
-        Number::from_f64(v).map(Value::Number).ok_or_else(|| E::custom("number out of range"))
+        Number::from_f64(v)
+            .map(Value::Number)
+            .ok_or_else(|| E::custom("number out of range"))
     }
     fn visit_str<E>(self, v: &str) -> Result<Value, E> {
         Ok(Value::String(v.to_owned()))
@@ -86,7 +92,9 @@ impl<'de> Visitor<'de> for StrictValue {
         while let Some(key) = map.next_key::<String>()? {
             let value = map.next_value_seed(StrictValue)?;
             if object.insert(key.clone(), value).is_some() {
-                return Err(A::Error::custom(format!("the field \"{key}\" stands twice in one object")));
+                return Err(A::Error::custom(format!(
+                    "the field \"{key}\" stands twice in one object"
+                )));
             }
         }
         Ok(Value::Object(object))
@@ -98,7 +106,9 @@ mod tests {
     use super::*;
 
     fn detail(text: &str) -> String {
-        parse(text.as_bytes()).expect_err("refused").list()[0].detail.clone()
+        parse(text.as_bytes()).expect_err("refused").list()[0]
+            .detail
+            .clone()
     }
 
     #[test]
@@ -114,6 +124,9 @@ mod tests {
     #[test]
     fn keeps_every_bit_of_a_double() {
         let value = parse(b"[0.1, 1e-320, 123456789.12345679]").expect("json");
-        assert_eq!(value[2].as_f64().map(f64::to_bits), Some(123_456_789.123_456_79_f64.to_bits()));
+        assert_eq!(
+            value[2].as_f64().map(f64::to_bits),
+            Some(123_456_789.123_456_79_f64.to_bits())
+        );
     }
 }

@@ -91,8 +91,13 @@ pub enum DefaultKey {
 
 impl DefaultKey {
     /// Every key.
-    pub const ALL: [DefaultKey; 5] =
-        [DefaultKey::EEc, DefaultKey::EEcSoilN2o, DefaultKey::EP, DefaultKey::ETd, DefaultKey::ETdFinalFuel];
+    pub const ALL: [DefaultKey; 5] = [
+        DefaultKey::EEc,
+        DefaultKey::EEcSoilN2o,
+        DefaultKey::EP,
+        DefaultKey::ETd,
+        DefaultKey::ETdFinalFuel,
+    ];
 
     /// The name used in documents.
     pub fn name(self) -> &'static str {

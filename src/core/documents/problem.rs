@@ -17,7 +17,11 @@ pub struct Problem {
 
 impl fmt::Display for Problem {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let pointer = if self.pointer.is_empty() { "/" } else { &self.pointer };
+        let pointer = if self.pointer.is_empty() {
+            "/"
+        } else {
+            &self.pointer
+        };
         write!(f, "{pointer}: {} {}", self.detail, self.remedy)
     }
 }
@@ -33,7 +37,11 @@ impl Problems {
     /// Notes one problem.
     pub fn add(&mut self, pointer: impl fmt::Display, detail: impl Into<String>, remedy: impl Into<String>) {
         if self.0.len() < Self::MOST {
-            self.0.push(Problem { pointer: pointer.to_string(), detail: detail.into(), remedy: remedy.into() });
+            self.0.push(Problem {
+                pointer: pointer.to_string(),
+                detail: detail.into(),
+                remedy: remedy.into(),
+            });
         }
     }
 

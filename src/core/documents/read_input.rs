@@ -16,12 +16,18 @@ pub fn amount(value: &Value, at: &Place, problems: &mut Problems) -> Option<Amou
         Fields::missing("value", at, problems);
     }
     fields.close(at, problems);
-    Some(Amount { value: figure?, unit: unit? })
+    Some(Amount {
+        value: figure?,
+        unit: unit?,
+    })
 }
 
 /// The words of [`Origin`].
 pub fn origins() -> Vec<(&'static str, Origin)> {
-    Origin::ALL.into_iter().map(|origin| (origin.name(), origin)).collect()
+    Origin::ALL
+        .into_iter()
+        .map(|origin| (origin.name(), origin))
+        .collect()
 }
 
 /// Evidence ids: 1 to 64 of `A-Z a-z 0-9 . _ -`.
@@ -29,7 +35,9 @@ pub fn evidence(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Vec
     fields.list("evidence", at, problems, |value, place, problems| {
         let text = text_of(value, place, problems)?;
         let fits = (1..=64).contains(&text.len())
-            && text.bytes().all(|b| b.is_ascii_alphanumeric() || matches!(b, b'.' | b'_' | b'-'));
+            && text
+                .bytes()
+                .all(|b| b.is_ascii_alphanumeric() || matches!(b, b'.' | b'_' | b'-'));
         if !fits {
             let detail = format!("\"{text}\" is not an evidence id.");
             problems.add(place, detail, "Use 1 to 64 of A-Z a-z 0-9 . _ and -.");
@@ -44,10 +52,16 @@ pub fn key(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Option<S
     let text = fields.required_text("key", at, problems)?;
     let fits = (1..=40).contains(&text.len())
         && text.starts_with(|c: char| c.is_ascii_lowercase())
-        && text.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'-');
+        && text
+            .bytes()
+            .all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'-');
     if !fits {
         let detail = format!("\"{text}\" is not a key.");
-        problems.add(at.field("key"), detail, "Use 1 to 40 of a-z 0-9 and -, beginning with a letter.");
+        problems.add(
+            at.field("key"),
+            detail,
+            "Use 1 to 40 of a-z 0-9 and -, beginning with a letter.",
+        );
         return None;
     }
     Some(text)
@@ -57,25 +71,36 @@ pub fn key(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Option<S
 pub fn input(value: &Value, at: &Place, problems: &mut Problems) -> Option<Input> {
     let mut fields = Fields::open(value, at, problems)?;
     let key = key(&mut fields, at, problems);
-    let factor = fields.take("factor").and_then(|v| one_or_many(v, &at.field("factor"), problems, factor_ref));
-    let model = fields.take("model").and_then(|v| one_or_many(v, &at.field("model"), problems, model_use));
+    let factor = fields
+        .take("factor")
+        .and_then(|v| one_or_many(v, &at.field("factor"), problems, factor_ref));
+    let model = fields
+        .take("model")
+        .and_then(|v| one_or_many(v, &at.field("model"), problems, model_use));
     let input = Input {
         key: key.clone().unwrap_or_default(),
         label: fields.text("label", at, problems),
         amount: fields.number("amount", at, problems),
         unit: fields.text("unit", at, problems),
         factor,
-        gases: fields.take("gases").and_then(|v| gases(v, &at.field("gases"), problems)),
+        gases: fields
+            .take("gases")
+            .and_then(|v| gases(v, &at.field("gases"), problems)),
         model,
         net_per_gross: fields.number("net_per_gross", at, problems),
         origin: fields.word("origin", &origins(), at, problems),
         estimated_percent: fields.number("estimated_percent", at, problems),
         evidence: evidence(&mut fields, at, problems),
-        uncertainty: fields.take("uncertainty").and_then(|v| uncertainty(v, &at.field("uncertainty"), problems)),
+        uncertainty: fields
+            .take("uncertainty")
+            .and_then(|v| uncertainty(v, &at.field("uncertainty"), problems)),
         note: fields.text("note", at, problems),
     };
     let by_factor = fields.has("factor") || fields.has("amount") || fields.has("unit");
-    let ways = [by_factor, fields.has("gases"), fields.has("model")].into_iter().filter(|way| *way).count();
+    let ways = [by_factor, fields.has("gases"), fields.has("model")]
+        .into_iter()
+        .filter(|way| *way)
+        .count();
     if ways != 1 {
         problems.add(
             at,
@@ -107,8 +132,11 @@ pub fn one_or_many<T>(
         }
         Value::Array(items) => {
             let before = problems.len();
-            let many: Vec<T> =
-                items.iter().enumerate().filter_map(|(i, item)| read(item, &at.item(i), problems)).collect();
+            let many: Vec<T> = items
+                .iter()
+                .enumerate()
+                .filter_map(|(i, item)| read(item, &at.item(i), problems))
+                .collect();
             (problems.len() == before).then_some(OneOrMany::Many(many))
         }
         one => read(one, at, problems).map(OneOrMany::One),
@@ -122,7 +150,11 @@ pub fn factor_ref(value: &Value, at: &Place, problems: &mut Problems) -> Option<
         Value::Object(_) => inline_factor(value, at, problems).map(FactorRef::Inline),
         other => {
             let detail = format!("A factor belongs here, not {}.", shape(other));
-            problems.add(at, detail, "Give \"edition/row\" or { \"gases\", \"per\", \"citation\" }.");
+            problems.add(
+                at,
+                detail,
+                "Give \"edition/row\" or { \"gases\", \"per\", \"citation\" }.",
+            );
             None
         }
     }
@@ -130,25 +162,43 @@ pub fn factor_ref(value: &Value, at: &Place, problems: &mut Problems) -> Option<
 
 fn inline_factor(value: &Value, at: &Place, problems: &mut Problems) -> Option<InlineFactor> {
     let mut fields = Fields::open(value, at, problems)?;
-    let vector = fields.take("gases").and_then(|v| gases(v, &at.field("gases"), problems));
+    let vector = fields
+        .take("gases")
+        .and_then(|v| gases(v, &at.field("gases"), problems));
     if !fields.has("gases") {
         Fields::missing("gases", at, problems);
     }
     let per = fields.required_text("per", at, problems);
     let citation = fields.required_text("citation", at, problems);
     if citation.as_deref().is_some_and(|text| text.trim().is_empty()) {
-        problems.add(at.field("citation"), "The source is empty.", "Say where the figure comes from.");
+        problems.add(
+            at.field("citation"),
+            "The source is empty.",
+            "Say where the figure comes from.",
+        );
     }
-    let uncertainty = fields.take("uncertainty").and_then(|v| uncertainty(v, &at.field("uncertainty"), problems));
+    let uncertainty = fields
+        .take("uncertainty")
+        .and_then(|v| uncertainty(v, &at.field("uncertainty"), problems));
     let note = fields.text("note", at, problems);
     fields.close(at, problems);
-    Some(InlineFactor { gases: vector?, per: per?, citation: citation?, uncertainty, note })
+    Some(InlineFactor {
+        gases: vector?,
+        per: per?,
+        citation: citation?,
+        uncertainty,
+        note,
+    })
 }
 
 /// Reads an object of gases, kg each.
 pub fn gases(value: &Value, at: &Place, problems: &mut Problems) -> Option<GasVector> {
     let Value::Object(map) = value else {
-        problems.add(at, format!("An object of gases belongs here, not {}.", shape(value)), GASES);
+        problems.add(
+            at,
+            format!("An object of gases belongs here, not {}.", shape(value)),
+            GASES,
+        );
         return None;
     };
     if map.is_empty() {
@@ -166,8 +216,7 @@ pub fn gases(value: &Value, at: &Place, problems: &mut Problems) -> Option<GasVe
     Some(vector)
 }
 
-const GASES: &str =
-    "Use co2_fossil, co2_biogenic, co2_land, ch4_fossil, ch4_biogenic, n2o, or co2e_unsplit for a total alone.";
+const GASES: &str = "Use co2_fossil, co2_biogenic, co2_land, ch4_fossil, ch4_biogenic, n2o, or co2e_unsplit for a total alone.";
 
 fn model_use(value: &Value, at: &Place, problems: &mut Problems) -> Option<ModelUse> {
     let mut fields = Fields::open(value, at, problems)?;
@@ -176,7 +225,11 @@ fn model_use(value: &Value, at: &Place, problems: &mut Problems) -> Option<Model
     let mut parameters = value.as_object().cloned().unwrap_or_default();
     parameters.remove("kind");
     parameters.remove("note");
-    Some(ModelUse { kind, note, parameters })
+    Some(ModelUse {
+        kind,
+        note,
+        parameters,
+    })
 }
 
 /// Reads a distribution.
@@ -189,8 +242,14 @@ pub fn uncertainty(value: &Value, at: &Place, problems: &mut Problems) -> Option
     let kind = fields.word("kind", &kinds, at, problems)?;
     let mut number = |name: &'static str| fields.number(name, at, problems);
     let read = match kind {
-        0 => Some(Uncertainty::Lognormal { gsd: number("gsd"), percent_95: number("percent_95") }),
-        1 => Some(Uncertainty::Normal { sd_percent: number("sd_percent"), percent_95: number("percent_95") }),
+        0 => Some(Uncertainty::Lognormal {
+            gsd: number("gsd"),
+            percent_95: number("percent_95"),
+        }),
+        1 => Some(Uncertainty::Normal {
+            sd_percent: number("sd_percent"),
+            percent_95: number("percent_95"),
+        }),
         2 => match (number("min"), number("mode"), number("max")) {
             (Some(min), Some(mode), Some(max)) => Some(Uncertainty::Triangular { min, mode, max }),
             _ => None,
@@ -202,11 +261,23 @@ pub fn uncertainty(value: &Value, at: &Place, problems: &mut Problems) -> Option
     };
     fields.close(at, problems);
     let fits = match &read {
-        Some(Uncertainty::Lognormal { gsd: Some(gsd), percent_95: None }) => *gsd >= 1.0 && *gsd <= 100.0,
-        Some(Uncertainty::Lognormal { gsd: None, percent_95: Some(p) }) => *p >= 0.0 && *p <= 10_000.0,
+        Some(Uncertainty::Lognormal {
+            gsd: Some(gsd),
+            percent_95: None,
+        }) => *gsd >= 1.0 && *gsd <= 100.0,
+        Some(Uncertainty::Lognormal {
+            gsd: None,
+            percent_95: Some(p),
+        }) => *p >= 0.0 && *p <= 10_000.0,
         Some(
-            Uncertainty::Normal { sd_percent: Some(p), percent_95: None }
-            | Uncertainty::Normal { sd_percent: None, percent_95: Some(p) },
+            Uncertainty::Normal {
+                sd_percent: Some(p),
+                percent_95: None,
+            }
+            | Uncertainty::Normal {
+                sd_percent: None,
+                percent_95: Some(p),
+            },
         ) => *p >= 0.0 && *p <= 1_000.0,
         Some(Uncertainty::Triangular { min, mode, max }) => min <= mode && mode <= max && min < max,
         Some(Uncertainty::Uniform { min, max }) => min < max,

@@ -1,8 +1,8 @@
 //! Reads a pathway document from JSON: its shape, its keys, its words. What the figures mean is the engine's matter.
 
 use super::pathway::{
-    CoProduct, DefaultKey, Displaces, FORMAT, Flow, Grown, Intake, Output, OwnMaterial, Pathway, Period, PeriodKind,
-    Role, Stage, Stated, StatedTerm, ValueKind,
+    CoProduct, DefaultKey, Displaces, FORMAT, Flow, Grown, Intake, Output, OwnMaterial, Pathway, Period,
+    PeriodKind, Role, Stage, Stated, StatedTerm, ValueKind,
 };
 use super::problem::Problems;
 use super::read_input::{amount, evidence, factor_ref, input, key, one_or_many};
@@ -60,12 +60,23 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
     let format = fields.required_text("format", at, problems);
     if let Some(found) = format.as_deref().filter(|found| *found != FORMAT) {
         let remedy = format!("This program reads \"{FORMAT}\".");
-        problems.add(at.field("format"), format!("\"{found}\" is not a format this program reads."), remedy);
+        problems.add(
+            at.field("format"),
+            format!("\"{found}\" is not a format this program reads."),
+            remedy,
+        );
         return None;
     }
     let name = fields.required_text("name", at, problems);
-    if name.as_deref().is_some_and(|name| name.trim().is_empty() || name.chars().count() > 200) {
-        problems.add(at.field("name"), "The name is empty or longer than 200 letters.", "Give 1 to 200 letters.");
+    if name
+        .as_deref()
+        .is_some_and(|name| name.trim().is_empty() || name.chars().count() > 200)
+    {
+        problems.add(
+            at.field("name"),
+            "The name is empty or longer than 200 letters.",
+            "Give 1 to 200 letters.",
+        );
     }
     let example = fields.flag("example", at, problems).unwrap_or(false);
     let note = fields.text("note", at, problems);
@@ -73,14 +84,23 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
     if !fields.has("period") {
         Fields::missing("period", at, problems);
     }
-    let period = fields.take("period").and_then(|v| period(v, &at.field("period"), problems));
+    let period = fields
+        .take("period")
+        .and_then(|v| period(v, &at.field("period"), problems));
     let rule_set = fields.required_text("rule_set", at, problems);
     let plant_started = fields.day("plant_started", at, problems);
     let materials = fields.list("materials", at, problems, own_material);
-    let defaults = fields.take("defaults").map(|v| defaults(v, &at.field("defaults"), problems)).unwrap_or_default();
-    let kinds: Vec<_> = StageKind::ALL.into_iter().map(|kind| (kind.name(), kind)).collect();
-    let not_covered =
-        fields.list("not_covered", at, problems, |v, place, problems| word_of(v, &kinds, place, problems));
+    let defaults = fields
+        .take("defaults")
+        .map(|v| defaults(v, &at.field("defaults"), problems))
+        .unwrap_or_default();
+    let kinds: Vec<_> = StageKind::ALL
+        .into_iter()
+        .map(|kind| (kind.name(), kind))
+        .collect();
+    let not_covered = fields.list("not_covered", at, problems, |v, place, problems| {
+        word_of(v, &kinds, place, problems)
+    });
     if !fields.has("stages") {
         Fields::missing("stages", at, problems);
     }
@@ -94,8 +114,18 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
         fields.list("stages", at, problems, stage)
     };
     fields.close(at, problems);
-    unique(stages.iter().map(|stage| stage.key.as_str()), &at.field("stages"), "key", problems);
-    unique(materials.iter().map(|material| material.id.as_str()), &at.field("materials"), "id", problems);
+    unique(
+        stages.iter().map(|stage| stage.key.as_str()),
+        &at.field("stages"),
+        "key",
+        problems,
+    );
+    unique(
+        materials.iter().map(|material| material.id.as_str()),
+        &at.field("materials"),
+        "id",
+        problems,
+    );
     Some(Pathway {
         format: format?,
         name: name?,
@@ -127,7 +157,10 @@ fn unique<'k>(keys: impl Iterator<Item = &'k str>, at: &Place, field: &str, prob
 
 fn period(value: &Value, at: &Place, problems: &mut Problems) -> Option<Period> {
     let mut fields = Fields::open(value, at, problems)?;
-    let kinds = [("calendar", PeriodKind::Calendar), ("campaign", PeriodKind::Campaign)];
+    let kinds = [
+        ("calendar", PeriodKind::Calendar),
+        ("campaign", PeriodKind::Campaign),
+    ];
     for name in ["from", "to"] {
         if !fields.has(name) {
             Fields::missing(name, at, problems);
@@ -139,7 +172,11 @@ fn period(value: &Value, at: &Place, problems: &mut Problems) -> Option<Period> 
     fields.close(at, problems);
     let (from, to) = (from?, to?);
     if to < from {
-        problems.add(at.field("to"), format!("The period ends on {to}, before it begins on {from}."), "Swap the days.");
+        problems.add(
+            at.field("to"),
+            format!("The period ends on {to}, before it begins on {from}."),
+            "Swap the days.",
+        );
     }
     Some(Period { from, to, kind })
 }
@@ -151,14 +188,18 @@ fn own_material(value: &Value, at: &Place, problems: &mut Problems) -> Option<Ow
     let material = OwnMaterial {
         id: id.clone().unwrap_or_default(),
         name: name.clone().unwrap_or_default(),
-        lhv_dry: fields.take("lhv_dry").and_then(|v| amount(v, &at.field("lhv_dry"), problems)),
+        lhv_dry: fields
+            .take("lhv_dry")
+            .and_then(|v| amount(v, &at.field("lhv_dry"), problems)),
         carbon_percent_dry: percent(&mut fields, "carbon_percent_dry", at, problems),
         citation: fields.text("citation", at, problems),
     };
     fields.close(at, problems);
     if let Some(id) = &id {
         let fits = (1..=64).contains(&id.len())
-            && id.bytes().all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || matches!(b, b'_' | b'-'));
+            && id
+                .bytes()
+                .all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || matches!(b, b'_' | b'-'));
         if !fits {
             let detail = format!("\"{id}\" is not a material id.");
             problems.add(at.field("id"), detail, "Use 1 to 64 of a-z 0-9 _ and -.");
@@ -170,7 +211,11 @@ fn own_material(value: &Value, at: &Place, problems: &mut Problems) -> Option<Ow
 fn percent(fields: &mut Fields, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
     let figure = fields.number(name, at, problems)?;
     if !(0.0..=100.0).contains(&figure) {
-        problems.add(at.field(name), format!("{figure} % is outside 0 to 100 %."), "Check the figure.");
+        problems.add(
+            at.field(name),
+            format!("{figure} % is outside 0 to 100 %."),
+            "Check the figure.",
+        );
         return None;
     }
     Some(figure)
@@ -178,7 +223,11 @@ fn percent(fields: &mut Fields, name: &'static str, at: &Place, problems: &mut P
 
 fn defaults(value: &Value, at: &Place, problems: &mut Problems) -> BTreeMap<DefaultKey, String> {
     let Value::Object(map) = value else {
-        problems.add(at, format!("An object belongs here, not {}.", shape(value)), "Give `{ \"e_td\": \"...\" }`.");
+        problems.add(
+            at,
+            format!("An object belongs here, not {}.", shape(value)),
+            "Give `{ \"e_td\": \"...\" }`.",
+        );
         return BTreeMap::new();
     };
     let mut out = BTreeMap::new();
@@ -192,9 +241,14 @@ fn defaults(value: &Value, at: &Place, problems: &mut Problems) -> BTreeMap<Defa
             }
             None => {
                 let known = DefaultKey::ALL.map(DefaultKey::name);
-                let near = nearest(name, known.into_iter()).map_or(String::new(), |n| format!(" Perhaps \"{n}\"."));
+                let near =
+                    nearest(name, known.into_iter()).map_or(String::new(), |n| format!(" Perhaps \"{n}\"."));
                 let remedy = format!("Use one of: {}.{near}", known.join(", "));
-                problems.add(place, format!("There is no default value for \"{name}\"."), remedy);
+                problems.add(
+                    place,
+                    format!("There is no default value for \"{name}\"."),
+                    remedy,
+                );
             }
         }
     }
@@ -204,7 +258,10 @@ fn defaults(value: &Value, at: &Place, problems: &mut Problems) -> BTreeMap<Defa
 fn stage(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stage> {
     let mut fields = Fields::open(value, at, problems)?;
     let key = key(&mut fields, at, problems);
-    let kinds: Vec<_> = StageKind::ALL.into_iter().map(|kind| (kind.name(), kind)).collect();
+    let kinds: Vec<_> = StageKind::ALL
+        .into_iter()
+        .map(|kind| (kind.name(), kind))
+        .collect();
     for name in ["kind", "output"] {
         if !fields.has(name) {
             Fields::missing(name, at, problems);
@@ -213,25 +270,48 @@ fn stage(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stage> {
     let kind = fields.word("kind", &kinds, at, problems);
     let name = fields.text("name", at, problems);
     let note = fields.text("note", at, problems);
-    let grown = fields.take("grown").and_then(|v| grown(v, &at.field("grown"), problems));
-    let output = fields.take("output").and_then(|v| output(v, &at.field("output"), problems));
+    let grown = fields
+        .take("grown")
+        .and_then(|v| grown(v, &at.field("grown"), problems));
+    let output = fields
+        .take("output")
+        .and_then(|v| output(v, &at.field("output"), problems));
     let intakes = fields.list("intakes", at, problems, intake);
     let count = value.get("inputs").and_then(Value::as_array).map_or(0, Vec::len);
     let inputs = if count > MOST_INPUTS {
         fields.take("inputs");
         let detail = format!("The stage has {count} inputs.");
-        problems.add(at.field("inputs"), detail, format!("Give at most {MOST_INPUTS}; add like ones up."));
+        problems.add(
+            at.field("inputs"),
+            detail,
+            format!("Give at most {MOST_INPUTS}; add like ones up."),
+        );
         Vec::new()
     } else {
         fields.list("inputs", at, problems, input)
     };
     let co_products = fields.list("co_products", at, problems, co_product);
-    let methods: Vec<_> = AllocationMethod::ALL.into_iter().map(|method| (method.name(), method)).collect();
+    let methods: Vec<_> = AllocationMethod::ALL
+        .into_iter()
+        .map(|method| (method.name(), method))
+        .collect();
     let allocation = fields.word("allocation", &methods, at, problems);
-    let stated = fields.take("stated").and_then(|v| stated(v, &at.field("stated"), problems));
+    let stated = fields
+        .take("stated")
+        .and_then(|v| stated(v, &at.field("stated"), problems));
     fields.close(at, problems);
-    unique(inputs.iter().map(|input| input.key.as_str()), &at.field("inputs"), "key", problems);
-    unique(co_products.iter().map(|product| product.key.as_str()), &at.field("co_products"), "key", problems);
+    unique(
+        inputs.iter().map(|input| input.key.as_str()),
+        &at.field("inputs"),
+        "key",
+        problems,
+    );
+    unique(
+        co_products.iter().map(|product| product.key.as_str()),
+        &at.field("co_products"),
+        "key",
+        problems,
+    );
     Some(Stage {
         key: key?,
         kind: kind?,
@@ -280,9 +360,13 @@ fn flow(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Flow {
         unit: fields.text("unit", at, problems),
         moisture_percent: fields.number("moisture_percent", at, problems),
         carbon_percent_dry: percent(fields, "carbon_percent_dry", at, problems),
-        lhv: fields.take("lhv").and_then(|v| amount(v, &at.field("lhv"), problems)),
+        lhv: fields
+            .take("lhv")
+            .and_then(|v| amount(v, &at.field("lhv"), problems)),
         temperature_c: fields.number("temperature_c", at, problems),
-        price: fields.take("price").and_then(|v| amount(v, &at.field("price"), problems)),
+        price: fields
+            .take("price")
+            .and_then(|v| amount(v, &at.field("price"), problems)),
         strength_percent_mass: fields.number("strength_percent_mass", at, problems),
         strength_percent_vol: fields.number("strength_percent_vol", at, problems),
         note: fields.text("note", at, problems),
@@ -299,7 +383,10 @@ fn output(value: &Value, at: &Place, problems: &mut Problems) -> Option<Output> 
         }
     }
     fields.close(at, problems);
-    Some(Output { material: material?, flow })
+    Some(Output {
+        material: material?,
+        flow,
+    })
 }
 
 fn intake(value: &Value, at: &Place, problems: &mut Problems) -> Option<Intake> {
@@ -308,14 +395,22 @@ fn intake(value: &Value, at: &Place, problems: &mut Problems) -> Option<Intake> 
     let product = fields.text("product", at, problems);
     let flow = flow(&mut fields, at, problems);
     fields.close(at, problems);
-    Some(Intake { from: from?, product, flow })
+    Some(Intake {
+        from: from?,
+        product,
+        flow,
+    })
 }
 
 fn co_product(value: &Value, at: &Place, problems: &mut Problems) -> Option<CoProduct> {
     let mut fields = Fields::open(value, at, problems)?;
     let key = key(&mut fields, at, problems);
     let name = fields.required_text("name", at, problems);
-    let roles = [("co_product", Role::CoProduct), ("residue", Role::Residue), ("waste", Role::Waste)];
+    let roles = [
+        ("co_product", Role::CoProduct),
+        ("residue", Role::Residue),
+        ("waste", Role::Waste),
+    ];
     if !fields.has("role") {
         Fields::missing("role", at, problems);
     }
@@ -327,18 +422,33 @@ fn co_product(value: &Value, at: &Place, problems: &mut Problems) -> Option<CoPr
             Fields::missing(name, at, problems);
         }
     }
-    let displaces = fields.take("displaces").and_then(|v| displaces(v, &at.field("displaces"), problems));
+    let displaces = fields
+        .take("displaces")
+        .and_then(|v| displaces(v, &at.field("displaces"), problems));
     fields.close(at, problems);
-    Some(CoProduct { key: key?, name: name?, role: role?, material: material?, flow, displaces })
+    Some(CoProduct {
+        key: key?,
+        name: name?,
+        role: role?,
+        material: material?,
+        flow,
+        displaces,
+    })
 }
 
 fn displaces(value: &Value, at: &Place, problems: &mut Problems) -> Option<Displaces> {
     let mut fields = Fields::open(value, at, problems)?;
     let figure = fields.number("amount", at, problems);
     let unit = fields.required_text("unit", at, problems);
-    let factor = fields.take("factor").and_then(|v| one_or_many(v, &at.field("factor"), problems, factor_ref));
+    let factor = fields
+        .take("factor")
+        .and_then(|v| one_or_many(v, &at.field("factor"), problems, factor_ref));
     fields.close(at, problems);
-    Some(Displaces { amount: figure?, unit: unit?, factor: factor? })
+    Some(Displaces {
+        amount: figure?,
+        unit: unit?,
+        factor: factor?,
+    })
 }
 
 fn stated(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stated> {
@@ -352,14 +462,22 @@ fn stated(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stated> 
                 let place = place.field(name);
                 if Term::from_name(name).is_none() {
                     let known = Term::ALL.map(Term::name).join(", ");
-                    problems.add(place, format!("There is no term \"{name}\"."), format!("Use one of: {known}."));
+                    problems.add(
+                        place,
+                        format!("There is no term \"{name}\"."),
+                        format!("Use one of: {known}."),
+                    );
                 } else if let Some(term) = stated_term(term, &place, problems) {
                     terms.insert(name.clone(), term);
                 }
             }
         }
         Some(other) => {
-            problems.add(place, format!("An object belongs here, not {}.", shape(other)), "Give `{ \"e_ec\": ... }`.");
+            problems.add(
+                place,
+                format!("An object belongs here, not {}.", shape(other)),
+                "Give `{ \"e_ec\": ... }`.",
+            );
         }
         None => Fields::missing("terms", at, problems),
     }
@@ -367,9 +485,13 @@ fn stated(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stated> 
         proof: fields.text("proof", at, problems),
         issuer: fields.text("issuer", at, problems),
         rule_set: rule_set.clone().unwrap_or_default(),
-        lhv: fields.take("lhv").and_then(|v| amount(v, &at.field("lhv"), problems)),
+        lhv: fields
+            .take("lhv")
+            .and_then(|v| amount(v, &at.field("lhv"), problems)),
         plant_started: fields.day("plant_started", at, problems),
-        covers: fields.take("covers").and_then(|v: &Value| -> Option<Amount> { amount(v, &at.field("covers"), problems) }),
+        covers: fields
+            .take("covers")
+            .and_then(|v: &Value| -> Option<Amount> { amount(v, &at.field("covers"), problems) }),
         evidence: evidence(&mut fields, at, problems),
         terms,
     };
@@ -379,7 +501,11 @@ fn stated(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stated> 
 
 fn stated_term(value: &Value, at: &Place, problems: &mut Problems) -> Option<StatedTerm> {
     let mut fields = Fields::open(value, at, problems)?;
-    let kinds = [("default", ValueKind::Default), ("regional", ValueKind::Regional), ("actual", ValueKind::Actual)];
+    let kinds = [
+        ("default", ValueKind::Default),
+        ("regional", ValueKind::Regional),
+        ("actual", ValueKind::Actual),
+    ];
     for name in ["g_co2e_per_mj", "value_kind"] {
         if !fields.has(name) {
             Fields::missing(name, at, problems);
@@ -388,5 +514,8 @@ fn stated_term(value: &Value, at: &Place, problems: &mut Problems) -> Option<Sta
     let figure = fields.number("g_co2e_per_mj", at, problems);
     let value_kind = fields.word("value_kind", &kinds, at, problems);
     fields.close(at, problems);
-    Some(StatedTerm { g_co2e_per_mj: figure?, value_kind: value_kind? })
+    Some(StatedTerm {
+        g_co2e_per_mj: figure?,
+        value_kind: value_kind?,
+    })
 }

@@ -21,16 +21,25 @@ enum Step<'p> {
 
 impl<'p> Place<'p> {
     /// The whole document.
-    pub const ROOT: Place<'static> = Place { parent: None, step: Step::Root };
+    pub const ROOT: Place<'static> = Place {
+        parent: None,
+        step: Step::Root,
+    };
 
     /// A field of the object at this place.
     pub fn field(&'p self, name: &'p str) -> Place<'p> {
-        Place { parent: Some(self), step: Step::Field(name) }
+        Place {
+            parent: Some(self),
+            step: Step::Field(name),
+        }
     }
 
     /// An item of the array at this place.
     pub fn item(&'p self, index: usize) -> Place<'p> {
-        Place { parent: Some(self), step: Step::Item(index) }
+        Place {
+            parent: Some(self),
+            step: Step::Item(index),
+        }
     }
 }
 
@@ -57,9 +66,16 @@ impl<'v> Fields<'v> {
     /// Opens an object.
     pub fn open(value: &'v Value, at: &Place, problems: &mut Problems) -> Option<Fields<'v>> {
         match value {
-            Value::Object(map) => Some(Fields { map, known: Vec::with_capacity(16) }),
+            Value::Object(map) => Some(Fields {
+                map,
+                known: Vec::with_capacity(16),
+            }),
             other => {
-                problems.add(at, format!("An object belongs here, not {}.", shape(other)), "Give `{ ... }`.");
+                problems.add(
+                    at,
+                    format!("An object belongs here, not {}.", shape(other)),
+                    "Give `{ ... }`.",
+                );
                 None
             }
         }
@@ -78,7 +94,11 @@ impl<'v> Fields<'v> {
 
     /// Notes that a required field is absent.
     pub fn missing(name: &str, at: &Place, problems: &mut Problems) {
-        problems.add(at.field(name), format!("\"{name}\" is missing."), format!("Add \"{name}\"."));
+        problems.add(
+            at.field(name),
+            format!("\"{name}\" is missing."),
+            format!("Add \"{name}\"."),
+        );
     }
 
     /// An optional text.
@@ -88,7 +108,12 @@ impl<'v> Fields<'v> {
     }
 
     /// A required text.
-    pub fn required_text(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<String> {
+    pub fn required_text(
+        &mut self,
+        name: &'static str,
+        at: &Place,
+        problems: &mut Problems,
+    ) -> Option<String> {
         if !self.has(name) {
             self.known.push(name);
             Self::missing(name, at, problems);
@@ -145,7 +170,11 @@ impl<'v> Fields<'v> {
             None => Vec::new(),
             Some(Value::Array(items)) => {
                 let place = at.field(name);
-                items.iter().enumerate().filter_map(|(i, item)| read(item, &place.item(i), problems)).collect()
+                items
+                    .iter()
+                    .enumerate()
+                    .filter_map(|(i, item)| read(item, &place.item(i), problems))
+                    .collect()
             }
             Some(other) => {
                 let detail = format!("A list belongs here, not {}.", shape(other));
@@ -157,12 +186,20 @@ impl<'v> Fields<'v> {
 
     /// Notes every field that nobody asked for.
     pub fn close(self, at: &Place, problems: &mut Problems) {
-        for name in self.map.keys().filter(|name| !self.known.contains(&name.as_str())) {
+        for name in self
+            .map
+            .keys()
+            .filter(|name| !self.known.contains(&name.as_str()))
+        {
             let remedy = match nearest(name, self.known.iter().copied()) {
                 Some(near) => format!("Take it out, or write \"{near}\" if that was meant."),
                 None => format!("Take it out; known here: {}.", self.known.join(", ")),
             };
-            problems.add(at.field(name), format!("There is no field \"{name}\" here."), remedy);
+            problems.add(
+                at.field(name),
+                format!("There is no field \"{name}\" here."),
+                remedy,
+            );
         }
     }
 }
@@ -170,7 +207,11 @@ impl<'v> Fields<'v> {
 /// A text, kept as given; control characters other than tab and line ends are refused.
 pub fn text_of<'v>(value: &'v Value, at: &Place, problems: &mut Problems) -> Option<&'v str> {
     match value {
-        Value::String(text) if text.chars().any(|c| c.is_control() && !matches!(c, '\n' | '\r' | '\t')) => {
+        Value::String(text)
+            if text
+                .chars()
+                .any(|c| c.is_control() && !matches!(c, '\n' | '\r' | '\t')) =>
+        {
             problems.add(at, "The text holds control characters.", "Take them out.");
             None
         }
@@ -180,7 +221,11 @@ pub fn text_of<'v>(value: &'v Value, at: &Place, problems: &mut Problems) -> Opt
         }
         Value::String(text) => Some(text),
         other => {
-            problems.add(at, format!("A text belongs here, not {}.", shape(other)), "Put it in quotes.");
+            problems.add(
+                at,
+                format!("A text belongs here, not {}.", shape(other)),
+                "Put it in quotes.",
+            );
             None
         }
     }
@@ -201,20 +246,40 @@ pub fn number_of(value: &Value, at: &Place, problems: &mut Problems) -> Option<f
 /// A calendar day.
 pub fn day_of(value: &Value, at: &Place, problems: &mut Problems) -> Option<Date> {
     let text = text_of(value, at, problems)?;
-    let day = if text.len() == 10 { text.parse::<Date>().ok() } else { None };
+    let day = if text.len() == 10 {
+        text.parse::<Date>().ok()
+    } else {
+        None
+    };
     if day.is_none() {
-        problems.add(at, format!("\"{text}\" is not a day."), "Write it as year-month-day, such as 2026-10-01.");
+        problems.add(
+            at,
+            format!("\"{text}\" is not a day."),
+            "Write it as year-month-day, such as 2026-10-01.",
+        );
     }
     day
 }
 
 /// One of a fixed set of words.
-pub fn word_of<T: Copy>(value: &Value, words: &[(&str, T)], at: &Place, problems: &mut Problems) -> Option<T> {
+pub fn word_of<T: Copy>(
+    value: &Value,
+    words: &[(&str, T)],
+    at: &Place,
+    problems: &mut Problems,
+) -> Option<T> {
     let text = text_of(value, at, problems)?;
-    let found = words.iter().find(|(word, _)| *word == text).map(|(_, meaning)| *meaning);
+    let found = words
+        .iter()
+        .find(|(word, _)| *word == text)
+        .map(|(_, meaning)| *meaning);
     if found.is_none() {
         let known = words.iter().map(|(word, _)| *word).collect::<Vec<_>>().join(", ");
-        problems.add(at, format!("\"{text}\" is not known here."), format!("Choose one of: {known}."));
+        problems.add(
+            at,
+            format!("\"{text}\" is not known here."),
+            format!("Choose one of: {known}."),
+        );
     }
     found
 }

@@ -99,7 +99,11 @@ impl GasVector {
 
     /// CO2e under a set of weights, in the unit of the vector.
     pub fn co2e(&self, gwp: &GwpSet) -> f64 {
-        self.0.iter().zip(gwp.weights()).map(|(mass, weight)| mass * weight).sum()
+        self.0
+            .iter()
+            .zip(gwp.weights())
+            .map(|(mass, weight)| mass * weight)
+            .sum()
     }
 
     /// The entries in the fixed order.
@@ -196,8 +200,9 @@ impl utoipa::PartialSchema for GasVector {
         for gas in Gas::ALL {
             object = object.property(
                 gas.name(),
-                utoipa::openapi::ObjectBuilder::new()
-                    .schema_type(utoipa::openapi::schema::SchemaType::new(utoipa::openapi::Type::Number)),
+                utoipa::openapi::ObjectBuilder::new().schema_type(utoipa::openapi::schema::SchemaType::new(
+                    utoipa::openapi::Type::Number,
+                )),
             );
         }
         object.into()

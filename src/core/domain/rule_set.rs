@@ -46,7 +46,9 @@ impl AllocationMethod {
 
     /// The method of a document name, if there is one.
     pub fn from_name(name: &str) -> Option<AllocationMethod> {
-        AllocationMethod::ALL.into_iter().find(|method| method.name() == name)
+        AllocationMethod::ALL
+            .into_iter()
+            .find(|method| method.name() == name)
     }
 }
 
@@ -136,7 +138,10 @@ pub struct RuleSet {
 impl RuleSet {
     /// The document behind the rule set.
     pub fn citation(&self) -> Citation {
-        Citation { source: self.source.clone(), status: self.status }
+        Citation {
+            source: self.source.clone(),
+            status: self.status,
+        }
     }
 
     /// True if the rule says the term is zero.

@@ -123,7 +123,10 @@ impl StageKind {
 
     /// True for the stages whose outgoing flows are the crop's carbon before it enters a works.
     pub fn is_before_works(self) -> bool {
-        matches!(self, StageKind::Land | StageKind::Cultivation | StageKind::FeedstockTransport)
+        matches!(
+            self,
+            StageKind::Land | StageKind::Cultivation | StageKind::FeedstockTransport
+        )
     }
 }
 
@@ -159,8 +162,16 @@ pub enum Term {
 
 impl Term {
     /// Every term in the order of the Directive's sum.
-    pub const ALL: [Term; 8] =
-        [Term::Eec, Term::El, Term::Ep, Term::Etd, Term::Eu, Term::Esca, Term::Eccs, Term::Eccr];
+    pub const ALL: [Term; 8] = [
+        Term::Eec,
+        Term::El,
+        Term::Ep,
+        Term::Etd,
+        Term::Eu,
+        Term::Esca,
+        Term::Eccs,
+        Term::Eccr,
+    ];
 
     /// The name used in documents.
     pub fn name(self) -> &'static str {

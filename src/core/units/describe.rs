@@ -154,10 +154,6 @@ fn part(base: Base, power: i8) -> Part {
             let unit = format!("kg {}", s.symbol());
             plain("a ", &format!("mass of {} ({unit})", s.name()), &unit)
         }
-        Base::Currency(c) => plain(
-            "an ",
-            &format!("amount of money ({})", c.symbol()),
-            c.symbol(),
-        ),
+        Base::Currency(c) => plain("an ", &format!("amount of money ({})", c.symbol()), c.symbol()),
     }
 }

@@ -258,15 +258,11 @@ impl Dimension {
 
     /// The substance this is a mass of, if it is exactly that.
     pub fn as_substance(self) -> Option<Substance> {
-        Substance::ALL
-            .into_iter()
-            .find(|&s| Self::substance(s) == self)
+        Substance::ALL.into_iter().find(|&s| Self::substance(s) == self)
     }
 
     /// The currency this is an amount of, if it is exactly that.
     pub fn as_currency(self) -> Option<Currency> {
-        Currency::ALL
-            .into_iter()
-            .find(|&c| Self::currency(c) == self)
+        Currency::ALL.into_iter().find(|&c| Self::currency(c) == self)
     }
 }

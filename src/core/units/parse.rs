@@ -220,10 +220,7 @@ impl<'t> Reader<'t> {
         let end = before.map_or(from, |t| t.2);
         let next = if self.take(Token::Times) { to } else { from };
         match self.factor() {
-            Ok(_) => Refusal::TwoWays {
-                from: end,
-                to: next,
-            },
+            Ok(_) => Refusal::TwoWays { from: end, to: next },
             Err(refusal) => refusal,
         }
     }
@@ -319,14 +316,7 @@ impl<'t> Reader<'t> {
             _ => {}
         }
         let lhv = [Token::Open, Token::Word("LHV"), Token::Close];
-        if self
-            .tokens
-            .iter()
-            .skip(self.at)
-            .map(|t| t.0)
-            .take(3)
-            .eq(lhv)
-        {
+        if self.tokens.iter().skip(self.at).map(|t| t.0).take(3).eq(lhv) {
             self.at += 3;
         }
     }

@@ -114,9 +114,7 @@ pub fn plain(x: f64) -> String {
     match Digits::of(x) {
         None => String::new(),
         Some(digits) if digits.is_zero() => "0".to_owned(),
-        Some(digits) if (-6..=15).contains(&digits.point) => {
-            digits.text(digits.decimals(), Style::PLAIN)
-        }
+        Some(digits) if (-6..=15).contains(&digits.point) => digits.text(digits.decimals(), Style::PLAIN),
         Some(_) => format!("{x:e}"),
     }
 }
@@ -129,9 +127,7 @@ pub fn decimals_against(x: f64, limit: f64, at_least: u8) -> u8 {
         let (shown, edge) = (round_half_away(x, *d), limit);
         shown.partial_cmp(&edge) == x.partial_cmp(&limit)
     };
-    (at_least..=at_least + 6)
-        .find(tells)
-        .unwrap_or(at_least + 6)
+    (at_least..=at_least + 6).find(tells).unwrap_or(at_least + 6)
 }
 
 fn round_at(x: f64, decimals: i32) -> f64 {

@@ -99,13 +99,7 @@ const PREFIXED: &[(&str, &str, Dimension, f64, f64)] = &[
     ("g", "kMGTm", Dimension::MASS, 1.0, 1e3),
     ("J", "kMGTPm", Dimension::ENERGY, 1.0, 1.0),
     ("Wh", "kMGTPm", Dimension::ENERGY, 3_600.0, 1.0),
-    (
-        "W",
-        "kMGTPm",
-        Dimension::ENERGY.per(Dimension::TIME),
-        1.0,
-        1.0,
-    ),
+    ("W", "kMGTPm", Dimension::ENERGY.per(Dimension::TIME), 1.0, 1.0),
 ];
 
 /// SI prefixes: SI Brochure, 9th edition, table 7.
@@ -123,9 +117,7 @@ const fn prefix(letter: char) -> f64 {
 
 /// Every symbol with dimension and factor; large prefixes go before `m`, so that "mj" is first met as MJ.
 pub(super) fn known() -> impl Iterator<Item = (String, Dimension, f64)> {
-    let fixed = TABLE
-        .iter()
-        .map(|e| (e.symbol.to_owned(), e.dimension, e.factor));
+    let fixed = TABLE.iter().map(|e| (e.symbol.to_owned(), e.dimension, e.factor));
     let money = Currency::ALL
         .into_iter()
         .map(|c| (c.symbol().to_owned(), Dimension::currency(c), 1.0));
@@ -156,9 +148,7 @@ pub(super) fn find(symbol: &str) -> Option<(Dimension, f64)> {
             let mut letters = front.chars();
             match (letters.next(), letters.next()) {
                 (None, _) => Some((dimension, above / below)),
-                (Some(p), None) if prefixes.contains(p) => {
-                    Some((dimension, prefix(p) * above / below))
-                }
+                (Some(p), None) if prefixes.contains(p) => Some((dimension, prefix(p) * above / below)),
                 _ => None,
             }
         })

@@ -238,10 +238,7 @@ fn a_mismatch_names_both() {
         "kg is a mass, but a mass of nitrogen (kg N) is wanted here. Give it in kg N, t N or lb N.";
     let kg = Quantity::read(5.0, "kg").unwrap();
     assert_eq!(text(kg.need(n).unwrap_err()), against_n);
-    assert_eq!(
-        text(Quantity::read_as(5.0, "kg", n).unwrap_err()),
-        against_n
-    );
+    assert_eq!(text(Quantity::read_as(5.0, "kg", n).unwrap_err()), against_n);
     assert_eq!(
         text(kg.in_unit("lb N").unwrap_err()),
         against_n,
@@ -317,8 +314,8 @@ fn what_was_meant_is_suggested() {
         assert_eq!(suggestion(unit).as_deref(), Some(meant), "{unit}");
     }
     for nonsense in [
-        "", "/", "kg/", "/kg", "()", "kg ()", "kg/(ha", "kg)", "zzz", "N", "2", "kg**N",
-        "MJ (HHV)", "kg2", "KWH/T",
+        "", "/", "kg/", "/kg", "()", "kg ()", "kg/(ha", "kg)", "zzz", "N", "2", "kg**N", "MJ (HHV)", "kg2",
+        "KWH/T",
     ] {
         assert_eq!(suggestion(nonsense), None, "{nonsense}");
     }
