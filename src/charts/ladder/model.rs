@@ -26,7 +26,7 @@ pub struct Ladder {
 pub struct Baseline {
     /// One word for it, such as "petrol".
     pub word: String,
-    /// Its emissions, g CO2e/MJ.
+    /// Its emissions, g CO2e/MJ; above zero.
     pub g: f64,
 }
 

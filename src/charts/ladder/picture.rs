@@ -15,6 +15,9 @@ pub enum NotDrawable {
     /// A figure, or a sum of figures, is not a finite number: an error where the figures were made.
     #[error("{0} is not a finite number")]
     NotFinite(String),
+    /// The baseline emits nothing, so no saving can be drawn against it.
+    #[error("the baseline must be above zero")]
+    NoBaseline,
     /// The uptake, or a stage that is absent, carries figures that its bar would hide.
     #[error("{0} must not count anything")]
     MustNotCount(String),
@@ -142,6 +145,9 @@ fn refuse(ladder: &Ladder) -> Result<(), NotDrawable> {
         finite.ok_or_else(|| NotDrawable::NotFinite(what.to_owned()))
     };
     finite(ladder.baseline.g, &ladder.baseline.word)?;
+    if ladder.baseline.g <= NOTHING {
+        return Err(NotDrawable::NoBaseline);
+    }
     if let Some(required) = ladder.required {
         finite(required.g + required.percent, "the required saving")?;
     }

@@ -280,6 +280,33 @@ fn hostile_text_is_escaped() {
 }
 
 #[test]
+fn a_head_stays_inside_when_a_credit_is_deep() {
+    let deep = ladder(vec![works("Works", 5.0), fossil("Capture", -400.0)]);
+    let svg = drawn(&deep, Form::Wide);
+    let head = of_class(&svg, "text", "head")[1];
+    let upright = scale::Scale::of(&deep, Form::Wide.measures()).right;
+    assert!(number(head, "x") < upright - 10.0);
+    let unit = crate::charts::text::width("g CO2e per MJ of fuel", 12.5);
+    assert!(number(head, "x") + 57.0 + unit <= 734.1);
+}
+
+#[test]
+fn a_baseline_of_nothing_is_refused() {
+    // with nothing counted either, the narrow form would have no length to measure by
+    let nothing = Ladder {
+        baseline: Baseline {
+            word: "petrol".to_owned(),
+            g: 0.0,
+        },
+        required: None,
+        ..ladder(vec![burning(71.3)])
+    };
+    for form in FORMS {
+        assert_eq!(draw(&nothing, form), Err(NotDrawable::NoBaseline));
+    }
+}
+
+#[test]
 fn what_cannot_be_right_is_refused() {
     let refusal = |stages: Vec<Rung>| draw(&ladder(stages), Form::Wide).unwrap_err();
     assert_eq!(refusal(vec![]), NotDrawable::Nothing);
