@@ -1,3 +1,4 @@
 //! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
 
+pub mod charts;
 pub mod core;
