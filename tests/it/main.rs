@@ -3,6 +3,7 @@
     clippy::unwrap_used,
     clippy::expect_used,
     clippy::panic,
+    clippy::string_slice,
     reason = "a test fails by panicking"
 )]
 
