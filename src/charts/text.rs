@@ -94,11 +94,7 @@ pub fn plain(value: f64) -> String {
 
 /// A figure with a fixed number of decimals, halves away from zero, true minus, never -0.
 pub fn decimals(value: f64, places: i32) -> String {
-    sign(
-        value,
-        Decimal::of(value).round(places).text(places),
-        "\u{2212}",
-    )
+    sign(value, Decimal::of(value).round(places).text(places), "\u{2212}")
 }
 
 /// A coordinate with a fixed number of decimals. A place is no figure that anybody reads, so the number itself is
@@ -122,10 +118,7 @@ fn sign(value: f64, digits: String, minus: &str) -> String {
 }
 
 fn trim(digits: String) -> String {
-    digits
-        .trim_end_matches('0')
-        .trim_end_matches('.')
-        .to_owned()
+    digits.trim_end_matches('0').trim_end_matches('.').to_owned()
 }
 
 /// The shortest decimal that reads back as the same number, so that halves are halves as people read them.

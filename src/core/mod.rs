@@ -1,7 +1,9 @@
 //! The pure core: documents in, assessments and findings out. No I/O, no clock, no SQL, no HTTP.
 
+pub mod checks;
 pub mod documents;
 pub mod domain;
 pub mod engine;
+pub mod evaluate;
 pub mod models;
 pub mod units;

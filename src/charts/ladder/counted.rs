@@ -75,10 +75,7 @@ pub(super) fn running_line_and_uprights(p: &Picture, out: &mut Vec<String>) {
     let uprights = p.scale.left.into_iter().chain([p.scale.right]);
     out.extend(uprights.map(|x| {
         let (top, bottom) = (short(p.form.top), short(p.bottom));
-        format!(
-            r#"<path class="rail" d="M{} {top}V{bottom}"/>"#,
-            coordinate(x, 1)
-        )
+        format!(r#"<path class="rail" d="M{} {top}V{bottom}"/>"#, coordinate(x, 1))
     }));
     out.push(format!(r#"<path class="run" d="{line}"/>"#));
     let (x, y) = (coordinate(p.scale.x(p.net), 1), short(p.form.top - 8.0));

@@ -64,11 +64,7 @@ pub(super) fn waterfall(p: &Picture, out: &mut Vec<String>) {
 
 /// The figure of a bar from `a` to `b`: left of it, else below or inside (uptake), else right of it.
 fn value(p: &Picture, g: f64, (a, b): (f64, f64), y: f64) -> String {
-    let text = format!(
-        "{}{}",
-        if g < 0.0 { "\u{2212}" } else { "+" },
-        figure(g.abs())
-    );
+    let text = format!("{}{}", if g < 0.0 { "\u{2212}" } else { "+" }, figure(g.abs()));
     let middle = y + p.form.bar / 2.0 + 4.0;
     let (class, x, y, anchor) = if a - 6.0 - width(&text, p.form.value) > p.form.pad {
         ("val", a - 5.0, middle, r#" text-anchor="end""#)

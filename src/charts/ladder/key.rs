@@ -22,9 +22,7 @@ struct Item {
 fn layout(p: &Picture) -> Vec<Item> {
     let seen = |part: Part| {
         let parts = p.rungs.iter().flat_map(|(s, _)| s.counted.parts());
-        parts
-            .into_iter()
-            .any(|(q, g)| q == part && g.abs() > NOTHING)
+        parts.into_iter().any(|(q, g)| q == part && g.abs() > NOTHING)
     };
     let mut items: Vec<_> = part_words()
         .into_iter()

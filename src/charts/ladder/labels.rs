@@ -145,11 +145,7 @@ fn name(p: &Picture, stage: &Rung, y: f64) -> String {
         }
         _ => {
             let credits = p.scale.counted.0 < 0.0;
-            let x = if credits {
-                p.form.pad
-            } else {
-                p.scale.right + 6.0
-            };
+            let x = if credits { p.form.pad } else { p.scale.right + 6.0 };
             let shown = clip(&stage.name, 230.0, 14.0);
             ("name halo-t", x, y + 16.0, shown)
         }

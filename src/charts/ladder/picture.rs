@@ -158,21 +158,14 @@ fn refuse(ladder: &Ladder) -> Result<(), NotDrawable> {
         let crop = stage.crop.unwrap_or(0.0);
         finite(size, &stage.name)?;
         finite(crop, &stage.name)?;
-        let silent = if stage.absent {
-            size + crop.abs()
-        } else {
-            size
-        };
+        let silent = if stage.absent { size + crop.abs() } else { size };
         if (stage.uptake || stage.absent) && silent > 0.0 {
             return Err(NotDrawable::MustNotCount(stage.name.clone()));
         }
     }
     let (low, high) = ladder.reach();
     let (taken_up, given_back) = ladder.crop_sums();
-    finite(
-        (high - low) + taken_up + given_back,
-        "the sum of the stages",
-    )?;
+    finite((high - low) + taken_up + given_back, "the sum of the stages")?;
     if let Some((from, to)) = ladder.scale {
         finite(to - from, "the common scale")?;
         if from > low || to < high {

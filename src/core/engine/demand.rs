@@ -17,7 +17,13 @@ pub struct Demand {
 
 /// Works out the demand. `resolved.order` must run from suppliers to takers.
 pub fn demand(resolved: &Resolved) -> Demand {
-    let zeros = || resolved.stages.iter().map(|stage| vec![0.0; stage.products.len()]).collect::<Vec<_>>();
+    let zeros = || {
+        resolved
+            .stages
+            .iter()
+            .map(|stage| vec![0.0; stage.products.len()])
+            .collect::<Vec<_>>()
+    };
     let mut demand = Demand {
         by_product: zeros(),
         scale: vec![0.0; resolved.stages.len()],
@@ -33,8 +39,12 @@ pub fn demand(resolved: &Resolved) -> Demand {
     }
     for &j in resolved.order.iter().rev() {
         let stage = &resolved.stages[j];
-        demand.scale[j] =
-            stage.products.iter().zip(&demand.by_product[j]).map(|(product, recipes)| recipes * product.share).sum();
+        demand.scale[j] = stage
+            .products
+            .iter()
+            .zip(&demand.by_product[j])
+            .map(|(product, recipes)| recipes * product.share)
+            .sum();
         demand.whole[j] = demand.whole_by_product[j].iter().copied().fold(0.0, f64::max);
         for intake in &stage.intakes {
             demand.by_product[intake.from][intake.product] += demand.scale[j] * intake.recipes;

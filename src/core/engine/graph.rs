@@ -23,8 +23,12 @@ pub struct Graph {
 /// Builds the graph.
 pub fn graph(pathway: &Pathway, problems: &mut Problems) -> Graph {
     let stages_at = Place::ROOT.field("stages");
-    let index: BTreeMap<&str, usize> =
-        pathway.stages.iter().enumerate().map(|(i, stage)| (stage.key.as_str(), i)).collect();
+    let index: BTreeMap<&str, usize> = pathway
+        .stages
+        .iter()
+        .enumerate()
+        .map(|(i, stage)| (stage.key.as_str(), i))
+        .collect();
     let sources: Vec<Vec<Option<Source>>> = pathway
         .stages
         .iter()
@@ -39,15 +43,25 @@ pub fn graph(pathway: &Pathway, problems: &mut Problems) -> Graph {
                         Some(near) => format!("Perhaps \"{near}\" was meant."),
                         None => "Name the key of another stage.".to_owned(),
                     };
-                    problems.add(at.field("from"), format!("There is no stage \"{}\".", intake.from), remedy);
+                    problems.add(
+                        at.field("from"),
+                        format!("There is no stage \"{}\".", intake.from),
+                        remedy,
+                    );
                     return None;
                 };
-                let Some(key) = &intake.product else { return Some((i, 0)) };
+                let Some(key) = &intake.product else {
+                    return Some((i, 0));
+                };
                 let products = &pathway.stages[i].co_products;
                 match products.iter().position(|product| product.key == *key) {
                     Some(product) => Some((i, product + 1)),
                     None => {
-                        let known = products.iter().map(|p| p.key.as_str()).collect::<Vec<_>>().join(", ");
+                        let known = products
+                            .iter()
+                            .map(|p| p.key.as_str())
+                            .collect::<Vec<_>>()
+                            .join(", ");
                         let remedy = match known.is_empty() {
                             true => format!("\"{}\" has no co-products; leave \"product\" out.", intake.from),
                             false => format!("\"{}\" has: {known}.", intake.from),
@@ -89,7 +103,11 @@ fn order(pathway: &Pathway, sources: &[Vec<Option<Source>>], problems: &mut Prob
     if order.len() < count {
         let stuck: Vec<usize> = (0..count).filter(|j| waiting[*j] > 0).collect();
         let on_cycle = cycle(&stuck, sources);
-        let keys = on_cycle.iter().map(|j| pathway.stages[*j].key.as_str()).collect::<Vec<_>>().join(" takes from ");
+        let keys = on_cycle
+            .iter()
+            .map(|j| pathway.stages[*j].key.as_str())
+            .collect::<Vec<_>>()
+            .join(" takes from ");
         let first = on_cycle.first().copied().unwrap_or(0);
         problems.add(
             Place::ROOT.field("stages").item(first).field("intakes"),
@@ -102,11 +120,17 @@ fn order(pathway: &Pathway, sources: &[Vec<Option<Source>>], problems: &mut Prob
 
 /// One circle among the stages that never became ready, its first stage repeated at the end.
 fn cycle(stuck: &[usize], sources: &[Vec<Option<Source>>]) -> Vec<usize> {
-    let Some(&start) = stuck.first() else { return Vec::new() };
+    let Some(&start) = stuck.first() else {
+        return Vec::new();
+    };
     let mut path = vec![start];
     loop {
         let here = path[path.len() - 1];
-        let next = sources[here].iter().flatten().map(|(i, _)| *i).find(|i| stuck.contains(i));
+        let next = sources[here]
+            .iter()
+            .flatten()
+            .map(|(i, _)| *i)
+            .find(|i| stuck.contains(i));
         let Some(next) = next else { return path };
         if let Some(from) = path.iter().position(|seen| *seen == next) {
             path.push(next);
@@ -128,7 +152,10 @@ fn last(pathway: &Pathway, sources: &[Vec<Option<Source>>], problems: &mut Probl
         } else if !is_ethanol && !taken(i) && stage.kind != StageKind::CoProductHandling {
             problems.add(
                 at.item(i).field("output"),
-                format!("Nothing takes the {} of \"{}\".", stage.output.material, stage.key),
+                format!(
+                    "Nothing takes the {} of \"{}\".",
+                    stage.output.material, stage.key
+                ),
                 format!("Let a stage take from \"{}\", or take the stage out.", stage.key),
             );
         }
@@ -137,12 +164,20 @@ fn last(pathway: &Pathway, sources: &[Vec<Option<Source>>], problems: &mut Probl
         [end] => Some(end),
         [] => {
             if !pathway.stages.is_empty() {
-                problems.add(at, "No stage delivers ethanol that nothing else takes.", "End the chain with ethanol.");
+                problems.add(
+                    at,
+                    "No stage delivers ethanol that nothing else takes.",
+                    "End the chain with ethanol.",
+                );
             }
             None
         }
         _ => {
-            let keys = ends.iter().map(|i| pathway.stages[*i].key.as_str()).collect::<Vec<_>>().join(", ");
+            let keys = ends
+                .iter()
+                .map(|i| pathway.stages[*i].key.as_str())
+                .collect::<Vec<_>>()
+                .join(", ");
             for end in ends.iter().skip(1) {
                 problems.add(
                     at.item(*end).field("output"),

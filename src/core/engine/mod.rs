@@ -1,24 +1,20 @@
 //! The accounting: a pathway and the published book in, an assessment out.
+//! `resolve` makes a plan of numbers; `demand`, shares and inventory are sums over it.
 
-use crate::core::documents::{Assessment, Pathway, Problems};
-use crate::core::domain::Book;
+mod allocation;
+pub mod assess;
+pub mod carbon;
+mod defaults;
+pub mod demand;
+mod graph;
+mod inputs;
+mod inventory;
+pub mod materials;
+mod resolve;
+pub mod resolved;
+mod saving;
 
-/// What an evaluation may be told beside the pathway.
-#[derive(Clone, Copy, Debug, Default)]
-pub struct Options<'o> {
-    /// Evaluate under another rule set than the pathway names.
-    pub rule_set: Option<&'o str>,
-    /// Leave the step-by-step arithmetic out of the assessment.
-    pub without_workings: bool,
-}
-
-/// Evaluates a pathway.
-///
-/// # Errors
-/// Everything that is wrong with the pathway, each with JSON pointer and remedy.
-pub fn evaluate(pathway: &Pathway, book: &Book, options: Options<'_>) -> Result<Assessment, Problems> {
-    let _ = (pathway, book, options);
-    let mut problems = Problems::default();
-    problems.add("", "The engine is not here yet.", "Wait for it.");
-    Err(problems)
-}
+pub use assess::{Assessed, assess};
+pub use inventory::{Totals, totals};
+pub use resolve::resolve;
+pub use resolved::Resolved;

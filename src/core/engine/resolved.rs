@@ -1,5 +1,6 @@
 //! A pathway with every unit converted, every factor priced and every model computed: a flat plan of numbers.
 
+use super::materials::Materials;
 use crate::core::documents::amount::Origin;
 use crate::core::documents::assessment::{Finding, Step};
 use crate::core::documents::pathway::{Pathway, ValueKind};
@@ -25,6 +26,15 @@ pub struct Resolved<'p> {
     pub defaults: Vec<DefaultTerm>,
     /// What checks have to say about figures as entered.
     pub findings: Vec<Finding>,
+    /// The pathway's own materials and the built-in ones.
+    pub materials: Materials<'p>,
+}
+
+impl Resolved<'_> {
+    /// Lower heating value of a material's dry matter, MJ/kg.
+    pub fn lhv_dry(&self, material: &str) -> Option<f64> {
+        self.materials.lhv_dry(material).map(|(lhv, _)| lhv)
+    }
 }
 
 /// A stage of the plan.

@@ -145,7 +145,8 @@ mod tests {
     proptest! {
         #[test]
         fn strength_by_mass_and_by_volume_are_inverse(q in 0.0f64..=1.0) {
-            prop_assert!((volume_fraction(mass_fraction(q)) - q).abs() < 1e-14);
+            // Terms of up to 7.5e5 cancel to about 800, so the formula itself is good to some 1e-13 of its value.
+            prop_assert!((volume_fraction(mass_fraction(q)) - q).abs() < 1e-12);
         }
 
         #[test]

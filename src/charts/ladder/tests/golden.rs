@@ -5,12 +5,7 @@ use super::*;
 
 macro_rules! golden {
     ($name:literal) => {
-        include_str!(concat!(
-            "../../../../tests/snapshots/ladder_",
-            $name,
-            ".svg"
-        ))
-        .trim_end()
+        include_str!(concat!("../../../../tests/snapshots/ladder_", $name, ".svg")).trim_end()
     };
 }
 
@@ -48,24 +43,8 @@ fn in_line_with_the_crop_carbon() {
 #[test]
 fn measures_of_the_worked_example() {
     for (form, k, left, right, net, required, baseline) in [
-        (
-            Form::Wide,
-            2.81735,
-            Some(303.17),
-            439.17,
-            527.67,
-            545.10,
-            704.00,
-        ),
-        (
-            Form::Print,
-            2.81735,
-            Some(303.17),
-            439.17,
-            527.67,
-            545.10,
-            704.00,
-        ),
+        (Form::Wide, 2.81735, Some(303.17), 439.17, 527.67, 545.10, 704.00),
+        (Form::Print, 2.81735, Some(303.17), 439.17, 527.67, 545.10, 704.00),
         (Form::Narrow, 3.08511, None, 12.0, 108.91, 128.00, 302.00),
     ] {
         let scale = scale::Scale::of(&wheat(), form.measures());

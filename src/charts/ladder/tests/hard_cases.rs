@@ -38,10 +38,7 @@ fn above_baseline() -> Ladder {
 fn fourteen_stages() -> Ladder {
     let mut stages = vec![uptake(-106.9)];
     stages.extend((1..=14).map(|i| fossil(&format!("Stage {i} with a rather long name"), 2.0)));
-    stages[3] = rung(
-        "Soil carbon from better farming",
-        [0.0, 0.0, 0.0, -4.0, 0.0],
-    );
+    stages[3] = rung("Soil carbon from better farming", [0.0, 0.0, 0.0, -4.0, 0.0]);
     stages[8].crop = Some(35.6);
     stages[14].crop = Some(71.3);
     ladder(stages)
@@ -120,10 +117,7 @@ fn a_credit_moves_the_upright_and_takes_the_wheel_left_of_it() {
 #[test]
 fn a_net_above_the_baseline_swaps_the_sides_of_the_labels() {
     let svg = drawn(&above_baseline(), Form::Wide);
-    assert_eq!(
-        labels(&svg)[..2],
-        [("vlab net", "end"), ("vlab req", "end")]
-    );
+    assert_eq!(labels(&svg)[..2], [("vlab net", "end"), ("vlab req", "end")]);
     assert!(svg.contains("above the 37.6 that a saving of 60 % allows"));
     // the net has no room right of its line, which is the longest of the picture; it takes the other side
     let narrow = drawn(&above_baseline(), Form::Narrow);
@@ -135,11 +129,7 @@ fn a_net_above_the_baseline_swaps_the_sides_of_the_labels() {
 
 #[test]
 fn fourteen_stages_keep_their_row_height() {
-    for (form, height) in [
-        (Form::Wide, "666"),
-        (Form::Print, "489"),
-        (Form::Narrow, "774"),
-    ] {
+    for (form, height) in [(Form::Wide, "666"), (Form::Print, "489"), (Form::Narrow, "774")] {
         let svg = drawn(&fourteen_stages(), form);
         let frame = attribute(svg.lines().next().unwrap(), "viewBox");
         assert_eq!(frame.rsplit(' ').next(), Some(height), "{form:?}");
@@ -197,10 +187,7 @@ fn without_carbon_the_left_part_goes() {
 #[test]
 fn a_net_on_the_requirement_meets_it() {
     let svg = drawn(&ladder(vec![fossil("Works", 37.6)]), Form::Wide);
-    assert_eq!(
-        labels(&svg)[..2],
-        [("vlab net", "end"), ("vlab req", "start")]
-    );
+    assert_eq!(labels(&svg)[..2], [("vlab net", "end"), ("vlab req", "start")]);
     assert!(svg.contains("within the 37.6"));
 }
 
@@ -316,40 +303,19 @@ fn what_cannot_be_right_is_refused() {
         let named = NotDrawable::NotFinite("Works".to_owned());
         assert_eq!(refusal(vec![fossil("Works", bad)]), named);
         assert_eq!(
-            refusal(vec![
-                works("Works", 1.0),
-                gives_back(fossil("Works", 1.0), bad)
-            ]),
+            refusal(vec![works("Works", 1.0), gives_back(fossil("Works", 1.0), bad)]),
             named
         );
         let baseline = Baseline {
             word: "petrol".to_owned(),
             g: bad,
         };
-        assert!(
-            draw(
-                &Ladder {
-                    baseline,
-                    ..wheat()
-                },
-                Form::Print
-            )
-            .is_err()
-        );
+        assert!(draw(&Ladder { baseline, ..wheat() }, Form::Print).is_err());
         let required = Some(Required {
             percent: 60.0,
             g: bad,
         });
-        assert!(
-            draw(
-                &Ladder {
-                    required,
-                    ..wheat()
-                },
-                Form::Print
-            )
-            .is_err()
-        );
+        assert!(draw(&Ladder { required, ..wheat() }, Form::Print).is_err());
         let scale = Some((0.0, bad));
         assert!(draw(&Ladder { scale, ..wheat() }, Form::Narrow).is_err());
     }
@@ -370,10 +336,7 @@ fn what_cannot_be_right_is_refused() {
             ..burning(71.3)
         },
     ] {
-        assert_eq!(
-            refusal(vec![fossil("Growing", 1.0), rung.clone()]),
-            silent(rung)
-        );
+        assert_eq!(refusal(vec![fossil("Growing", 1.0), rung.clone()]), silent(rung));
     }
     let scale = Some((0.0, 50.0));
     assert_eq!(

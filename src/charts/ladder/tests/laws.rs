@@ -4,8 +4,7 @@ use super::*;
 use proptest::prelude::*;
 
 fn stage() -> impl Strategy<Value = Rung> {
-    let part =
-        || prop_oneof![3 => Just(0.0), 4 => 0.0f64..30.0, 1 => -30.0f64..0.0, 1 => 0.0f64..0.1];
+    let part = || prop_oneof![3 => Just(0.0), 4 => 0.0f64..30.0, 1 => -30.0f64..0.0, 1 => 0.0f64..0.1];
     let parts = [part(), part(), part(), part(), part()];
     (parts, proptest::option::of(0.0f64..60.0), "\\PC{0,24}").prop_map(|(parts, crop, name)| Rung {
         crop,
@@ -16,24 +15,22 @@ fn stage() -> impl Strategy<Value = Rung> {
 fn any_ladder() -> impl Strategy<Value = Ladder> {
     let stages = proptest::collection::vec(stage(), 1..15);
     let required = proptest::option::of(0.0f64..100.0);
-    (stages, 0.0f64..150.0, required, 10.0f64..120.0).prop_map(
-        |(mut stages, taken_up, percent, g)| {
-            stages.insert(0, uptake(-taken_up));
-            // one figure that is never zero, so that there is always something to draw
-            stages.push(fossil("Works", 1.0));
-            Ladder {
-                baseline: Baseline {
-                    word: "petrol".to_owned(),
-                    g,
-                },
-                required: percent.map(|percent| Required {
-                    percent,
-                    g: g * (1.0 - percent / 100.0),
-                }),
-                ..ladder(stages)
-            }
-        },
-    )
+    (stages, 0.0f64..150.0, required, 10.0f64..120.0).prop_map(|(mut stages, taken_up, percent, g)| {
+        stages.insert(0, uptake(-taken_up));
+        // one figure that is never zero, so that there is always something to draw
+        stages.push(fossil("Works", 1.0));
+        Ladder {
+            baseline: Baseline {
+                word: "petrol".to_owned(),
+                g,
+            },
+            required: percent.map(|percent| Required {
+                percent,
+                g: g * (1.0 - percent / 100.0),
+            }),
+            ..ladder(stages)
+        }
+    })
 }
 
 fn form() -> impl Strategy<Value = Form> {

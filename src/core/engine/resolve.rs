@@ -1,0 +1,500 @@
+//! From a document to a plan of numbers: units, factors, models, shares. All problems at once, each with its pointer.
+
+use super::allocation;
+use super::defaults;
+use super::graph::{Graph, Source, graph};
+use super::inputs;
+use super::materials::Materials;
+use super::resolved::{Intake, Product, Resolved, Stage};
+use crate::core::documents::assessment::{Finding, Severity};
+use crate::core::documents::pathway::{CoProduct, Pathway, Role, Stage as StageDocument};
+use crate::core::documents::problem::Problems;
+use crate::core::documents::reader::{Place, nearest};
+use crate::core::domain::{Book, RuleSet, StageKind};
+use crate::core::models::Setting;
+use crate::core::models::flow::{ETHANOL, Measured, measure};
+use crate::core::units::rounding::plain;
+
+/// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none).
+///
+/// # Errors
+/// Everything that is wrong with the pathway.
+pub fn resolve<'p>(
+    pathway: &'p Pathway,
+    rule_set: Option<&str>,
+    book: &'p Book,
+) -> Result<Resolved<'p>, Problems> {
+    let mut problems = Problems::default();
+    let rules = rules(pathway, rule_set, book, &mut problems);
+    let Some((rules, gwp)) = rules else {
+        return Err(problems);
+    };
+    let materials = Materials::new(pathway, book, &mut problems);
+    let root = Place::ROOT;
+    materials.check(&pathway.feedstock, &root.field("feedstock"), &mut problems);
+    let graph = graph(pathway, &mut problems);
+    let mut findings = Vec::new();
+    let flows = measure_all(pathway, rules, &materials, &graph, &mut problems, &mut findings);
+    let defaults = defaults::find(pathway, book, &mut problems);
+    let mut stages = Vec::with_capacity(pathway.stages.len());
+    let stages_at = root.field("stages");
+    for (j, document) in pathway.stages.iter().enumerate() {
+        let at = stages_at.item(j);
+        let mut products = products(document, &flows[j], rules, &mut findings);
+        let mut share_steps = Vec::new();
+        let measure_unit = match products.len() {
+            0 => "",
+            _ => allocation::share(
+                document,
+                &mut products,
+                rules,
+                &materials,
+                &at,
+                &mut problems,
+                &mut share_steps,
+            ),
+        };
+        let neighbours = neighbours(document);
+        let received: Vec<Measured> = flows[j].intakes.iter().flatten().cloned().collect();
+        let setting = Setting {
+            book,
+            rules,
+            stage_kind: document.kind,
+            output: flows[j].output.as_ref(),
+            intakes: &received,
+            neighbours: &neighbours,
+            period: &pathway.period,
+            harvest_year: harvest_year(pathway, &graph, j),
+        };
+        let mut inputs = inputs::inputs(document, &setting, &at, &mut problems, &mut findings);
+        bought(document, &flows[j], &setting, &at, &mut problems, &mut inputs);
+        let intakes = link(pathway, j, &graph, &flows, &at, &mut problems, &mut findings);
+        stages.push(Stage {
+            document,
+            products,
+            intakes,
+            inputs,
+            share_steps,
+            measure_unit,
+        });
+    }
+    if !problems.is_empty() {
+        return Err(problems);
+    }
+    let mut resolved = Resolved {
+        pathway,
+        rules,
+        gwp,
+        stages,
+        order: graph.order,
+        last: graph.last,
+        defaults,
+        findings,
+        materials,
+    };
+    defaults::replace(&mut resolved);
+    Ok(resolved)
+}
+
+fn rules<'p>(
+    pathway: &Pathway,
+    asked: Option<&str>,
+    book: &'p Book,
+    problems: &mut Problems,
+) -> Option<(&'p RuleSet, &'p crate::core::domain::GwpSet)> {
+    let id = asked.unwrap_or(&pathway.rule_set);
+    let pointer = if asked.is_some() { "" } else { "/rule_set" };
+    let Some(rules) = book.rule_sets.get(id) else {
+        let known = book
+            .rule_sets
+            .keys()
+            .map(String::as_str)
+            .collect::<Vec<_>>()
+            .join(", ");
+        let remedy = match nearest(id, book.rule_sets.keys().map(String::as_str)) {
+            Some(near) => format!("Perhaps \"{near}\" was meant."),
+            None => format!("Choose one of: {known}."),
+        };
+        problems.add(pointer, format!("There is no rule set \"{id}\"."), remedy);
+        return None;
+    };
+    match book.gwp_sets.get(&rules.gwp_set) {
+        Some(gwp) => Some((rules, gwp)),
+        None => {
+            let detail = format!(
+                "The gas weights \"{}\" of {id} are not in the library.",
+                rules.gwp_set
+            );
+            problems.add(pointer, detail, "Choose another rule set.");
+            None
+        }
+    }
+}
+
+/// The flows of one stage as measured; none where one cannot be.
+#[derive(Default)]
+struct Flows {
+    output: Option<Measured>,
+    co_products: Vec<Option<Measured>>,
+    intakes: Vec<Option<Measured>>,
+}
+
+impl Flows {
+    fn product(&self, index: usize) -> Option<&Measured> {
+        match index {
+            0 => self.output.as_ref(),
+            _ => self.co_products.get(index - 1)?.as_ref(),
+        }
+    }
+}
+
+fn measure_all(
+    pathway: &Pathway,
+    rules: &RuleSet,
+    materials: &Materials,
+    graph: &Graph,
+    problems: &mut Problems,
+    findings: &mut Vec<Finding>,
+) -> Vec<Flows> {
+    let stages_at = Place::ROOT.field("stages");
+    let mut flows: Vec<Flows> = Vec::with_capacity(pathway.stages.len());
+    for (j, stage) in pathway.stages.iter().enumerate() {
+        let at = stages_at.item(j);
+        let output_at = at.field("output");
+        let output = materials
+            .check(&stage.output.material, &output_at.field("material"), problems)
+            .then(|| {
+                measure(
+                    &stage.output.flow,
+                    &stage.output.material,
+                    rules,
+                    &output_at,
+                    problems,
+                )
+            })
+            .flatten();
+        strength_missing(output.as_ref(), stage, "output", findings);
+        let products_at = at.field("co_products");
+        let co_products = stage
+            .co_products
+            .iter()
+            .enumerate()
+            .map(|(k, product)| {
+                let place = products_at.item(k);
+                let known = materials.check(&product.material, &place.field("material"), problems);
+                let flow = known
+                    .then(|| measure(&product.flow, &product.material, rules, &place, problems))
+                    .flatten();
+                strength_missing(
+                    flow.as_ref(),
+                    stage,
+                    &format!("co_products.{}", product.key),
+                    findings,
+                );
+                flow
+            })
+            .collect();
+        flows.push(Flows {
+            output,
+            co_products,
+            intakes: Vec::new(),
+        });
+    }
+    for (j, stage) in pathway.stages.iter().enumerate() {
+        let intakes_at = stages_at.item(j);
+        let intakes_at = intakes_at.field("intakes");
+        let mut received = Vec::with_capacity(stage.intakes.len());
+        for (k, intake) in stage.intakes.iter().enumerate() {
+            let place = intakes_at.item(k);
+            let Some((i, product)) = graph.sources[j][k] else {
+                received.push(None);
+                continue;
+            };
+            let material = match product {
+                0 => &pathway.stages[i].output.material,
+                _ => &pathway.stages[i].co_products[product - 1].material,
+            };
+            let without_amount = intake.flow.amount.is_none() && intake.flow.unit.is_none();
+            if stage.kind == StageKind::Combustion && without_amount && material == ETHANOL {
+                received.push(burnt(flows[j].output.as_ref(), flows[i].product(product)));
+                continue;
+            }
+            let flow = measure(&intake.flow, material, rules, &place, problems);
+            strength_missing(
+                flow.as_ref(),
+                stage,
+                &format!("intakes.{}", intake.from),
+                findings,
+            );
+            received.push(flow);
+        }
+        flows[j].intakes = received;
+    }
+    flows
+}
+
+/// What a combustion stage takes when it states the fuel burnt only: the same pure ethanol.
+fn burnt(output: Option<&Measured>, source: Option<&Measured>) -> Option<Measured> {
+    let (output, source) = (output?, source?);
+    let pure = output.pure_kg?;
+    let strength = source.strength.unwrap_or(1.0);
+    Some(Measured {
+        pure_kg: Some(pure),
+        strength: Some(strength),
+        wet_kg: Some(pure / strength),
+        ..output.clone()
+    })
+}
+
+fn strength_missing(
+    flow: Option<&Measured>,
+    stage: &StageDocument,
+    field: &str,
+    findings: &mut Vec<Finding>,
+) {
+    let Some(flow) = flow.filter(|flow| flow.is_ethanol() && !flow.strength_given) else {
+        return;
+    };
+    // Fuel given as energy holds the same pure ethanol whatever its strength.
+    if flow.energy_j().is_some() {
+        return;
+    }
+    findings.push(Finding {
+        id: "K-04".to_owned(),
+        severity: Severity::Warn,
+        stage: stage.key.clone(),
+        field: field.to_owned(),
+        message: format!(
+            "The {field} of {} has no strength and counts as pure ethanol.",
+            stage.title()
+        ),
+        remedy: "Enter it in % mass or % vol at 20 °C.".to_owned(),
+    });
+}
+
+fn products<'p>(
+    document: &'p StageDocument,
+    flows: &Flows,
+    rules: &RuleSet,
+    findings: &mut Vec<Finding>,
+) -> Vec<Product<'p>> {
+    let Some(output) = flows.output.clone() else {
+        return Vec::new();
+    };
+    if flows.co_products.iter().any(Option::is_none) {
+        return Vec::new();
+    }
+    let mut products = vec![Product {
+        key: None,
+        name: document.title(),
+        flow: output,
+        carbon_percent_dry: document.output.flow.carbon_percent_dry,
+        shares_burden: true,
+        share: 0.0,
+        measure: 0.0,
+    }];
+    for (product, flow) in document
+        .co_products
+        .iter()
+        .zip(flows.co_products.iter().flatten())
+    {
+        products.push(Product {
+            key: Some(&product.key),
+            name: &product.name,
+            flow: flow.clone(),
+            carbon_percent_dry: product.flow.carbon_percent_dry,
+            shares_burden: shares_burden(document, product, rules, findings),
+            share: 0.0,
+            measure: 0.0,
+        });
+    }
+    products
+}
+
+fn shares_burden(
+    stage: &StageDocument,
+    product: &CoProduct,
+    rules: &RuleSet,
+    findings: &mut Vec<Finding>,
+) -> bool {
+    if product.role != Role::CoProduct {
+        return false;
+    }
+    if !rules.is_residue_by_law(&product.material) {
+        return true;
+    }
+    findings.push(Finding {
+        id: "B-04".to_owned(),
+        severity: Severity::Warn,
+        stage: stage.key.clone(),
+        field: format!("co_products.{}", product.key),
+        message: format!(
+            "{} is given as co-product, but under {} it is a residue and takes no share of the burden.",
+            product.name, rules.id
+        ),
+        remedy: "Set its role to residue.".to_owned(),
+    });
+    false
+}
+
+fn neighbours(stage: &StageDocument) -> Vec<(String, String)> {
+    let word =
+        |value: Option<&serde_json::Value>| value.and_then(|v| v.as_str()).unwrap_or_default().to_owned();
+    stage
+        .inputs
+        .iter()
+        .filter_map(|input| input.model.as_ref())
+        .flat_map(|uses| uses.list())
+        .map(|model| (model.kind.clone(), word(model.parameters.get("method"))))
+        .collect()
+}
+
+/// Year of the harvest: of the stage, else of one that takes from it, else the year the period begins in.
+fn harvest_year(pathway: &Pathway, graph: &Graph, j: usize) -> i16 {
+    let of = |i: usize| {
+        pathway.stages[i]
+            .grown
+            .as_ref()
+            .and_then(|grown| grown.harvest_year)
+    };
+    let takers = || {
+        (0..pathway.stages.len())
+            .filter(|i| graph.sources[*i].iter().flatten().any(|(from, _)| *from == j))
+            .find_map(of)
+    };
+    of(j)
+        .or_else(takers)
+        .unwrap_or_else(|| pathway.period.from.year())
+}
+
+fn bought(
+    document: &StageDocument,
+    flows: &Flows,
+    setting: &Setting,
+    at: &Place,
+    problems: &mut Problems,
+    inputs: &mut Vec<super::resolved::Input>,
+) {
+    if document.kind != StageKind::Bought {
+        if document.stated.is_some() {
+            let detail = format!(
+                "A stage of kind {} has no supplier's statement.",
+                document.kind.name()
+            );
+            problems.add(
+                at.field("stated"),
+                detail,
+                "Set the kind to bought, or take \"stated\" out.",
+            );
+        }
+        return;
+    }
+    for (name, filled) in [
+        ("intakes", !document.intakes.is_empty()),
+        ("inputs", !document.inputs.is_empty()),
+        ("co_products", !document.co_products.is_empty()),
+    ] {
+        if filled {
+            let detail = format!("Bought fuel has no {name} of its own: they are in the supplier's terms.");
+            problems.add(
+                at.field(name),
+                detail,
+                "Put them in a stage that takes the bought fuel.",
+            );
+        }
+    }
+    if let Some(output) = &flows.output {
+        inputs.extend(inputs::stated(document, output, setting, at, problems));
+    }
+}
+
+fn link(
+    pathway: &Pathway,
+    j: usize,
+    graph: &Graph,
+    flows: &[Flows],
+    at: &Place,
+    problems: &mut Problems,
+    findings: &mut Vec<Finding>,
+) -> Vec<Intake> {
+    let document = &pathway.stages[j];
+    let intakes_at = at.field("intakes");
+    let mut out = Vec::with_capacity(document.intakes.len());
+    for (k, intake) in document.intakes.iter().enumerate() {
+        let Some(source) = graph.sources[j][k] else {
+            continue;
+        };
+        let (Some(flow), Some(supply)) = (&flows[j].intakes[k], flows[source.0].product(source.1)) else {
+            continue;
+        };
+        let place = intakes_at.item(k);
+        let Some(recipes) = recipes(flow, supply, &place, problems) else {
+            continue;
+        };
+        let moistures = (flow.moisture.is_some(), supply.moisture.is_some());
+        if moistures.0 != moistures.1 && !flow.is_ethanol() {
+            findings.push(one_moisture(document, intake.from.as_str(), moistures.0));
+        }
+        let (from, product): Source = source;
+        out.push(Intake {
+            from,
+            product,
+            recipes,
+            flow: flow.clone(),
+            carbon_percent_dry: intake.flow.carbon_percent_dry,
+        });
+    }
+    out
+}
+
+/// Intake over product: on pure ethanol, on dry matter where both have a moisture, else as entered.
+fn recipes(flow: &Measured, supply: &Measured, at: &Place, problems: &mut Problems) -> Option<f64> {
+    if let (Some(taken), Some(made)) = (flow.pure_kg, supply.pure_kg) {
+        return Some(taken / made);
+    }
+    if flow.dimension != supply.dimension {
+        let detail = format!(
+            "The intake is {}, but its source makes {}.",
+            flow.dimension.describe(),
+            supply.dimension.describe()
+        );
+        problems.add(
+            at.field("unit"),
+            detail,
+            format!("Give it in {}.", supply.dimension.examples()),
+        );
+        return None;
+    }
+    match (flow.moisture, supply.moisture, flow.dry_kg(), supply.dry_kg()) {
+        (Some(_), Some(_), Some(taken), Some(made)) => Some(taken / made),
+        _ => Some(flow.base / supply.base),
+    }
+}
+
+fn one_moisture(stage: &StageDocument, from: &str, intake_has: bool) -> Finding {
+    let which = if intake_has { "the intake" } else { "the output" };
+    Finding {
+        id: "K-03".to_owned(),
+        severity: Severity::Warn,
+        stage: stage.key.clone(),
+        field: format!("intakes.{from}"),
+        message: format!(
+            "Of the intake of {} and the output of {from} only {which} has a moisture, so they are matched wet.",
+            stage.title()
+        ),
+        remedy: "Enter the other moisture.".to_owned(),
+    }
+}
+
+/// The figures of a flow in words, for workings.
+pub fn flow_words(flow: &Measured, amount: Option<f64>, unit: Option<&str>) -> String {
+    match (amount, unit) {
+        (Some(amount), Some(unit)) => {
+            let water = flow
+                .moisture
+                .map_or(String::new(), |m| format!(" at {} % moisture", plain(m * 100.0)));
+            format!("{} {unit}{water}", plain(amount))
+        }
+        _ => format!("{} kg pure ethanol", plain(flow.pure_kg.unwrap_or(0.0))),
+    }
+}
