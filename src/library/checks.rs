@@ -22,27 +22,20 @@ fn rule_set(reading: &mut Reading, book: &Book, set: &RuleSet) {
         reading.problem(&place, format!("there are no gas weights {}", set.gwp_set));
     }
     if !book.soils.contains_key(&set.soil_n2o_method) {
-        reading.problem(
-            &place,
-            format!("there is no soil method {}", set.soil_n2o_method),
-        );
+        reading.problem(&place, format!("there is no soil method {}", set.soil_n2o_method));
     }
     if !set.allocation_allowed.contains(&set.allocation) {
         reading.problem(&place, "its own allocation is not allowed");
     }
     for id in &set.residues_by_law {
         let stem = id.strip_suffix('*');
-        let fits =
-            |material: &String| stem.map_or(material == id, |stem| material.starts_with(stem));
+        let fits = |material: &String| stem.map_or(material == id, |stem| material.starts_with(stem));
         if !book.materials.keys().any(fits) {
             reading.problem(&place, format!("no material is meant by the residue {id}"));
         }
     }
     let Some(edition) = book.editions.get(&set.standard_factors) else {
-        reading.problem(
-            &place,
-            format!("there is no edition {}", set.standard_factors),
-        );
+        reading.problem(&place, format!("there is no edition {}", set.standard_factors));
         return;
     };
     let ethanol = edition
@@ -75,10 +68,7 @@ fn defaults(reading: &mut Reading, book: &Book) {
                 };
                 let saving = 100.0 * (set.comparator.value - values.total) / set.comparator.value;
                 if round_half_away(saving, 0) != values.saving_percent {
-                    reading.problem(
-                        &pathway.id,
-                        "the printed saving does not follow from the total",
-                    );
+                    reading.problem(&pathway.id, "the printed saving does not follow from the total");
                 }
             }
             for material in &pathway.feedstock_materials {
@@ -112,10 +102,7 @@ fn haul_fuels(reading: &mut Reading, book: &Book) {
             continue;
         };
         let Some(fuel) = &vehicle.fuel else { continue };
-        if book
-            .factor(fuel)
-            .is_none_or(|fuel| fuel.usage != Use::Amount)
-        {
+        if book.factor(fuel).is_none_or(|fuel| fuel.usage != Use::Amount) {
             reading.problem(&factor.id, format!("its fuel {fuel} is no factor"));
         }
     }

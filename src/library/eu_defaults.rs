@@ -35,10 +35,7 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
         let (id, feedstock) = (row.text("pathway_id"), row.text("feedstock"));
         let materials = FEEDSTOCKS.iter().find(|(printed, _)| *printed == feedstock);
         if materials.is_none() {
-            reading.problem(
-                &row.place(),
-                format!("no material belongs to \"{feedstock}\""),
-            );
+            reading.problem(&row.place(), format!("no material belongs to \"{feedstock}\""));
         }
         let pathway = PathwayDefault {
             id: format!("{}/{id}", edition.id),

@@ -42,9 +42,7 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
             }
             match edition.factors.get(&id) {
                 Some(other) if other.gases == factor.gases && other.unit == factor.unit => {}
-                Some(_) => {
-                    reading.problem(&row.place(), format!("{id} differs from the factor table"))
-                }
+                Some(_) => reading.problem(&row.place(), format!("{id} differs from the factor table")),
                 None => {
                     edition.factors.insert(id, factor);
                 }
@@ -68,18 +66,11 @@ fn codes(reading: &mut Reading) -> BTreeMap<String, String> {
     codes
 }
 
-fn factor(
-    reading: &mut Reading,
-    edition: &str,
-    row: &Row,
-    id: &str,
-    words: &str,
-    column: &str,
-) -> Factor {
+fn factor(reading: &mut Reading, edition: &str, row: &Row, id: &str, words: &str, column: &str) -> Factor {
     let country = row.text("country");
     let g_per_kwh = reading.need(row, column);
     let mut gases = PublishedGases::default();
-    gases.set(Gas::Co2eUnsplit, Some(g_per_kwh / 1000.0));
+    gases.set(Gas::Co2eUnsplit, reading.scaled(row, column, -3));
     Factor {
         id: format!("{edition}/{id}"),
         name: format!("grid electricity used, {country} 2019, {words}"),

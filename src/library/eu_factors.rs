@@ -61,9 +61,7 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
     let text = include_str!("editions/eu-2022-996/emission_factors.csv");
     for row in reading.rows("eu-2022-996/emission_factors.csv", text, &COLUMNS) {
         let factor = factor(reading, &edition.id, &row);
-        edition
-            .factors
-            .insert(row.text("factor_id").to_owned(), factor);
+        edition.factors.insert(row.text("factor_id").to_owned(), factor);
     }
     splits(reading, edition);
 }
@@ -133,7 +131,7 @@ pub(super) fn printed(row: &Row, columns: &[&str]) -> BTreeMap<String, String> {
 
 /// Gases as printed, g turned into kg. A total alone stays a total.
 fn gases(reading: &mut Reading, row: &Row) -> PublishedGases {
-    let mut kg = |column: &str| reading.figure(row, column).map(|g| g / 1000.0);
+    let mut kg = |column: &str| reading.scaled(row, column, -3);
     let (co2, ch4, n2o) = (kg("co2_g"), kg("ch4_g"), kg("n2o_g"));
     let mut gases = PublishedGases::default();
     if co2.is_none() && ch4.is_none() && n2o.is_none() {
@@ -152,19 +150,13 @@ fn gases(reading: &mut Reading, row: &Row) -> PublishedGases {
 }
 
 fn is_biogenic(id: &str) -> bool {
-    let burner =
-        id.starts_with("comb_") && !FOSSIL_BURNERS.iter().any(|fossil| id.starts_with(fossil));
+    let burner = id.starts_with("comb_") && !FOSSIL_BURNERS.iter().any(|fossil| id.starts_with(fossil));
     burner || id.starts_with("digest_")
 }
 
 /// A vehicle and what drives it: the print names fuel oil in the rows of sea vessels, electric rail and the pipeline;
 /// trucks (also those of sugar cane), inland ships and the United States freight train run on diesel.
-fn vehicle(
-    reading: &mut Reading,
-    edition: &str,
-    row: &Row,
-    exhaust: PublishedGases,
-) -> HaulVehicle {
+fn vehicle(reading: &mut Reading, edition: &str, row: &Row, exhaust: PublishedGases) -> HaulVehicle {
     let id = row.text("factor_id");
     let electric = id.contains("_electric");
     let fuel = if electric || id.contains("pipeline") {
@@ -194,17 +186,12 @@ fn splits(reading: &mut Reading, edition: &mut Edition) {
         "status",
     ];
     for row in reading.rows("eu-2022-996/fuel_upstream_split.csv", text, &columns) {
-        let named = SPLIT_FUELS
-            .iter()
-            .find(|(fuel, _)| *fuel == row.text("fuel"));
+        let named = SPLIT_FUELS.iter().find(|(fuel, _)| *fuel == row.text("fuel"));
         let printed = named
             .and_then(|(_, id)| edition.factors.get(*id))
             .and_then(|factor| factor.printed_co2e_g);
         let (Some((_, id)), Some(printed)) = (named, printed) else {
-            reading.problem(
-                &row.place(),
-                "the split belongs to no fuel of the factor table",
-            );
+            reading.problem(&row.place(), "the split belongs to no fuel of the factor table");
             continue;
         };
         let split = FuelSplit {
@@ -216,13 +203,8 @@ fn splits(reading: &mut Reading, edition: &mut Edition) {
         };
         // One decimal is printed, so the sum may be off by one in the last place.
         let parts = split.upstream_g_per_mj + split.combustion_g_per_mj;
-        if (parts - split.total_g_per_mj).abs() > 0.11
-            || (printed - split.total_g_per_mj).abs() > 0.051
-        {
-            reading.problem(
-                &row.place(),
-                "supply and burning do not add up to the factor",
-            );
+        if (parts - split.total_g_per_mj).abs() > 0.11 || (printed - split.total_g_per_mj).abs() > 0.051 {
+            reading.problem(&row.place(), "supply and burning do not add up to the factor");
         }
         edition.fuel_splits.insert((*id).to_owned(), split);
     }

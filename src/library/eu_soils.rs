@@ -65,11 +65,7 @@ fn constants(reading: &mut Reading, tables: &mut SoilTables) {
             "frac_leach_h" => "frac_leach",
             other => other,
         };
-        let figure = reading.cited(
-            &row,
-            "value",
-            &format!("eu-2022-996 soil constant {symbol}"),
-        );
+        let figure = reading.cited(&row, "value", &format!("eu-2022-996 soil constant {symbol}"));
         add(reading, tables, symbol.to_owned(), figure);
     }
 }
@@ -78,17 +74,11 @@ fn effects(reading: &mut Reading, tables: &mut SoilTables) {
     let text = include_str!("editions/eu-2022-996/n2o_effect_values.csv");
     let columns = ["driver", "class", "effect_value", "source", "status"];
     for row in reading.lines("eu-2022-996/n2o_effect_values.csv", text, &columns) {
-        let Some((_, driver)) = DRIVERS
-            .iter()
-            .find(|(printed, _)| *printed == row.text("driver"))
-        else {
+        let Some((_, driver)) = DRIVERS.iter().find(|(printed, _)| *printed == row.text("driver")) else {
             reading.problem(&row.place(), "the driver is unknown");
             continue;
         };
-        let class = row
-            .text("class")
-            .replace(" %", "_percent")
-            .replace(' ', "_");
+        let class = row.text("class").replace(" %", "_percent").replace(' ', "_");
         let (symbol, unit) = match *driver {
             "constant" => ("effect.constant".to_owned(), "1"),
             "n_rate" => ("effect.n_rate".to_owned(), "1/(kg N/ha)"),
@@ -135,7 +125,7 @@ fn acidity_and_lime(reading: &mut Reading, tables: &mut SoilTables) {
 fn in_kg(reading: &mut Reading, row: &Row, unit: String) -> Cited {
     let named = format!("eu-2022-996/{}", row.text("factor_id"));
     let mut figure = reading.cited(row, "co2_g", &named);
-    figure.value /= 1000.0;
+    figure.value = reading.scaled(row, "co2_g", -3).unwrap_or(0.0);
     figure.unit = unit;
     figure
 }

@@ -7,7 +7,8 @@ use std::collections::BTreeMap;
 
 /// As the EU table writes it, so that both kinds of fuel rows take the same amounts.
 const PER: &str = "MJ fuel (LHV)";
-const MJ_PER_TJ: f64 = 1e6;
+/// From kg per TJ to kg per MJ, as a power of ten.
+const TJ_TO_MJ: i8 = -6;
 /// End of an id, category of the table, words.
 const CATEGORIES: [(&str, &str, &str); 2] = [
     ("2_2", "2.2 energy industries", "energy industries"),
@@ -55,13 +56,7 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
             let wanted = lines
                 .iter()
                 .filter(|(row, _)| [category, "all"].contains(&row.text("category")));
-            let factor = burnt(
-                reading,
-                &edition.id,
-                &id,
-                &wanted.collect::<Vec<_>>(),
-                words,
-            );
+            let factor = burnt(reading, &edition.id, &id, &wanted.collect::<Vec<_>>(), words);
             edition.factors.insert(id, factor);
         }
     }
@@ -75,11 +70,7 @@ fn grouped(reading: &mut Reading, rows: Vec<Row>, column: &str) -> BTreeMap<Stri
     let mut groups: BTreeMap<String, Vec<Line>> = BTreeMap::new();
     for row in rows {
         let end = format!("_{}", row.text(column).to_lowercase());
-        let Some(id) = row
-            .text("id")
-            .rsplit_once(&end)
-            .map(|(id, _)| id.to_owned())
-        else {
+        let Some(id) = row.text("id").rsplit_once(&end).map(|(id, _)| id.to_owned()) else {
             reading.problem(&row.place(), format!("the id does not name its {column}"));
             continue;
         };
@@ -131,23 +122,27 @@ fn vehicle(reading: &mut Reading, edition: &str, id: &str, lines: &[&Line]) -> F
         ch4_kg_per_tj: None,
         n2o_kg_per_tj: None,
     };
-    let (mut name, mut methane) = (String::new(), Gas::Ch4Fossil);
-    let mut printed = BTreeMap::new();
+    let (mut gases, mut printed, mut name) = (PublishedGases::default(), BTreeMap::new(), String::new());
     for (row, _) in lines {
         let value = reading.figure(row, "default");
+        let per_mj = reading.scaled(row, "default", TJ_TO_MJ);
         match row.text("gas") {
-            "CH4" => engine.ch4_kg_per_tj = value,
-            "N2O" => engine.n2o_kg_per_tj = value,
+            "CH4" => {
+                engine.ch4_kg_per_tj = value;
+                let ethanol = row.text("fuel") == "Ethanol";
+                gases.set(if ethanol { Gas::Ch4Biogenic } else { Gas::Ch4Fossil }, per_mj);
+            }
+            "N2O" => {
+                engine.n2o_kg_per_tj = value;
+                gases.set(Gas::N2o, per_mj);
+            }
             other => reading.problem(
                 &row.place(),
                 format!("{other} is no exhaust gas of an engine row"),
             ),
         }
         if let Some(digits) = row.some("default") {
-            printed.insert(
-                format!("{}_kg_per_tj", row.text("gas").to_lowercase()),
-                digits,
-            );
+            printed.insert(format!("{}_kg_per_tj", row.text("gas").to_lowercase()), digits);
         }
         name = format!(
             "{}, {}, {}",
@@ -155,13 +150,7 @@ fn vehicle(reading: &mut Reading, edition: &str, id: &str, lines: &[&Line]) -> F
             row.text("fuel"),
             row.text("technology")
         );
-        if row.text("fuel") == "Ethanol" {
-            methane = Gas::Ch4Biogenic;
-        }
     }
-    let mut gases = PublishedGases::default();
-    gases.set(methane, engine.ch4_kg_per_tj.map(|kg| kg / MJ_PER_TJ));
-    gases.set(Gas::N2o, engine.n2o_kg_per_tj.map(|kg| kg / MJ_PER_TJ));
     Factor {
         id: format!("{edition}/{id}"),
         name,
@@ -193,7 +182,7 @@ fn burnt(reading: &mut Reading, edition: &str, id: &str, lines: &[&Line], words:
     let (mut name, mut lhv_mj_per_kg) = (String::new(), None);
     for (row, _) in lines {
         let value = reading.need(row, "default");
-        let per_mj = Some(value / MJ_PER_TJ);
+        let per_mj = reading.scaled(row, "default", TJ_TO_MJ);
         let column = match row.text("parameter") {
             "NCV" => {
                 lhv_mj_per_kg = Some(value);
@@ -225,7 +214,8 @@ fn burnt(reading: &mut Reading, edition: &str, id: &str, lines: &[&Line], words:
     if gases.0.iter().flatten().count() != 3 || lhv_mj_per_kg.is_none() {
         reading.problem(id, "three gases and a heating value are wanted");
     }
-    let first = "Burning only, without the supply of the fuel. The heating value is of the fuel as it is used.";
+    let first =
+        "Burning only, without the supply of the fuel. The heating value is of the fuel as it is used.";
     Factor {
         id: format!("{edition}/{id}"),
         name,

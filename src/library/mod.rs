@@ -62,10 +62,7 @@ fn read() -> Result<Loaded, Vec<String>> {
         editions,
     };
     checks::run(&mut reading, &book);
-    let Reading {
-        problems,
-        mut memory,
-    } = reading;
+    let Reading { problems, mut memory } = reading;
     if !problems.is_empty() {
         return Err(problems);
     }

@@ -55,10 +55,7 @@ impl Reading {
         for row in &rows {
             let id = columns.first().map_or("", |first| row.text(first));
             if id.is_empty() || !seen.insert(id) {
-                self.problem(
-                    &row.place(),
-                    format!("the id \"{id}\" is blank or used twice"),
-                );
+                self.problem(&row.place(), format!("the id \"{id}\" is blank or used twice"));
             }
         }
         rows
@@ -96,11 +93,17 @@ impl Reading {
 
     /// A figure; none for a blank.
     pub fn figure(&mut self, row: &Row, column: &str) -> Option<f64> {
+        self.scaled(row, column, 0)
+    }
+
+    /// A figure times a power of ten, as the nearest number to the shifted digits: 6.9 g are then 0.0069 kg, which
+    /// 6.9 / 1000 is not.
+    pub fn scaled(&mut self, row: &Row, column: &str, power: i8) -> Option<f64> {
         let text = row.text(column);
         if text.is_empty() {
             return None;
         }
-        match text.parse::<f64>() {
+        match format!("{text}e{power}").parse::<f64>() {
             Ok(value) if value.is_finite() => Some(value),
             _ => {
                 self.problem(&row.place(), format!("\"{text}\" in {column} is no figure"));
@@ -145,10 +148,7 @@ impl Reading {
             "memory" => Status::Memory,
             "calculated" | "computed" => Status::Calculated,
             other => {
-                self.problem(
-                    place,
-                    format!("\"{other}\" is no status of a published figure"),
-                );
+                self.problem(place, format!("\"{other}\" is no status of a published figure"));
                 Status::Memory
             }
         };
@@ -174,7 +174,10 @@ impl Reading {
 
     /// A line with `value`, unit, source, status and note as a cited figure.
     pub fn cited(&mut self, row: &Row, value: &str, named: &str) -> Cited {
-        let figure = format!("{named} = {} {}", row.text(value), row.text("unit"));
+        let figure = match row.text("unit") {
+            "" | "1" | "-" => format!("{named} = {}", row.text(value)),
+            unit => format!("{named} = {} {unit}", row.text(value)),
+        };
         let Citation { source, status } = self.citation(row, &figure);
         let value = self.need(row, value);
         Cited {
@@ -195,8 +198,5 @@ pub(super) fn weakest(statuses: impl IntoIterator<Item = Status>) -> Status {
         Status::Calculated => 2,
         Status::Read => 3,
     };
-    statuses
-        .into_iter()
-        .min_by_key(rank)
-        .unwrap_or(Status::Memory)
+    statuses.into_iter().min_by_key(rank).unwrap_or(Status::Memory)
 }

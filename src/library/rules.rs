@@ -80,10 +80,7 @@ pub(super) fn rule_sets(reading: &mut Reading) -> BTreeMap<String, RuleSet> {
         };
         citations(reading, &set);
         if let Some(other) = sets.insert(set.id.clone(), set) {
-            reading.problem(
-                "rule_sets",
-                format!("two rule sets have the id {}", other.id),
-            );
+            reading.problem("rule_sets", format!("two rule sets have the id {}", other.id));
         }
     }
     sets
@@ -118,10 +115,7 @@ fn citations(reading: &mut Reading, set: &RuleSet) {
         );
         reading.unit(
             &format!("{place} {name}"),
-            cited
-                .unit
-                .trim_start_matches("g CO2e/")
-                .trim_start_matches("kg/"),
+            cited.unit.trim_start_matches("g CO2e/").trim_start_matches("kg/"),
         );
         if !(cited.value.is_finite() && cited.value > 0.0) {
             reading.problem(&place, format!("{name} is not above zero"));

@@ -67,17 +67,9 @@ impl Ipcc {
     fn read(&self, reading: &mut Reading) -> SoilTables {
         let mut tables = SoilTables::default();
         for ((name, text), value) in [(self.soils, "default"), (self.constants, "value")] {
-            for row in reading.rows(
-                name,
-                text,
-                &["symbol", value, "unit", "source", "status", "note"],
-            ) {
+            for row in reading.rows(name, text, &["symbol", value, "unit", "source", "status", "note"]) {
                 let symbol = row.text("symbol").to_owned();
-                let figure = reading.cited(
-                    &row,
-                    value,
-                    &format!("{} soil constant {symbol}", self.edition),
-                );
+                let figure = reading.cited(&row, value, &format!("{} soil constant {symbol}", self.edition));
                 add(reading, &mut tables, symbol, figure);
             }
         }
@@ -147,14 +139,11 @@ fn residue_row(
     if let Some(cf) = tables.constants.get(fire) {
         figures.insert("cf".to_owned(), cf.value);
     }
-    let (crop, table) = lines.first().map_or(("", ""), |(row, first)| {
-        (row.text("crop"), first.source.as_str())
-    });
+    let (crop, table) = lines
+        .first()
+        .map_or(("", ""), |(row, first)| (row.text("crop"), first.source.as_str()));
     let mut source = format!("{table}, {crop}");
-    for (words, names) in [
-        ("from memory", &recalled),
-        ("printed as NA (recalled)", &missing),
-    ] {
+    for (words, names) in [("from memory", &recalled), ("printed as NA (recalled)", &missing)] {
         if !names.is_empty() {
             source.push_str(&format!("; {words}: {}", names.join(", ")));
         }
@@ -180,9 +169,8 @@ fn fertiliser_classes(reading: &mut Reading, tables: &mut SoilTables) {
         };
         let symbol = format!("frac_gasf.{}", row.text("fertiliser"));
         let named = format!(
-            "ipcc-2019 soil constant {symbol} = {} {}",
-            row.text("symbol"),
-            class.unit
+            "ipcc-2019 soil constant {symbol} = that of {}",
+            row.text("symbol")
         );
         let Citation { source, status } = reading.citation(&row, &named);
         let status = weakest([status, class.status]);
