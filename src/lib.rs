@@ -2,3 +2,4 @@
 
 pub mod charts;
 pub mod core;
+pub mod library;

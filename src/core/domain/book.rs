@@ -46,10 +46,10 @@ pub struct Book {
 }
 
 impl Book {
-    /// A factor by its full id, `edition/row`.
+    /// A factor by its full id, `edition/row`; aliases of a row are followed.
     pub fn factor(&self, id: &str) -> Option<&Factor> {
         let (edition, row) = id.split_once('/')?;
-        self.editions.get(edition)?.factors.get(row)
+        self.editions.get(edition)?.factor(row)
     }
 
     /// A published pathway's default values by full id, `edition/row`.

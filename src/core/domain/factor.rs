@@ -148,6 +148,33 @@ pub struct Edition {
     pub note: Option<String>,
     /// Rows by id inside the edition.
     pub factors: BTreeMap<String, Factor>,
+    /// Other ids that rows answer to: alias to the row's id inside the edition.
+    pub aliases: BTreeMap<String, String>,
+    /// Supply and burning of a fuel apart, by the row's id inside the edition.
+    pub fuel_splits: BTreeMap<String, FuelSplit>,
     /// Published pathways by id inside the edition.
     pub pathways: BTreeMap<String, PathwayDefault>,
+}
+
+impl Edition {
+    /// A row by its id inside the edition, or by an alias of it.
+    pub fn factor(&self, row: &str) -> Option<&Factor> {
+        let row = self.aliases.get(row).map_or(row, String::as_str);
+        self.factors.get(row)
+    }
+}
+
+/// How a fuel's printed figure divides into supply and burning, g CO2e/MJ: shown beside the factor, never used.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FuelSplit {
+    /// Both together, as the source of the split prints it.
+    pub total_g_per_mj: f64,
+    /// Extraction, refining, transport.
+    pub upstream_g_per_mj: f64,
+    /// Burning.
+    pub combustion_g_per_mj: f64,
+    /// What a reader should know.
+    pub note: Option<String>,
+    /// Source and status.
+    pub citation: Citation,
 }

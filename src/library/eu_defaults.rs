@@ -1,0 +1,67 @@
+//! Default and typical values of ethanol pathways, Directive (EU) 2018/2001, Annex V Parts A, B, D and E.
+
+use super::reading::{Reading, Row};
+use crate::core::domain::factor::TermValues;
+use crate::core::domain::{Edition, PathwayDefault};
+
+/// Feedstocks as printed, and the built-in materials that may use their rows.
+const FEEDSTOCKS: [(&str, &[&str]); 5] = [
+    ("sugar beet", &["sugar_beet"]),
+    ("maize grain", &["maize_grain_only"]),
+    (
+        "other cereals (not maize)",
+        &["wheat", "rye", "barley", "triticale"],
+    ),
+    ("sugar cane", &["sugar_cane"]),
+    ("wheat straw", &["wheat_straw"]),
+];
+
+/// Reads the 16 pathways. The two ether rows print no numbers ("as the ethanol") and are no pathways.
+pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
+    let text = include_str!("editions/eu-2018-2001/default_values_ethanol.csv");
+    let columns = [
+        "pathway_id",
+        "feedstock",
+        "description",
+        "process_fuel",
+        "total_default",
+        "source",
+        "status",
+    ];
+    for row in reading.rows("eu-2018-2001/default_values_ethanol.csv", text, &columns) {
+        if row.text("total_default").is_empty() {
+            continue;
+        }
+        let (id, feedstock) = (row.text("pathway_id"), row.text("feedstock"));
+        let materials = FEEDSTOCKS.iter().find(|(printed, _)| *printed == feedstock);
+        if materials.is_none() {
+            reading.problem(&row.place(), format!("no material belongs to \"{feedstock}\""));
+        }
+        let pathway = PathwayDefault {
+            id: format!("{}/{id}", edition.id),
+            feedstock: feedstock.to_owned(),
+            feedstock_materials: materials.map_or_else(Vec::new, |(_, ids)| {
+                ids.iter().map(|id| (*id).to_owned()).collect()
+            }),
+            description: row.text("description").to_owned(),
+            process_fuel: row.text("process_fuel").to_owned(),
+            default: values(reading, &row, "default"),
+            typical: values(reading, &row, "typical"),
+            citation: reading.citation(&row, &format!("{}/{id}", edition.id)),
+        };
+        edition.pathways.insert(id.to_owned(), pathway);
+    }
+}
+
+fn values(reading: &mut Reading, row: &Row, kind: &str) -> TermValues {
+    let mut need = |column: &str| reading.need(row, &format!("{column}_{kind}"));
+    TermValues {
+        e_ec: need("eec"),
+        e_ec_soil_n2o: need("eec_soil_n2o"),
+        e_p: need("ep"),
+        e_td: need("etd"),
+        e_td_final_fuel: need("etd_final_fuel"),
+        total: need("total"),
+        saving_percent: reading.need(row, &format!("saving_{kind}_pct")),
+    }
+}
