@@ -7,4 +7,5 @@
     reason = "a test fails by panicking"
 )]
 
+mod engine;
 mod tidy;

@@ -1,0 +1,3 @@
+//! The engine against documents with independent results.
+
+mod contract;
