@@ -1,1 +1,3 @@
+//! Hands the command line over.
+
 fn main() {}
