@@ -16,7 +16,9 @@ pub use changes::{Change, Kind};
 pub use error::{PathwayError, What};
 pub use examples::{load_examples, remove_examples};
 pub use list::{Line, Page, Question, Sort, list};
-pub use read::{FactorUse, Revision, Stored, changes, read, revision, revisions, rows_differ, stage, uses_of_factor};
+pub use read::{
+    FactorUse, Revision, Stored, changes, read, revision, revisions, rows_differ, stage, uses_of_factor,
+};
 pub use save::{archive, create, delete_stage, put_stage, replace, restore};
 
 use crate::core::documents::assessment::ThresholdResult;
@@ -96,5 +98,9 @@ fn time(millis: i64, table: &'static str, column: &'static str, row: i64) -> Res
 }
 
 fn public_id(text: &str, row: i64) -> Result<Uuid, StoreError> {
-    Uuid::parse_str(text).map_err(|_| StoreError::Inconsistent { table: "pathway", column: "public_id", row })
+    Uuid::parse_str(text).map_err(|_| StoreError::Inconsistent {
+        table: "pathway",
+        column: "public_id",
+        row,
+    })
 }
