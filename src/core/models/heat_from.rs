@@ -82,7 +82,7 @@ pub enum HeatFrom {
         fuels: Vec<FuelShare>,
     },
     /// Heat bought ready.
-    Bought(Priced),
+    Bought(Box<Priced>),
 }
 
 impl HeatFrom {
@@ -123,7 +123,7 @@ impl HeatFrom {
             given.problem("factor", detail, remedy);
             return None;
         }
-        beside.is_empty().then_some(HeatFrom::Bought(bought))
+        beside.is_empty().then_some(HeatFrom::Bought(Box::new(bought)))
     }
 
     /// The gases of an amount of useful heat, MJ, with the steps and findings of pricing it.

@@ -296,8 +296,7 @@ impl Bench {
 
     /// A stage that gives pure ethanol, kg.
     pub fn giving_ethanol(kg: f64) -> Bench {
-        let mut bench = Bench::default();
-        bench.output = Some(Measured {
+        let output = Measured {
             material: "ethanol".to_owned(),
             base: kg,
             wet_kg: Some(kg),
@@ -307,8 +306,11 @@ impl Bench {
             dimension: Dimension::MASS,
             strength_given: true,
             celsius: None,
-        });
-        bench
+        };
+        Bench {
+            output: Some(output),
+            ..Bench::default()
+        }
     }
 
     /// A stage that burns fuel, MJ.

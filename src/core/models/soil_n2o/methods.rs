@@ -137,11 +137,11 @@ pub(super) fn carbon_nitrogen(given: &mut Given, method: Method) -> Option<f64> 
 }
 
 /// Annex VII point 1.5: the site factor for fertiliser, EF1 for residues and on organic soil.
-pub(super) fn eu(given: &mut Given, field: &Field, site: Site) -> Option<f64> {
+pub(super) fn eu(given: &mut Given, field: &Field, site: &Site) -> Option<f64> {
     let symbols = ["ef1", "frac_gasf", "frac_gasm", "ef4", "frac_leach", "ef5"];
     let [ef1, gasf, gasm, ef4, leach, ef5] = constants(given, field.method.edition(), symbols)?;
     let spread = field.synthetic + field.organic;
-    let ef1_site = site_factor(given, spread / field.area, &site);
+    let ef1_site = site_factor(given, spread / field.area, site);
     let organic_share = field
         .organic_soil
         .map_or(0.0, |(hectares, _)| hectares / field.area);

@@ -103,7 +103,7 @@ fn compute(given: &mut Given) -> Option<Outcome> {
         wetness: wetness?,
     };
     let n2o = match site {
-        Some(site) => methods::eu(given, &field, site?)?,
+        Some(site) => methods::eu(given, &field, &site?)?,
         None => methods::ipcc(given, &field, carbon?)?,
     };
     if !n2o.is_finite() {

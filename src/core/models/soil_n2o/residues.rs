@@ -57,9 +57,9 @@ pub(super) fn nitrogen(given: &mut Given, method: Method, crop: &'static str, ar
     let harvest = Harvest { wet_t, dry_kg };
     let fire = fire(given, method, crop, row, burnt)?;
     match method {
-        Method::Ipcc2019 => by_ratio(given, row, crop, &harvest, removed, fire, &source),
-        Method::Eu if ROOTS.contains(&crop) => root(given, row, crop, &harvest, removed, fire, &source),
-        _ => by_line(given, row, crop, area, &harvest, removed, fire, &source),
+        Method::Ipcc2019 => by_ratio(given, row, crop, &harvest, removed, &fire, &source),
+        Method::Eu if ROOTS.contains(&crop) => root(given, row, crop, &harvest, removed, &fire, &source),
+        _ => by_line(given, row, crop, area, &harvest, removed, &fire, &source),
     }
 }
 
@@ -177,7 +177,7 @@ fn by_line(
     area: f64,
     harvest: &Harvest,
     removed: f64,
-    fire: Fire,
+    fire: &Fire,
     source: &str,
 ) -> Option<f64> {
     let read = ["slope", "intercept", "n_ag", "r_bg_bio", "n_bg"].map(|name| figure(given, row, name, crop));
@@ -205,7 +205,7 @@ fn by_line(
         plain(n_bg),
         a = plain(above)
     );
-    given.step(text, n, "kg N", &with_fire(source, &fire));
+    given.step(text, n, "kg N", &with_fire(source, fire));
     Some(n)
 }
 
@@ -216,7 +216,7 @@ fn by_ratio(
     crop: &str,
     harvest: &Harvest,
     removed: f64,
-    fire: Fire,
+    fire: &Fire,
     source: &str,
 ) -> Option<f64> {
     let read = ["r_ag", "n_ag", "rs", "n_bg"].map(|name| figure(given, row, name, crop));
@@ -256,7 +256,7 @@ fn by_ratio(
         plain(n_bg),
         a = plain(above)
     );
-    given.step(text, n, "kg N", &with_fire(source, &fire));
+    given.step(text, n, "kg N", &with_fire(source, fire));
     Some(n)
 }
 
@@ -267,7 +267,7 @@ fn root(
     crop: &str,
     harvest: &Harvest,
     removed: f64,
-    fire: Fire,
+    fire: &Fire,
     source: &str,
 ) -> Option<f64> {
     let read = ["r_ag", "n_ag"].map(|name| figure(given, row, name, crop));
@@ -283,7 +283,7 @@ fn root(
         plain(n_ag),
         plain(removed)
     );
-    given.step(text, leaves, "kg N", &with_fire(source, &fire));
+    given.step(text, leaves, "kg N", &with_fire(source, fire));
     if crop != "sugar_cane" {
         return Some(leaves);
     }

@@ -5,7 +5,7 @@ use crate::core::models::testing::{Bench, close};
 use proptest::prelude::*;
 use serde_json::{Value, json};
 
-fn with(mut base: Value, more: Value) -> Value {
+fn with(mut base: Value, more: &Value) -> Value {
     for (name, value) in more.as_object().unwrap() {
         base[name] = value.clone();
     }
@@ -13,7 +13,7 @@ fn with(mut base: Value, more: Value) -> Value {
 }
 
 /// A hectare of wheat on the site of the check value.
-fn eu(more: Value) -> Value {
+fn eu(more: &Value) -> Value {
     let site = json!({ "method": "eu-2022-996", "crop": "wheat", "area_ha": 1, "yield_t": 8,
         "soil_organic_carbon": "1_to_3_percent", "soil_ph_class": "5.5_to_7.3", "soil_texture": "medium",
         "climate_class": "temperate_oceanic" });
@@ -21,7 +21,7 @@ fn eu(more: Value) -> Value {
 }
 
 /// Fertiliser alone.
-fn ipcc(method: &str, more: Value) -> Value {
+fn ipcc(method: &str, more: &Value) -> Value {
     let base =
         json!({ "method": method, "crop": "maize", "area_ha": 1, "synthetic_n_kg": 100, "residue_n_kg": 0 });
     with(base, more)
@@ -34,10 +34,10 @@ fn n2o(parameters: &Value) -> f64 {
 #[test]
 fn the_site_factor_of_annex_vii() {
     // Implementing Regulation (EU) 2022/996 Annex VII point 1.5.2 with Table 2: 150 kg N/ha.
-    let run = Bench::default().run("soil_n2o", &eu(json!({ "synthetic_n_kg": 150 })));
+    let run = Bench::default().run("soil_n2o", &eu(&json!({ "synthetic_n_kg": 150 })));
     close(run.step("EF1ij"), 0.007_110_71, 1e-6);
     // No fertiliser: no factor, and residues alone.
-    let run = Bench::default().run("soil_n2o", &eu(json!({ "residue_n_kg": 100 })));
+    let run = Bench::default().run("soil_n2o", &eu(&json!({ "residue_n_kg": 100 })));
     close(
         run.gases()[Gas::N2o],
         100.0 * (0.01 + 0.3 * 0.0075) * 44.0 / 28.0,
@@ -49,7 +49,7 @@ fn the_site_factor_of_annex_vii() {
 fn organic_soil_takes_the_generic_factor_and_its_own() {
     let part = json!({ "synthetic_n_kg": 100, "residue_n_kg": 0, "organic_soil_ha": 0.25,
                        "organic_soil_climate": "temperate", "climate": "dry" });
-    let run = Bench::default().run("soil_n2o", &eu(part));
+    let run = Bench::default().run("soil_n2o", &eu(&part));
     let site = run.step("EF1ij");
     let direct = 100.0 * (0.75 * site + 0.25 * 0.01) + 0.25 * 8.0;
     close(
@@ -60,12 +60,12 @@ fn organic_soil_takes_the_generic_factor_and_its_own() {
     assert_eq!(run.findings(), ["K-01"]);
     let too_much = json!({ "organic_soil_ha": 1.1, "organic_soil_climate": "temperate" });
     assert_eq!(
-        Bench::default().run("soil_n2o", &eu(too_much)).pointers(),
+        Bench::default().run("soil_n2o", &eu(&too_much)).pointers(),
         ["/organic_soil_ha"]
     );
     let without = json!({ "organic_soil_ha": 1 });
     assert_eq!(
-        Bench::default().run("soil_n2o", &eu(without)).pointers(),
+        Bench::default().run("soil_n2o", &eu(&without)).pointers(),
         ["/organic_soil_climate"]
     );
 }
@@ -74,7 +74,7 @@ fn organic_soil_takes_the_generic_factor_and_its_own() {
 fn cane_brings_vinasse_and_filter_cake_back() {
     let cane = json!({ "crop": "sugar_cane", "yield_t": 80, "moisture_percent": 72.5, "residues_burnt_percent": 50,
                        "residues_removed_percent": 20, "vegetation": "other" });
-    let run = Bench::default().run("soil_n2o", &eu(cane));
+    let run = Bench::default().run("soil_n2o", &eu(&cane));
     // Annex VII point 1.5: 22 000 kg dry x (1 - 0.5 x 0.8) x 0.43 x 0.004 x 0.8 + 80 000 kg x 0.000508.
     let f_cr = 22_000.0 * 0.6 * 0.43 * 0.004 * 0.8 + 40.64;
     close(
@@ -121,25 +121,25 @@ fn moisture_comes_from_the_stage_and_else_from_the_table() {
 fn fertilisers_have_their_own_share_in_the_air_only_with_a_climate_of_2019() {
     let types = json!({ "synthetic_n_by_type_kg": { "urea": 100 } });
     // 100 kg N of urea, wet, 2019 Refinement Tables 11.1 and 11.3: 2.074 kg N2O-N.
-    let wet = with(types.clone(), json!({ "climate": "wet" }));
-    close(n2o(&ipcc("ipcc-2019", wet)), 2.074 * 44.0 / 28.0, 1e-12);
-    close(n2o(&ipcc("ipcc-2019", types.clone())), 1.374 * 44.0 / 28.0, 1e-12);
-    close(n2o(&ipcc("ipcc-2006", types)), 1.325 * 44.0 / 28.0, 1e-12);
+    let wet = with(types.clone(), &json!({ "climate": "wet" }));
+    close(n2o(&ipcc("ipcc-2019", &wet)), 2.074 * 44.0 / 28.0, 1e-12);
+    close(n2o(&ipcc("ipcc-2019", &types)), 1.374 * 44.0 / 28.0, 1e-12);
+    close(n2o(&ipcc("ipcc-2006", &types)), 1.325 * 44.0 / 28.0, 1e-12);
 }
 
 #[test]
 fn lost_soil_carbon_brings_nitrogen_in_the_guidelines_only() {
     let lost = json!({ "synthetic_n_kg": 0, "soc_loss_t_c": 1.5, "soc_cause": "land_use_change" });
     close(
-        n2o(&ipcc("ipcc-2006", lost.clone())),
+        n2o(&ipcc("ipcc-2006", &lost)),
         100.0 * 0.01225 * 44.0 / 28.0,
         1e-12,
     );
     assert_eq!(
-        Bench::default().run("soil_n2o", &eu(lost)).pointers(),
+        Bench::default().run("soil_n2o", &eu(&lost)).pointers(),
         ["/soc_loss_t_c"]
     );
-    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2019", json!({ "soc_loss_t_c": 1 })));
+    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2019", &json!({ "soc_loss_t_c": 1 })));
     assert_eq!(run.pointers(), ["/soc_cause"]);
 }
 
@@ -171,10 +171,10 @@ fn what_is_wrong_is_said_at_once_and_with_a_way_out() {
     );
     assert_eq!(run.pointers(), ["/crop"]);
     assert!(run.problems.list()[0].remedy.contains("residue_n_kg"));
-    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", json!({ "synthetic_n_kg": 1001 })));
+    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", &json!({ "synthetic_n_kg": 1001 })));
     assert_eq!(run.pointers(), ["/synthetic_n_kg"]);
     let types = json!({ "synthetic_n_by_type_kg": { "urea": 99.8 } });
-    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", types));
+    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", &types));
     assert_eq!(run.pointers(), ["/synthetic_n_by_type_kg"]);
     let both = json!({ "method": "ipcc-2019", "crop": "maize", "area_ha": 1, "residues_removed_percent": 80,
                        "residues_burnt_percent": 40 });
@@ -193,7 +193,7 @@ fn a_lacking_constant_is_a_problem_in_words() {
     ] {
         let mut bench = Bench::default();
         bench.forget(method, symbol);
-        let run = bench.run("soil_n2o", &ipcc(method, json!({})));
+        let run = bench.run("soil_n2o", &ipcc(method, &json!({})));
         assert_eq!(run.pointers(), ["/method"]);
         assert!(run.problems.list()[0].detail.contains(symbol));
     }
@@ -201,7 +201,7 @@ fn a_lacking_constant_is_a_problem_in_words() {
     bench.book.soils.clear();
     assert!(
         !bench
-            .run("soil_n2o", &eu(json!({ "synthetic_n_kg": 100 })))
+            .run("soil_n2o", &eu(&json!({ "synthetic_n_kg": 100 })))
             .problems
             .is_empty()
     );
@@ -209,7 +209,7 @@ fn a_lacking_constant_is_a_problem_in_words() {
 
 #[test]
 fn unusual_figures_and_fertilisers_without_a_figure_are_pointed_out() {
-    let run = |more| Bench::default().run("soil_n2o", &ipcc("ipcc-2006", more));
+    let run = |more: Value| Bench::default().run("soil_n2o", &ipcc("ipcc-2006", &more));
     assert_eq!(run(json!({ "synthetic_n_kg": 351 })).findings(), ["K-01"]);
     assert_eq!(run(json!({ "organic_n_kg": 251 })).findings(), ["K-01"]);
     assert_eq!(run(json!({ "yield_t": 21 })).findings(), ["K-01"]);
@@ -220,7 +220,7 @@ fn unusual_figures_and_fertilisers_without_a_figure_are_pointed_out() {
     assert!(found.record.notes[0].message.contains("ammonium sulphate"));
     assert!(
         Bench::ipcc()
-            .run("soil_n2o", &ipcc("ipcc-2006", types))
+            .run("soil_n2o", &ipcc("ipcc-2006", &types))
             .findings()
             .is_empty()
     );
@@ -229,7 +229,7 @@ fn unusual_figures_and_fertilisers_without_a_figure_are_pointed_out() {
 #[test]
 fn steps_name_what_nobody_has_read() {
     let drained = json!({ "organic_soil_ha": 1, "organic_soil_climate": "tropical" });
-    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", drained));
+    let run = Bench::default().run("soil_n2o", &ipcc("ipcc-2006", &drained));
     let recalled: Vec<_> = run
         .record
         .steps
@@ -262,7 +262,7 @@ proptest! {
     #[test]
     fn the_guidelines_are_linear_in_every_amount(n in 1.0f64..300.0, organic in 1.0f64..200.0, more in 0.0f64..2.0) {
         for method in ["ipcc-2006", "ipcc-2019"] {
-            let at = |n: f64, organic: f64| n2o(&ipcc(method, json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
+            let at = |n: f64, organic: f64| n2o(&ipcc(method, &json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
             close(at(n * more, organic * more), more * at(n, organic), 1e-12);
             close(at(n, 0.0) + at(0.0, organic), at(n, organic), 1e-12);
         }
@@ -271,10 +271,10 @@ proptest! {
     #[test]
     fn more_fertiliser_never_lowers_n2o(n in 0.0f64..900.0, organic in 0.0f64..200.0, more in 0.0f64..100.0) {
         for method in ["ipcc-2006", "ipcc-2019"] {
-            let at = |n: f64| n2o(&ipcc(method, json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
+            let at = |n: f64| n2o(&ipcc(method, &json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
             prop_assert!(at(n + more) >= at(n));
         }
-        let at = |n: f64, organic: f64| n2o(&eu(json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
+        let at = |n: f64, organic: f64| n2o(&eu(&json!({ "synthetic_n_kg": n, "organic_n_kg": organic })));
         prop_assert!(at(n + more, organic) >= at(n, organic));
         prop_assert!(at(n, organic + more) >= at(n, organic));
     }
