@@ -398,9 +398,14 @@ pub fn price(amount: f64, factor: &Priced, steps: &mut Vec<Step>) -> GasVector {
 
 /// The source of a factor for a step, with its status where nobody has read it.
 pub fn sourced(factor: &Priced) -> String {
-    match factor.status {
-        Status::Memory => format!("{} (recalled, not read at its source)", factor.source),
-        _ => factor.source.clone(),
+    source_words(&factor.source, factor.status)
+}
+
+/// A source for a step, with its status where nobody has read it.
+pub fn source_words(source: &str, status: Status) -> String {
+    match status {
+        Status::Memory => format!("{source} (recalled, not read at its source)"),
+        _ => source.to_owned(),
     }
 }
 

@@ -2,6 +2,7 @@
 
 mod contract;
 mod laws;
+mod models;
 mod published;
 mod refusals;
 mod shapes;
