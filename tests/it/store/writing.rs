@@ -10,6 +10,11 @@ use wheelwort::store::{MOST_TOGETHER, Settings, Store, StoreError};
 
 const COUNT: &str = "SELECT count(*) FROM tally";
 
+/// What a defect of the program does inside a job.
+fn defect() {
+    panic!("a defect of the program");
+}
+
 async fn tally(settings: Settings) -> (Store, TempDir) {
     let folder = tempfile::tempdir().expect("a folder");
     let store = Store::open_with(&folder.path().join("t.db"), settings)
@@ -135,8 +140,7 @@ async fn a_bad_job_rolls_back_alone() {
                 sqlx::query("INSERT INTO tally (n, tag) VALUES (3, 'x')")
                     .execute(&mut *c)
                     .await?;
-                let nothing: Option<()> = None;
-                nothing.expect("a defect of the program");
+                defect();
                 Ok::<_, StoreError>(())
             })
         });
@@ -167,8 +171,7 @@ async fn a_bad_job_alone_leaves_nothing() {
     }
     let panicking = store.write(|_| {
         Box::pin(async {
-            let nothing: Option<()> = None;
-            nothing.expect("a defect of the program");
+            defect();
             Ok::<_, StoreError>(())
         })
     });
