@@ -1,3 +1,5 @@
-//! Hands the command line over.
+//! Hands the command line to `cli`.
 
-fn main() {}
+fn main() -> std::process::ExitCode {
+    wheelwort::cli::main()
+}
