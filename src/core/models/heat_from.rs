@@ -216,12 +216,7 @@ pub fn burn(fuel_mj: f64, fuels: &[FuelShare], given: &mut Given) -> GasVector {
             let amount = in_unit(mj, factor, given);
             gases += price(amount, factor, &mut given.record.steps);
         }
-        for (id, gas) in unpublished(&fuel.factors) {
-            let gas = if gas == crate::core::domain::Gas::N2o {
-                "N2O"
-            } else {
-                "CH4"
-            };
+        if let Some((id, gas)) = unpublished(&fuel.factors) {
             let message = format!("{id} has no published {gas}; nothing is counted for it.");
             let remedy = "Choose a factor that has one, such as its stack, or give the reason.";
             given.note("K-02", Severity::Warn, field, message, remedy);
