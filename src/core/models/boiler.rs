@@ -106,7 +106,9 @@ mod tests {
         let mut bench = Bench::default();
         let heat = json!({ "value": 10, "unit": "MJ" });
         let bare = json!({ "heat": heat, "efficiency_percent": 90, "fuel": "test/fuel" });
-        assert_eq!(bench.run("boiler", &bare).findings(), ["K-02", "K-02"]);
+        let run = bench.run("boiler", &bare);
+        assert_eq!(run.findings(), ["K-02"]);
+        assert!(run.record.notes[0].message.contains("CH4 and N2O"));
         let stacked =
             json!({ "heat": heat, "efficiency_percent": 90, "fuel": "test/fuel", "stack": "test/stack" });
         assert!(bench.run("boiler", &stacked).findings().is_empty());
