@@ -25,7 +25,11 @@ fn with<T>(pathways: &[Pathway], rules: &[RuleSet], look: impl FnOnce(Comparison
         .iter()
         .zip(&assessed)
         .zip(rules.iter().cycle())
-        .map(|((pathway, assessment), rules)| Subject { pathway, assessment, rules })
+        .map(|((pathway, assessment), rules)| Subject {
+            pathway,
+            assessment,
+            rules,
+        })
         .collect();
     look(compare(&subjects))
 }
@@ -43,10 +47,25 @@ fn parts_of_a_difference_add_up_to_it() {
     with(&[read(WHEAT), read(MAIZE), read(STRAW)], &[eu()], |comparison| {
         for (index, pathway) in comparison.pathways.iter().enumerate() {
             let whole = pathway.difference_g_co2e_per_mj;
-            let terms: f64 = comparison.terms.iter().map(|row| row.difference_g_co2e_per_mj[index]).sum();
-            let kinds: f64 = comparison.kinds.iter().map(|row| row.difference_g_co2e_per_mj[index]).sum();
-            let stages: f64 = comparison.stages.iter().map(|row| row.difference_g_co2e_per_mj[index]).sum();
-            assert!(close(whole, terms) && close(whole, kinds) && close(whole, stages), "{index}: {whole} {terms} {kinds} {stages}");
+            let terms: f64 = comparison
+                .terms
+                .iter()
+                .map(|row| row.difference_g_co2e_per_mj[index])
+                .sum();
+            let kinds: f64 = comparison
+                .kinds
+                .iter()
+                .map(|row| row.difference_g_co2e_per_mj[index])
+                .sum();
+            let stages: f64 = comparison
+                .stages
+                .iter()
+                .map(|row| row.difference_g_co2e_per_mj[index])
+                .sum();
+            assert!(
+                close(whole, terms) && close(whole, kinds) && close(whole, stages),
+                "{index}: {whole} {terms} {kinds} {stages}"
+            );
         }
         assert!(comparison.pathways[1].difference_g_co2e_per_mj != 0.0);
         assert!(comparison.example);
@@ -57,10 +76,18 @@ fn parts_of_a_difference_add_up_to_it() {
 fn a_pathway_does_not_differ_from_itself() {
     with(&[read(WHEAT), read(WHEAT)], &[eu()], |comparison| {
         let other = &comparison.pathways[1];
-        assert_eq!((other.difference_g_co2e_per_mj, other.saving_difference_points), (0.0, Some(0.0)));
+        assert_eq!(
+            (other.difference_g_co2e_per_mj, other.saving_difference_points),
+            (0.0, Some(0.0))
+        );
         assert_eq!(other.largest, None);
         assert_eq!(comparison.unlike, []);
-        assert!(comparison.stages.iter().all(|row| row.g_co2e_per_mj[0] == row.g_co2e_per_mj[1]));
+        assert!(
+            comparison
+                .stages
+                .iter()
+                .all(|row| row.g_co2e_per_mj[0] == row.g_co2e_per_mj[1])
+        );
     });
 }
 
@@ -69,24 +96,42 @@ fn the_kind_that_makes_the_difference_is_named() {
     with(&[read(WHEAT), read(STRAW)], &[eu()], |comparison| {
         let other = &comparison.pathways[1];
         let largest = other.largest.as_ref().expect("they differ");
-        let beaten = comparison.kinds.iter().map(|row| row.difference_g_co2e_per_mj[1].abs());
+        let beaten = comparison
+            .kinds
+            .iter()
+            .map(|row| row.difference_g_co2e_per_mj[1].abs());
         assert!(beaten.fold(0.0, f64::max) <= largest.difference_g_co2e_per_mj.abs());
     });
 }
 
 #[test]
 fn other_rules_print_no_difference_of_savings() {
-    let other = RuleSet { id: "made-up".into(), ..eu() };
+    let other = RuleSet {
+        id: "made-up".into(),
+        ..eu()
+    };
     with(&[read(WHEAT), read(MAIZE)], &[eu(), other], |comparison| {
         assert!(comparison.pathways[1].saving_percent.is_some());
         assert_eq!(comparison.pathways[1].saving_difference_points, None);
-        assert!(comparison.unlike.iter().any(|unlike| unlike.setting == "rule_set"));
+        assert!(
+            comparison
+                .unlike
+                .iter()
+                .any(|unlike| unlike.setting == "rule_set")
+        );
     });
     with(&[read(WHEAT), read(MAIZE)], &[eu()], |comparison| {
-        let [first, second] = &comparison.pathways[..] else { panic!("two were compared") };
+        let [first, second] = &comparison.pathways[..] else {
+            panic!("two were compared")
+        };
         let points = second.saving_percent.expect("printed") - first.saving_percent.expect("printed");
         assert_eq!(second.saving_difference_points, Some(points));
-        assert!(comparison.unlike.iter().all(|unlike| unlike.setting != "rule_set"));
+        assert!(
+            comparison
+                .unlike
+                .iter()
+                .all(|unlike| unlike.setting != "rule_set")
+        );
     });
 }
 
@@ -96,7 +141,11 @@ fn unlike_settings_say_what_each_pathway_says() {
     later.period.kind = Some(PeriodKind::Campaign);
     later.plant_started = None;
     with(&[read(WHEAT), later], &[eu()], |comparison| {
-        let settings: Vec<&str> = comparison.unlike.iter().map(|unlike| unlike.setting.as_str()).collect();
+        let settings: Vec<&str> = comparison
+            .unlike
+            .iter()
+            .map(|unlike| unlike.setting.as_str())
+            .collect();
         assert_eq!(settings, ["period", "plant_started"]);
         assert!(comparison.unlike[0].values[1].ends_with("campaign"));
         assert_eq!(comparison.unlike[1].values[1], "not said");
