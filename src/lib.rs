@@ -3,3 +3,5 @@
 pub mod charts;
 pub mod core;
 pub mod library;
+pub mod pathways;
+pub mod web;

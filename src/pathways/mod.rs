@@ -1,0 +1,3 @@
+//! Pathways: their pages.
+
+pub mod pages;
