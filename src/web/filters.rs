@@ -1,9 +1,21 @@
 //! How pages dress figures and words. Numbers become text in `core::units::rounding` only.
 
 use crate::core::units::rounding;
-use askama::filters::Safe;
+use askama::filters::{HtmlSafe, Safe};
 use askama::{Result, Values};
 use jiff::civil::Date;
+
+/// HTML or SVG of our own making: pictures and their pattern definitions. Nothing that a person typed goes in unescaped.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Markup(pub String);
+
+impl std::fmt::Display for Markup {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        f.write_str(&self.0)
+    }
+}
+
+impl HtmlSafe for Markup {}
 
 /// g CO2e/MJ in a table: two decimals.
 #[askama::filter_fn]

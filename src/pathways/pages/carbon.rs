@@ -3,12 +3,13 @@
 use crate::charts::carbon_split::{self, CarbonSplit, Kind, Part};
 use crate::core::documents::assessment::Carbon;
 use crate::web::csv::{Cell, Table};
+use crate::web::filters::Markup;
 
 /// The crop's carbon on a page.
 #[derive(Clone, Debug, PartialEq)]
 pub struct CarbonView {
     /// The bar as SVG; empty where there is none.
-    pub bar: String,
+    pub bar: Markup,
     /// The rows of the table.
     pub rows: Vec<CarbonRow>,
     /// Carbon in the crop, g CO2/MJ.
@@ -33,7 +34,7 @@ pub struct CarbonView {
 #[derive(Clone, Debug, PartialEq)]
 pub struct CarbonRow {
     /// Its sample as SVG.
-    pub swatch: String,
+    pub swatch: Markup,
     /// Its name.
     pub name: &'static str,
     /// g CO2 per MJ; none where a content is unknown.
@@ -66,7 +67,7 @@ impl CarbonView {
         let mut rows: Vec<CarbonRow> = named
             .iter()
             .map(|(name, kind, g)| CarbonRow {
-                swatch: carbon_split::swatch(*kind),
+                swatch: Markup(carbon_split::swatch(*kind)),
                 name,
                 g: *g,
                 percent: percent(*g),
@@ -74,14 +75,14 @@ impl CarbonView {
             .collect();
         if let Some(open) = split.as_ref().map(CarbonSplit::open) {
             rows.push(CarbonRow {
-                swatch: carbon_split::swatch(Kind::Open),
+                swatch: Markup(carbon_split::swatch(Kind::Open)),
                 name: if open < 0.0 { "More than went in" } else { "Not accounted for" },
                 g: Some(open),
                 percent: percent(Some(open)),
             });
         }
         CarbonView {
-            bar: split.as_ref().and_then(|split| carbon_split::draw(split).ok()).unwrap_or_default(),
+            bar: Markup(split.as_ref().and_then(|split| carbon_split::draw(split).ok()).unwrap_or_default()),
             rows,
             in_crop: carbon.feedstock_g_co2_per_mj,
             closure: carbon.closure_percent,

@@ -1,7 +1,7 @@
 //! The list of all pathways: net, saving, threshold, open checks; sort, filter, compare the ticked ones.
 
 use super::links;
-use super::verdict::{Checks, Verdict, percent_words};
+use super::verdict::{Checks, Required, Verdict};
 use crate::core::documents::{Assessment, Pathway};
 use crate::core::domain::Book;
 use crate::core::units::rounding;
@@ -56,12 +56,12 @@ pub struct HomeRow {
     pub net: Option<f64>,
     /// Saving, %.
     pub saving: Option<f64>,
-    /// `meets`, `misses`, `needs` or empty, and the percent.
-    pub required: Vec<(&'static str, String)>,
+    /// Required savings, met or not.
+    pub required: Vec<Required>,
     /// The short scale; none where there is no figure.
     pub scale: Option<Scale>,
     /// Open checks: class and words.
-    pub checks: (&'static str, String),
+    pub checks: ChecksShort,
     /// How many findings block; the pathway cannot be worked out counts as most.
     pub weight: usize,
     /// Why it cannot be worked out.
@@ -72,6 +72,15 @@ pub struct HomeRow {
     pub archived: bool,
     /// Demonstration data.
     pub example: bool,
+}
+
+/// Open checks in a few words.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ChecksShort {
+    /// Class of the worst.
+    pub class: &'static str,
+    /// Words.
+    pub words: String,
 }
 
 /// The short scale from zero to the baseline, in units of its drawing (150 wide).
@@ -158,7 +167,7 @@ impl Home {
     pub fn table(&self) -> Table {
         let mut table = Table::new(&["id", "name", "about", "net_g_co2e_per_mj", "saving_percent", "required", "checks", "revised"]);
         for row in &self.rows {
-            let required: Vec<String> = row.required.iter().map(|(word, percent)| format!("{word} {percent} %")).collect();
+            let required: Vec<String> = row.required.iter().map(|asked| format!("{} {} %", asked.word, asked.percent)).collect();
             table.rows.push(vec![
                 row.id.clone().into(),
                 row.name.clone().into(),
@@ -166,7 +175,7 @@ impl Home {
                 row.net.into(),
                 row.saving.into(),
                 required.join("; ").into(),
-                row.checks.1.clone().into(),
+                row.checks.words.clone().into(),
                 Cell::Text(row.revised.to_string()),
             ]);
         }
@@ -193,17 +202,11 @@ impl HomeRow {
             feedstock: pathway.feedstock.clone(),
             net: found.map(|found| found.net.g_co2e_per_mj),
             saving: found.and_then(|found| found.saving_percent),
-            required: match (found, &verdict) {
-                (Some(found), Some(verdict)) => {
-                    let words = verdict.required.iter().map(|required| required.word);
-                    words.zip(found.thresholds.iter().map(|t| percent_words(t.percent))).collect()
-                }
-                _ => Vec::new(),
-            },
+            required: verdict.map(|verdict| verdict.required).unwrap_or_default(),
             scale: found.map(|found| Scale::of(found)),
             checks: match &checks {
-                Some(checks) => (checks.class(), checks.words()),
-                None => ("blocks", "cannot be worked out".to_owned()),
+                Some(checks) => ChecksShort { class: checks.class(), words: checks.words() },
+                None => ChecksShort { class: "blocks", words: "cannot be worked out".to_owned() },
             },
             weight: checks.map_or(usize::MAX, |checks| checks.blocks * 1000 + checks.warns),
             broken: one.outcome.as_ref().err().cloned(),
@@ -233,7 +236,7 @@ impl Scale {
 
 fn lead(rows: &[HomeRow]) -> String {
     let shown: Vec<&HomeRow> = rows.iter().filter(|row| !row.archived).collect();
-    let count = |word: &str| shown.iter().filter(|row| row.required.iter().any(|(w, _)| *w == word)).count();
+    let count = |word: &str| shown.iter().filter(|row| row.required.iter().any(|required| required.word == word)).count();
     let broken = shown.iter().filter(|row| row.broken.is_some()).count();
     let archived = rows.len() - shown.len();
     let (meets, misses) = (count("meets"), count("misses"));
@@ -259,7 +262,7 @@ fn lead(rows: &[HomeRow]) -> String {
 
 impl Asked {
     fn lets(&self, row: &HomeRow) -> bool {
-        let word = |word: &str| row.required.iter().any(|(w, _)| *w == word);
+        let word = |word: &str| row.required.iter().any(|required| required.word == word);
         let state = match self.state.as_str() {
             "clear" => row.weight == 0,
             "open" => row.weight > 0,

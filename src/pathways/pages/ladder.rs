@@ -4,16 +4,17 @@ use crate::charts::ladder::{self, Baseline, Counted, Form, Ladder, Rung};
 use crate::core::documents::assessment::{Assessment, StageResult};
 use crate::core::domain::{Gas, GasVector, GwpSet, RuleSet};
 use crate::web::csv::{Cell, Table};
+use crate::web::filters::Markup;
 
 /// The picture in its forms and the table beside it.
 #[derive(Clone, Debug, PartialEq)]
 pub struct LadderView {
     /// SVG for screens from 48 rem.
-    pub wide: String,
+    pub wide: Markup,
     /// SVG for paper.
-    pub print: String,
+    pub print: Markup,
     /// SVG for narrow screens.
-    pub narrow: String,
+    pub narrow: Markup,
     /// Why there is no picture, where there is none.
     pub absent: Option<String>,
     /// True if the crop's carbon stands in line.
@@ -58,6 +59,11 @@ pub struct CountedRow {
     pub unsplit: f64,
     /// Running sum from the field.
     pub running: f64,
+}
+
+/// The patterns that the pictures of a page refer to, once in a page.
+pub fn defs() -> Markup {
+    Markup(format!("{}{}", ladder::defs(), crate::charts::carbon_split::defs()))
 }
 
 /// CO2e by gas group of a vector in g per MJ.
@@ -190,9 +196,9 @@ impl LadderView {
         let total = counted(&assessment.net.gases_g_per_mj, weights);
         let crop: f64 = rows.iter().filter_map(|row| row.crop).sum();
         LadderView {
-            wide: wide.unwrap_or_default(),
-            print: print.unwrap_or_default(),
-            narrow: narrow.unwrap_or_default(),
+            wide: Markup(wide.unwrap_or_default()),
+            print: Markup(print.unwrap_or_default()),
+            narrow: Markup(narrow.unwrap_or_default()),
             absent,
             in_line,
             land: rows.iter().any(|row| row.counted.is_some_and(|counted| counted.land != 0.0)),
