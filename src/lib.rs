@@ -1,7 +1,15 @@
 //! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
 
+pub mod app;
 pub mod charts;
+pub mod clock;
 pub mod core;
 pub mod library;
 pub mod pathways;
+pub mod store;
 pub mod web;
+
+/// Every SQL text of the program; a test prepares them all on a fresh database.
+pub fn all_statements() -> Vec<&'static str> {
+    [store::STATEMENTS.to_vec(), pathways::statements()].concat()
+}

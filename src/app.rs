@@ -1,0 +1,75 @@
+//! What every use case gets: the store, the clock, the published data, and on whose behalf records are kept.
+
+use crate::clock::Clock;
+use crate::core::documents::{Assessment, Pathway, Problems};
+use crate::core::domain::Book;
+use crate::core::engine::{self, Options};
+use crate::store::memory::Memory;
+use crate::store::{OrganisationId, Settings, Store, StoreError};
+use std::path::Path;
+use std::sync::Arc;
+
+/// Version of the program, as assessments name it.
+pub const PROGRAM: &str = env!("CARGO_PKG_VERSION");
+
+/// The accounting as a value, so that tests of the shell can bring their own.
+pub type Evaluate = fn(&Pathway, &Book, Options<'_>) -> Result<Assessment, Problems>;
+
+/// The running program. Cheap to clone; clones share everything.
+#[derive(Clone)]
+pub struct App {
+    /// The database.
+    pub store: Store,
+    /// Time and ids.
+    pub clock: Clock,
+    /// Published data.
+    pub library: &'static Book,
+    /// Whose records these are, until people sign in.
+    pub organisation: OrganisationId,
+    /// The accounting.
+    pub evaluate: Evaluate,
+    /// Immutable bytes at hand.
+    pub(crate) memory: Arc<Memory>,
+}
+
+impl App {
+    /// Opens the data file, making it where there is none.
+    ///
+    /// # Errors
+    /// When the file cannot be opened, written or brought up to date.
+    pub async fn open(file: &Path, clock: Clock, library: &'static Book) -> Result<App, StoreError> {
+        App::open_with(file, clock, library, engine::evaluate, Settings::default()).await
+    }
+
+    /// The same with another accounting and other settings of the store.
+    ///
+    /// # Errors
+    /// When the file cannot be opened, written or brought up to date.
+    pub async fn open_with(
+        file: &Path,
+        clock: Clock,
+        library: &'static Book,
+        evaluate: Evaluate,
+        settings: Settings,
+    ) -> Result<App, StoreError> {
+        let store = Store::open_with(file, settings).await?;
+        let organisation = match store.first_organisation(clock.id(), "Own organisation", clock.millis()).await {
+            Ok(organisation) => organisation,
+            Err(error) => {
+                store.close().await;
+                return Err(error);
+            }
+        };
+        Ok(App { store, clock, library, organisation, evaluate, memory: Arc::new(Memory::default()) })
+    }
+
+    /// The same program on behalf of another organisation.
+    pub fn on_behalf_of(&self, organisation: OrganisationId) -> App {
+        App { organisation, ..self.clone() }
+    }
+
+    /// Finishes the writes that wait and closes the database.
+    pub async fn close(&self) {
+        self.store.close().await;
+    }
+}

@@ -1,0 +1,290 @@
+//! Assessments: made from a document, kept beside its revision, found again or made again.
+
+use crate::store::memory::{Head, Kept};
+use super::sql::SummaryRow;
+use super::{PathwayError, Summary, What, public_id, sql};
+use crate::app::App;
+use crate::core::documents::assessment::{Finding, Severity};
+use crate::core::documents::{Assessment, Pathway, canonical};
+use crate::core::engine::Options;
+use crate::store::StoreError;
+use std::sync::Arc;
+use tokio::task::JoinSet;
+use uuid::Uuid;
+
+/// A document of fewer inventory lines than this is evaluated where the request runs, which takes well under a
+/// millisecond in a release build; a larger one goes to the threads for long work, so that it holds up nobody.
+const MANY_LINES: usize = 200;
+
+/// Documents that are evaluated together when all are.
+const TOGETHER: i64 = 250;
+
+/// An assessment ready to be kept.
+#[derive(Clone, Debug)]
+pub(super) struct Made {
+    pub(super) text: String,
+    pub(super) summary: Summary,
+    pub(super) thresholds: String,
+}
+
+impl Made {
+    pub(super) fn kept(&self) -> Kept {
+        Kept { hash: self.summary.assessment_hash.clone(), bytes: Arc::from(self.text.as_bytes()) }
+    }
+}
+
+/// The bytes of an assessment and what they belong to.
+#[derive(Clone, Debug)]
+pub struct AssessmentBytes {
+    /// Number of the revision.
+    pub revision: i64,
+    /// Hash of the revision's document.
+    pub pathway_hash: String,
+    /// Rule set of the assessment.
+    pub rule_set: String,
+    /// Hash of the bytes: their entity tag.
+    pub hash: String,
+    /// Canonical JSON.
+    pub bytes: Arc<[u8]>,
+}
+
+/// What came of assessing everything.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Reassessed {
+    /// Pathways assessed.
+    pub assessed: usize,
+    /// Pathways whose document this version of the program refuses.
+    pub refused: Vec<Uuid>,
+    /// Sum of the net figures, g CO2e/MJ: shows that they were made.
+    pub net_sum: f64,
+}
+
+/// Runs arithmetic for a document of so many lines where it holds up nobody.
+pub(super) async fn compute<T: Send + 'static>(
+    lines: usize,
+    work: impl FnOnce() -> Result<T, PathwayError> + Send + 'static,
+) -> Result<T, PathwayError> {
+    if lines < MANY_LINES {
+        return work();
+    }
+    let done = tokio::task::spawn_blocking(work).await;
+    done.unwrap_or_else(|error| Err(PathwayError::defect("evaluated a pathway", error)))
+}
+
+/// Inventory lines of a document.
+pub(super) fn lines(document: &Pathway) -> usize {
+    document.stages.iter().map(|stage| stage.inputs.len() + stage.intakes.len() + stage.co_products.len()).sum()
+}
+
+/// Evaluates a document, its own rule set or another.
+pub(super) fn make(app: &App, document: &Pathway, rule_set: Option<&str>) -> Result<Made, PathwayError> {
+    let options = Options { rule_set, ..Options::default() };
+    let assessment = (app.evaluate)(document, app.library, options)?;
+    let defect = |error| PathwayError::defect("wrote an assessment", error);
+    let bytes = canonical::bytes(&assessment).map_err(defect)?;
+    let assessment_hash = canonical::hash(&bytes);
+    let text = String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote an assessment", error))?;
+    let thresholds = serde_json::to_string(&assessment.thresholds).map_err(defect)?;
+    Ok(Made { text, thresholds, summary: summary(assessment, assessment_hash) })
+}
+
+fn summary(assessment: Assessment, assessment_hash: String) -> Summary {
+    let count = |severity: Severity| {
+        let findings = assessment.findings.iter().filter(|finding: &&Finding| finding.severity == severity);
+        u32::try_from(findings.count()).unwrap_or(u32::MAX)
+    };
+    Summary {
+        net_g_co2e_per_mj: assessment.net.g_co2e_per_mj,
+        saving_percent: assessment.saving_percent,
+        blocks: count(Severity::Block),
+        warnings: count(Severity::Warn),
+        infos: count(Severity::Info),
+        rule_set: assessment.rule_set,
+        thresholds: assessment.thresholds,
+        assessment_hash,
+    }
+}
+
+impl SummaryRow {
+    /// The summary of a kept assessment; `row` names the record in an error.
+    pub(super) fn into_summary(self, row: i64) -> Result<Option<Summary>, StoreError> {
+        let damaged = |column| StoreError::Inconsistent { table: "assessment", column, row };
+        let SummaryRow { rule_set, assessment_hash, net, saving, thresholds, blocks, warnings, infos } = self;
+        let Some(assessment_hash) = assessment_hash else { return Ok(None) };
+        let count = |count: Option<i64>, column| {
+            count.and_then(|count| u32::try_from(count).ok()).ok_or_else(|| damaged(column))
+        };
+        let thresholds = thresholds.ok_or_else(|| damaged("thresholds"))?;
+        Ok(Some(Summary {
+            rule_set,
+            net_g_co2e_per_mj: net.ok_or_else(|| damaged("net"))?,
+            saving_percent: saving,
+            thresholds: serde_json::from_str(&thresholds).map_err(|_| damaged("thresholds"))?,
+            blocks: count(blocks, "blocks")?,
+            warnings: count(warnings, "warnings")?,
+            infos: count(infos, "infos")?,
+            assessment_hash,
+        }))
+    }
+}
+
+/// Reads a stored document back.
+pub(super) fn document(text: &str, row: i64) -> Result<Pathway, StoreError> {
+    Pathway::from_bytes(text.as_bytes()).map_err(|_| StoreError::Inconsistent {
+        table: "revision",
+        column: "document",
+        row,
+    })
+}
+
+/// The assessment of a pathway: of the current revision or another, under its own rule set or another. Kept bytes
+/// where there are some, made and kept where not.
+///
+/// # Errors
+/// When there is no such pathway or revision, when the document cannot be evaluated under the rule set, or when the
+/// database fails.
+pub async fn assessment(
+    app: &App,
+    id: Uuid,
+    revision: Option<i64>,
+    rule_set: Option<&str>,
+) -> Result<AssessmentBytes, PathwayError> {
+    if revision.is_none() {
+        let head = head(app, id).await?;
+        let rule_set = rule_set.unwrap_or(&head.rule_set);
+        if let Some(kept) = app.memory.assessment(&head.hash, rule_set) {
+            return Ok(answer(head.revision, head.hash.clone(), rule_set, kept));
+        }
+    }
+    let mut reader = app.store.reader().await?;
+    let found = sql::revision(&mut reader, app.organisation, id, revision).await?;
+    let found = found.ok_or(PathwayError::NotFound(missing(revision)))?;
+    let rule_set = rule_set.unwrap_or(&found.rule_set).to_owned();
+    if let Some(kept) = app.memory.assessment(&found.hash, &rule_set) {
+        return Ok(answer(found.number, found.hash, &rule_set, kept));
+    }
+    let kept = sql::assessment(&mut reader, app.organisation, found.revision_id, &rule_set).await?;
+    drop(reader);
+    let kept = match kept {
+        Some((hash, text)) => Kept { hash, bytes: Arc::from(text.as_bytes()) },
+        None => {
+            let document = document(&found.document, found.revision_id)?;
+            let (app_too, under) = (app.clone(), rule_set.clone());
+            let made =
+                compute(lines(&document), move || make(&app_too, &document, Some(&under))).await?;
+            let kept = made.kept();
+            keep_soon(app, found.revision_id, made).await;
+            kept
+        }
+    };
+    app.memory.keep(&found.hash, &rule_set, kept.clone());
+    Ok(answer(found.number, found.hash, &rule_set, kept))
+}
+
+pub(super) fn missing(revision: Option<i64>) -> What {
+    if revision.is_some() { What::Revision } else { What::Pathway }
+}
+
+fn answer(revision: i64, pathway_hash: String, rule_set: &str, kept: Kept) -> AssessmentBytes {
+    let Kept { hash, bytes } = kept;
+    AssessmentBytes { revision, pathway_hash, rule_set: rule_set.to_owned(), hash, bytes }
+}
+
+/// The current revision of a pathway, from memory or the file.
+pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError> {
+    let now = app.clock.millis();
+    let writes = match app.memory.head(app.organisation, id, now) {
+        Ok(head) => return Ok(head),
+        Err(writes) => writes,
+    };
+    let mut reader = app.store.reader().await?;
+    let row = sql::head(&mut reader, app.organisation, id).await?;
+    let row = row.ok_or(PathwayError::NotFound(What::Pathway))?;
+    let head = Arc::new(Head { revision: row.number, hash: row.hash, rule_set: row.rule_set });
+    app.memory.learn(app.organisation, id, head.clone(), now, writes);
+    Ok(head)
+}
+
+/// Keeps an assessment beside its revision. It is a cache: a full disk or a busy store is no reason not to answer.
+pub(super) async fn keep_soon(app: &App, revision: i64, made: Made) {
+    let (who, now) = (app.organisation, app.clock.millis());
+    let kept = app.store.write(move |c| Box::pin(async move { sql::keep(c, who, revision, &made, now).await }));
+    if let Err(error) = kept.await {
+        tracing::warn!(%error, "an assessment could not be kept");
+    }
+}
+
+/// Assesses the current revision of every pathway again, on all cores. With `keep` the results are kept beside their
+/// revisions: worth doing once after the program has been brought up to date.
+///
+/// # Errors
+/// When the database fails or a stored document cannot be read.
+pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayError> {
+    let width = std::thread::available_parallelism().map_or(1, std::num::NonZero::get);
+    let mut total = Reassessed::default();
+    let mut running = JoinSet::new();
+    let mut after = 0;
+    loop {
+        let mut reader = app.store.reader().await?;
+        let batch = sql::current_after(&mut reader, app.organisation, after, TOGETHER).await?;
+        drop(reader);
+        let Some(last) = batch.last() else { break };
+        after = last.id;
+        if running.len() >= width {
+            gather(app, &mut running, keep, &mut total).await?;
+        }
+        let app = app.clone();
+        running.spawn_blocking(move || {
+            let assess = |row: sql::CurrentRow| {
+                let id = public_id(&row.public_id, row.id)?;
+                match make(&app, &document(&row.document, row.revision_id)?, None) {
+                    Ok(made) => Ok((id, Some((row.revision_id, made)))),
+                    Err(PathwayError::Problems(_)) => Ok((id, None)),
+                    Err(other) => Err(other),
+                }
+            };
+            batch.into_iter().map(assess).collect()
+        });
+    }
+    while !running.is_empty() {
+        gather(app, &mut running, keep, &mut total).await?;
+    }
+    total.refused.sort();
+    Ok(total)
+}
+
+type Batch = Result<Vec<(Uuid, Option<(i64, Made)>)>, PathwayError>;
+
+async fn gather(
+    app: &App,
+    running: &mut JoinSet<Batch>,
+    keep: bool,
+    total: &mut Reassessed,
+) -> Result<(), PathwayError> {
+    let Some(done) = running.join_next().await else { return Ok(()) };
+    let batch = done.map_err(|error| PathwayError::defect("assessed everything again", error))??;
+    let mut made = Vec::new();
+    for (id, result) in batch {
+        match result {
+            Some((revision, assessment)) => {
+                total.assessed += 1;
+                total.net_sum += assessment.summary.net_g_co2e_per_mj;
+                made.push((revision, assessment));
+            }
+            None => total.refused.push(id),
+        }
+    }
+    if keep {
+        let (who, now) = (app.organisation, app.clock.millis());
+        let write = app.store.write(move |c| {
+            Box::pin(async move {
+                for (revision, made) in &made {
+                    sql::keep(c, who, *revision, made, now).await?;
+                }
+                Ok::<_, PathwayError>(())
+            })
+        });
+        write.await?;
+    }
+    Ok(())
+}

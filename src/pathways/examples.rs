@@ -1,0 +1,48 @@
+//! Demonstration data: put in and taken out whole.
+
+use super::save::{create_prepared, prepare};
+use super::{PathwayError, Saved, sql};
+use crate::app::App;
+use crate::core::documents::{Pathway, Problem};
+
+/// Stores demonstration documents; those that are there already are left as they are. All are evaluated before the
+/// first is stored.
+///
+/// # Errors
+/// A document that is not marked as an example, or that cannot be evaluated; or when the database fails.
+pub async fn load_examples(app: &App, documents: Vec<Pathway>) -> Result<Vec<Saved>, PathwayError> {
+    let mut ready = Vec::with_capacity(documents.len());
+    for document in documents {
+        if !document.example {
+            let detail = format!("\"{}\" is not marked as an example.", document.name);
+            let problem = Problem { pointer: "/example".into(), detail, remedy: "Set it to true.".into() };
+            return Err(PathwayError::Problems(problem.into()));
+        }
+        ready.push(prepare(app, document).await?);
+    }
+    let mut saved = Vec::new();
+    for made in ready {
+        let mut reader = app.store.reader().await?;
+        let there = sql::example_by_hash(&mut reader, app.organisation, &made.hash).await?;
+        drop(reader);
+        if there.is_none() {
+            saved.push(create_prepared(app, made, None).await?);
+        }
+    }
+    Ok(saved)
+}
+
+/// Removes every demonstration pathway with its revisions, in one step; how many went. One that was once saved
+/// without the mark is a record and stays.
+///
+/// # Errors
+/// When the database fails.
+pub async fn remove_examples(app: &App) -> Result<u64, PathwayError> {
+    let (who, memory) = (app.organisation, app.memory.clone());
+    app.store
+        .write_then(
+            move |c| Box::pin(async move { Ok(sql::remove_examples(c, who).await?) }),
+            move |_| memory.forget_heads(),
+        )
+        .await
+}

@@ -1,0 +1,223 @@
+//! Saving: a document is evaluated whole and becomes a revision, or nothing is stored at all.
+
+use super::assess::{Made, compute, document, lines, make};
+use crate::store::memory::Head;
+use super::rows::{RowTexts, Rows};
+use super::{Expected, PathwayError, Saved, Summary, What, sql, time};
+use crate::app::App;
+use crate::core::documents::pathway::Stage;
+use crate::core::documents::{Pathway, Problem, canonical};
+use std::sync::Arc;
+use uuid::Uuid;
+
+/// A document that may be saved, with all that is written beside it.
+#[derive(Debug)]
+pub(super) struct Prepared {
+    pub(super) document: Pathway,
+    pub(super) text: String,
+    pub(super) hash: String,
+    pub(super) rows: RowTexts,
+    pub(super) assessment: Made,
+}
+
+/// Evaluates a document and works out everything that is written with it.
+pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
+    let app = app.clone();
+    compute(lines(&document), move || {
+        let bytes = canonical::bytes(&document).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
+        // What is stored must be readable again, and mean the same: a document put together in memory is held to
+        // the rules of one that was sent.
+        if Pathway::from_bytes(&bytes)? != document {
+            let lost = std::io::Error::other("the canonical bytes read back as another document");
+            return Err(PathwayError::defect("wrote a pathway", lost));
+        }
+        let assessment = make(&app, &document, None)?;
+        let rows = Rows::of(&document).texts();
+        let rows = rows.map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
+        let hash = canonical::hash(&bytes);
+        let text = String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
+        Ok(Arc::new(Prepared { document, text, hash, rows, assessment }))
+    })
+    .await
+}
+
+impl Prepared {
+    fn saved(&self, id: Uuid, revision: i64, at: i64, changed: bool) -> Result<Saved, PathwayError> {
+        let saved_at = time(at, "revision", "saved_at", revision)?;
+        let assessment: Summary = self.assessment.summary.clone();
+        Ok(Saved { id, revision, hash: self.hash.clone(), saved_at, changed, assessment })
+    }
+
+    fn head(&self, revision: i64) -> Head {
+        Head { revision, hash: self.hash.clone(), rule_set: self.document.rule_set.clone() }
+    }
+}
+
+/// Stores a new pathway.
+///
+/// # Errors
+/// All problems of the document; then nothing is stored. Or when the database fails.
+pub async fn create(app: &App, document: Pathway, reason: Option<String>) -> Result<Saved, PathwayError> {
+    let made = prepare(app, document).await?;
+    create_prepared(app, made, reason).await
+}
+
+pub(super) async fn create_prepared(
+    app: &App,
+    made: Arc<Prepared>,
+    reason: Option<String>,
+) -> Result<Saved, PathwayError> {
+    let (who, id, now) = (app.organisation, app.clock.id(), app.clock.millis());
+    let saved = made.saved(id, 1, now, true)?;
+    let (memory, kept) = (app.memory.clone(), made.clone());
+    app.store
+        .write_then(
+            move |c| {
+                Box::pin(async move {
+                    let pathway = sql::add_pathway(c, who, id, &made, now).await?;
+                    sql::add_revision(c, who, pathway, 1, &made, reason.as_deref(), now).await?;
+                    Ok::<_, PathwayError>(())
+                })
+            },
+            move |()| {
+                memory.wrote(who, id, kept.head(1), now);
+                memory.keep(&kept.hash, &kept.document.rule_set, kept.assessment.kept());
+            },
+        )
+        .await?;
+    Ok(saved)
+}
+
+/// Saves a document as the next revision of a pathway. The current document, saved again, makes none.
+///
+/// # Errors
+/// All problems of the document; `Conflict` when the pathway is not at the expected revision; `NotFound`, `Archived`;
+/// or when the database fails. Nothing is stored then.
+pub async fn replace(
+    app: &App,
+    id: Uuid,
+    document: Pathway,
+    expected: Expected,
+    reason: Option<String>,
+) -> Result<Saved, PathwayError> {
+    let made = prepare(app, document).await?;
+    let (who, now) = (app.organisation, app.clock.millis());
+    let (memory, job, after) = (app.memory.clone(), made.clone(), made.clone());
+    let (revision, at, changed) = app
+        .store
+        .write_then(
+            move |c| {
+                Box::pin(async move {
+                    let head = sql::head(c, who, id).await?.ok_or(PathwayError::NotFound(What::Pathway))?;
+                    if !expected.fits(head.number, &head.hash) {
+                        return Err(PathwayError::Conflict { revision: head.number, hash: head.hash });
+                    }
+                    if head.archived_at.is_some() {
+                        return Err(PathwayError::Archived);
+                    }
+                    if head.hash == job.hash {
+                        return Ok((head.number, head.saved_at, false));
+                    }
+                    let number = head.number + 1;
+                    sql::add_revision(c, who, head.id, number, &job, reason.as_deref(), now).await?;
+                    sql::move_on(c, who, head.id, number, &job, now).await?;
+                    Ok((number, now, true))
+                })
+            },
+            move |&(number, _, _)| {
+                memory.wrote(who, id, after.head(number), now);
+                memory.keep(&after.hash, &after.document.rule_set, after.assessment.kept());
+            },
+        )
+        .await?;
+    made.saved(id, revision, at, changed)
+}
+
+/// Hides a pathway from lists; nothing is removed and it can still be read.
+///
+/// # Errors
+/// `Conflict` when it is not at the expected revision, `NotFound`, or when the database fails.
+pub async fn archive(app: &App, id: Uuid, expected: Expected) -> Result<(), PathwayError> {
+    set_archived(app, id, expected, true).await
+}
+
+/// Takes a pathway out of the archive.
+///
+/// # Errors
+/// `Conflict` when it is not at the expected revision, `NotFound`, or when the database fails.
+pub async fn restore(app: &App, id: Uuid, expected: Expected) -> Result<(), PathwayError> {
+    set_archived(app, id, expected, false).await
+}
+
+async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -> Result<(), PathwayError> {
+    let (who, now) = (app.organisation, app.clock.millis());
+    let job = app.store.write(move |c| {
+        Box::pin(async move {
+            let head = sql::head(c, who, id).await?.ok_or(PathwayError::NotFound(What::Pathway))?;
+            if !expected.fits(head.number, &head.hash) {
+                return Err(PathwayError::Conflict { revision: head.number, hash: head.hash });
+            }
+            if head.archived_at.is_some() != archived {
+                sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
+            }
+            Ok(())
+        })
+    });
+    job.await
+}
+
+/// Saves one stage, in its place or after the last, as the next revision.
+///
+/// # Errors
+/// As [`replace`]; and a problem when the stage carries another key than asked for.
+pub async fn put_stage(
+    app: &App,
+    id: Uuid,
+    key: &str,
+    stage: Stage,
+    expected: Expected,
+    reason: Option<String>,
+) -> Result<Saved, PathwayError> {
+    if stage.key != key {
+        let detail = format!("The stage is called \"{}\", and was sent to \"{key}\".", stage.key);
+        let remedy = "Give both the same key. A stage cannot be renamed in place.".into();
+        return Err(PathwayError::Problems(Problem { pointer: "/key".into(), detail, remedy }.into()));
+    }
+    let (mut document, seen) = current(app, id, &expected).await?;
+    match document.stages.iter_mut().find(|old| old.key == key) {
+        Some(old) => *old = stage,
+        None => document.stages.push(stage),
+    }
+    replace(app, id, document, seen, reason).await
+}
+
+/// Takes one stage out, as the next revision.
+///
+/// # Errors
+/// As [`replace`]; `NotFound` when there is no such stage. A pathway that needs the stage is refused with problems.
+pub async fn delete_stage(
+    app: &App,
+    id: Uuid,
+    key: &str,
+    expected: Expected,
+    reason: Option<String>,
+) -> Result<Saved, PathwayError> {
+    let (mut document, seen) = current(app, id, &expected).await?;
+    let before = document.stages.len();
+    document.stages.retain(|stage| stage.key != key);
+    if document.stages.len() == before {
+        return Err(PathwayError::NotFound(What::Stage));
+    }
+    replace(app, id, document, seen, reason).await
+}
+
+/// The current document if it is the expected one, and its number: a save in between is then a conflict.
+async fn current(app: &App, id: Uuid, expected: &Expected) -> Result<(Pathway, Expected), PathwayError> {
+    let mut reader = app.store.reader().await?;
+    let found = sql::revision(&mut reader, app.organisation, id, None).await?;
+    let found = found.ok_or(PathwayError::NotFound(What::Pathway))?;
+    if !expected.fits(found.number, &found.hash) {
+        return Err(PathwayError::Conflict { revision: found.number, hash: found.hash });
+    }
+    Ok((document(&found.document, found.revision_id)?, Expected::Number(found.number)))
+}

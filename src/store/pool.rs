@@ -1,0 +1,56 @@
+//! How connections are opened: one that writes, a few that read, each with every pragma of its own.
+
+use super::{Settings, StoreError};
+use sqlx::SqlitePool;
+use sqlx::sqlite::{SqliteConnectOptions, SqliteJournalMode, SqlitePoolOptions, SqliteSynchronous};
+use std::path::Path;
+use std::time::Duration;
+
+/// The tables of this version of the program.
+static MIGRATIONS: sqlx::migrate::Migrator = sqlx::migrate!("./migrations");
+
+/// Pragmas hold for one connection only, so they go through the options of each.
+fn options(file: &Path, settings: &Settings) -> SqliteConnectOptions {
+    SqliteConnectOptions::new()
+        .filename(file)
+        .journal_mode(SqliteJournalMode::Wal)
+        .synchronous(SqliteSynchronous::Full)
+        .foreign_keys(true)
+        .busy_timeout(settings.busy_timeout)
+        .pragma("cache_size", "-16000")
+        .pragma("mmap_size", "268435456")
+        .pragma("temp_store", "MEMORY")
+        .pragma("journal_size_limit", "67108864")
+        .pragma("trusted_schema", "OFF")
+        .statement_cache_capacity(256)
+        .row_buffer_size(256)
+}
+
+/// A pool of exactly `count` connections that live as long as it.
+fn pool(count: u32) -> SqlitePoolOptions {
+    SqlitePoolOptions::new()
+        .min_connections(count)
+        .max_connections(count)
+        .idle_timeout(None)
+        .max_lifetime(None)
+        .acquire_timeout(Duration::from_secs(5))
+        .test_before_acquire(false)
+}
+
+/// Opens the connection that writes, and brings the tables up to date with it. Comes before the readers, which
+/// cannot make the file or its `-shm`.
+pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
+    let writer = pool(1).connect_with(options(file, settings).create_if_missing(true)).await?;
+    if let Err(error) = MIGRATIONS.run(&writer).await {
+        writer.close().await;
+        return Err(error.into());
+    }
+    Ok(writer)
+}
+
+/// Opens the connections that read and can do nothing else.
+pub(super) async fn readers(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
+    let options =
+        options(file, settings).create_if_missing(false).read_only(true).pragma("query_only", "ON");
+    Ok(pool(settings.readers).connect_with(options).await?)
+}
