@@ -3,14 +3,13 @@
 use crate::clock::Clock;
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
-use crate::core::engine::{self, Options};
+use crate::core::evaluate::{Options, evaluate};
 use crate::store::memory::Memory;
 use crate::store::{OrganisationId, Settings, Store, StoreError};
 use std::path::Path;
 use std::sync::Arc;
 
-/// Version of the program, as assessments name it.
-pub const PROGRAM: &str = env!("CARGO_PKG_VERSION");
+pub use crate::core::engine::assess::PROGRAM;
 
 /// The accounting as a value, so that tests of the shell can bring their own.
 pub type Evaluate = fn(&Pathway, &Book, Options<'_>) -> Result<Assessment, Problems>;
@@ -38,7 +37,7 @@ impl App {
     /// # Errors
     /// When the file cannot be opened, written or brought up to date.
     pub async fn open(file: &Path, clock: Clock, library: &'static Book) -> Result<App, StoreError> {
-        App::open_with(file, clock, library, engine::evaluate, Settings::default()).await
+        App::open_with(file, clock, library, evaluate, Settings::default()).await
     }
 
     /// The same with another accounting and other settings of the store.
@@ -53,19 +52,32 @@ impl App {
         settings: Settings,
     ) -> Result<App, StoreError> {
         let store = Store::open_with(file, settings).await?;
-        let organisation = match store.first_organisation(clock.id(), "Own organisation", clock.millis()).await {
+        let organisation = match store
+            .first_organisation(clock.id(), "Own organisation", clock.millis())
+            .await
+        {
             Ok(organisation) => organisation,
             Err(error) => {
                 store.close().await;
                 return Err(error);
             }
         };
-        Ok(App { store, clock, library, organisation, evaluate, memory: Arc::new(Memory::default()) })
+        Ok(App {
+            store,
+            clock,
+            library,
+            organisation,
+            evaluate,
+            memory: Arc::new(Memory::default()),
+        })
     }
 
     /// The same program on behalf of another organisation.
     pub fn on_behalf_of(&self, organisation: OrganisationId) -> App {
-        App { organisation, ..self.clone() }
+        App {
+            organisation,
+            ..self.clone()
+        }
     }
 
     /// Finishes the writes that wait and closes the database.

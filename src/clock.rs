@@ -13,7 +13,11 @@ pub struct Clock(Source);
 #[derive(Clone, Debug)]
 enum Source {
     System,
-    Fixed { millis: Arc<AtomicI64>, drawn: Arc<AtomicU64>, seed: u64 },
+    Fixed {
+        millis: Arc<AtomicI64>,
+        drawn: Arc<AtomicU64>,
+        seed: u64,
+    },
 }
 
 impl Clock {
@@ -25,7 +29,11 @@ impl Clock {
     /// A clock that stands at `at` until it is moved, with ids drawn from `seed`: the same run gives the same bytes.
     pub fn fixed(at: Timestamp, seed: u64) -> Clock {
         let millis = Arc::new(AtomicI64::new(at.as_millisecond()));
-        Clock(Source::Fixed { millis, drawn: Arc::new(AtomicU64::new(0)), seed })
+        Clock(Source::Fixed {
+            millis,
+            drawn: Arc::new(AtomicU64::new(0)),
+            seed,
+        })
     }
 
     /// Now, UTC.
@@ -36,7 +44,10 @@ impl Clock {
     /// Now in milliseconds since 1970 UTC, as records keep it.
     pub fn millis(&self) -> i64 {
         match &self.0 {
-            #[allow(clippy::disallowed_methods, reason = "this file is where the machine is asked")]
+            #[allow(
+                clippy::disallowed_methods,
+                reason = "this file is where the machine is asked"
+            )]
             Source::System => Timestamp::now().as_millisecond(),
             Source::Fixed { millis, .. } => millis.load(Ordering::Relaxed),
         }
@@ -45,7 +56,10 @@ impl Clock {
     /// Moves a fixed clock; the system's clock cannot be moved.
     pub fn advance(&self, by: Duration) {
         if let Source::Fixed { millis, .. } = &self.0 {
-            millis.fetch_add(i64::try_from(by.as_millis()).unwrap_or(i64::MAX), Ordering::Relaxed);
+            millis.fetch_add(
+                i64::try_from(by.as_millis()).unwrap_or(i64::MAX),
+                Ordering::Relaxed,
+            );
         }
     }
 
@@ -57,12 +71,16 @@ impl Clock {
 
     fn ten_bytes(&self) -> [u8; 10] {
         match &self.0 {
-            #[allow(clippy::disallowed_methods, reason = "this file is where the machine is asked")]
+            #[allow(
+                clippy::disallowed_methods,
+                reason = "this file is where the machine is asked"
+            )]
             Source::System => rand::random(),
             Source::Fixed { drawn, seed, .. } => {
                 let turn = drawn.fetch_add(1, Ordering::Relaxed);
                 let mut bytes = [0; 10];
-                bytes[..8].copy_from_slice(&mixed(seed.wrapping_add(turn.wrapping_mul(GOLDEN))).to_le_bytes());
+                bytes[..8]
+                    .copy_from_slice(&mixed(seed.wrapping_add(turn.wrapping_mul(GOLDEN))).to_le_bytes());
                 bytes[8..].copy_from_slice(&mixed(seed.wrapping_sub(turn)).to_le_bytes()[..2]);
                 bytes
             }

@@ -1,13 +1,13 @@
 //! Assessments: made from a document, kept beside its revision, found again or made again.
 
-use crate::store::memory::{Head, Kept};
 use super::sql::SummaryRow;
 use super::{PathwayError, Summary, What, public_id, sql};
 use crate::app::App;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::{Assessment, Pathway, canonical};
-use crate::core::engine::Options;
+use crate::core::evaluate::Options;
 use crate::store::StoreError;
+use crate::store::memory::{Head, Kept};
 use std::sync::Arc;
 use tokio::task::JoinSet;
 use uuid::Uuid;
@@ -29,7 +29,10 @@ pub(super) struct Made {
 
 impl Made {
     pub(super) fn kept(&self) -> Kept {
-        Kept { hash: self.summary.assessment_hash.clone(), bytes: Arc::from(self.text.as_bytes()) }
+        Kept {
+            hash: self.summary.assessment_hash.clone(),
+            bytes: Arc::from(self.text.as_bytes()),
+        }
     }
 }
 
@@ -73,24 +76,39 @@ pub(super) async fn compute<T: Send + 'static>(
 
 /// Inventory lines of a document.
 pub(super) fn lines(document: &Pathway) -> usize {
-    document.stages.iter().map(|stage| stage.inputs.len() + stage.intakes.len() + stage.co_products.len()).sum()
+    document
+        .stages
+        .iter()
+        .map(|stage| stage.inputs.len() + stage.intakes.len() + stage.co_products.len())
+        .sum()
 }
 
 /// Evaluates a document, its own rule set or another.
 pub(super) fn make(app: &App, document: &Pathway, rule_set: Option<&str>) -> Result<Made, PathwayError> {
-    let options = Options { rule_set, ..Options::default() };
+    let options = Options {
+        rule_set,
+        ..Options::default()
+    };
     let assessment = (app.evaluate)(document, app.library, options)?;
     let defect = |error| PathwayError::defect("wrote an assessment", error);
     let bytes = canonical::bytes(&assessment).map_err(defect)?;
     let assessment_hash = canonical::hash(&bytes);
-    let text = String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote an assessment", error))?;
+    let text =
+        String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote an assessment", error))?;
     let thresholds = serde_json::to_string(&assessment.thresholds).map_err(defect)?;
-    Ok(Made { text, thresholds, summary: summary(assessment, assessment_hash) })
+    Ok(Made {
+        text,
+        thresholds,
+        summary: summary(assessment, assessment_hash),
+    })
 }
 
 fn summary(assessment: Assessment, assessment_hash: String) -> Summary {
     let count = |severity: Severity| {
-        let findings = assessment.findings.iter().filter(|finding: &&Finding| finding.severity == severity);
+        let findings = assessment
+            .findings
+            .iter()
+            .filter(|finding: &&Finding| finding.severity == severity);
         u32::try_from(findings.count()).unwrap_or(u32::MAX)
     };
     Summary {
@@ -108,11 +126,28 @@ fn summary(assessment: Assessment, assessment_hash: String) -> Summary {
 impl SummaryRow {
     /// The summary of a kept assessment; `row` names the record in an error.
     pub(super) fn into_summary(self, row: i64) -> Result<Option<Summary>, StoreError> {
-        let damaged = |column| StoreError::Inconsistent { table: "assessment", column, row };
-        let SummaryRow { rule_set, assessment_hash, net, saving, thresholds, blocks, warnings, infos } = self;
-        let Some(assessment_hash) = assessment_hash else { return Ok(None) };
+        let damaged = |column| StoreError::Inconsistent {
+            table: "assessment",
+            column,
+            row,
+        };
+        let SummaryRow {
+            rule_set,
+            assessment_hash,
+            net,
+            saving,
+            thresholds,
+            blocks,
+            warnings,
+            infos,
+        } = self;
+        let Some(assessment_hash) = assessment_hash else {
+            return Ok(None);
+        };
         let count = |count: Option<i64>, column| {
-            count.and_then(|count| u32::try_from(count).ok()).ok_or_else(|| damaged(column))
+            count
+                .and_then(|count| u32::try_from(count).ok())
+                .ok_or_else(|| damaged(column))
         };
         let thresholds = thresholds.ok_or_else(|| damaged("thresholds"))?;
         Ok(Some(Summary {
@@ -166,12 +201,14 @@ pub async fn assessment(
     let kept = sql::assessment(&mut reader, app.organisation, found.revision_id, &rule_set).await?;
     drop(reader);
     let kept = match kept {
-        Some((hash, text)) => Kept { hash, bytes: Arc::from(text.as_bytes()) },
+        Some((hash, text)) => Kept {
+            hash,
+            bytes: Arc::from(text.as_bytes()),
+        },
         None => {
             let document = document(&found.document, found.revision_id)?;
             let (app_too, under) = (app.clone(), rule_set.clone());
-            let made =
-                compute(lines(&document), move || make(&app_too, &document, Some(&under))).await?;
+            let made = compute(lines(&document), move || make(&app_too, &document, Some(&under))).await?;
             let kept = made.kept();
             keep_soon(app, found.revision_id, made).await;
             kept
@@ -182,12 +219,22 @@ pub async fn assessment(
 }
 
 pub(super) fn missing(revision: Option<i64>) -> What {
-    if revision.is_some() { What::Revision } else { What::Pathway }
+    if revision.is_some() {
+        What::Revision
+    } else {
+        What::Pathway
+    }
 }
 
 fn answer(revision: i64, pathway_hash: String, rule_set: &str, kept: Kept) -> AssessmentBytes {
     let Kept { hash, bytes } = kept;
-    AssessmentBytes { revision, pathway_hash, rule_set: rule_set.to_owned(), hash, bytes }
+    AssessmentBytes {
+        revision,
+        pathway_hash,
+        rule_set: rule_set.to_owned(),
+        hash,
+        bytes,
+    }
 }
 
 /// The current revision of a pathway, from memory or the file.
@@ -200,7 +247,11 @@ pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError>
     let mut reader = app.store.reader().await?;
     let row = sql::head(&mut reader, app.organisation, id).await?;
     let row = row.ok_or(PathwayError::NotFound(What::Pathway))?;
-    let head = Arc::new(Head { revision: row.number, hash: row.hash, rule_set: row.rule_set });
+    let head = Arc::new(Head {
+        revision: row.number,
+        hash: row.hash,
+        rule_set: row.rule_set,
+    });
     app.memory.learn(app.organisation, id, head.clone(), now, writes);
     Ok(head)
 }
@@ -208,7 +259,9 @@ pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError>
 /// Keeps an assessment beside its revision. It is a cache: a full disk or a busy store is no reason not to answer.
 pub(super) async fn keep_soon(app: &App, revision: i64, made: Made) {
     let (who, now) = (app.organisation, app.clock.millis());
-    let kept = app.store.write(move |c| Box::pin(async move { sql::keep(c, who, revision, &made, now).await }));
+    let kept = app
+        .store
+        .write(move |c| Box::pin(async move { sql::keep(c, who, revision, &made, now).await }));
     if let Err(error) = kept.await {
         tracing::warn!(%error, "an assessment could not be kept");
     }
@@ -261,7 +314,9 @@ async fn gather(
     keep: bool,
     total: &mut Reassessed,
 ) -> Result<(), PathwayError> {
-    let Some(done) = running.join_next().await else { return Ok(()) };
+    let Some(done) = running.join_next().await else {
+        return Ok(());
+    };
     let batch = done.map_err(|error| PathwayError::defect("assessed everything again", error))??;
     let mut made = Vec::new();
     for (id, result) in batch {

@@ -47,7 +47,10 @@ pub fn between(before: Option<&Pathway>, after: &Pathway) -> Result<Vec<Change>,
     let json = |document: &Pathway| {
         serde_json::to_value(document).map_err(|error| PathwayError::defect("compared two revisions", error))
     };
-    let before = before.map(json).transpose()?.unwrap_or_else(|| Value::Object(Map::new()));
+    let before = before
+        .map(json)
+        .transpose()?
+        .unwrap_or_else(|| Value::Object(Map::new()));
     let mut found = Vec::new();
     compare(&Spot::default(), &before, &json(after)?, &mut found);
     Ok(found)
@@ -65,7 +68,11 @@ struct Spot {
 impl Spot {
     fn field(&self, name: &str) -> Spot {
         let step = name.replace('~', "~0").replace('/', "~1");
-        let field = if self.field.is_empty() { name.to_owned() } else { format!("{}.{name}", self.field) };
+        let field = if self.field.is_empty() {
+            name.to_owned()
+        } else {
+            format!("{}.{name}", self.field)
+        };
         Spot {
             before: format!("{}/{step}", self.before),
             after: format!("{}/{step}", self.after),
@@ -81,13 +88,27 @@ impl Spot {
         };
         let (before, after) = (step(&self.before, before), step(&self.after, after));
         if self.stage.is_none() && self.field == "stages" {
-            return Spot { before, after, stage: Some(key.to_owned()), field: String::new() };
+            return Spot {
+                before,
+                after,
+                stage: Some(key.to_owned()),
+                field: String::new(),
+            };
         }
-        Spot { before, after, stage: self.stage.clone(), field: format!("{}.{key}", self.field) }
+        Spot {
+            before,
+            after,
+            stage: self.stage.clone(),
+            field: format!("{}.{key}", self.field),
+        }
     }
 
     fn note(&self, what: Kind, before: Option<&Value>, after: Option<&Value>, found: &mut Vec<Change>) {
-        let pointer = if what == Kind::Removed { &self.before } else { &self.after };
+        let pointer = if what == Kind::Removed {
+            &self.before
+        } else {
+            &self.after
+        };
         found.push(Change {
             pointer: pointer.clone(),
             stage: self.stage.clone(),
@@ -130,7 +151,9 @@ fn side_by_side(at: &Spot, before: Option<&Value>, after: Option<&Value>, found:
 }
 
 fn keyed(value: &Value) -> bool {
-    value.as_array().is_some_and(|items| !items.is_empty() && keys(items).is_some())
+    value
+        .as_array()
+        .is_some_and(|items| !items.is_empty() && keys(items).is_some())
 }
 
 fn by_key(at: &Spot, old: (&[Value], &[String]), new: (&[Value], &[String]), found: &mut Vec<Change>) {
@@ -138,19 +161,34 @@ fn by_key(at: &Spot, old: (&[Value], &[String]), new: (&[Value], &[String]), fou
     for (index, key) in new.1.iter().enumerate() {
         let before = place(old.1, key);
         let spot = at.item(key, before, Some(index));
-        side_by_side(&spot, before.and_then(|index| old.0.get(index)), new.0.get(index), found);
+        side_by_side(
+            &spot,
+            before.and_then(|index| old.0.get(index)),
+            new.0.get(index),
+            found,
+        );
     }
     for (index, key) in old.1.iter().enumerate() {
         if !new.1.contains(key) {
-            at.item(key, Some(index), None).note(Kind::Removed, old.0.get(index), None, found);
+            at.item(key, Some(index), None)
+                .note(Kind::Removed, old.0.get(index), None, found);
         }
     }
     let shared = |mine: &[String], theirs: &[String]| {
-        mine.iter().filter(|key| theirs.contains(key)).cloned().map(Value::String).collect::<Vec<_>>()
+        mine.iter()
+            .filter(|key| theirs.contains(key))
+            .cloned()
+            .map(Value::String)
+            .collect::<Vec<_>>()
     };
     let (were, are) = (shared(old.1, new.1), shared(new.1, old.1));
     if were != are {
-        at.note(Kind::Reordered, Some(&Value::Array(were)), Some(&Value::Array(are)), found);
+        at.note(
+            Kind::Reordered,
+            Some(&Value::Array(were)),
+            Some(&Value::Array(are)),
+            found,
+        );
     }
 }
 

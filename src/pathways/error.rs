@@ -62,8 +62,14 @@ pub enum PathwayError {
 }
 
 impl PathwayError {
-    pub(super) fn defect(doing: &'static str, source: impl std::error::Error + Send + Sync + 'static) -> Self {
-        PathwayError::Defect { doing, source: Arc::new(source) }
+    pub(super) fn defect(
+        doing: &'static str,
+        source: impl std::error::Error + Send + Sync + 'static,
+    ) -> Self {
+        PathwayError::Defect {
+            doing,
+            source: Arc::new(source),
+        }
     }
 }
 

@@ -15,7 +15,11 @@ pub async fn load_examples(app: &App, documents: Vec<Pathway>) -> Result<Vec<Sav
     for document in documents {
         if !document.example {
             let detail = format!("\"{}\" is not marked as an example.", document.name);
-            let problem = Problem { pointer: "/example".into(), detail, remedy: "Set it to true.".into() };
+            let problem = Problem {
+                pointer: "/example".into(),
+                detail,
+                remedy: "Set it to true.".into(),
+            };
             return Err(PathwayError::Problems(problem.into()));
         }
         ready.push(prepare(app, document).await?);

@@ -80,7 +80,10 @@ pub struct FactorUse {
 
 impl RevisionRow {
     fn into_stored(self, id: Uuid) -> Result<Stored, PathwayError> {
-        let archived_at = self.archived_at.map(|at| time(at, "pathway", "archived_at", self.id)).transpose()?;
+        let archived_at = self
+            .archived_at
+            .map(|at| time(at, "pathway", "archived_at", self.id))
+            .transpose()?;
         Ok(Stored {
             id,
             revision: self.number,
@@ -199,7 +202,9 @@ pub async fn rows_differ(app: &App) -> Result<Vec<Uuid>, PathwayError> {
     let mut reader = app.store.reader().await?;
     loop {
         let batch = sql::current_after(&mut reader, app.organisation, after, 100).await?;
-        let Some(last) = batch.last() else { return Ok(differ) };
+        let Some(last) = batch.last() else {
+            return Ok(differ);
+        };
         after = last.id;
         for row in batch {
             let written = rows::sql::read(&mut reader, app.organisation, row.revision_id).await?;

@@ -1,12 +1,12 @@
 //! Saving: a document is evaluated whole and becomes a revision, or nothing is stored at all.
 
 use super::assess::{Made, compute, document, lines, make};
-use crate::store::memory::Head;
 use super::rows::{RowTexts, Rows};
 use super::{Expected, PathwayError, Saved, Summary, What, sql, time};
 use crate::app::App;
 use crate::core::documents::pathway::Stage;
 use crate::core::documents::{Pathway, Problem, canonical};
+use crate::store::memory::Head;
 use std::sync::Arc;
 use uuid::Uuid;
 
@@ -24,7 +24,8 @@ pub(super) struct Prepared {
 pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
     let app = app.clone();
     compute(lines(&document), move || {
-        let bytes = canonical::bytes(&document).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
+        let bytes =
+            canonical::bytes(&document).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
         // What is stored must be readable again, and mean the same: a document put together in memory is held to
         // the rules of one that was sent.
         if Pathway::from_bytes(&bytes)? != document {
@@ -35,8 +36,15 @@ pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared
         let rows = Rows::of(&document).texts();
         let rows = rows.map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
         let hash = canonical::hash(&bytes);
-        let text = String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
-        Ok(Arc::new(Prepared { document, text, hash, rows, assessment }))
+        let text =
+            String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
+        Ok(Arc::new(Prepared {
+            document,
+            text,
+            hash,
+            rows,
+            assessment,
+        }))
     })
     .await
 }
@@ -45,11 +53,22 @@ impl Prepared {
     fn saved(&self, id: Uuid, revision: i64, at: i64, changed: bool) -> Result<Saved, PathwayError> {
         let saved_at = time(at, "revision", "saved_at", revision)?;
         let assessment: Summary = self.assessment.summary.clone();
-        Ok(Saved { id, revision, hash: self.hash.clone(), saved_at, changed, assessment })
+        Ok(Saved {
+            id,
+            revision,
+            hash: self.hash.clone(),
+            saved_at,
+            changed,
+            assessment,
+        })
     }
 
     fn head(&self, revision: i64) -> Head {
-        Head { revision, hash: self.hash.clone(), rule_set: self.document.rule_set.clone() }
+        Head {
+            revision,
+            hash: self.hash.clone(),
+            rule_set: self.document.rule_set.clone(),
+        }
     }
 }
 
@@ -108,9 +127,14 @@ pub async fn replace(
         .write_then(
             move |c| {
                 Box::pin(async move {
-                    let head = sql::head(c, who, id).await?.ok_or(PathwayError::NotFound(What::Pathway))?;
+                    let head = sql::head(c, who, id)
+                        .await?
+                        .ok_or(PathwayError::NotFound(What::Pathway))?;
                     if !expected.fits(head.number, &head.hash) {
-                        return Err(PathwayError::Conflict { revision: head.number, hash: head.hash });
+                        return Err(PathwayError::Conflict {
+                            revision: head.number,
+                            hash: head.hash,
+                        });
                     }
                     if head.archived_at.is_some() {
                         return Err(PathwayError::Archived);
@@ -153,9 +177,14 @@ async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -
     let (who, now) = (app.organisation, app.clock.millis());
     let job = app.store.write(move |c| {
         Box::pin(async move {
-            let head = sql::head(c, who, id).await?.ok_or(PathwayError::NotFound(What::Pathway))?;
+            let head = sql::head(c, who, id)
+                .await?
+                .ok_or(PathwayError::NotFound(What::Pathway))?;
             if !expected.fits(head.number, &head.hash) {
-                return Err(PathwayError::Conflict { revision: head.number, hash: head.hash });
+                return Err(PathwayError::Conflict {
+                    revision: head.number,
+                    hash: head.hash,
+                });
             }
             if head.archived_at.is_some() != archived {
                 sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
@@ -179,9 +208,19 @@ pub async fn put_stage(
     reason: Option<String>,
 ) -> Result<Saved, PathwayError> {
     if stage.key != key {
-        let detail = format!("The stage is called \"{}\", and was sent to \"{key}\".", stage.key);
+        let detail = format!(
+            "The stage is called \"{}\", and was sent to \"{key}\".",
+            stage.key
+        );
         let remedy = "Give both the same key. A stage cannot be renamed in place.".into();
-        return Err(PathwayError::Problems(Problem { pointer: "/key".into(), detail, remedy }.into()));
+        return Err(PathwayError::Problems(
+            Problem {
+                pointer: "/key".into(),
+                detail,
+                remedy,
+            }
+            .into(),
+        ));
     }
     let (mut document, seen) = current(app, id, &expected).await?;
     match document.stages.iter_mut().find(|old| old.key == key) {
@@ -217,7 +256,13 @@ async fn current(app: &App, id: Uuid, expected: &Expected) -> Result<(Pathway, E
     let found = sql::revision(&mut reader, app.organisation, id, None).await?;
     let found = found.ok_or(PathwayError::NotFound(What::Pathway))?;
     if !expected.fits(found.number, &found.hash) {
-        return Err(PathwayError::Conflict { revision: found.number, hash: found.hash });
+        return Err(PathwayError::Conflict {
+            revision: found.number,
+            hash: found.hash,
+        });
     }
-    Ok((document(&found.document, found.revision_id)?, Expected::Number(found.number)))
+    Ok((
+        document(&found.document, found.revision_id)?,
+        Expected::Number(found.number),
+    ))
 }

@@ -48,7 +48,7 @@ const EXAMPLE_BY_HASH: &str = "\
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.example = 1 AND p.archived_at IS NULL AND r.hash = $2";
 const CURRENT_AFTER: &str = "\
-    SELECT p.id, p.public_id, r.id AS revision_id, r.hash, r.document FROM pathway p \
+    SELECT p.id, p.public_id, r.id AS revision_id, r.document FROM pathway p \
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.id > $2 ORDER BY p.id LIMIT $3";
 
@@ -138,14 +138,17 @@ pub(super) struct CurrentRow {
     pub(super) id: i64,
     pub(super) public_id: String,
     pub(super) revision_id: i64,
-    pub(super) hash: String,
     pub(super) document: String,
 }
 
 type Answer<T> = Result<T, StoreError>;
 
 pub(super) async fn head(c: &mut Connection, who: OrganisationId, id: Uuid) -> Answer<Option<HeadRow>> {
-    Ok(sqlx::query_as(HEAD).bind(who.0).bind(id.to_string()).fetch_optional(c).await?)
+    Ok(sqlx::query_as(HEAD)
+        .bind(who.0)
+        .bind(id.to_string())
+        .fetch_optional(c)
+        .await?)
 }
 
 /// A revision by number; the current one without.
@@ -155,12 +158,22 @@ pub(super) async fn revision(
     id: Uuid,
     number: Option<i64>,
 ) -> Answer<Option<RevisionRow>> {
-    Ok(sqlx::query_as(REVISION).bind(who.0).bind(id.to_string()).bind(number).fetch_optional(c).await?)
+    Ok(sqlx::query_as(REVISION)
+        .bind(who.0)
+        .bind(id.to_string())
+        .bind(number)
+        .fetch_optional(c)
+        .await?)
 }
 
 /// The history, newest first; empty when there is no such pathway.
 pub(super) async fn revisions(c: &mut Connection, who: OrganisationId, id: Uuid) -> Answer<Vec<HistoryRow>> {
-    Ok(sqlx::query_as(REVISIONS).bind(who.0).bind(id.to_string()).bind(PROGRAM).fetch_all(c).await?)
+    Ok(sqlx::query_as(REVISIONS)
+        .bind(who.0)
+        .bind(id.to_string())
+        .bind(PROGRAM)
+        .fetch_all(c)
+        .await?)
 }
 
 /// Adds a pathway; its inner id.
@@ -215,7 +228,13 @@ pub(super) async fn set_archived(
     archived_at: Option<i64>,
     now: i64,
 ) -> Answer<()> {
-    sqlx::query(SET_ARCHIVED).bind(who.0).bind(pathway).bind(archived_at).bind(now).execute(c).await?;
+    sqlx::query(SET_ARCHIVED)
+        .bind(who.0)
+        .bind(pathway)
+        .bind(archived_at)
+        .bind(now)
+        .execute(c)
+        .await?;
     Ok(())
 }
 
@@ -278,17 +297,33 @@ pub(super) async fn assessment(
     revision: i64,
     rule_set: &str,
 ) -> Answer<Option<(String, String)>> {
-    let query = sqlx::query_as(ASSESSMENT).bind(who.0).bind(revision).bind(rule_set).bind(PROGRAM);
+    let query = sqlx::query_as(ASSESSMENT)
+        .bind(who.0)
+        .bind(revision)
+        .bind(rule_set)
+        .bind(PROGRAM);
     Ok(query.fetch_optional(c).await?)
 }
 
 /// Removes demonstration data whole; how many pathways went.
 pub(super) async fn remove_examples(c: &mut Connection, who: OrganisationId) -> Answer<u64> {
-    Ok(sqlx::query(REMOVE_EXAMPLES).bind(who.0).execute(c).await?.rows_affected())
+    Ok(sqlx::query(REMOVE_EXAMPLES)
+        .bind(who.0)
+        .execute(c)
+        .await?
+        .rows_affected())
 }
 
-pub(super) async fn example_by_hash(c: &mut Connection, who: OrganisationId, hash: &str) -> Answer<Option<String>> {
-    Ok(sqlx::query_scalar(EXAMPLE_BY_HASH).bind(who.0).bind(hash).fetch_optional(c).await?)
+pub(super) async fn example_by_hash(
+    c: &mut Connection,
+    who: OrganisationId,
+    hash: &str,
+) -> Answer<Option<String>> {
+    Ok(sqlx::query_scalar(EXAMPLE_BY_HASH)
+        .bind(who.0)
+        .bind(hash)
+        .fetch_optional(c)
+        .await?)
 }
 
 /// The next current documents after an inner id, in the order of inner ids.
@@ -298,7 +333,12 @@ pub(super) async fn current_after(
     after: i64,
     limit: i64,
 ) -> Answer<Vec<CurrentRow>> {
-    Ok(sqlx::query_as(CURRENT_AFTER).bind(who.0).bind(after).bind(limit).fetch_all(c).await?)
+    Ok(sqlx::query_as(CURRENT_AFTER)
+        .bind(who.0)
+        .bind(after)
+        .bind(limit)
+        .fetch_all(c)
+        .await?)
 }
 
 /// Small letters: how names are searched and ordered.

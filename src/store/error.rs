@@ -36,7 +36,9 @@ pub enum StoreError {
     #[error("The data was written by a newer version of this program. Use that version.")]
     Newer(#[source] Arc<MigrateError>),
     /// The tables could not be brought up to date.
-    #[error("The data could not be brought up to this version of the program. Restore the last backup or use the old version.")]
+    #[error(
+        "The data could not be brought up to this version of the program. Restore the last backup or use the old version."
+    )]
     Migration(#[source] Arc<MigrateError>),
     /// A write that shared the transaction broke it. Worth another try.
     #[error("A write at the same moment failed and took this one along. Nothing was saved; try again.")]
@@ -65,7 +67,10 @@ pub enum StoreError {
 impl StoreError {
     /// True if the same request may well succeed a moment later.
     pub fn is_passing(&self) -> bool {
-        matches!(self, StoreError::Busy | StoreError::Closed | StoreError::Locked(_) | StoreError::Lost(_))
+        matches!(
+            self,
+            StoreError::Busy | StoreError::Closed | StoreError::Locked(_) | StoreError::Lost(_)
+        )
     }
 
     /// True if a unique key or another constraint refused a row.
@@ -79,7 +84,9 @@ impl StoreError {
 
 /// The primary result code of SQLite (the low byte of the extended one).
 pub(super) fn primary_code(error: &sqlx::Error) -> Option<i32> {
-    let sqlx::Error::Database(error) = error else { return None };
+    let sqlx::Error::Database(error) = error else {
+        return None;
+    };
     error.code()?.parse::<i32>().ok().map(|code| code & 0xff)
 }
 
@@ -105,7 +112,9 @@ impl From<MigrateError> for StoreError {
         match error {
             MigrateError::Execute(error) => error.into(),
             MigrateError::ExecuteMigration(error, version) => match primary_code(&error) {
-                Some(1) | None => StoreError::Migration(Arc::new(MigrateError::ExecuteMigration(error, version))),
+                Some(1) | None => {
+                    StoreError::Migration(Arc::new(MigrateError::ExecuteMigration(error, version)))
+                }
                 Some(_) => error.into(),
             },
             error @ (MigrateError::VersionMissing(_) | MigrateError::VersionTooNew(..)) => {

@@ -106,7 +106,9 @@ impl Memory {
         inner.kept.insert(key.clone(), (kept, turn));
         inner.order.insert(turn, key);
         while inner.bytes > MOST_BYTES {
-            let Some((_, oldest)) = inner.order.pop_first() else { break };
+            let Some((_, oldest)) = inner.order.pop_first() else {
+                break;
+            };
             inner.drop_kept(&oldest);
         }
     }
@@ -142,7 +144,10 @@ mod tests {
     use super::*;
 
     fn kept(size: usize) -> Kept {
-        Kept { hash: "h".into(), bytes: vec![0; size].into() }
+        Kept {
+            hash: "h".into(),
+            bytes: vec![0; size].into(),
+        }
     }
 
     #[test]
@@ -166,7 +171,11 @@ mod tests {
     fn what_was_read_before_a_write_is_not_learnt_after_it() {
         let memory = Memory::default();
         let (who, id) = (OrganisationId(1), Uuid::nil());
-        let head = |revision| Head { revision, hash: "h".into(), rule_set: "r".into() };
+        let head = |revision| Head {
+            revision,
+            hash: "h".into(),
+            rule_set: "r".into(),
+        };
         let writes = memory.head(who, id, 0).expect_err("empty");
         memory.wrote(who, id, head(2), 0);
         memory.learn(who, id, Arc::new(head(1)), 0, writes);

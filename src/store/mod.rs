@@ -42,7 +42,11 @@ pub struct Settings {
 
 impl Default for Settings {
     fn default() -> Settings {
-        Settings { readers: 4, queue: 1_024, busy_timeout: Duration::from_secs(5) }
+        Settings {
+            readers: 4,
+            queue: 1_024,
+            busy_timeout: Duration::from_secs(5),
+        }
     }
 }
 
@@ -83,7 +87,13 @@ impl Store {
         let (jobs, waiting) = mpsc::channel(settings.queue.max(1));
         let stop = Arc::new(Notify::new());
         let task = tokio::spawn(writer::run(writer.clone(), waiting, stop.clone()));
-        Ok(Store(Arc::new(Inner { readers, writer, jobs, stop, task: Mutex::new(Some(task)) })))
+        Ok(Store(Arc::new(Inner {
+            readers,
+            writer,
+            jobs,
+            stop,
+            task: Mutex::new(Some(task)),
+        })))
     }
 
     /// A connection to read with.

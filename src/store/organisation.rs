@@ -45,7 +45,8 @@ impl Store {
         name: &'static str,
         now: i64,
     ) -> Result<OrganisationId, StoreError> {
-        self.write(move |connection| Box::pin(add(connection, id, name, now))).await
+        self.write(move |connection| Box::pin(add(connection, id, name, now)))
+            .await
     }
 }
 

@@ -40,7 +40,9 @@ fn pool(count: u32) -> SqlitePoolOptions {
 /// Opens the connection that writes, and brings the tables up to date with it. Comes before the readers, which
 /// cannot make the file or its `-shm`.
 pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
-    let writer = pool(1).connect_with(options(file, settings).create_if_missing(true)).await?;
+    let writer = pool(1)
+        .connect_with(options(file, settings).create_if_missing(true))
+        .await?;
     if let Err(error) = MIGRATIONS.run(&writer).await {
         writer.close().await;
         return Err(error.into());
@@ -50,7 +52,9 @@ pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePoo
 
 /// Opens the connections that read and can do nothing else.
 pub(super) async fn readers(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
-    let options =
-        options(file, settings).create_if_missing(false).read_only(true).pragma("query_only", "ON");
+    let options = options(file, settings)
+        .create_if_missing(false)
+        .read_only(true)
+        .pragma("query_only", "ON");
     Ok(pool(settings.readers).connect_with(options).await?)
 }

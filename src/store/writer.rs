@@ -32,7 +32,15 @@ impl<T, E, F, A> Waiting<T, E, F, A> {
     /// A job and where its answer will come.
     pub(super) fn new(work: F, after: A) -> (Self, oneshot::Receiver<Result<T, E>>) {
         let (answer, heard) = oneshot::channel();
-        (Waiting { work: Some(work), outcome: None, after, answer }, heard)
+        (
+            Waiting {
+                work: Some(work),
+                outcome: None,
+                after,
+                answer,
+            },
+            heard,
+        )
     }
 }
 
@@ -117,7 +125,9 @@ async fn transaction(connection: &mut Connection, batch: &mut [Box<dyn Job>]) ->
         say(connection, "SAVEPOINT job").await?;
         if !kept(job.as_mut(), connection).await {
             // A full disk may have rolled back everything; then the savepoint is gone, and all must hear of it.
-            say(connection, "ROLLBACK TO job").await.map_err(|error| StoreError::Lost(Arc::new(error)))?;
+            say(connection, "ROLLBACK TO job")
+                .await
+                .map_err(|error| StoreError::Lost(Arc::new(error)))?;
         }
         say(connection, "RELEASE job").await?;
     }

@@ -101,12 +101,22 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         None => None,
     };
     let mut reader = app.store.reader().await?;
-    let mut rows = sql::lines(&mut reader, app.organisation, question, after.as_ref(), i64::from(limit) + 1).await?;
+    let mut rows = sql::lines(
+        &mut reader,
+        app.organisation,
+        question,
+        after.as_ref(),
+        i64::from(limit) + 1,
+    )
+    .await?;
     drop(reader);
     let shown = usize::try_from(limit).unwrap_or(usize::MAX);
     let more = rows.len() > shown;
     rows.truncate(shown);
-    let next = rows.last().filter(|_| more).map(|row| Place::of(question.sort, row).to_text());
+    let next = rows
+        .last()
+        .filter(|_| more)
+        .map(|row| Place::of(question.sort, row).to_text());
     let mut lines = Vec::with_capacity(rows.len());
     for row in rows {
         lines.push(line(app, row).await?);
@@ -117,7 +127,14 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
 fn unknown_place() -> PathwayError {
     let detail = "This is not a place in the list, or one of another order.".into();
     let remedy = "Take it from the link to the next page, or leave it out.".into();
-    PathwayError::Problems(Problem { pointer: String::new(), detail, remedy }.into())
+    PathwayError::Problems(
+        Problem {
+            pointer: String::new(),
+            detail,
+            remedy,
+        }
+        .into(),
+    )
 }
 
 async fn line(app: &App, row: LineRow) -> Result<Line, PathwayError> {
@@ -135,22 +152,22 @@ async fn line(app: &App, row: LineRow) -> Result<Line, PathwayError> {
         hash: row.hash,
         created_at: time(row.created_at, "pathway", "created_at", row.id)?,
         updated_at: time(row.updated_at, "pathway", "updated_at", row.id)?,
-        archived_at: row.archived_at.map(|at| time(at, "pathway", "archived_at", row.id)).transpose()?,
+        archived_at: row
+            .archived_at
+            .map(|at| time(at, "pathway", "archived_at", row.id))
+            .transpose()?,
         assessment,
     })
 }
 
 /// The program has been brought up to date since the last save: assess now.
-async fn made_now(
-    app: &App,
-    revision: i64,
-    id: &str,
-    row: i64,
-) -> Result<Option<Summary>, PathwayError> {
+async fn made_now(app: &App, revision: i64, id: &str, row: i64) -> Result<Option<Summary>, PathwayError> {
     let mut reader = app.store.reader().await?;
     let found = super::sql::revision(&mut reader, app.organisation, public_id(id, row)?, None).await?;
     drop(reader);
-    let Some(found) = found.filter(|found| found.revision_id == revision) else { return Ok(None) };
+    let Some(found) = found.filter(|found| found.revision_id == revision) else {
+        return Ok(None);
+    };
     let document = document(&found.document, revision)?;
     let app_too = app.clone();
     let made: Made = match compute(lines(&document), move || make(&app_too, &document, None)).await {

@@ -28,11 +28,18 @@ macro_rules! listed {
     };
 }
 
-const BY_UPDATE: &str =
-    listed!("(p.updated_at, p.public_id) < ($8, $9)", "p.updated_at DESC, p.public_id DESC");
-const BY_NAME: &str = listed!("(p.name_folded, p.public_id) > ($8, $9)", "p.name_folded, p.public_id");
-const BY_NET: &str =
-    listed!("(COALESCE(a.net, 1e300), p.public_id) > ($8, $9)", "COALESCE(a.net, 1e300), p.public_id");
+const BY_UPDATE: &str = listed!(
+    "(p.updated_at, p.public_id) < ($8, $9)",
+    "p.updated_at DESC, p.public_id DESC"
+);
+const BY_NAME: &str = listed!(
+    "(p.name_folded, p.public_id) > ($8, $9)",
+    "p.name_folded, p.public_id"
+);
+const BY_NET: &str = listed!(
+    "(COALESCE(a.net, 1e300), p.public_id) > ($8, $9)",
+    "COALESCE(a.net, 1e300), p.public_id"
+);
 const BY_SAVING: &str = listed!(
     "(COALESCE(a.saving, -1e300), p.public_id) < ($8, $9)",
     "COALESCE(a.saving, -1e300) DESC, p.public_id DESC"
@@ -87,7 +94,10 @@ impl Place {
             Sort::Net => By::Figure(row.summary.net.unwrap_or(NO_FIGURE)),
             Sort::Saving => By::Figure(row.summary.saving.unwrap_or(-NO_FIGURE)),
         };
-        Place { by, id: row.public_id.clone() }
+        Place {
+            by,
+            id: row.public_id.clone(),
+        }
     }
 
     /// A text that is safe in a link: the id, and the rest in hexadecimal.
@@ -110,7 +120,9 @@ impl Place {
                 if by.len() > 4_000 || by.len() % 2 != 0 || !by.is_ascii() {
                     return None;
                 }
-                let bytes = (0..by.len()).step_by(2).map(|at| u8::from_str_radix(by.get(at..at + 2)?, 16).ok());
+                let bytes = (0..by.len())
+                    .step_by(2)
+                    .map(|at| u8::from_str_radix(by.get(at..at + 2)?, 16).ok());
                 By::Name(String::from_utf8(bytes.collect::<Option<Vec<u8>>>()?).ok()?)
             }
             Sort::Net | Sort::Saving => {
@@ -150,7 +162,11 @@ pub(super) async fn lines(
         Some(By::Name(name)) => query.bind(name),
         Some(By::Figure(figure)) => query.bind(*figure),
     };
-    Ok(query.bind(after.map(|place| place.id.as_str())).bind(limit).fetch_all(c).await?)
+    Ok(query
+        .bind(after.map(|place| place.id.as_str()))
+        .bind(limit)
+        .fetch_all(c)
+        .await?)
 }
 
 /// A pattern that finds a part of a name; `%`, `_` and `\` in it stand for themselves.

@@ -58,7 +58,11 @@ impl Rows {
 
     pub(super) fn texts(&self) -> Result<RowTexts, serde_json::Error> {
         fn text<T: Serialize>(rows: &[T]) -> Result<Option<String>, serde_json::Error> {
-            if rows.is_empty() { Ok(None) } else { serde_json::to_string(rows).map(Some) }
+            if rows.is_empty() {
+                Ok(None)
+            } else {
+                serde_json::to_string(rows).map(Some)
+            }
         }
         Ok(RowTexts {
             stages: text(&self.stages)?,
@@ -130,7 +134,11 @@ impl Rows {
         }
         if let Some(models) = &input.model {
             for (index, model) in models.list().iter().enumerate() {
-                let at = if models.is_list() { format!("{at}/model/{index}") } else { format!("{at}/model") };
+                let at = if models.is_list() {
+                    format!("{at}/model/{index}")
+                } else {
+                    format!("{at}/model")
+                };
                 for (name, value) in &model.parameters {
                     inside(name, value, &at, &mut found);
                 }
@@ -147,19 +155,28 @@ impl Rows {
             key: input.key.clone(),
             label: input.label.clone(),
             way: way.into(),
-            model: input.model.as_ref().and_then(|models| models.list().first()).map(|model| model.kind.clone()),
-            factors: found.iter().map(|(factor, _)| factor.as_str()).collect::<Vec<_>>().join(" "),
+            model: input
+                .model
+                .as_ref()
+                .and_then(|models| models.list().first())
+                .map(|model| model.kind.clone()),
+            factors: found
+                .iter()
+                .map(|(factor, _)| factor.as_str())
+                .collect::<Vec<_>>()
+                .join(" "),
             amount: input.amount,
             unit: input.unit.clone(),
             origin: input.origin.map(|origin| origin.name().into()),
         });
-        self.uses.extend(found.into_iter().map(|(factor, pointer)| UseRow {
-            factor,
-            pointer,
-            stage_key: Some(stage.into()),
-            input_key: Some(input.key.clone()),
-            co_product_key: None,
-        }));
+        self.uses
+            .extend(found.into_iter().map(|(factor, pointer)| UseRow {
+                factor,
+                pointer,
+                stage_key: Some(stage.into()),
+                input_key: Some(input.key.clone()),
+                co_product_key: None,
+            }));
     }
 }
 
@@ -169,11 +186,15 @@ fn position(index: usize) -> i64 {
 
 /// The published rows among factors, with their pointers.
 fn named(factors: &OneOrMany<FactorRef>, at: &str) -> Vec<(String, String)> {
-    let list = factors.list().iter().enumerate().filter_map(|(index, factor)| match factor {
-        FactorRef::Id(id) if factors.is_list() => Some((id.clone(), format!("{at}/{index}"))),
-        FactorRef::Id(id) => Some((id.clone(), at.to_owned())),
-        FactorRef::Inline(_) => None,
-    });
+    let list = factors
+        .list()
+        .iter()
+        .enumerate()
+        .filter_map(|(index, factor)| match factor {
+            FactorRef::Id(id) if factors.is_list() => Some((id.clone(), format!("{at}/{index}"))),
+            FactorRef::Id(id) => Some((id.clone(), at.to_owned())),
+            FactorRef::Inline(_) => None,
+        });
     list.collect()
 }
 
@@ -204,7 +225,11 @@ fn inside(name: &str, value: &Value, at: &str, found: &mut Vec<(String, String)>
 
 fn is_reference(text: &str) -> bool {
     let plain = |part: &str| {
-        !part.is_empty() && part.bytes().all(|byte| byte.is_ascii_alphanumeric() || b"-_.".contains(&byte))
+        !part.is_empty()
+            && part
+                .bytes()
+                .all(|byte| byte.is_ascii_alphanumeric() || b"-_.".contains(&byte))
     };
-    text.split_once('/').is_some_and(|(edition, row)| plain(edition) && plain(row))
+    text.split_once('/')
+        .is_some_and(|(edition, row)| plain(edition) && plain(row))
 }

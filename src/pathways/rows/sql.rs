@@ -49,7 +49,6 @@ const USES_OF: &str = "\
     JOIN pathway p ON p.id = r.pathway_id AND p.current_revision = r.number AND p.organisation_id = r.organisation_id \
     WHERE u.organisation_id = $1 AND u.factor = $2 ORDER BY p.name_folded, p.public_id, u.id";
 
-
 /// The statements of this file.
 pub(crate) const STATEMENTS: &[&str] = &[
     ADD_STAGES,
@@ -148,7 +147,11 @@ pub(in crate::pathways) async fn uses_of(
     who: OrganisationId,
     factor: &str,
 ) -> Result<Vec<UseOfRow>, StoreError> {
-    Ok(sqlx::query_as(USES_OF).bind(who.0).bind(factor).fetch_all(c).await?)
+    Ok(sqlx::query_as(USES_OF)
+        .bind(who.0)
+        .bind(factor)
+        .fetch_all(c)
+        .await?)
 }
 
 /// Writes all rows of a revision.
@@ -167,7 +170,12 @@ pub(in crate::pathways) async fn write(
     ];
     for (sql, json) in tables {
         if let Some(json) = json {
-            sqlx::query(sql).bind(who.0).bind(revision).bind(json).execute(&mut *c).await?;
+            sqlx::query(sql)
+                .bind(who.0)
+                .bind(revision)
+                .bind(json)
+                .execute(&mut *c)
+                .await?;
         }
     }
     Ok(())
@@ -180,14 +188,30 @@ pub(in crate::pathways) async fn read(
     revision: i64,
 ) -> Result<Rows, StoreError> {
     Ok(Rows {
-        stages: sqlx::query_as::<_, StageRow>(STAGES).bind(who.0).bind(revision).fetch_all(&mut *c).await?,
-        intakes: sqlx::query_as::<_, IntakeRow>(INTAKES).bind(who.0).bind(revision).fetch_all(&mut *c).await?,
-        inputs: sqlx::query_as::<_, InputRow>(INPUTS).bind(who.0).bind(revision).fetch_all(&mut *c).await?,
+        stages: sqlx::query_as::<_, StageRow>(STAGES)
+            .bind(who.0)
+            .bind(revision)
+            .fetch_all(&mut *c)
+            .await?,
+        intakes: sqlx::query_as::<_, IntakeRow>(INTAKES)
+            .bind(who.0)
+            .bind(revision)
+            .fetch_all(&mut *c)
+            .await?,
+        inputs: sqlx::query_as::<_, InputRow>(INPUTS)
+            .bind(who.0)
+            .bind(revision)
+            .fetch_all(&mut *c)
+            .await?,
         co_products: sqlx::query_as::<_, CoProductRow>(CO_PRODUCTS)
             .bind(who.0)
             .bind(revision)
             .fetch_all(&mut *c)
             .await?,
-        uses: sqlx::query_as::<_, UseRow>(USES).bind(who.0).bind(revision).fetch_all(&mut *c).await?,
+        uses: sqlx::query_as::<_, UseRow>(USES)
+            .bind(who.0)
+            .bind(revision)
+            .fetch_all(&mut *c)
+            .await?,
     })
 }
