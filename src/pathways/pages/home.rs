@@ -2,8 +2,8 @@
 
 use super::links;
 use super::verdict::{Checks, Required, Verdict};
-use crate::core::documents::{Assessment, Pathway};
 use crate::core::domain::Book;
+use crate::pathways::{Line, Summary};
 use crate::core::units::rounding;
 use crate::web::csv::{Cell, Table};
 use crate::web::filters::{self, short_day};
@@ -50,7 +50,7 @@ pub struct HomeRow {
     pub name: String,
     /// Material id of the feedstock.
     pub feedstock: String,
-    /// Feedstock and period, in words.
+    /// Feedstock and rule set, in words.
     pub about: String,
     /// Net, g CO2e/MJ.
     pub net: Option<f64>,
@@ -122,24 +122,10 @@ pub struct Column {
     pub sorted: &'static str,
 }
 
-/// What the list needs to know of one stored pathway.
-pub struct Listed<'a> {
-    /// Id.
-    pub id: &'a str,
-    /// Its document.
-    pub pathway: &'a Pathway,
-    /// Its assessment, or the first thing that keeps it from being worked out.
-    pub outcome: Result<&'a Assessment, String>,
-    /// Day of the last revision.
-    pub revised: Date,
-    /// Archived.
-    pub archived: bool,
-}
-
 impl Home {
     /// The list as asked for.
-    pub fn of(listed: &[Listed], book: &Book, asked: Asked) -> Home {
-        let all: Vec<HomeRow> = listed.iter().map(|one| HomeRow::of(one, book)).collect();
+    pub fn of(lines: &[Line], book: &Book, asked: Asked) -> Home {
+        let all: Vec<HomeRow> = lines.iter().map(|line| HomeRow::of(line, book)).collect();
         let examples = all.iter().filter(|row| row.example).count();
         let feedstocks: BTreeMap<String, String> =
             all.iter().map(|row| (row.feedstock.clone(), material_name(book, &row.feedstock))).collect();
@@ -188,41 +174,54 @@ fn material_name(book: &Book, id: &str) -> String {
 }
 
 impl HomeRow {
-    fn of(one: &Listed, book: &Book) -> HomeRow {
-        let pathway = one.pathway;
-        let found = one.outcome.as_ref().ok();
-        let verdict = found.map(|found| Verdict::of(found, book.rule_sets.get(&found.rule_set)));
-        let checks = found.map(|found| Checks::of(found));
-        let feedstock = material_name(book, &pathway.feedstock);
+    fn of(line: &Line, book: &Book) -> HomeRow {
+        let found = line.assessment.as_ref();
+        let rules = book.rule_sets.get(&line.rule_set);
+        let comparator = rules.map(|rules| rules.comparator.value);
+        let verdict = found.zip(comparator).map(|(found, comparator)| {
+            let net = found.net_g_co2e_per_mj;
+            Verdict::of_figures(net, found.saving_percent, comparator, &found.thresholds, rules)
+        });
+        let checks = found.map(checks_of);
+        let title = rules.map_or(line.rule_set.as_str(), |rules| rules.title.as_str());
         HomeRow {
-            id: one.id.to_owned(),
-            href: links::pathway(one.id),
-            name: pathway.name.clone(),
-            about: format!("{feedstock}, {} to {}", short_day(pathway.period.from), short_day(pathway.period.to)),
-            feedstock: pathway.feedstock.clone(),
-            net: found.map(|found| found.net.g_co2e_per_mj),
+            id: line.id.to_string(),
+            href: links::pathway(&line.id.to_string()),
+            name: line.name.clone(),
+            about: format!("{}, {title}", material_name(book, &line.feedstock)),
+            feedstock: line.feedstock.clone(),
+            net: found.map(|found| found.net_g_co2e_per_mj),
             saving: found.and_then(|found| found.saving_percent),
             required: verdict.map(|verdict| verdict.required).unwrap_or_default(),
-            scale: found.map(|found| Scale::of(found)),
+            scale: found.zip(comparator).map(|(found, comparator)| Scale::of(found, comparator)),
             checks: match &checks {
                 Some(checks) => ChecksShort { class: checks.class(), words: checks.words() },
                 None => ChecksShort { class: "blocks", words: "cannot be worked out".to_owned() },
             },
             weight: checks.map_or(usize::MAX, |checks| checks.blocks * 1000 + checks.warns),
-            broken: one.outcome.as_ref().err().cloned(),
-            revised: one.revised,
-            archived: one.archived,
-            example: pathway.example,
+            broken: found.is_none().then(|| "this version of the program refuses the document".to_owned()),
+            revised: day_of(line.updated_at),
+            archived: line.archived_at.is_some(),
+            example: line.example,
         }
     }
+}
+
+fn checks_of(found: &Summary) -> Checks {
+    let count = |n: u32| usize::try_from(n).unwrap_or(usize::MAX);
+    Checks { blocks: count(found.blocks), warns: count(found.warnings), informs: count(found.infos) }
+}
+
+/// The calendar day of a moment, UTC.
+pub fn day_of(at: jiff::Timestamp) -> Date {
+    jiff::tz::Offset::UTC.to_datetime(at).date()
 }
 
 impl Scale {
     const WIDE: f64 = 150.0;
 
-    fn of(found: &Assessment) -> Scale {
-        let at = |g: f64| (g / found.comparator_g_co2e_per_mj * Self::WIDE).clamp(-12.0, 176.0);
-        let net = at(found.net.g_co2e_per_mj);
+    fn of(found: &Summary, comparator: f64) -> Scale {
+        let net = (found.net_g_co2e_per_mj / comparator * Self::WIDE).clamp(-12.0, 176.0);
         let strictest = found.thresholds.iter().map(|t| t.percent).fold(f64::NEG_INFINITY, f64::max);
         let show = |x: f64| rounding::plain_fixed(x, 1);
         Scale {

@@ -1,7 +1,7 @@
 //! The answer in words: the net, the saving, the required saving, and what weakens it. Decimals are added until the
 //! verdict cannot look wrong; comparing is done unrounded by the engine, never here.
 
-use crate::core::documents::assessment::{Assessment, Severity};
+use crate::core::documents::assessment::{Assessment, Severity, ThresholdResult};
 use crate::core::domain::RuleSet;
 use crate::core::units::rounding::{decimals_against, show};
 
@@ -38,23 +38,37 @@ pub struct Required {
 impl Verdict {
     /// The answer of an assessment under its rule set (none if the rule set is not known here any more).
     pub fn of(assessment: &Assessment, rules: Option<&RuleSet>) -> Verdict {
-        let net = assessment.net.g_co2e_per_mj;
+        let basis = (assessment.basis != "to the wheel").then(|| assessment.basis.clone());
         let comparator = assessment.comparator_g_co2e_per_mj;
-        let limits = assessment.thresholds.iter().map(|t| t.percent);
-        let saving_decimals = assessment.saving_percent.map_or(1, |saving| {
+        let net = assessment.net.g_co2e_per_mj;
+        Verdict {
+            basis,
+            ..Verdict::of_figures(net, assessment.saving_percent, comparator, &assessment.thresholds, rules)
+        }
+    }
+
+    /// The answer from its figures alone, as lists keep them.
+    pub fn of_figures(
+        net: f64,
+        saving: Option<f64>,
+        comparator: f64,
+        thresholds: &[ThresholdResult],
+        rules: Option<&RuleSet>,
+    ) -> Verdict {
+        let limits = thresholds.iter().map(|t| t.percent);
+        let saving_decimals = saving.map_or(1, |saving| {
             limits.clone().map(|limit| decimals_against(saving, limit, 1)).max().unwrap_or(1)
         });
         let most = |percent: f64| comparator * (100.0 - percent) / 100.0;
         let net_decimals = limits.map(|limit| decimals_against(net, most(limit), 1)).max().unwrap_or(1);
-        let open = assessment.thresholds.len() > 1 && assessment.thresholds.iter().all(|t| !t.met);
+        let open = thresholds.len() > 1 && thresholds.iter().all(|t| !t.met);
         Verdict {
             net: show(net, net_decimals),
-            basis: (assessment.basis != "to the wheel").then(|| assessment.basis.clone()),
-            saving: assessment.saving_percent.map(|saving| show(saving.abs(), saving_decimals)),
-            side: if assessment.saving_percent.is_some_and(|saving| saving < 0.0) { "above" } else { "below" },
+            basis: None,
+            saving: saving.map(|saving| show(saving.abs(), saving_decimals)),
+            side: if saving.is_some_and(|saving| saving < 0.0) { "above" } else { "below" },
             comparator: rules.map_or_else(|| "fossil baseline".to_owned(), |r| r.comparator_word.clone()),
-            required: assessment
-                .thresholds
+            required: thresholds
                 .iter()
                 .map(|t| Required {
                     word: if open { "needs" } else if t.met { "meets" } else { "misses" },
