@@ -6,7 +6,7 @@ use crate::core::domain::Book;
 use crate::pathways::{Line, Summary};
 use crate::core::units::rounding;
 use crate::web::csv::{Cell, Table};
-use crate::web::filters::{self, short_day};
+use crate::web::filters;
 use crate::web::frame::{Frame, Section};
 use askama::Template;
 use jiff::civil::Date;
