@@ -6,6 +6,7 @@ pub mod home;
 pub mod ladder;
 pub mod links;
 pub mod show;
+pub mod stage;
 pub mod verdict;
 pub mod workings;
 
