@@ -2,11 +2,16 @@
 
 pub mod app;
 pub mod charts;
+pub mod cli;
 pub mod clock;
+pub mod config;
 pub mod core;
+pub mod demo;
+pub mod factors;
 pub mod library;
 pub mod pathways;
 pub mod store;
+pub mod telemetry;
 pub mod web;
 
 /// Every SQL text of the program; a test prepares them all on a fresh database.

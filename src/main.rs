@@ -1,1 +1,5 @@
-fn main() {}
+//! Hands the command line to `cli`.
+
+fn main() -> std::process::ExitCode {
+    wheelwort::cli::main()
+}

@@ -5,5 +5,6 @@ pub mod documents;
 pub mod domain;
 pub mod engine;
 pub mod evaluate;
+pub mod levers;
 pub mod models;
 pub mod units;

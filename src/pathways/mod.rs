@@ -1,6 +1,7 @@
 //! Pathways and their revisions: what can be done with them. Each function is one use case: it evaluates first,
 //! then writes in one transaction or not at all. Rights and the audit line come in with the people who ask.
 
+pub mod api;
 pub mod assess;
 pub mod changes;
 mod error;

@@ -24,11 +24,12 @@ pub(super) struct Prepared {
 pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
     let app = app.clone();
     compute(lines(&document), move || {
-        let bytes =
-            canonical::bytes(&document).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
-        // What is stored must be readable again, and mean the same: a document put together in memory is held to
-        // the rules of one that was sent.
-        if Pathway::from_bytes(&bytes)? != document {
+        let defect = |error| PathwayError::defect("wrote a pathway", error);
+        let bytes = canonical::bytes(&document).map_err(defect)?;
+        // What is evaluated is what is stored, read back: a document put together in memory is held to the rules of
+        // one that was sent, and its bytes must stay the same ever after.
+        let document = Pathway::from_bytes(&bytes)?;
+        if canonical::bytes(&document).map_err(defect)? != bytes {
             let lost = std::io::Error::other("the canonical bytes read back as another document");
             return Err(PathwayError::defect("wrote a pathway", lost));
         }

@@ -29,7 +29,7 @@ impl Store {
                 if let Some(id) = sqlx::query_scalar(FIRST).fetch_optional(&mut *connection).await? {
                     return Ok(OrganisationId(id));
                 }
-                self::add(connection, id, name, now).await
+                add(connection, id, name, now).await
             })
         })
         .await

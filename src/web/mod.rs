@@ -1,5 +1,31 @@
-//! What all pages have in common: the frame, the filters, tables as CSV.
+//! HTTP in common: router, layers, refusals, conditional requests, paging, the API's description, assets, health.
 
+pub mod assets;
+pub mod blocking;
+pub mod conditional;
 pub mod csv;
+pub mod extract;
 pub mod filters;
 pub mod frame;
+pub mod health;
+pub mod layers;
+pub mod openapi;
+pub mod paging;
+pub mod patience;
+pub mod problem;
+pub mod router;
+
+pub use problem::Refusal;
+pub use router::{Shell, router};
+
+/// Serves until `stop` completes, then finishes the requests that run.
+///
+/// # Errors
+/// When the listener fails for good.
+pub async fn serve(
+    listener: patience::Patient,
+    router: axum::Router,
+    stop: impl Future<Output = ()> + Send + 'static,
+) -> std::io::Result<()> {
+    axum::serve(listener, router).with_graceful_shutdown(stop).await
+}

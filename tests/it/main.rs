@@ -8,4 +8,5 @@
 )]
 
 mod engine;
+mod store;
 mod tidy;

@@ -246,7 +246,7 @@ impl PublishedGases {
 }
 
 /// A named set of weights: CO2e in kg per kg of gas over 100 years.
-#[derive(Clone, Debug, PartialEq, Serialize)]
+#[derive(Clone, Debug, PartialEq, Serialize, ToSchema)]
 pub struct GwpSet {
     /// Id, such as `eu-2018-2001`, `ar4`, `ar5`, `ar6`.
     pub id: String,

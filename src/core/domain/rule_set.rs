@@ -53,14 +53,16 @@ impl AllocationMethod {
 }
 
 /// The minimum saving for plants that started within a span of days.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize, ToSchema)]
 #[serde(deny_unknown_fields)]
 pub struct Threshold {
     /// Minimum saving, %.
     pub percent: f64,
     /// First day of the span; none = from the beginning.
+    #[schema(value_type = Option<String>, format = Date)]
     pub started_from: Option<Date>,
     /// Last day of the span; none = open.
+    #[schema(value_type = Option<String>, format = Date)]
     pub started_to: Option<Date>,
     /// Document and point.
     pub source: String,
@@ -76,7 +78,7 @@ impl Threshold {
 }
 
 /// A calculation rule.
-#[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize, ToSchema)]
 #[serde(deny_unknown_fields)]
 pub struct RuleSet {
     /// Id as used in documents.

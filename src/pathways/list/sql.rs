@@ -74,6 +74,7 @@ pub(super) struct LineRow {
 /// A place in an order: what the line is sorted by, and its public id.
 #[derive(Clone, Debug, PartialEq)]
 pub(super) struct Place {
+    sort: Sort,
     by: By,
     id: String,
 }
@@ -83,6 +84,16 @@ enum By {
     Time(i64),
     Name(String),
     Figure(f64),
+}
+
+/// The letter that tells the order of a place.
+fn letter(sort: Sort) -> char {
+    match sort {
+        Sort::Updated => 'u',
+        Sort::Name => 'n',
+        Sort::Net => 'g',
+        Sort::Saving => 's',
+    }
 }
 
 impl Place {
@@ -95,24 +106,25 @@ impl Place {
             Sort::Saving => By::Figure(row.summary.saving.unwrap_or(-NO_FIGURE)),
         };
         Place {
+            sort,
             by,
             id: row.public_id.clone(),
         }
     }
 
-    /// A text that is safe in a link: the id, and the rest in hexadecimal.
+    /// A text that is safe in a link: order, id, and the rest in hexadecimal.
     pub(super) fn to_text(&self) -> String {
         let by = match &self.by {
             By::Time(millis) => format!("{millis:x}"),
             By::Name(name) => name.bytes().map(|byte| format!("{byte:02x}")).collect(),
             By::Figure(figure) => format!("{:x}", figure.to_bits()),
         };
-        format!("{}.{by}", self.id)
+        format!("{}{}.{by}", letter(self.sort), self.id)
     }
 
     /// Reads a place of an order.
     pub(super) fn from_text(sort: Sort, text: &str) -> Option<Place> {
-        let (id, by) = text.split_once('.')?;
+        let (id, by) = text.strip_prefix(letter(sort))?.split_once('.')?;
         let id = uuid::Uuid::parse_str(id).ok()?.to_string();
         let by = match sort {
             Sort::Updated => By::Time(i64::from_str_radix(by, 16).ok()?),
@@ -130,7 +142,7 @@ impl Place {
                 By::Figure(Some(figure).filter(|figure| figure.is_finite())?)
             }
         };
-        Some(Place { by, id })
+        Some(Place { sort, by, id })
     }
 }
 

@@ -24,14 +24,26 @@ fn check(path: &Path) -> Result<(), String> {
             Ok(_) => return Err("was taken, but must be refused".to_owned()),
             Err(problems) => problems,
         };
-        let found = problems.list().iter().map(|p| p.pointer.clone()).collect::<Vec<_>>();
+        let found = problems
+            .list()
+            .iter()
+            .map(|p| p.pointer.clone())
+            .collect::<Vec<_>>();
         return match pointer.as_str() {
-            Some(pointer) if !found.iter().any(|p| p == pointer) => Err(format!("{pointer} not among {found:?}")),
+            Some(pointer) if !found.iter().any(|p| p == pointer) => {
+                Err(format!("{pointer} not among {found:?}"))
+            }
             _ => Ok(()),
         };
     }
-    let assessment = evaluated
-        .map_err(|problems| problems.list().iter().map(ToString::to_string).collect::<Vec<_>>().join("\n    "))?;
+    let assessment = evaluated.map_err(|problems| {
+        problems
+            .list()
+            .iter()
+            .map(ToString::to_string)
+            .collect::<Vec<_>>()
+            .join("\n    ")
+    })?;
     let mut wrong = Vec::new();
     let mut compare = |what: String, found: f64, wanted: &Value| {
         let wanted = wanted.as_f64().expect("a figure");
@@ -41,30 +53,59 @@ fn check(path: &Path) -> Result<(), String> {
     };
     compare("net".into(), assessment.net.g_co2e_per_mj, &expected["net"]);
     for term in Term::ALL {
-        compare(term.name().into(), assessment.terms_g_co2e_per_mj.get(term), &expected["terms"][term.name()]);
+        compare(
+            term.name().into(),
+            assessment.terms_g_co2e_per_mj.get(term),
+            &expected["terms"][term.name()],
+        );
     }
     for (key, share) in expected["shares"].as_object().expect("shares") {
-        let stage = assessment.stages.iter().find(|stage| stage.key == *key).expect("stage");
+        let stage = assessment
+            .stages
+            .iter()
+            .find(|stage| stage.key == *key)
+            .expect("stage");
         compare(format!("share of {key}"), stage.share, share);
     }
     match (assessment.saving_percent, expected["saving"].as_f64()) {
-        (Some(_), Some(_)) => compare("saving".into(), assessment.saving_percent.unwrap(), &expected["saving"]),
+        (Some(_), Some(_)) => compare(
+            "saving".into(),
+            assessment.saving_percent.unwrap(),
+            &expected["saving"],
+        ),
         (None, None) => {}
         (found, wanted) => wrong.push(format!("saving: {found:?} instead of {wanted:?}")),
     }
-    if wrong.is_empty() { Ok(()) } else { Err(wrong.join("\n    ")) }
+    if wrong.is_empty() {
+        Ok(())
+    } else {
+        Err(wrong.join("\n    "))
+    }
 }
 
 #[test]
 fn all_documents_agree() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/cases/contract");
-    let mut files: Vec<_> = std::fs::read_dir(folder).expect("cases").map(|e| e.expect("entry").path()).collect();
+    let mut files: Vec<_> = std::fs::read_dir(folder)
+        .expect("cases")
+        .map(|e| e.expect("entry").path())
+        .collect();
     files.retain(|path| path.extension().is_some_and(|ending| ending == "json"));
     files.sort();
     assert!(files.len() >= 25, "the cases are missing");
     let failures: Vec<String> = files
         .iter()
-        .filter_map(|path| check(path).err().map(|why| format!("{}:\n    {why}", path.display())))
+        .filter_map(|path| {
+            check(path)
+                .err()
+                .map(|why| format!("{}:\n    {why}", path.display()))
+        })
         .collect();
-    assert!(failures.is_empty(), "{} of {} cases differ:\n{}", failures.len(), files.len(), failures.join("\n"));
+    assert!(
+        failures.is_empty(),
+        "{} of {} cases differ:\n{}",
+        failures.len(),
+        files.len(),
+        failures.join("\n")
+    );
 }

@@ -1,3 +1,7 @@
-//! The engine against documents with independent results.
+//! The engine: documents with independent results, laws, published values, and what it refuses.
 
 mod contract;
+mod laws;
+mod published;
+mod refusals;
+mod shapes;

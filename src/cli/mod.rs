@@ -1,0 +1,193 @@
+//! The command line: what it takes, what it prints, and how it ends. Results go to standard output, everything else to
+//! standard error.
+
+mod demo;
+mod evaluate;
+mod serve;
+
+use crate::config::{ConfigError, Given};
+use crate::web::router;
+use clap::{Args, Parser, Subcommand};
+use std::io::Write;
+use std::path::PathBuf;
+use std::process::ExitCode;
+
+/// Something could not be done: an address in use, a folder that cannot be written.
+const COULD_NOT: u8 = 1;
+/// What was given is wrong: a document, a setting, the command line itself.
+const WRONG: u8 = 2;
+
+const EXAMPLES: &str = "\
+Examples:
+  wheelwort demo                            look around in invented data; nothing is kept
+  wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
+  wheelwort evaluate wheat.json             print the assessment of a pathway file
+  wheelwort evaluate - < wheat.json         the same from standard input
+
+Exit codes: 0 done; 1 it could not be done (an address in use, a folder that cannot be written);
+2 what was given is wrong (a document, a setting, the command line).
+
+Settings may also stand in a TOML file (--config) and in the environment (WHEELWORT_LISTEN and so on);
+the command line wins over the environment, and the environment over the file.";
+
+const SERVE_EXAMPLES: &str = "\
+Examples:
+  wheelwort serve --data data               on http://127.0.0.1:8080, for this machine alone
+  wheelwort serve --data data --listen 127.0.0.1:0
+                                            on a free port; its address is printed
+  WHEELWORT_LOG=debug wheelwort serve       log more, to standard error
+
+Prints its address on standard output once it answers. Stops on SIGINT or SIGTERM: it takes no new
+requests, finishes those that run, and closes its data.
+Exit codes: 0 stopped when asked; 1 it could not start; 2 a setting is wrong.";
+
+const DEMO_EXAMPLES: &str = "\
+Examples:
+  wheelwort demo                            on http://127.0.0.1:8080
+  wheelwort demo --listen 127.0.0.1:0       on a free port
+
+Everything in it is invented. It lies in a temporary folder that goes when the program stops.
+Exit codes: 0 stopped when asked; 1 it could not start; 2 a setting is wrong.";
+
+const EVALUATE_EXAMPLES: &str = "\
+Examples:
+  wheelwort evaluate wheat.json             the assessment, as JSON
+  wheelwort evaluate a.json b.json          one assessment a line, in the order of the files
+  wheelwort evaluate --rule-set eu-2018-2001 - < wheat.json
+                                            under another rule set than the file names
+
+All files are evaluated before anything is printed: if one is wrong, nothing is printed on standard
+output, and standard error holds one line for each error: where (a JSON pointer), what, and the remedy;
+with several files the name of the file comes first.
+Exit codes: 0 printed; 2 a file is wrong or cannot be read.";
+
+/// Well-to-wheel greenhouse-gas accounting of fuel ethanol.
+#[derive(Debug, Parser)]
+#[command(name = "wheelwort", version, about, after_help = EXAMPLES, arg_required_else_help = true)]
+struct Cli {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+enum Command {
+    /// Serve pages and the API, and keep the data in a folder.
+    #[command(after_help = SERVE_EXAMPLES)]
+    Serve(Serve),
+    /// Serve invented data, to look around in.
+    #[command(after_help = DEMO_EXAMPLES)]
+    Demo(Demo),
+    /// Print the assessment of pathway files.
+    #[command(after_help = EVALUATE_EXAMPLES)]
+    Evaluate(evaluate::Evaluate),
+    /// Print the description of the API (OpenAPI 3.1).
+    Openapi,
+}
+
+#[derive(Debug, Args)]
+struct Serve {
+    /// Folder of the data; made where there is none. `data` when left out.
+    #[arg(long, value_name = "DIR")]
+    data: Option<PathBuf>,
+    #[command(flatten)]
+    common: Common,
+}
+
+#[derive(Debug, Args)]
+struct Demo {
+    #[command(flatten)]
+    common: Common,
+}
+
+#[derive(Debug, Args)]
+struct Common {
+    /// Address to listen on; 127.0.0.1:8080 when left out. Port 0 takes a free one.
+    #[arg(long, value_name = "ADDR")]
+    listen: Option<String>,
+    /// File of settings, in TOML.
+    #[arg(long, value_name = "FILE")]
+    config: Option<PathBuf>,
+}
+
+/// The settings of a command, from all sources.
+fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Config, ConfigError> {
+    let file = common
+        .config
+        .as_deref()
+        .map(Given::from_file)
+        .transpose()?
+        .unwrap_or_default();
+    let variables = std::env::vars_os()
+        .filter_map(|(name, value)| Some((name.into_string().ok()?, value.into_string().ok()?)));
+    let environment = Given::from_environment(variables)?;
+    let line = Given {
+        data,
+        listen: common.listen,
+        ..Given::default()
+    };
+    file.overlaid(environment).overlaid(line).checked()
+}
+
+/// Runs the command of the command line.
+pub fn main() -> ExitCode {
+    // Prints help and version itself, and ends with 2 on a wrong command line.
+    let code = match Cli::parse().command {
+        Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
+        Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
+        Command::Evaluate(command) => evaluate::run(&command),
+        Command::Openapi => print(router::description().bytes()),
+    };
+    ExitCode::from(code)
+}
+
+fn with_settings(
+    settings: Result<crate::config::Config, ConfigError>,
+    run: fn(crate::config::Config) -> anyhow::Result<()>,
+) -> u8 {
+    match settings {
+        Err(error) => {
+            say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
+            WRONG
+        }
+        Ok(settings) => match run(settings) {
+            Ok(()) => 0,
+            Err(error) => {
+                say(&format!("wheelwort: {error:#}"));
+                COULD_NOT
+            }
+        },
+    }
+}
+
+/// Prints bytes and a line end on standard output. A reader that has gone is no error.
+fn print(bytes: &[u8]) -> u8 {
+    let mut out = std::io::stdout().lock();
+    let written = out
+        .write_all(bytes)
+        .and_then(|()| out.write_all(b"\n"))
+        .and_then(|()| out.flush());
+    match written {
+        Err(error) if error.kind() != std::io::ErrorKind::BrokenPipe => COULD_NOT,
+        _ => 0,
+    }
+}
+
+/// One line on standard error, whatever the text holds.
+fn say(text: &str) {
+    let plain: String = text
+        .chars()
+        .map(|c| if c.is_control() { ' ' } else { c })
+        .collect();
+    let _ = writeln!(std::io::stderr().lock(), "{plain}");
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use clap::CommandFactory;
+
+    #[test]
+    fn the_command_line_holds_together() {
+        Cli::command().debug_assert();
+    }
+}

@@ -1,0 +1,127 @@
+//! `serve`: opens the data, listens, says where, and stops in order when asked.
+
+use super::{print, say};
+use crate::app::App;
+use crate::clock::Clock;
+use crate::config::Config;
+use crate::web::extract::Limits;
+use crate::web::patience::Patient;
+use crate::web::{Shell, router};
+use crate::{library, telemetry};
+use anyhow::Context;
+use std::future::Future;
+use std::path::Path;
+use std::time::Duration;
+use tokio::net::TcpListener;
+
+/// Name of the data file in its folder.
+const FILE: &str = "wheelwort.db";
+
+/// Runs until it is asked to stop.
+pub(super) fn run(config: Config) -> anyhow::Result<()> {
+    telemetry::begin(&config.log, config.log_format)?;
+    running(async {
+        let folder = config.data.clone();
+        std::fs::create_dir_all(&folder)
+            .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
+        let app = open(&folder).await?;
+        serve(app, &config).await
+    })
+}
+
+/// Runs the program's threads.
+pub(super) fn running(work: impl Future<Output = anyhow::Result<()>>) -> anyhow::Result<()> {
+    tokio::runtime::Builder::new_multi_thread()
+        .enable_all()
+        .build()
+        .context("no threads could be started")?
+        .block_on(work)
+}
+
+/// Opens the data in a folder.
+pub(super) async fn open(folder: &Path) -> anyhow::Result<App> {
+    let file = folder.join(FILE);
+    App::open(&file, Clock::system(), library::book())
+        .await
+        .with_context(|| format!("the data in {} cannot be opened", folder.display()))
+}
+
+/// Listens, says where, and serves until it is asked to stop; then finishes what runs and closes the data.
+pub(super) async fn serve(app: App, config: &Config) -> anyhow::Result<()> {
+    let served = until_asked_to_stop(app.clone(), config).await;
+    // Also after a failure: what was answered is kept either way, but an orderly end leaves one file behind.
+    if tokio::time::timeout(config.stop_within, app.close())
+        .await
+        .is_err()
+    {
+        tracing::error!("the data could not be closed in time; nothing that was answered is lost");
+    }
+    served
+}
+
+async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
+    let listener = TcpListener::bind(config.listen)
+        .await
+        .with_context(|| format!("cannot listen on {}", config.listen))?;
+    let address = listener.local_addr().context("the address is not known")?;
+    if !address.ip().is_loopback() {
+        say(&format!(
+            "Caution: {address} can be reached from other machines, and there is no sign-in yet: whoever reaches it \
+             can read and change everything."
+        ));
+    }
+    let shell = Shell {
+        limits: Limits {
+            body_bytes: config.body_bytes,
+            batch_lines: config.batch_lines,
+            ..Limits::default()
+        },
+        at_once: config.requests_at_once,
+        timeout: config.request_timeout,
+        ..Shell::default()
+    };
+    // Longer than any answer may take to begin.
+    let patience = config.request_timeout + Duration::from_secs(15);
+    let patient = Patient::new(listener, config.connections, patience);
+    let (stop, mut stopped) = tokio::sync::watch::channel(false);
+    let mut asked = stopped.clone();
+    let service = crate::web::serve(patient, router(app, shell), async move {
+        let _ = asked.wait_for(|stop| *stop).await;
+    });
+    let service = tokio::spawn(service);
+    let signals = signals().context("signals cannot be heard")?;
+    // The socket listens already: whoever reads this line is answered.
+    print(format!("http://{address}").as_bytes());
+    signals.await;
+    tracing::info!("asked to stop: no new requests, finishing those that run");
+    let _ = stop.send(true);
+    let _ = stopped.changed().await;
+    match tokio::time::timeout(config.stop_within, service).await {
+        Err(_) => tracing::warn!("some requests did not end in time and were cut off"),
+        Ok(ended) => ended
+            .context("the service stopped")?
+            .context("the service failed")?,
+    }
+    Ok(())
+}
+
+/// Completes when the program is asked to stop.
+#[cfg(unix)]
+fn signals() -> std::io::Result<impl Future<Output = ()>> {
+    use tokio::signal::unix::{SignalKind, signal};
+    let (mut interrupt, mut terminate) = (signal(SignalKind::interrupt())?, signal(SignalKind::terminate())?);
+    Ok(async move {
+        tokio::select! {
+            _ = interrupt.recv() => {}
+            _ = terminate.recv() => {}
+        }
+    })
+}
+
+/// Completes when the program is asked to stop.
+#[cfg(not(unix))]
+fn signals() -> std::io::Result<impl Future<Output = ()>> {
+    Ok(async {
+        let _ = tokio::signal::ctrl_c().await;
+    })
+}

@@ -1,0 +1,60 @@
+//! Demonstration data: one invented company. Everything in these documents is made up; published factors keep their source.
+
+use crate::app::App;
+use crate::core::documents::{Pathway, Problems};
+use crate::pathways::{self, PathwayError, Saved};
+
+/// The documents of the demonstration, by file name.
+pub const PATHWAYS: &[(&str, &str)] = &[
+    (
+        "a_wheat_chp_rail.json",
+        include_str!("pathways/a_wheat_chp_rail.json"),
+    ),
+    (
+        "b_maize_truck_and_barge.json",
+        include_str!("pathways/b_maize_truck_and_barge.json"),
+    ),
+    (
+        "d_straw_lignin.json",
+        include_str!("pathways/d_straw_lignin.json"),
+    ),
+    (
+        "e_cane_imported.json",
+        include_str!("pathways/e_cane_imported.json"),
+    ),
+    (
+        "f_wheat_with_errors.json",
+        include_str!("pathways/f_wheat_with_errors.json"),
+    ),
+];
+
+/// The pathways of the demonstration.
+///
+/// # Errors
+/// When a document does not hold: a test reads them all.
+pub fn documents() -> Result<Vec<Pathway>, Problems> {
+    PATHWAYS
+        .iter()
+        .map(|(_, text)| Pathway::from_bytes(text.as_bytes()))
+        .collect()
+}
+
+/// Stores the demonstration; what is there already stays as it is.
+///
+/// # Errors
+/// When the database fails.
+pub async fn load(app: &App) -> Result<Vec<Saved>, PathwayError> {
+    pathways::load_examples(app, documents()?).await
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_document_holds_and_is_marked() {
+        let documents = documents().expect("they hold");
+        assert_eq!(documents.len(), PATHWAYS.len());
+        assert!(documents.iter().all(|document| document.example));
+    }
+}

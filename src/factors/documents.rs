@@ -1,0 +1,391 @@
+//! Editions, factors and rule sets as documents. They are made from the published data, never read.
+
+use crate::core::domain::factor::{FuelSplit, TermValues, Use};
+use crate::core::domain::{
+    Book, Citation, Counts, Edition, Factor, Gas, GwpSet, PathwayDefault, RuleSet, Status,
+};
+use serde::Serialize;
+use std::collections::BTreeMap;
+use utoipa::ToSchema;
+
+/// An edition in the list of editions.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct EditionLine {
+    /// The part of a factor's id before `/`.
+    pub id: String,
+    /// Title.
+    pub title: String,
+    /// The document it was taken from.
+    pub citation: Citation,
+    /// Rows that are factors.
+    pub factors: usize,
+    /// Rows that are published pathways with default values.
+    pub pathways: usize,
+}
+
+/// An edition.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct EditionDocument {
+    /// Id, title, source and counts.
+    #[serde(flatten)]
+    pub line: EditionLine,
+    /// What a reader should know.
+    pub note: Option<String>,
+    /// The groups of its factors, in order of name.
+    pub groups: Vec<GroupLine>,
+    /// Its published pathways with their default values.
+    pub default_values: Vec<PathwayDefaultDocument>,
+}
+
+/// A group of factors.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct GroupLine {
+    /// Name, as `?group=` takes it.
+    pub group: String,
+    /// Factors in it.
+    pub factors: usize,
+}
+
+/// The values of a published pathway.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct PathwayDefaultDocument {
+    /// `edition/row`, as `defaults` of a pathway takes it.
+    pub id: String,
+    /// Feedstock as printed.
+    pub feedstock: String,
+    /// Materials whose pathways may use the row.
+    pub feedstock_materials: Vec<String>,
+    /// What the pathway is.
+    pub description: String,
+    /// Process fuel as printed.
+    pub process_fuel: String,
+    /// Default values: the only ones that serve compliance.
+    pub default: DefaultValues,
+    /// Typical values: shown, never usable for compliance.
+    pub typical: DefaultValues,
+    /// Source and status.
+    pub citation: Citation,
+}
+
+/// Values by term, g CO2e/MJ, and the printed saving.
+#[derive(Clone, Copy, Debug, Serialize, ToSchema)]
+pub struct DefaultValues {
+    /// Cultivation.
+    pub e_ec: f64,
+    /// Of it, soil N2O.
+    pub e_ec_soil_n2o: f64,
+    /// Processing.
+    pub e_p: f64,
+    /// Transport and distribution.
+    pub e_td: f64,
+    /// Of it, the final fuel alone.
+    pub e_td_final_fuel: f64,
+    /// Printed total.
+    pub total: f64,
+    /// Printed saving, whole %.
+    pub saving_percent: f64,
+}
+
+/// A factor.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct FactorDocument {
+    /// `edition/row`, as documents name it.
+    pub id: String,
+    /// Id of the edition.
+    pub edition: String,
+    /// Id of the row inside the edition.
+    pub row: String,
+    /// Name.
+    pub name: String,
+    /// Group inside the edition.
+    pub group: String,
+    /// What one unit counts: `fuel` (net heating value), `power`, `heat` or `other`.
+    pub counts: String,
+    /// The unit, such as `kg N`.
+    pub per: String,
+    /// kg of each gas per unit, as published; a gas that is absent is not published, which is not the same as zero.
+    pub gases: BTreeMap<String, f64>,
+    /// How the row may be used.
+    pub usage: Usage,
+    /// CO2e that the source prints beside the gases, g per unit: shown, never used.
+    pub printed_co2e_g: Option<f64>,
+    /// The figures as printed, digits kept, by column.
+    pub printed: BTreeMap<String, String>,
+    /// Lower heating value of the dry substance, MJ/kg, as printed.
+    pub lhv_mj_per_kg: Option<f64>,
+    /// Density, kg/m3, as printed.
+    pub density_kg_per_m3: Option<f64>,
+    /// Supply and burning of a fuel apart: shown, never used.
+    pub split: Option<Split>,
+    /// What a reader should know before using it.
+    pub note: Option<String>,
+    /// Source and status.
+    pub citation: Citation,
+}
+
+/// How a row may be used.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+#[serde(tag = "kind", rename_all = "snake_case")]
+pub enum Usage {
+    /// Multiplies an amount.
+    Amount,
+    /// Drives a `haul`.
+    Haul {
+        /// Fuel energy per tonne-kilometre, MJ/(t km), at the published load.
+        energy_mj_per_tkm: f64,
+        /// The fuel that the row is driven by, `edition/row`.
+        fuel: Option<String>,
+        /// Electric: the grid must be named.
+        electric: bool,
+    },
+    /// Drives a `combustion`.
+    Engine {
+        /// Methane, kg/TJ; null when not published.
+        ch4_kg_per_tj: Option<f64>,
+        /// Nitrous oxide, kg/TJ; null when not published.
+        n2o_kg_per_tj: Option<f64>,
+    },
+    /// Prints no emission, only a heating value or a density.
+    HeatingValueOnly,
+    /// Refused as a factor.
+    Refused {
+        /// Why.
+        reason: String,
+    },
+}
+
+/// A fuel's printed figure divided into supply and burning, g CO2e/MJ.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct Split {
+    /// Both together, as the source of the split prints it.
+    pub total_g_per_mj: f64,
+    /// Extraction, refining, transport.
+    pub upstream_g_per_mj: f64,
+    /// Burning.
+    pub combustion_g_per_mj: f64,
+    /// What a reader should know.
+    pub note: Option<String>,
+    /// Source and status.
+    pub citation: Citation,
+}
+
+/// A rule set in the list of rule sets.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct RuleSetLine {
+    /// Id as used in documents.
+    pub id: String,
+    /// Title.
+    pub title: String,
+    /// Version of its data here.
+    pub version: String,
+    /// Id of the set of gas weights.
+    pub gwp_set: String,
+    /// The fossil baseline, g CO2e/MJ.
+    pub comparator_g_co2e_per_mj: f64,
+    /// The document.
+    pub source: String,
+    /// Whether it was read.
+    pub status: Status,
+}
+
+/// A rule set with its gas weights.
+#[derive(Clone, Debug, Serialize, ToSchema)]
+pub struct RuleSetDocument {
+    /// The rule set.
+    #[serde(flatten)]
+    pub rules: RuleSet,
+    /// Its gas weights, kg CO2e per kg over 100 years.
+    pub gas_weights: Option<GwpSet>,
+}
+
+impl EditionLine {
+    /// The line of an edition.
+    pub fn of(edition: &Edition) -> EditionLine {
+        EditionLine {
+            id: edition.id.clone(),
+            title: edition.title.clone(),
+            citation: edition.citation.clone(),
+            factors: edition.factors.len(),
+            pathways: edition.pathways.len(),
+        }
+    }
+}
+
+impl EditionDocument {
+    /// The document of an edition.
+    pub fn of(edition: &Edition) -> EditionDocument {
+        let mut groups: BTreeMap<&str, usize> = BTreeMap::new();
+        for factor in edition.factors.values() {
+            *groups.entry(&factor.group).or_default() += 1;
+        }
+        EditionDocument {
+            line: EditionLine::of(edition),
+            note: edition.note.clone(),
+            groups: groups
+                .into_iter()
+                .map(|(group, factors)| GroupLine {
+                    group: group.into(),
+                    factors,
+                })
+                .collect(),
+            default_values: edition
+                .pathways
+                .values()
+                .map(PathwayDefaultDocument::of)
+                .collect(),
+        }
+    }
+}
+
+impl PathwayDefaultDocument {
+    /// The document of a published pathway.
+    pub fn of(published: &PathwayDefault) -> PathwayDefaultDocument {
+        let PathwayDefault {
+            id,
+            feedstock,
+            feedstock_materials,
+            description,
+            process_fuel,
+            default,
+            typical,
+            citation,
+        } = published.clone();
+        let values = |values: TermValues| {
+            let TermValues {
+                e_ec,
+                e_ec_soil_n2o,
+                e_p,
+                e_td,
+                e_td_final_fuel,
+                total,
+                saving_percent,
+            } = values;
+            DefaultValues {
+                e_ec,
+                e_ec_soil_n2o,
+                e_p,
+                e_td,
+                e_td_final_fuel,
+                total,
+                saving_percent,
+            }
+        };
+        let (default, typical) = (values(default), values(typical));
+        PathwayDefaultDocument {
+            id,
+            feedstock,
+            feedstock_materials,
+            description,
+            process_fuel,
+            default,
+            typical,
+            citation,
+        }
+    }
+}
+
+impl FactorDocument {
+    /// The document of a factor.
+    pub fn of(book: &Book, factor: &Factor) -> FactorDocument {
+        let (edition, row) = factor.id.split_once('/').unwrap_or((&factor.id, ""));
+        let split = book
+            .editions
+            .get(edition)
+            .and_then(|edition| edition.fuel_splits.get(row));
+        let counts = match factor.counts {
+            Counts::Fuel => "fuel",
+            Counts::Power => "power",
+            Counts::Heat => "heat",
+            Counts::Other => "other",
+        };
+        let published = |gas: Gas| {
+            factor
+                .gases
+                .get(gas)
+                .map(|amount| (gas.name().to_owned(), amount))
+        };
+        FactorDocument {
+            id: factor.id.clone(),
+            edition: edition.into(),
+            row: row.into(),
+            name: factor.name.clone(),
+            group: factor.group.clone(),
+            counts: counts.into(),
+            per: factor.per.clone(),
+            gases: Gas::ALL.into_iter().filter_map(published).collect(),
+            usage: Usage::of(&factor.usage),
+            printed_co2e_g: factor.printed_co2e_g,
+            printed: factor.printed.clone(),
+            lhv_mj_per_kg: factor.lhv_mj_per_kg,
+            density_kg_per_m3: factor.density_kg_per_m3,
+            split: split.map(Split::of),
+            note: factor.note.clone(),
+            citation: factor.citation.clone(),
+        }
+    }
+}
+
+impl Usage {
+    fn of(usage: &Use) -> Usage {
+        match usage {
+            Use::Amount => Usage::Amount,
+            Use::Haul(vehicle) => Usage::Haul {
+                energy_mj_per_tkm: vehicle.energy_mj_per_tkm,
+                fuel: vehicle.fuel.clone(),
+                electric: vehicle.electric,
+            },
+            Use::Engine(vehicle) => Usage::Engine {
+                ch4_kg_per_tj: vehicle.ch4_kg_per_tj,
+                n2o_kg_per_tj: vehicle.n2o_kg_per_tj,
+            },
+            Use::HeatingValueOnly => Usage::HeatingValueOnly,
+            Use::Refused(reason) => Usage::Refused {
+                reason: reason.clone(),
+            },
+        }
+    }
+}
+
+impl Split {
+    fn of(split: &FuelSplit) -> Split {
+        let FuelSplit {
+            total_g_per_mj,
+            upstream_g_per_mj,
+            combustion_g_per_mj,
+            note,
+            citation,
+        } = split.clone();
+        Split {
+            total_g_per_mj,
+            upstream_g_per_mj,
+            combustion_g_per_mj,
+            note,
+            citation,
+        }
+    }
+}
+
+impl RuleSetLine {
+    /// The line of a rule set.
+    pub fn of(rules: &RuleSet) -> RuleSetLine {
+        RuleSetLine {
+            id: rules.id.clone(),
+            title: rules.title.clone(),
+            version: rules.version.clone(),
+            gwp_set: rules.gwp_set.clone(),
+            comparator_g_co2e_per_mj: rules.comparator.value,
+            source: rules.source.clone(),
+            status: rules.status,
+        }
+    }
+}
+
+impl RuleSetDocument {
+    /// The document of a rule set.
+    pub fn of(book: &Book, rules: &RuleSet) -> RuleSetDocument {
+        RuleSetDocument {
+            rules: rules.clone(),
+            gas_weights: book.gwp_sets.get(&rules.gwp_set).cloned(),
+        }
+    }
+}

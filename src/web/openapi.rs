@@ -1,0 +1,175 @@
+//! The description of the API (OpenAPI 3.1): put together from the handlers, completed with what every answer may be,
+//! and served from bytes that are made once.
+
+use super::conditional::IfNoneMatch;
+use super::extract::NoQuery;
+use super::problem::{PROBLEM_JSON, ProblemDocument};
+use crate::core::documents::{Problem, canonical};
+use axum::extract::Extension;
+use axum::response::Response;
+use std::collections::BTreeMap;
+use std::sync::Arc;
+use utoipa::openapi::path::{Operation, PathItem};
+use utoipa::openapi::{
+    ContentBuilder, HeaderBuilder, InfoBuilder, Object, OpenApi, OpenApiBuilder, Ref, RefOr, ResponseBuilder,
+    Schema, Type,
+};
+use utoipa::{PartialSchema, ToSchema};
+use utoipa_axum::router::OpenApiRouter;
+use utoipa_axum::routes;
+
+/// The words at the top of the description.
+const ABOUT: &str = "Well-to-wheel greenhouse-gas accounting of fuel ethanol: documents in, assessments out. \
+    Figures are JSON numbers, units are texts. Every refusal is problem JSON (RFC 9457); whatever is wrong with a \
+    document is told all at once, each with its JSON pointer and a remedy. Writes name the revision they read in \
+    If-Match. There is no sign-in yet: the service answers whoever can reach it.";
+
+/// The description as it is served.
+#[derive(Clone, Debug)]
+pub struct Document {
+    bytes: Arc<[u8]>,
+    hash: Arc<str>,
+}
+
+impl Document {
+    /// The bytes of a description.
+    pub fn of(api: OpenApi) -> Document {
+        let bytes = serde_json::to_vec_pretty(&completed(api)).unwrap_or_default();
+        Document {
+            hash: canonical::hash(&bytes).into(),
+            bytes: bytes.into(),
+        }
+    }
+
+    /// JSON.
+    pub fn bytes(&self) -> &[u8] {
+        &self.bytes
+    }
+}
+
+/// A description with nothing in it yet.
+pub fn begun() -> OpenApi {
+    let info = InfoBuilder::new()
+        .title("Wheelwort")
+        .version(crate::app::PROGRAM)
+        .description(Some(ABOUT))
+        .license(Some(
+            utoipa::openapi::LicenseBuilder::new()
+                .name("MIT OR Apache-2.0")
+                .build(),
+        ))
+        .build();
+    OpenApiBuilder::new().info(info).build()
+}
+
+/// The route of this file.
+pub fn routes<S: Clone + Send + Sync + 'static>() -> OpenApiRouter<S> {
+    OpenApiRouter::new().routes(routes!(openapi))
+}
+
+/// This description
+#[utoipa::path(get, path = "/openapi.json", tag = "description",
+    responses((status = 200, description = "OpenAPI 3.1.", body = serde_json::Value, content_type = "application/json"),
+              (status = 304, description = "You have it.")))]
+async fn openapi(Extension(document): Extension<Document>, _: NoQuery, seen: IfNoneMatch) -> Response {
+    seen.json(&document.hash, document.bytes.to_vec())
+}
+
+/// Adds the answers that layers and extractors give, so that no handler has to repeat them.
+fn completed(mut api: OpenApi) -> OpenApi {
+    let components = api.components.get_or_insert_default();
+    components
+        .schemas
+        .insert(ProblemDocument::name().into_owned(), ProblemDocument::schema());
+    components
+        .schemas
+        .insert(Problem::name().into_owned(), Problem::schema());
+    for (path, item) in &mut api.paths.paths {
+        for (writes, operation) in operations(item) {
+            let has_body = operation.request_body.is_some();
+            let named = path.contains('{');
+            let compares = operation
+                .parameters
+                .iter()
+                .flatten()
+                .any(|parameter| match parameter {
+                    RefOr::T(parameter) => parameter.name == "If-Match",
+                    RefOr::Ref(_) => false,
+                });
+            let mut may_be = vec![
+                (400, "The query, a header or the JSON cannot be read."),
+                (405, "Not that method."),
+            ];
+            may_be.push((500, "The program made a mistake; nothing was saved."));
+            may_be.push((
+                503,
+                "Too busy, or it took too long; `Retry-After` says when to come back.",
+            ));
+            if named {
+                may_be.push((404, "There is nothing of that name."));
+            }
+            if writes {
+                may_be.push((403, "The request was sent from the page of another site."));
+            }
+            if has_body {
+                may_be.push((408, "The body did not arrive in time."));
+                may_be.push((413, "The body is too large."));
+                may_be.push((415, "The body has another content type."));
+                may_be.push((422, "The document does not hold: `errors` names everything."));
+            }
+            if compares {
+                may_be.push((409, "The pathway is archived."));
+                may_be.push((
+                    412,
+                    "Somebody saved in between: `ETag` names the present revision.",
+                ));
+                may_be.push((422, "The document would not hold: `errors` names everything."));
+                may_be.push((428, "If-Match is missing."));
+            }
+            for (status, words) in may_be {
+                operation
+                    .responses
+                    .responses
+                    .entry(status.to_string())
+                    .or_insert_with(|| problem(status, words));
+            }
+        }
+    }
+    api
+}
+
+fn operations(item: &mut PathItem) -> impl Iterator<Item = (bool, &mut Operation)> {
+    [
+        (false, &mut item.get),
+        (true, &mut item.put),
+        (true, &mut item.post),
+        (true, &mut item.delete),
+    ]
+    .into_iter()
+    .filter_map(|(writes, operation)| operation.as_mut().map(|operation| (writes, operation)))
+}
+
+fn problem(status: u16, words: &str) -> RefOr<utoipa::openapi::Response> {
+    let content = ContentBuilder::new()
+        .schema(Some(Ref::from_schema_name("ProblemDocument")))
+        .build();
+    let mut response = ResponseBuilder::new()
+        .description(words)
+        .content(PROBLEM_JSON, content);
+    let headers: BTreeMap<u16, (&str, &str)> = BTreeMap::from([
+        (405, ("Allow", "The methods that this address takes.")),
+        (412, ("ETag", "The present revision.")),
+        (503, ("Retry-After", "Seconds to wait.")),
+    ]);
+    if let Some((name, words)) = headers.get(&status) {
+        let text = Schema::Object(Object::with_type(Type::String));
+        response = response.header(
+            *name,
+            HeaderBuilder::new()
+                .schema(Some(text))
+                .description(Some(*words))
+                .build(),
+        );
+    }
+    RefOr::T(response.build())
+}

@@ -1,0 +1,3 @@
+//! What moves the figure.
+
+mod compare;

@@ -1,0 +1,10 @@
+//! The database and the use cases of pathways, with the real engine and the real library.
+
+mod changes;
+mod faults;
+mod history;
+mod identity;
+mod listing;
+mod records;
+mod support;
+mod writing;
