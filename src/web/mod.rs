@@ -4,6 +4,7 @@ pub mod assets;
 pub mod blocking;
 pub mod conditional;
 pub mod csv;
+pub mod error_page;
 pub mod extract;
 pub mod filters;
 pub mod frame;

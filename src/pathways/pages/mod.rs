@@ -2,9 +2,12 @@
 
 pub mod carbon;
 pub mod card;
+pub mod compare;
 pub mod home;
 pub mod ladder;
 pub mod links;
+pub mod new;
+pub mod revision;
 pub mod show;
 pub mod stage;
 pub mod verdict;
