@@ -62,6 +62,11 @@ impl Frame {
         Frame { wide: true, ..self }
     }
 
+    /// The address of an embedded file.
+    pub fn asset(&self, name: &str) -> &'static str {
+        super::assets::url(name)
+    }
+
     /// The words of the navigation: address, word, whether this page is there.
     pub fn words(&self) -> [(&'static str, &'static str, bool); 4] {
         [

@@ -1,17 +1,25 @@
 //! Pages of pathways: view models from documents and assessments, templates beside them, handlers that only fetch.
 
+mod answers;
 pub mod carbon;
 pub mod card;
 pub mod compare;
+mod document_handlers;
+mod handlers;
 pub mod home;
 pub mod ladder;
 pub mod links;
 pub mod new;
+mod notices;
 pub mod revision;
 pub mod show;
 pub mod stage;
+mod stage_handlers;
 pub mod verdict;
 pub mod workings;
+
+pub use answers::{csv, file, page, with_status};
+pub use handlers::routes;
 
 #[cfg(test)]
 pub mod samples;

@@ -2,7 +2,6 @@
 
 use super::card::build::{self, Source};
 use super::card::fields;
-use super::card::form::LISTS;
 use super::card::merge::Met;
 use super::card::search::{self, Found};
 use super::card::spec::{self, Ground, Shape, Spec};
@@ -149,6 +148,8 @@ pub struct FieldView {
     pub wrong: Vec<(String, String)>,
     /// What a search for it found.
     pub found: Option<Found>,
+    /// Where a search for it is sent: back to the field itself.
+    pub go: String,
     /// Factors that stand in it: id, address.
     pub factors: Vec<(String, String)>,
     /// True if it cannot be left empty.
@@ -475,6 +476,7 @@ impl At<'_> {
             class,
             wrong: self.wrong(&name),
             found,
+            go: format!("{}#{}", links::stage(&self.card.head.id, self.card.key), links::field_id(&name)),
             factors: factors(kind, &text, self.card.book),
             required: spec.required,
             kind,
@@ -530,6 +532,3 @@ pub fn steer(form: &mut Form, asked: &Do) -> bool {
     }
     false
 }
-
-/// Lists that a card has, for those who go through them.
-pub const CARD_LISTS: [&str; 3] = LISTS;
