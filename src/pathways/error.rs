@@ -62,7 +62,7 @@ pub enum PathwayError {
 }
 
 impl PathwayError {
-    pub(super) fn defect(
+    pub(in crate::pathways) fn defect(
         doing: &'static str,
         source: impl std::error::Error + Send + Sync + 'static,
     ) -> Self {

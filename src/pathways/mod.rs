@@ -7,6 +7,7 @@ pub mod changes;
 mod error;
 mod examples;
 pub mod list;
+pub mod pages;
 mod read;
 pub mod rows;
 mod save;

@@ -14,7 +14,18 @@ use std::collections::BTreeMap;
 use std::sync::LazyLock;
 
 /// The embedded files by name. Files that others name (fonts, pictures) stand before those that name them (styles).
-pub const FILES: &[(&str, &[u8])] = &[];
+pub const FILES: &[(&str, &[u8])] = &[
+    (
+        "fonts/vollkorn-latin-wght-normal.woff2",
+        include_bytes!("../../templates/assets/fonts/vollkorn-latin-wght-normal.woff2"),
+    ),
+    (
+        "fonts/source-sans-3-latin-wght-normal.woff2",
+        include_bytes!("../../templates/assets/fonts/source-sans-3-latin-wght-normal.woff2"),
+    ),
+    ("mark.svg", include_bytes!("../../templates/assets/mark.svg")),
+    ("style.css", include_bytes!("../../templates/assets/style.css")),
+];
 
 static ASSETS: LazyLock<Assets> = LazyLock::new(|| Assets::of(FILES));
 

@@ -3,7 +3,11 @@
 pub mod assets;
 pub mod blocking;
 pub mod conditional;
+pub mod csv;
+pub mod error_page;
 pub mod extract;
+pub mod filters;
+pub mod frame;
 pub mod health;
 pub mod layers;
 pub mod openapi;

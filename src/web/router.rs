@@ -3,13 +3,16 @@
 
 use super::extract::Limits;
 use super::openapi::{self, Document};
-use super::problem::{Refusal, RefusalPage, bare_page};
+use super::error_page;
+use super::problem::{Refusal, RefusalPage};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{factors, pathways};
+use crate::{demo, factors, pathways};
 use axum::Router;
-use axum::extract::Extension;
+use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
+use axum::response::Redirect;
+use axum::routing::post;
 use std::time::Duration;
 use utoipa_axum::router::OpenApiRouter;
 
@@ -32,7 +35,7 @@ impl Default for Shell {
             limits: Limits::default(),
             at_once: 256,
             timeout: Duration::from_secs(30),
-            refusal_page: bare_page,
+            refusal_page: error_page::page,
         }
     }
 }
@@ -70,6 +73,21 @@ fn api() -> OpenApiRouter<App> {
 /// The pages for people. Their routes come with the pages themselves.
 pub fn pages_router() -> Router<App> {
     Router::new()
+        .route("/example/load", post(load_example))
+        .route("/example/remove", post(remove_example))
+        .merge(pathways::pages::routes())
+}
+
+/// Puts the demonstration in, marked as such.
+async fn load_example(State(app): State<App>) -> Result<Redirect, Refusal> {
+    let saved = demo::load(&app).await?;
+    Ok(Redirect::to(&format!("/?examples={}", saved.len())))
+}
+
+/// Takes the demonstration away, in one step.
+async fn remove_example(State(app): State<App>) -> Result<Redirect, Refusal> {
+    pathways::remove_examples(&app).await?;
+    Ok(Redirect::to("/?examples=0"))
 }
 
 async fn nowhere(uri: Uri) -> Refusal {

@@ -1,0 +1,145 @@
+//! Two people met: what one saved and what the other typed, joined field by field, with nothing of either lost.
+
+use serde_json::{Map, Value};
+
+/// A field that somebody else changed since, or that both changed.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Met {
+    /// The field in words.
+    pub field: String,
+    /// As it stood when the form was opened.
+    pub base: String,
+    /// As saved meanwhile.
+    pub theirs: String,
+    /// As typed.
+    pub mine: String,
+    /// True if both changed it, differently: then what was typed stands in the form.
+    pub both: bool,
+}
+
+/// Joins two versions of one stage. Where only one changed a field, that change stands; where both did, mine.
+pub fn join(base: &Value, theirs: &Value, mine: &Value) -> (Value, Vec<Met>) {
+    let mut met = Vec::new();
+    let joined = one(&mut Vec::new(), Some(base), Some(theirs), Some(mine), &mut met).unwrap_or(Value::Null);
+    (joined, met)
+}
+
+type Maybe<'a> = Option<&'a Value>;
+
+fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mut Vec<Met>) -> Option<Value> {
+    if theirs == base {
+        return mine.cloned();
+    }
+    match (base, theirs, mine) {
+        (_, Some(Value::Object(theirs)), Some(Value::Object(mine))) => {
+            let empty = Map::new();
+            let base = base.and_then(Value::as_object).unwrap_or(&empty);
+            let mut out = Map::new();
+            for name in union(mine.keys(), theirs.keys()) {
+                path.push(name.replace('_', " "));
+                if let Some(value) = one(path, base.get(&name), theirs.get(&name), mine.get(&name), met) {
+                    out.insert(name, value);
+                }
+                path.pop();
+            }
+            Some(Value::Object(out))
+        }
+        (_, Some(Value::Array(theirs)), Some(Value::Array(mine))) if keyed(theirs) && keyed(mine) => {
+            let none = Vec::new();
+            let base = base.and_then(Value::as_array).unwrap_or(&none);
+            let mut out = Vec::new();
+            for key in union(mine.iter().filter_map(key).collect::<Vec<_>>().iter(), theirs.iter().filter_map(key).collect::<Vec<_>>().iter()) {
+                let find = |list: &[Value]| list.iter().find(|item| self::key(item).as_ref() == Some(&key)).cloned();
+                let (b, t, m) = (find(base), find(theirs), find(mine));
+                path.push(m.as_ref().or(t.as_ref()).map_or_else(|| key.clone(), |item| name_of(item, &key)));
+                out.extend(one(path, b.as_ref(), t.as_ref(), m.as_ref(), met));
+                path.pop();
+            }
+            Some(Value::Array(out))
+        }
+        _ => {
+            let both = mine != base && mine != theirs;
+            met.push(Met {
+                field: path.join(", "),
+                base: shown(base),
+                theirs: shown(theirs),
+                mine: shown(mine),
+                both,
+            });
+            if both { mine.cloned() } else { theirs.cloned() }
+        }
+    }
+}
+
+fn union<'a>(mine: impl Iterator<Item = &'a String>, theirs: impl Iterator<Item = &'a String>) -> Vec<String> {
+    let mut out: Vec<String> = mine.cloned().collect();
+    for name in theirs {
+        if !out.contains(name) {
+            out.push(name.clone());
+        }
+    }
+    out
+}
+
+fn key(item: &Value) -> Option<String> {
+    let text = |name: &str| item.get(name).and_then(Value::as_str).map(str::to_owned);
+    text("key").or_else(|| Some(format!("{} {}", text("from")?, text("product").unwrap_or_default())))
+}
+
+fn keyed(list: &[Value]) -> bool {
+    list.iter().all(|item| key(item).is_some())
+}
+
+fn name_of(item: &Value, key: &str) -> String {
+    ["label", "name", "from"]
+        .iter()
+        .find_map(|name| item.get(*name).and_then(Value::as_str))
+        .unwrap_or(key)
+        .to_owned()
+}
+
+fn shown(value: Maybe) -> String {
+    match value {
+        None | Some(Value::Null) => "nothing".to_owned(),
+        Some(Value::String(text)) => text.clone(),
+        Some(Value::Number(number)) => {
+            number.as_f64().map_or_else(|| number.to_string(), crate::core::units::rounding::show_all)
+        }
+        Some(Value::Object(object)) => match (object.get("value"), object.get("unit"), object.get("key")) {
+            (Some(figure), Some(Value::String(unit)), _) => format!("{} {unit}", shown(Some(figure))),
+            (_, _, Some(Value::String(key))) => name_of(value.unwrap_or(&Value::Null), key),
+            _ => Value::Object(object.clone()).to_string(),
+        },
+        Some(other) => other.to_string(),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use serde_json::json;
+
+    #[test]
+    fn both_versions_live_on() {
+        let stage = |gas: f64, moist: f64, more: bool| {
+            let mut inputs = vec![json!({ "key": "gas", "label": "Gas", "amount": gas, "unit": "TJ" })];
+            if more {
+                inputs.push(json!({ "key": "power", "amount": 1.0 }));
+            }
+            json!({ "key": "grains", "inputs": inputs, "co_products": [{ "key": "ddgs", "name": "Grains", "moisture_percent": moist }] })
+        };
+        let (joined, met) = join(&stage(113.2, 10.0, false), &stage(104.6, 10.4, false), &stage(113.9, 10.0, true));
+        assert_eq!(joined, stage(113.9, 10.4, true));
+        let rows: Vec<_> = met.iter().map(|m| (m.field.as_str(), m.base.as_str(), m.theirs.as_str(), m.mine.as_str(), m.both)).collect();
+        assert_eq!(rows, [
+            ("co products, Grains, moisture percent", "10", "10.4", "10", false),
+            ("inputs, Gas, amount", "113.2", "104.6", "113.9", true),
+        ]);
+    }
+
+    #[test]
+    fn what_nobody_else_touched_is_as_typed() {
+        let (base, mine) = (json!({ "a": 1, "b": [1] }), json!({ "a": 2 }));
+        assert_eq!(join(&base, &base, &mine), (mine, Vec::new()));
+    }
+}

@@ -1,0 +1,249 @@
+//! Two to six pathways side by side: narrow ladders on one scale, the difference by stage and by term, unlike settings.
+
+use super::links;
+use super::verdict::{Verdict, rounding_note};
+use crate::charts::ladder::{self, Form, Ladder};
+use crate::core::documents::{Assessment, Pathway};
+use crate::core::domain::{Book, StageKind};
+use crate::core::levers::compare::{Comparison, MOST, Subject, compare};
+use crate::core::units::rounding::show;
+use crate::web::csv::{Cell, Table};
+use crate::web::filters::{self, Markup};
+use crate::web::frame::{Frame, Section};
+use askama::Template;
+
+/// The page of a comparison.
+#[derive(Clone, Debug, PartialEq, Template)]
+#[template(path = "compare.html")]
+pub struct Compare {
+    /// Round the page.
+    pub frame: Frame,
+    /// The headline.
+    pub title: String,
+    /// What comes of it, in words.
+    pub lead: String,
+    /// The pathways.
+    pub columns: Vec<Column>,
+    /// By stage, wheel to field.
+    pub stages: Vec<Row>,
+    /// By term.
+    pub terms: Vec<Row>,
+    /// The nets.
+    pub net: Option<Row>,
+    /// Said where shown stages miss a shown net.
+    pub notes: Vec<String>,
+    /// Settings in which they are unlike: setting, meaning, what each says.
+    pub unlike: Vec<(String, String, Vec<String>)>,
+    /// Pathways that can be chosen: id, name, chosen.
+    pub choices: Vec<(String, String, bool)>,
+    /// Address of the tables as CSV.
+    pub csv: String,
+    /// Why there is no comparison yet.
+    pub ask: Option<String>,
+}
+
+/// One pathway of a comparison.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Column {
+    /// Name.
+    pub name: String,
+    /// Address.
+    pub href: String,
+    /// The answer.
+    pub verdict: Verdict,
+    /// The ladder as SVG.
+    pub ladder: Markup,
+    /// True for the first, which the others are compared with.
+    pub base: bool,
+}
+
+/// One row of a table: figures and differences against the first.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Row {
+    /// Its name.
+    pub name: String,
+    /// Figures with the difference; the first has none.
+    pub cells: Vec<(Option<f64>, Option<f64>)>,
+}
+
+/// A pathway that is to be compared.
+pub struct Picked<'a> {
+    /// Id.
+    pub id: &'a str,
+    /// Document.
+    pub pathway: &'a Pathway,
+    /// Assessment.
+    pub found: &'a Assessment,
+}
+
+impl Compare {
+    /// The page before two are chosen.
+    pub fn ask(ask: impl Into<String>, choices: Vec<(String, String, bool)>) -> Compare {
+        Compare {
+            frame: Frame::new("Compare", Section::Compare, "POST /api/v1/compare").wide(),
+            title: "Compare".to_owned(),
+            lead: String::new(),
+            columns: Vec::new(),
+            stages: Vec::new(),
+            terms: Vec::new(),
+            net: None,
+            notes: Vec::new(),
+            unlike: Vec::new(),
+            choices,
+            csv: String::new(),
+            ask: Some(ask.into()),
+        }
+    }
+
+    /// The comparison of those picked.
+    pub fn of(picked: &[Picked], book: &Book, choices: Vec<(String, String, bool)>) -> Compare {
+        let rules = |one: &Picked| book.rule_sets.get(&one.found.rule_set);
+        let subjects: Vec<Subject> = picked
+            .iter()
+            .filter_map(|one| Some(Subject { pathway: one.pathway, assessment: one.found, rules: rules(one)? }))
+            .collect();
+        let comparison = compare(&subjects);
+        let names: Vec<&str> = picked.iter().map(|one| one.pathway.name.as_str()).collect();
+        let ids: Vec<String> = picked.iter().map(|one| links::segment(one.id)).collect();
+        let mut frame = Frame::new(names.join(" beside "), Section::Compare, "POST /api/v1/compare").wide();
+        frame.example = comparison.example;
+        let stages: Vec<Row> = comparison.stages.iter().rev().map(stage_row).collect();
+        let notes = comparison.pathways.iter().enumerate().filter_map(|(index, one)| {
+            let parts: Vec<f64> = stages.iter().filter_map(|row| row.cells.get(index)?.0).collect();
+            rounding_note(&format!("The stages of {}", one.name), &parts, one.net_g_co2e_per_mj, 2)
+        });
+        Compare {
+            frame,
+            title: format!("{} pathways", count_words(picked.len())),
+            lead: lead(&comparison),
+            columns: columns(picked, book),
+            notes: notes.collect(),
+            terms: comparison
+                .terms
+                .iter()
+                .map(|row| figures(row.term.name(), &row.g_co2e_per_mj, &row.difference_g_co2e_per_mj))
+                .collect(),
+            net: Some(figures(
+                "Net",
+                &comparison.pathways.iter().map(|one| one.net_g_co2e_per_mj).collect::<Vec<_>>(),
+                &comparison.pathways.iter().map(|one| one.difference_g_co2e_per_mj).collect::<Vec<_>>(),
+            )),
+            unlike: comparison
+                .unlike
+                .iter()
+                .map(|one| (super::card::spec::named(&one.setting), one.meaning.clone(), one.values.clone()))
+                .collect(),
+            stages,
+            choices,
+            csv: format!("/compare.csv?ids={}", ids.join(",")),
+            ask: None,
+        }
+    }
+
+    /// Stages and terms as one CSV.
+    pub fn table(&self) -> Table {
+        let mut table = Table::default();
+        table.head = vec!["part".to_owned(), "name".to_owned()];
+        for column in &self.columns {
+            table.head.push(format!("{}, g CO2e/MJ", column.name));
+        }
+        let parts = [("stage", &self.stages), ("term", &self.terms)];
+        for (part, rows) in parts {
+            for row in rows {
+                let mut cells: Vec<Cell> = vec![part.into(), row.name.clone().into()];
+                cells.extend(row.cells.iter().map(|(figure, _)| Cell::from(*figure)));
+                table.rows.push(cells);
+            }
+        }
+        table
+    }
+}
+
+fn count_words(count: usize) -> &'static str {
+    match count {
+        2 => "Two",
+        3 => "Three",
+        4 => "Four",
+        5 => "Five",
+        _ => "Six",
+    }
+}
+
+fn stage_row(row: &crate::core::levers::compare::StageRow) -> Row {
+    let mut names: Vec<&str> = row.names.iter().flatten().map(String::as_str).collect();
+    names.dedup();
+    let name = if names.is_empty() { row.key.clone() } else { names.join(", ") };
+    let differences = row.difference_g_co2e_per_mj.iter().enumerate();
+    Row {
+        name,
+        cells: differences.map(|(i, d)| (row.g_co2e_per_mj.get(i).copied().flatten(), (i > 0).then_some(*d))).collect(),
+    }
+}
+
+fn figures(name: &str, all: &[f64], differences: &[f64]) -> Row {
+    let cells = all.iter().zip(differences).enumerate();
+    Row {
+        name: name.to_owned(),
+        cells: cells.map(|(i, (g, d))| (Some(*g), (i > 0).then_some(*d))).collect(),
+    }
+}
+
+fn lead(comparison: &Comparison) -> String {
+    let lowest = comparison.pathways.iter().min_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
+    let (Some(first), Some(lowest)) = (comparison.pathways.first(), lowest) else { return String::new() };
+    let (one, difference) = if lowest == first {
+        let highest = comparison.pathways.iter().max_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
+        let highest = highest.unwrap_or(first);
+        (highest, format!("{} is lowest, {} g CO2e/MJ below {}.", first.name, show(highest.difference_g_co2e_per_mj.abs(), 1), highest.name))
+    } else {
+        (lowest, format!("{} is lowest, {} g CO2e/MJ below {}.", lowest.name, show(lowest.difference_g_co2e_per_mj.abs(), 1), first.name))
+    };
+    let makes = one.largest.as_ref().map(|largest| {
+        let kind = StageKind::from_name(&largest.kind).map_or("published default values", StageKind::words);
+        let side = if largest.difference_g_co2e_per_mj < 0.0 { "less" } else { "more" };
+        format!(" {} makes most of it: {} g {side}.", super::show::capital(kind), show(largest.difference_g_co2e_per_mj.abs(), 1))
+    });
+    format!("{difference}{}", makes.unwrap_or_default())
+}
+
+fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
+    let ladders: Vec<Ladder> = picked
+        .iter()
+        .enumerate()
+        .map(|(index, one)| {
+            let weights = super::weights(book, &one.found.gwp_set);
+            super::ladder::model(one.found, &weights, book.rule_sets.get(&one.found.rule_set), &format!("c{index}"))
+        })
+        .collect();
+    let scale = ladder::common_scale(&ladders);
+    picked
+        .iter()
+        .zip(ladders)
+        .enumerate()
+        .map(|(index, (one, ladder))| Column {
+            name: one.pathway.name.clone(),
+            href: links::pathway(one.id),
+            verdict: Verdict::of(one.found, book.rule_sets.get(&one.found.rule_set)),
+            ladder: Markup(ladder::draw(&Ladder { scale, ..ladder }, Form::Narrow).unwrap_or_default()),
+            base: index == 0,
+        })
+        .collect()
+}
+
+/// The ids that an address names, each once, at most so many as fit side by side; and whether it named more.
+pub fn ids(query: &str) -> (Vec<String>, bool) {
+    let mut out: Vec<String> = Vec::new();
+    for (name, value) in query.split('&').filter_map(|pair| pair.split_once('=')) {
+        if name == "ids" || name == "id" {
+            let parts = value.split(',').flat_map(|part| part.split("%2C")).flat_map(|part| part.split("%2c"));
+            for id in parts.filter(|id| !id.is_empty()) {
+                if !out.iter().any(|known| known == id) {
+                    out.push(id.to_owned());
+                }
+            }
+        }
+    }
+    let more = out.len() > MOST;
+    out.truncate(MOST);
+    (out, more)
+}

@@ -1,0 +1,79 @@
+//! What stands round every page: its title, the place in the navigation, the same data as an address.
+
+/// A word of the navigation.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Section {
+    /// Pathways.
+    Pathways,
+    /// Compare.
+    Compare,
+    /// Factors, materials and rule sets.
+    Factors,
+    /// The API in words.
+    Api,
+    /// None of them: a page that says what went wrong.
+    Elsewhere,
+}
+
+/// The frame of a page.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Frame {
+    /// Stands in the title of the window before the name of the program.
+    pub title: String,
+    /// The place in the navigation.
+    pub section: Section,
+    /// The requests that give the same as data, such as `GET /api/v1/pathways`; none where there is no data.
+    pub data: Vec<String>,
+    /// True if the page shows demonstration data.
+    pub example: bool,
+    /// True for pages that print in landscape.
+    pub wide: bool,
+}
+
+impl Frame {
+    /// A frame with one request that gives the same as data.
+    pub fn new(title: impl Into<String>, section: Section, data: impl Into<String>) -> Frame {
+        Frame {
+            title: title.into(),
+            section,
+            data: vec![data.into()],
+            example: false,
+            wide: false,
+        }
+    }
+
+    /// A frame for a page that stands for no data.
+    pub fn bare(title: impl Into<String>, section: Section) -> Frame {
+        Frame {
+            data: Vec::new(),
+            ..Frame::new(title, section, "")
+        }
+    }
+
+    /// The same frame, marked as demonstration data if it is.
+    #[must_use]
+    pub fn example(self, example: bool) -> Frame {
+        Frame { example, ..self }
+    }
+
+    /// The same frame for a page that prints in landscape.
+    #[must_use]
+    pub fn wide(self) -> Frame {
+        Frame { wide: true, ..self }
+    }
+
+    /// The address of an embedded file.
+    pub fn asset(&self, name: &str) -> &'static str {
+        super::assets::url(name)
+    }
+
+    /// The words of the navigation: address, word, whether this page is there.
+    pub fn words(&self) -> [(&'static str, &'static str, bool); 4] {
+        [
+            ("/", "Pathways", self.section == Section::Pathways),
+            ("/compare", "Compare", self.section == Section::Compare),
+            ("/factors", "Factors", self.section == Section::Factors),
+            ("/api", "API", self.section == Section::Api),
+        ]
+    }
+}
