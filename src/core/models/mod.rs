@@ -14,7 +14,9 @@ pub mod haul;
 pub mod heat_from;
 pub mod lime;
 pub mod parameter;
+pub mod refusal;
 pub mod soil_n2o;
+pub mod still;
 #[cfg(test)]
 mod testing;
 pub mod urea;
