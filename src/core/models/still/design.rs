@@ -160,7 +160,7 @@ fn steps(request: &Request, design: &Design) -> Vec<Step> {
         step(
             format!(
                 "wash of {} % vol is {} % by mass",
-                plain(request.wash_percent_vol),
+                short(request.wash_percent_vol),
                 percent(design.wash_mass_fraction)
             ),
             column.feed_x,
@@ -168,13 +168,13 @@ fn steps(request: &Request, design: &Design) -> Vec<Step> {
             STRENGTH,
         ),
         step(
-            format!("product of {} % by mass", plain(request.product_percent_mass)),
+            format!("product of {} % by mass", short(request.product_percent_mass)),
             column.product_x,
             "mol ethanol per mol",
             "",
         ),
         step(
-            format!("stillage of {} % by mass", plain(request.stillage_percent_mass)),
+            format!("stillage of {} % by mass", short(request.stillage_percent_mass)),
             column.stillage_x,
             "mol ethanol per mol",
             "",
