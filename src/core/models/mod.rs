@@ -6,6 +6,8 @@ pub mod boiler;
 pub mod chp;
 pub mod combustion;
 pub mod constants;
+pub mod dehydration;
+pub mod distillation;
 pub mod factors;
 pub mod fermentation_co2;
 pub mod flow;
@@ -14,7 +16,9 @@ pub mod haul;
 pub mod heat_from;
 pub mod lime;
 pub mod parameter;
+pub mod refusal;
 pub mod soil_n2o;
+pub mod still;
 #[cfg(test)]
 mod testing;
 pub mod urea;
@@ -53,6 +57,8 @@ pub const ALL: &[&Model] = &[
     &boiler::MODEL,
     &chp::MODEL,
     &fermentation_co2::MODEL,
+    &distillation::MODEL,
+    &dehydration::MODEL,
     &combustion::MODEL,
 ];
 

@@ -244,8 +244,9 @@ pub struct Bench {
     pub book: Book,
     pub rules: RuleSet,
     pub output: Option<Measured>,
+    pub intakes: Vec<Measured>,
     pub neighbours: Vec<(String, String)>,
-    period: Period,
+    pub period: Period,
 }
 
 impl Default for Bench {
@@ -276,6 +277,7 @@ impl Default for Bench {
                 strength_given: false,
                 celsius: None,
             }),
+            intakes: Vec::new(),
             neighbours: Vec::new(),
             period: Period {
                 from: day("2026-01-01"),
@@ -351,7 +353,7 @@ impl Bench {
             rules: &self.rules,
             stage_kind: StageKind::Cultivation,
             output: self.output.as_ref(),
-            intakes: &[],
+            intakes: &self.intakes,
             neighbours: &self.neighbours,
             period: &self.period,
             harvest_year: 2026,

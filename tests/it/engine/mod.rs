@@ -6,3 +6,5 @@ mod models;
 mod published;
 mod refusals;
 mod shapes;
+mod still;
+mod strengths;
