@@ -6,6 +6,7 @@ use crate::support::documents::{NAMES, all_bad, chain, chain_with, ten_megabytes
 use serde_json::Value;
 use std::path::PathBuf;
 use tempfile::TempDir;
+use wheelwort::core::documents::Assessment;
 
 fn file(folder: &TempDir, name: &str, bytes: &[u8]) -> PathBuf {
     let path = folder.path().join(name);
@@ -24,13 +25,9 @@ async fn a_file_gives_the_assessment_that_the_api_gives() {
     let output = run(&["evaluate".as_ref(), path.as_os_str()], b"");
     assert_eq!(output.status.code(), Some(0), "{}", text(&output.stderr));
     assert!(output.stderr.is_empty());
-    let printed: Value = serde_json::from_slice(&output.stdout).expect("JSON");
-    let answered = TestApp::new()
-        .await
-        .post("/api/v1/evaluate", &chain())
-        .await
-        .json();
-    assert_eq!(printed, answered);
+    let read = |bytes: &[u8]| serde_json::from_slice::<Assessment>(bytes).expect("an assessment");
+    let answered = TestApp::new().await.post("/api/v1/evaluate", &chain()).await;
+    assert_eq!(read(&output.stdout), read(&answered.bytes));
 }
 
 #[test]
