@@ -2,7 +2,7 @@
 
 use super::reading::{Reading, Row};
 use crate::core::domain::factor::TermValues;
-use crate::core::domain::{Edition, PathwayDefault};
+use crate::core::domain::{Edition, PathwayDefault, ProcessHeat};
 
 /// Feedstocks as printed, and the built-in materials that may use their rows.
 const FEEDSTOCKS: [(&str, &[&str]); 5] = [
@@ -24,6 +24,8 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
         "feedstock",
         "description",
         "process_fuel",
+        "process_config",
+        "stillage_biogas",
         "total_default",
         "source",
         "status",
@@ -45,6 +47,24 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
             }),
             description: row.text("description").to_owned(),
             process_fuel: row.text("process_fuel").to_owned(),
+            process_heat: match row.text("process_config") {
+                "boiler" => Some(ProcessHeat::Boiler),
+                "chp" => Some(ProcessHeat::Chp),
+                "not specified" => None,
+                other => {
+                    reading.problem(&row.place(), format!("\"{other}\" is no way to make heat"));
+                    None
+                }
+            },
+            stillage_digested: match row.text("stillage_biogas") {
+                "yes" => Some(true),
+                "no" => Some(false),
+                "n/a" => None,
+                other => {
+                    reading.problem(&row.place(), format!("\"{other}\" is neither yes, no nor n/a"));
+                    None
+                }
+            },
             default: values(reading, &row, "default"),
             typical: values(reading, &row, "typical"),
             citation: reading.citation(&row, &format!("{}/{id}", edition.id)),

@@ -2,6 +2,7 @@
 
 pub mod amount;
 pub mod assessment;
+pub mod blend;
 pub mod canonical;
 pub mod input;
 pub mod json;

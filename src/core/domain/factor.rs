@@ -95,6 +95,15 @@ impl Factor {
     }
 }
 
+/// Where a published pathway's process heat comes from.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum ProcessHeat {
+    /// An ordinary boiler.
+    Boiler,
+    /// Combined heat and power, for all of the process heat (footnote of Directive (EU) 2018/2001 Annex V Parts A and D).
+    Chp,
+}
+
 /// The disaggregated default (and typical) values of one published pathway, g CO2e/MJ.
 #[derive(Clone, Debug, PartialEq)]
 pub struct PathwayDefault {
@@ -108,6 +117,10 @@ pub struct PathwayDefault {
     pub description: String,
     /// Process fuel as printed.
     pub process_fuel: String,
+    /// Where the process heat comes from; none where the row does not say.
+    pub process_heat: Option<ProcessHeat>,
+    /// Whether the stillage is digested to biogas; none where the row does not say.
+    pub stillage_digested: Option<bool>,
     /// Default values: the only ones that serve compliance.
     pub default: TermValues,
     /// Typical values: shown, never usable for compliance.

@@ -10,7 +10,7 @@ pub mod stage_kind;
 
 pub use book::Book;
 pub use citation::{Citation, Cited, Status};
-pub use factor::{Counts, Edition, Factor, PathwayDefault};
+pub use factor::{Counts, Edition, Factor, PathwayDefault, ProcessHeat};
 pub use gases::{Gas, GasVector, GwpSet, PublishedGases};
 pub use material::{CarbonClass, Material};
 pub use rule_set::RuleSet;

@@ -3,6 +3,7 @@
 
 mod allocation;
 pub mod assess;
+pub mod blend;
 pub mod carbon;
 mod defaults;
 pub mod demand;
@@ -10,6 +11,7 @@ mod graph;
 mod inputs;
 mod inventory;
 pub mod materials;
+pub mod per_km;
 mod resolve;
 pub mod resolved;
 mod saving;

@@ -1,6 +1,8 @@
 //! The engine: documents with independent results, laws, published values, and what it refuses.
 
+mod blend;
 mod contract;
+mod defaults_table;
 mod laws;
 mod models;
 mod published;
