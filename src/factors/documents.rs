@@ -1,6 +1,6 @@
 //! Editions, factors and rule sets as documents. They are made from the published data, never read.
 
-use crate::core::domain::factor::{FuelSplit, TermValues, Use};
+use crate::core::domain::factor::{FuelSplit, ProcessHeat, TermValues, Use};
 use crate::core::domain::{
     Book, Citation, Counts, Edition, Factor, Gas, GwpSet, PathwayDefault, RuleSet, Status,
 };
@@ -59,6 +59,10 @@ pub struct PathwayDefaultDocument {
     pub description: String,
     /// Process fuel as printed.
     pub process_fuel: String,
+    /// Where the process heat comes from; null where the row does not say.
+    pub process_heat: Option<ProcessHeat>,
+    /// Whether the stillage is digested to biogas; null where the row does not say.
+    pub stillage_digested: Option<bool>,
     /// Default values: the only ones that serve compliance.
     pub default: DefaultValues,
     /// Typical values: shown, never usable for compliance.
@@ -246,6 +250,8 @@ impl PathwayDefaultDocument {
             feedstock_materials,
             description,
             process_fuel,
+            process_heat,
+            stillage_digested,
             default,
             typical,
             citation,
@@ -277,6 +283,8 @@ impl PathwayDefaultDocument {
             feedstock_materials,
             description,
             process_fuel,
+            process_heat,
+            stillage_digested,
             default,
             typical,
             citation,

@@ -1,9 +1,9 @@
 //! Lays the routes of everything together: the API, its description, health, assets and the pages; answers what is
 //! nowhere; and puts the layers around it all.
 
+use super::error_page;
 use super::extract::Limits;
 use super::openapi::{self, Document};
-use super::error_page;
 use super::problem::{Refusal, RefusalPage};
 use super::{assets, health, layers};
 use crate::app::App;

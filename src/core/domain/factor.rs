@@ -3,7 +3,9 @@
 use super::citation::Citation;
 use super::gases::PublishedGases;
 use crate::core::units::Unit;
+use serde::Serialize;
 use std::collections::BTreeMap;
+use utoipa::ToSchema;
 
 /// What one unit of a factor counts. It decides which amounts the factor takes.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -96,7 +98,8 @@ impl Factor {
 }
 
 /// Where a published pathway's process heat comes from.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, ToSchema)]
+#[serde(rename_all = "snake_case")]
 pub enum ProcessHeat {
     /// An ordinary boiler.
     Boiler,

@@ -10,7 +10,11 @@ pub fn segment(text: &str) -> String {
         match byte {
             b'a'..=b'z' | b'A'..=b'Z' | b'0'..=b'9' | b'-' | b'_' | b'.' | b'~' => out.push(char::from(byte)),
             _ => {
-                let digit = |half: u8| char::from_digit(u32::from(half), 16).unwrap_or('0').to_ascii_uppercase();
+                let digit = |half: u8| {
+                    char::from_digit(u32::from(half), 16)
+                        .unwrap_or('0')
+                        .to_ascii_uppercase()
+                };
                 out.push('%');
                 out.push(digit(byte >> 4));
                 out.push(digit(byte & 15));
@@ -53,13 +57,20 @@ pub fn factor(full: &str) -> String {
 
 /// The request that gives the assessment of a revision.
 pub fn data_assessment(id: &str, revision: u64) -> String {
-    format!("GET /api/v1/pathways/{}/assessment?revision={revision}", segment(id))
+    format!(
+        "GET /api/v1/pathways/{}/assessment?revision={revision}",
+        segment(id)
+    )
 }
 
 /// The anchor of a workings entry: `#stage-input`, or `#stage` for a stage.
 pub fn workings_anchor(stage: &str, input: &str) -> String {
     let clean = |text: &str| text.replace([':', '/'], "-");
-    if input.is_empty() { clean(stage) } else { format!("{}-{}", clean(stage), clean(input)) }
+    if input.is_empty() {
+        clean(stage)
+    } else {
+        format!("{}-{}", clean(stage), clean(input))
+    }
 }
 
 /// The anchor on a stage page of the field that a finding points at: `inputs.gas` stands at `#input-gas`.
@@ -79,7 +90,10 @@ pub fn field_id(pointer: &str) -> String {
     let mut out = String::from("f");
     for part in pointer.split('/').filter(|part| !part.is_empty()) {
         out.push('-');
-        out.extend(part.chars().map(|c| if c.is_ascii_alphanumeric() { c } else { '-' }));
+        out.extend(
+            part.chars()
+                .map(|c| if c.is_ascii_alphanumeric() { c } else { '-' }),
+        );
     }
     out
 }
@@ -98,7 +112,10 @@ pub fn stage_of<'p, 'q>(pathway: &'p Pathway, pointer: &'q str) -> Option<(&'p S
 pub fn place(id: &str, pathway: &Pathway, pointer: &str) -> (Option<String>, String) {
     match stage_of(pathway, pointer) {
         Some((at, "")) => (Some(stage(id, &at.key)), at.title().to_owned()),
-        Some((at, rest)) => (Some(format!("{}#{}", stage(id, &at.key), field_id(rest))), at.title().to_owned()),
+        Some((at, rest)) => (
+            Some(format!("{}#{}", stage(id, &at.key), field_id(rest))),
+            at.title().to_owned(),
+        ),
         None => (None, pointer.trim_start_matches('/').to_owned()),
     }
 }
@@ -112,7 +129,10 @@ mod tests {
         assert_eq!(stage("a b", "x/y"), "/pathways/a%20b/stages/x%2Fy");
         assert_eq!(factor("eu-2022-996/fert_n_an"), "/factors/eu-2022-996/fert_n_an");
         assert_eq!(field_anchor("inputs.gas"), "#input-gas");
-        assert_eq!(field_id("/inputs/0/model/distance/value"), "f-inputs-0-model-distance-value");
+        assert_eq!(
+            field_id("/inputs/0/model/distance/value"),
+            "f-inputs-0-model-distance-value"
+        );
         assert_eq!(workings_anchor("default:e_td", "e_td"), "default-e_td-e_td");
     }
 }
