@@ -372,7 +372,6 @@ pub(super) mod tests {
                 ("K-01", "product_strength_percent_mass"),
                 ("K-01", "coupling_factor"),
                 ("K-01", "heat_from.efficiency_percent"),
-                ("K-02", "heat_from.fuel"),
                 ("K-02", "heat_from.fuel")
             ]
         );
