@@ -246,6 +246,9 @@ impl PathwayDefaultDocument {
             feedstock_materials,
             description,
             process_fuel,
+            // Both stand in the description, in words.
+            process_heat: _,
+            stillage_digested: _,
             default,
             typical,
             citation,
