@@ -428,3 +428,42 @@ fn the_document_is_plain_json() {
     );
     assert!(value["best"].is_string());
 }
+
+fn demo(file: &str) -> Value {
+    let path = std::path::Path::new(env!("CARGO_MANIFEST_DIR"))
+        .join("src/demo/pathways")
+        .join(file);
+    serde_json::from_slice(&std::fs::read(path).unwrap()).unwrap()
+}
+
+#[test]
+fn the_demonstration_chains_find_their_rows() {
+    // Whole chains with models: gas-fired heat and power for wheat; lignin cake of its own for straw.
+    let wheat = of(&demo("a_wheat_chp_rail.json"));
+    assert_eq!(
+        row(&wheat, CHP).process_fits,
+        Answer::Yes,
+        "{:?}",
+        row(&wheat, CHP).reasons
+    );
+    assert_eq!(row(&wheat, BOILER).process_fits, Answer::No);
+    let soil = term(&wheat, "e_ec_soil_n2o").actual_g_co2e_per_mj.unwrap();
+    assert!(soil > 0.0 && soil < term(&wheat, "e_ec").actual_g_co2e_per_mj.unwrap());
+    assert_eq!(best(&wheat).lawful, Answer::Yes);
+    let straw = of(&demo("d_straw_lignin.json"));
+    let id = "eu-2018-2001/wheat_straw";
+    assert_eq!(
+        row(&straw, id).feedstock_fits,
+        Answer::Yes,
+        "{:?}",
+        row(&straw, id).reasons
+    );
+    assert_eq!(row(&straw, id).process_fits, Answer::Yes);
+    let cane = of(&demo("e_cane_imported.json"));
+    assert!(
+        cane.combinations
+            .iter()
+            .filter(|c| !c.defaults.is_empty())
+            .all(|c| c.lawful != Answer::Yes)
+    );
+}

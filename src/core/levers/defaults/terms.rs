@@ -3,6 +3,7 @@
 use super::combine::term_of;
 use super::{Answer, Combination, PublishedRow, PublishedValue, Subject, TermRow, attempt};
 use crate::core::documents::Assessment;
+use crate::core::documents::input::OneOrMany;
 use crate::core::documents::pathway::DefaultKey;
 use crate::core::domain::factor::TermValues;
 use crate::core::domain::{PathwayDefault, Term};
@@ -135,7 +136,7 @@ fn soil_n2o(subject: &Subject, assessment: &Assessment) -> Option<f64> {
         .iter()
         .flat_map(|stage| stage.inputs.iter().map(move |input| (stage.key.as_str(), input)))
         .filter(|(_, input)| {
-            let models = input.model.iter().flat_map(|models| models.list());
+            let models = input.model.iter().flat_map(OneOrMany::list);
             models.into_iter().any(|model| model.kind == "soil_n2o")
         })
         .map(|(stage, input)| (stage, input.key.as_str()))
