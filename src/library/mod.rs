@@ -8,6 +8,7 @@ mod eu_electricity;
 mod eu_factors;
 mod eu_soils;
 mod ipcc_fuels;
+mod land;
 mod materials;
 mod reading;
 mod rules;
@@ -59,6 +60,8 @@ fn read() -> Result<Loaded, Vec<String>> {
         rule_sets: rules::rule_sets(&mut reading),
         gwp_sets: rules::gwp_sets(&mut reading),
         soils: soils::read(&mut reading),
+        land: land::carbon(&mut reading),
+        limits: land::limits(&mut reading),
         editions,
     };
     checks::run(&mut reading, &book);

@@ -2,6 +2,7 @@
 //! and are never used again. `registry` lists every check the program runs and where it runs.
 
 pub mod balances;
+pub mod capture;
 pub mod complete;
 pub mod recompute;
 pub mod registry;
@@ -27,6 +28,7 @@ pub fn run(subject: &Subject) -> Vec<Finding> {
     recompute::run(subject, &mut findings);
     sharing::run(subject, &mut findings);
     balances::run(subject, &mut findings);
+    capture::run(subject, &mut findings);
     complete::run(subject, &mut findings);
     findings
 }

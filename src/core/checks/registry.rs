@@ -203,6 +203,13 @@ pub const CHECKS: &[Check] = &[
         OnFigures,
         "computed from molar masses",
     ),
+    check(
+        "C-03",
+        "Captured CO2 not above CO2 formed",
+        Block,
+        OnAssessment,
+        "computed; IR (EU) 2022/996 Art. 14(3)",
+    ),
     check("C-16", "Crop carbon closes", Block, OnAssessment, "own"),
     check("C-18", "Efficiency of heat and power", Warn, OnFigures, "own"),
     check(
@@ -225,6 +232,34 @@ pub const CHECKS: &[Check] = &[
         Info,
         OnAssessment,
         "SOR/2022-140 (CA) Sch. 21 pt 7(a)(iii),(v)",
+    ),
+    check(
+        "F-08",
+        "Soil-carbon credit conditions",
+        Block,
+        OnFigures,
+        "Dir. (EU) 2018/2001 Annex V C pt 6; IR (EU) 2022/996 Annex V",
+    ),
+    check(
+        "F-10",
+        "Broken commitment is added back",
+        Block,
+        OnFigures,
+        "IR (EU) 2022/996 Annex V",
+    ),
+    check(
+        "G-01",
+        "Replacement credit only for biogenic CO2 that displaces fossil CO2",
+        Block,
+        OnAssessment,
+        "IR (EU) 2022/996 Art. 14(3); Dir. (EU) 2018/2001 Annex V C pt 15",
+    ),
+    check(
+        "G-02",
+        "Storage credit needs proof of storage",
+        Block,
+        OnAssessment,
+        "IR (EU) 2022/996 Art. 20(4); Dir. (EU) 2018/2001 Annex V C pt 14",
     ),
     check(
         "G-04",

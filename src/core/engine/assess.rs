@@ -2,7 +2,7 @@
 
 use super::carbon::{self, Basis};
 use super::demand::{Demand, demand};
-use super::inventory::{counts, recipe_gases, totals};
+use super::inventory::{counts, fuel_steps, recipe_gases, totals};
 use super::resolve::flow_words;
 use super::resolved::{Input, Resolved, Stage};
 use super::saving;
@@ -161,8 +161,8 @@ fn stage(resolved: &Resolved, demand: &Demand, j: usize, workings: bool) -> Stag
     let (mut sum, mut unshared, mut gases) = (0.0, 0.0, GasVector::ZERO);
     let mut inputs = Vec::with_capacity(stage.inputs.len());
     for input in &stage.inputs {
-        let recipe = recipe_gases(input, whole);
-        let result = input_result(resolved, input, recipe, scale, workings);
+        let recipe = recipe_gases(input, demand.fuel_mj[j]);
+        let result = input_result(resolved, input, recipe, (scale, demand.fuel_mj[j]), workings);
         sum += result.g_co2e_per_mj;
         gases += result.gases_g_per_mj;
         if counts(resolved, input) {
@@ -213,7 +213,7 @@ fn input_result(
     resolved: &Resolved,
     input: &Input,
     recipe: GasVector,
-    scale: f64,
+    (scale, fuel_mj): (f64, f64),
     workings: bool,
 ) -> InputResult {
     let term = input.term.unwrap_or(Term::Ep);
@@ -233,7 +233,7 @@ fn input_result(
         None => None,
     };
     let steps = match workings {
-        true => input_steps(resolved, input, recipe, scale, replaced.as_deref()),
+        true => input_steps(resolved, input, recipe, (scale, fuel_mj), replaced.as_deref()),
         false => Vec::new(),
     };
     InputResult {
@@ -252,19 +252,11 @@ fn input_steps(
     resolved: &Resolved,
     input: &Input,
     recipe: GasVector,
-    scale: f64,
+    (scale, fuel_mj): (f64, f64),
     replaced: Option<&str>,
 ) -> Vec<Step> {
     let mut steps = input.steps.clone();
-    if recipe != input.gases {
-        let text = "limits and bonuses per MJ of fuel grown on the area".to_owned();
-        steps.push(step(
-            text,
-            recipe[Gas::Co2Land],
-            "kg co2_land",
-            &resolved.rules.source,
-        ));
-    }
+    steps.extend(fuel_steps(input, fuel_mj));
     let weights = resolved.gwp.weights();
     let parts: Vec<String> = Gas::ALL
         .into_iter()

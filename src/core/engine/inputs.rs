@@ -24,6 +24,7 @@ pub fn inputs(
     findings: &mut Vec<Finding>,
 ) -> Vec<Input> {
     let capture_term = capture_term(stage);
+    one_use(stage, at, problems);
     let inputs_at = at.field("inputs");
     let mut out = Vec::with_capacity(stage.inputs.len());
     for (index, document) in stage.inputs.iter().enumerate() {
@@ -51,6 +52,7 @@ pub fn inputs(
             );
         } else if let Some(gases) = document.gases {
             input.gases = gases;
+            input.biogenic_kg = gases[Gas::Co2Biogenic];
             for (gas, kg) in gases.entries().filter(|(_, kg)| *kg != 0.0) {
                 let unit = format!("kg {}", gas.name());
                 input
@@ -72,7 +74,29 @@ pub fn inputs(
         trust(document, &origins, &mut input);
         out.push(input);
     }
+    if out.iter().any(|input| !input.per_fuel.is_empty()) {
+        let area = recipe_ha(stage, setting);
+        out.iter_mut().for_each(|input| input.recipe_ha = area);
+    }
     out
+}
+
+/// Area of one recipe, ha: the largest that the output, an intake or the models of one input name.
+fn recipe_ha(stage: &Stage, setting: &Setting) -> Option<f64> {
+    let flows = setting.output.into_iter().chain(setting.intakes);
+    let flows = flows.filter_map(Measured::area_m2).map(|m2| m2 / 1e4);
+    let area = |model: &ModelUse| match model.parameters.get("area_ha")? {
+        serde_json::Value::Object(amount) => {
+            let (value, unit) = (amount.get("value")?.as_f64()?, amount.get("unit")?.as_str()?);
+            Quantity::read_as(value, unit, Dimension::AREA)
+                .ok()
+                .map(|m2| m2 / 1e4)
+        }
+        plain => plain.as_f64(),
+    };
+    let inputs = stage.inputs.iter().filter_map(|input| input.model.as_ref());
+    let named = inputs.map(|uses| uses.list().iter().filter_map(area).sum::<f64>());
+    flows.chain(named).reduce(f64::max)
 }
 
 /// The term of a capture stage's other inputs: that of its capture model.
@@ -87,6 +111,33 @@ fn capture_term(stage: &Stage) -> Term {
                 && model.parameters.get("use").and_then(serde_json::Value::as_str) == Some("store")
         });
     if stored { Term::Eccs } else { Term::Eccr }
+}
+
+/// A capture stage has a capture model, and its uses are one: its other inputs stand in the term of that use.
+fn one_use(stage: &Stage, at: &Place, problems: &mut Problems) {
+    if stage.kind != StageKind::Capture {
+        return;
+    }
+    let models = stage.inputs.iter().filter_map(|input| input.model.as_ref());
+    let captures = models
+        .flat_map(OneOrMany::list)
+        .filter(|model| model.kind == "capture");
+    let mut uses: Vec<Option<&str>> = captures
+        .map(|model| model.parameters.get("use").and_then(serde_json::Value::as_str))
+        .collect();
+    uses.dedup();
+    let (detail, remedy) = match uses[..] {
+        [_] => return,
+        [] => (
+            "A stage of kind capture has no model of kind capture.",
+            "Add an input with a model of kind capture.",
+        ),
+        _ => (
+            "The CO2 of one stage is both stored and in place of fossil CO2.",
+            "Give each use a capture stage of its own.",
+        ),
+    };
+    problems.add(at.field("inputs"), detail, remedy);
 }
 
 fn check_extras(document: &InputDocument, at: &Place, problems: &mut Problems) {
@@ -212,6 +263,9 @@ fn by_model(
             *input.fermentation_kg.get_or_insert(0.0) += kg;
         }
         input.biogenic_kg += outcome.biogenic_kg.unwrap_or(outcome.gases[Gas::Co2Biogenic]);
+        if let Some(kg) = outcome.captured_kg {
+            *input.captured_kg.get_or_insert(0.0) += kg;
+        }
         input.per_fuel.extend(outcome.per_fuel);
         input.gases += outcome.gases;
         input.is_soil_n2o |= model.kind == "soil_n2o";

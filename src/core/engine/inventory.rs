@@ -2,9 +2,11 @@
 
 use super::demand::Demand;
 use super::resolved::{Input, Resolved};
-use crate::core::documents::assessment::Terms;
+use crate::core::documents::assessment::{Step, Terms};
 use crate::core::domain::{Gas, GasVector, Term};
 use crate::core::models::PerFuel;
+use crate::core::models::factors::step;
+use crate::core::units::rounding::plain;
 
 /// The net by term and the gas vector behind it.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
@@ -22,24 +24,61 @@ pub fn counts(resolved: &Resolved, input: &Input) -> bool {
     input.replaced.is_none() && input.term.is_some_and(|term| !resolved.rules.leaves_out(term))
 }
 
-/// Gases per recipe with the parts that depend on the fuel grown on an area; `whole` is recipes per MJ with all shares 1.
-pub fn recipe_gases(input: &Input, whole: f64) -> GasVector {
+/// Gases per recipe with the parts that depend on the fuel grown on an area; `fuel_mj` is the fuel that the crop of one
+/// recipe makes, all shares 1.
+pub fn recipe_gases(input: &Input, fuel_mj: f64) -> GasVector {
+    parts(input, fuel_mj).fold(input.gases, |mut gases, (part, mj)| {
+        gases[Gas::Co2Land] += capped(part, mj) - part.claim_kg + part.add_g_per_mj * mj / 1000.0;
+        gases
+    })
+}
+
+/// Every part with the fuel that its own area grows, MJ: the area is a part of the recipe's.
+fn parts(input: &Input, fuel_mj: f64) -> impl Iterator<Item = (&PerFuel, f64)> {
+    let named: f64 = input.per_fuel.iter().map(|part| part.area_ha).sum();
+    let area = input.recipe_ha.unwrap_or(0.0).max(named);
     input
         .per_fuel
         .iter()
-        .fold(input.gases, |gases, part| with_fuel(gases, part, whole))
+        .map(move |part| (part, fuel_mj * part.area_ha / area))
 }
 
-fn with_fuel(mut gases: GasVector, part: &PerFuel, whole: f64) -> GasVector {
-    if whole <= 0.0 {
-        return gases;
+/// A claim, or one added back, no larger than its cap, kg.
+fn capped(part: &PerFuel, mj: f64) -> f64 {
+    match part.cap_g_per_mj {
+        Some(cap) => {
+            let limit = cap * mj / 1000.0;
+            part.claim_kg.max(-limit).min(limit)
+        }
+        None => part.claim_kg,
     }
-    let mj = 1.0 / whole;
-    if let Some(cap) = part.cap_g_per_mj {
-        gases[Gas::Co2Land] = gases[Gas::Co2Land].max(-cap * mj / 1000.0);
+}
+
+/// The arithmetic of the parts that depend on the fuel grown on an area.
+pub fn fuel_steps(input: &Input, fuel_mj: f64) -> Vec<Step> {
+    let mut steps = Vec::new();
+    for (part, mj) in parts(input, fuel_mj) {
+        let area = format!(
+            "fuel grown on {} ha per recipe, all shares 1",
+            plain(part.area_ha)
+        );
+        steps.push(step(area, mj, "MJ", ""));
+        if let Some(cap) = part.cap_g_per_mj {
+            let text = format!(
+                "claim {} kg, at most {} g per MJ x {} MJ / 1000",
+                plain(part.claim_kg),
+                plain(cap),
+                plain(mj)
+            );
+            steps.push(step(text, capped(part, mj), "kg co2_land", &part.source));
+        }
+        if part.add_g_per_mj != 0.0 {
+            let text = format!("{} g per MJ x {} MJ / 1000", plain(part.add_g_per_mj), plain(mj));
+            let kg = part.add_g_per_mj * mj / 1000.0;
+            steps.push(step(text, kg, "kg co2_land", &part.source));
+        }
     }
-    gases[Gas::Co2Land] += part.add_g_per_mj * mj / 1000.0;
-    gases
+    steps
 }
 
 /// Adds everything up without keeping the parts: the shortest way from a plan to the net.
@@ -47,7 +86,7 @@ pub fn totals(resolved: &Resolved, demand: &Demand) -> Totals {
     let mut totals = Totals::default();
     for &j in &resolved.order {
         for input in &resolved.stages[j].inputs {
-            let per_mj = recipe_gases(input, demand.whole[j]) * (1000.0 * demand.scale[j]);
+            let per_mj = recipe_gases(input, demand.fuel_mj[j]) * (1000.0 * demand.scale[j]);
             let co2e = per_mj.co2e(resolved.gwp);
             match input.term {
                 Some(term) if counts(resolved, input) => {

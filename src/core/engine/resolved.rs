@@ -107,8 +107,12 @@ pub struct Input {
     pub fermentation_kg: Option<f64>,
     /// Biogenic CO2 for the carbon balance, kg per recipe.
     pub biogenic_kg: f64,
-    /// A part that counts per MJ of fuel grown on an area.
+    /// CO2 taken from the works by a capture, kg per recipe.
+    pub captured_kg: Option<f64>,
+    /// Parts that count per MJ of fuel grown on an area.
     pub per_fuel: Vec<PerFuel>,
+    /// Area of the whole recipe, ha, where the stage tells; the parts may stand for some of it.
+    pub recipe_ha: Option<f64>,
     /// True for a soil N2O model.
     pub is_soil_n2o: bool,
     /// Which default value replaced it.

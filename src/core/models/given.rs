@@ -233,6 +233,11 @@ impl<'a> Given<'a> {
         text_of(value, &self.at.field(name), self.problems).map(str::to_owned)
     }
 
+    /// True if the parameter is this word.
+    pub fn is_word(&self, name: &str, word: &str) -> bool {
+        self.value(name).and_then(Value::as_str) == Some(word)
+    }
+
     /// A factor as referred to, not yet looked up.
     pub fn reference(&mut self, name: &str) -> Option<FactorRef> {
         let value = self.value(name)?;

@@ -3,20 +3,27 @@
 
 pub mod alcoholometry;
 pub mod boiler;
+pub mod capture;
 pub mod chp;
 pub mod combustion;
 pub mod constants;
 pub mod dehydration;
 pub mod distillation;
+pub mod digester;
+pub mod dryer;
 pub mod factors;
 pub mod fermentation_co2;
 pub mod flow;
 pub mod given;
 pub mod haul;
 pub mod heat_from;
+pub mod land_stock;
+pub mod land_use_change;
 pub mod lime;
 pub mod parameter;
 pub mod refusal;
+pub mod residue_burning;
+pub mod soil_carbon;
 pub mod soil_n2o;
 pub mod still;
 #[cfg(test)]
@@ -60,6 +67,12 @@ pub const ALL: &[&Model] = &[
     &distillation::MODEL,
     &dehydration::MODEL,
     &combustion::MODEL,
+    &land_use_change::MODEL,
+    &soil_carbon::MODEL,
+    &capture::MODEL,
+    &residue_burning::MODEL,
+    &digester::MODEL,
+    &dryer::MODEL,
 ];
 
 /// The model of a kind.
@@ -97,19 +110,25 @@ pub struct Outcome {
     /// Biogenic CO2 for the carbon balance where it differs from the gases (the whole fuel of heat and power; none
     /// for fermentation, which stands in `fermentation_kg`), kg.
     pub biogenic_kg: Option<f64>,
+    /// CO2 taken from the works by a capture, kg; a check holds it against what the works can form.
+    pub captured_kg: Option<f64>,
     /// A limit on the deduction that only the whole chain can tell (soil carbon, degraded-land bonus).
     pub per_fuel: Option<PerFuel>,
 }
 
 /// A part of an outcome that counts per MJ of fuel grown on an area; the engine knows the yield of the chain.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct PerFuel {
     /// Area, ha per recipe.
     pub area_ha: f64,
+    /// CO2 of land in the outcome's gases that the cap bears on, kg: negative for a claim, positive for one added back.
+    pub claim_kg: f64,
+    /// The size of the claim may not pass this, g per MJ of fuel grown on the area.
+    pub cap_g_per_mj: Option<f64>,
     /// Added for every MJ of fuel grown on the area, g CO2 of land: negative for a bonus.
     pub add_g_per_mj: f64,
-    /// The deduction may not pass this, g per MJ of fuel grown on the area.
-    pub cap_g_per_mj: Option<f64>,
+    /// Document and point of cap or bonus.
+    pub source: String,
 }
 
 /// What a check has to say about a figure of a model; the engine adds where it stands.

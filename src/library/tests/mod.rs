@@ -4,6 +4,7 @@ mod broken;
 mod defaults;
 mod factors;
 mod ipcc;
+mod land;
 mod materials;
 mod soils;
 
@@ -61,6 +62,10 @@ fn whatever_is_from_memory_is_on_the_list() {
             assert_eq!(figure.status == Status::Memory, list.contains(&named), "{named}");
         }
     }
+    for (symbol, figure) in &book().land {
+        let named = format!("eu-2010-335 land carbon {symbol} = ");
+        assert_eq!(figure.status == Status::Memory, list.contains(&named), "{named}");
+    }
     for material in book().materials.values() {
         for (name, property) in &material.properties {
             let named = format!("material {} {name} = ", material.id);
@@ -94,6 +99,8 @@ fn every_figure_has_a_source() {
         assert!(tables.constants.values().all(|figure| figure.source.len() > 10));
         assert!(tables.residues.values().all(|row| row.citation.source.len() > 10));
     }
+    let limits = book.limits.values().flat_map(|set| set.values());
+    assert!(book.land.values().chain(limits).all(|figure| figure.source.len() > 10));
     for material in book.materials.values() {
         assert!(
             material.properties.values().all(|p| p.figure.source.len() > 10),

@@ -2,7 +2,9 @@
 
 mod blend;
 mod contract;
+mod deductions;
 mod defaults_table;
+mod land;
 mod laws;
 mod models;
 mod published;
