@@ -8,7 +8,7 @@ use anyhow::Context;
 use std::path::{Path, PathBuf};
 
 /// Runs until it is asked to stop.
-pub(super) fn run(config: Config) -> anyhow::Result<()> {
+pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     // The demonstration is for looking around: only what goes wrong is worth a line.
     let log = if config.log == "info" { "warn" } else { &config.log };
     telemetry::begin(log, config.log_format)?;
@@ -19,7 +19,7 @@ pub(super) fn run(config: Config) -> anyhow::Result<()> {
             .await
             .context("the demonstration cannot be stored")?;
         say("Demonstration: one invented company; nothing you do here is kept. Stop it with Ctrl+C. Open:");
-        serve(app, &config).await
+        serve(app, config).await
     })
 }
 

@@ -142,14 +142,14 @@ pub fn main() -> ExitCode {
 
 fn with_settings(
     settings: Result<crate::config::Config, ConfigError>,
-    run: fn(crate::config::Config) -> anyhow::Result<()>,
+    run: fn(&crate::config::Config) -> anyhow::Result<()>,
 ) -> u8 {
     match settings {
         Err(error) => {
             say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
             WRONG
         }
-        Ok(settings) => match run(settings) {
+        Ok(settings) => match run(&settings) {
             Ok(()) => 0,
             Err(error) => {
                 say(&format!("wheelwort: {error:#}"));

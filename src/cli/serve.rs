@@ -18,14 +18,14 @@ use tokio::net::TcpListener;
 const FILE: &str = "wheelwort.db";
 
 /// Runs until it is asked to stop.
-pub(super) fn run(config: Config) -> anyhow::Result<()> {
+pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     telemetry::begin(&config.log, config.log_format)?;
     running(async {
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
         let app = open(&folder).await?;
-        serve(app, &config).await
+        serve(app, config).await
     })
 }
 

@@ -4,11 +4,9 @@
     reason = "utoipa's macro writes the types of queries in full"
 )]
 
-use super::{
-    EditionDocument, EditionLine, FactorDocument, ModelDocument, RuleSetDocument, RuleSetLine, models, search,
-};
+use super::{EditionDocument, EditionLine, FactorDocument, ModelDocument, RuleSetLine, models, search};
 use crate::app::App;
-use crate::core::domain::{Factor, Material};
+use crate::core::domain::{Factor, GwpSet, Material, RuleSet};
 use crate::web::Refusal;
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
@@ -32,6 +30,8 @@ pub fn routes() -> OpenApiRouter<App> {
         .routes(routes!(material))
         .routes(routes!(rule_sets))
         .routes(routes!(rule_set))
+        .routes(routes!(gwp_sets))
+        .routes(routes!(gwp_set))
         .routes(routes!(model_list))
 }
 
@@ -230,18 +230,18 @@ async fn rule_sets(
 ///
 /// Everything the engine asks of it, each figure with its source.
 #[utoipa::path(get, path = "/rule-sets/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the rule set.")),
-    responses((status = 200, description = "The rule set.", body = RuleSetDocument)))]
+    responses((status = 200, description = "The rule set.", body = RuleSet)))]
 async fn rule_set(
     State(app): State<App>,
     Path(id): Path<String>,
     _: NoQuery,
-) -> Result<Json<RuleSetDocument>, Refusal> {
+) -> Result<Json<RuleSet>, Refusal> {
     let rules = app
         .library
         .rule_sets
         .get(&id)
         .ok_or_else(|| Refusal::not_here("rule set", &id))?;
-    Ok(Json(RuleSetDocument::of(app.library, rules)))
+    Ok(Json(rules.clone()))
 }
 
 /// Models
@@ -261,4 +261,41 @@ async fn model_list(
         paging::limit(ask.limit)?,
     )
     .answer(&uri))
+}
+
+/// Sets of gas weights
+///
+/// CO2e in kg per kg of gas over 100 years, as each source prints it.
+#[utoipa::path(get, path = "/gwp-sets", tag = "published data", params(PageQuestion),
+    responses((status = 200, description = "Sets in order of id.", body = Page<GwpSet>,
+        headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
+async fn gwp_sets(
+    State(app): State<App>,
+    OriginalUri(uri): OriginalUri,
+    Query(ask): Query<PageQuestion>,
+) -> Result<Response, Refusal> {
+    let all = app.library.gwp_sets.values();
+    Ok(Page::cut(
+        all,
+        |set| &set.id,
+        ask.after.as_deref(),
+        paging::limit(ask.limit)?,
+    )
+    .answer(&uri))
+}
+
+/// A set of gas weights
+#[utoipa::path(get, path = "/gwp-sets/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the set.")),
+    responses((status = 200, description = "The set.", body = GwpSet)))]
+async fn gwp_set(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    _: NoQuery,
+) -> Result<Json<GwpSet>, Refusal> {
+    let set = app
+        .library
+        .gwp_sets
+        .get(&id)
+        .ok_or_else(|| Refusal::not_here("set of gas weights", &id))?;
+    Ok(Json(set.clone()))
 }

@@ -1,9 +1,7 @@
 //! Editions, factors and rule sets as documents. They are made from the published data, never read.
 
 use crate::core::domain::factor::{FuelSplit, ProcessHeat, TermValues, Use};
-use crate::core::domain::{
-    Book, Citation, Counts, Edition, Factor, Gas, GwpSet, PathwayDefault, RuleSet, Status,
-};
+use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault, RuleSet, Status};
 use serde::Serialize;
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
@@ -192,16 +190,6 @@ pub struct RuleSetLine {
     pub status: Status,
 }
 
-/// A rule set with its gas weights.
-#[derive(Clone, Debug, Serialize, ToSchema)]
-pub struct RuleSetDocument {
-    /// The rule set.
-    #[serde(flatten)]
-    pub rules: RuleSet,
-    /// Its gas weights, kg CO2e per kg over 100 years.
-    pub gas_weights: Option<GwpSet>,
-}
-
 impl EditionLine {
     /// The line of an edition.
     pub fn of(edition: &Edition) -> EditionLine {
@@ -384,16 +372,6 @@ impl RuleSetLine {
             comparator_g_co2e_per_mj: rules.comparator.value,
             source: rules.source.clone(),
             status: rules.status,
-        }
-    }
-}
-
-impl RuleSetDocument {
-    /// The document of a rule set.
-    pub fn of(book: &Book, rules: &RuleSet) -> RuleSetDocument {
-        RuleSetDocument {
-            rules: rules.clone(),
-            gas_weights: book.gwp_sets.get(&rules.gwp_set).cloned(),
         }
     }
 }

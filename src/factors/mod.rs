@@ -6,7 +6,7 @@ mod models;
 
 pub use documents::{
     DefaultValues, EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument,
-    RuleSetDocument, RuleSetLine, Split, Usage,
+    RuleSetLine, Split, Usage,
 };
 pub use models::{ModelDocument, ParameterDocument, SpanDocument, TakesDocument, models};
 

@@ -1,5 +1,6 @@
 //! Reads paths, queries, forms and JSON bodies strictly; whatever is wrong becomes a [`Refusal`] instead of plain text.
 
+use super::blocking;
 use super::problem::{Refusal, shown};
 use crate::core::documents::json;
 use axum::RequestPartsExt;
@@ -13,6 +14,9 @@ use serde::de::DeserializeOwned;
 use serde_json::Value;
 use std::time::Duration;
 use tokio_stream::StreamExt;
+
+/// A body of more bytes than this is read on a thread of its own.
+const LARGE: usize = 256 << 10;
 
 /// What a request may take. Put on every request by a layer.
 #[derive(Clone, Copy, Debug)]
@@ -153,7 +157,13 @@ impl<S: Send + Sync> FromRequest<S> for JsonBody {
         }
         let limits = Limits::of(request.extensions());
         let bytes = whole_body(request, &limits).await?;
-        json::parse(&bytes).map(JsonBody).map_err(Refusal::not_json)
+        // Reading a large document takes a while, and the threads that talk to people are few.
+        let read = if bytes.len() > LARGE {
+            blocking::run(move || json::parse(&bytes)).await?
+        } else {
+            json::parse(&bytes)
+        };
+        read.map(JsonBody).map_err(Refusal::not_json)
     }
 }
 
@@ -182,8 +192,8 @@ pub async fn whole_body(request: Request, limits: &Limits) -> Result<Bytes, Refu
         return Err(refused_size(limits));
     }
     let mut pieces = request.into_body().into_data_stream();
-    let mut bytes =
-        Vec::with_capacity(told.map_or(4_096, |told| told.min(limits.body_bytes as u64) as usize));
+    let told = told.and_then(|told| usize::try_from(told).ok());
+    let mut bytes = Vec::with_capacity(told.unwrap_or(4_096).min(limits.body_bytes));
     let mut arrived = 0_usize;
     loop {
         let piece = next_piece(&mut pieces, limits).await?;

@@ -132,6 +132,7 @@ async fn take_place(State(places): State<Arc<Semaphore>>, request: Request, next
     }
 }
 
+#[allow(clippy::needless_pass_by_value, reason = "the layer gives the panic away")]
 fn panicked(panic: Box<dyn Any + Send + 'static>) -> Response {
     let words = panic
         .downcast_ref::<String>()

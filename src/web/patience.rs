@@ -151,7 +151,7 @@ mod tests {
         let (mut connection, _) = patient.accept().await;
         let mut byte = [0];
         for _ in 0..4 {
-            tokio::time::sleep(Duration::from_millis(50)).await;
+            sleep(Duration::from_millis(50)).await;
             client.write_all(b"x").await.expect("sends");
             connection
                 .read_exact(&mut byte)

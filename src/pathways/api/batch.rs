@@ -123,7 +123,8 @@ async fn read_lines(mut body: BodyDataStream, limits: Limits, queue: mpsc::Unbou
         for (line, text) in lines {
             let over = line > limits.batch_lines as u64;
             let text = if over { Err(too_many(&limits)) } else { text };
-            let kib = text.as_ref().map_or(0, Vec::len).div_ceil(1_024).min(WAITING_KIB) as u32;
+            let kib = text.as_ref().map_or(0, Vec::len).div_ceil(1_024).min(WAITING_KIB);
+            let kib = u32::try_from(kib).unwrap_or(u32::MAX);
             let _room = tokio::select! {
                 room = room.clone().acquire_many_owned(kib) => room.ok(),
                 () = queue.closed() => return,

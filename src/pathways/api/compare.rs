@@ -48,7 +48,7 @@ enum Chosen {
     /// A stored one, at a revision.
     Revision(ChosenRevision),
     /// A document that need not be stored.
-    Document(Pathway),
+    Document(Box<Pathway>),
 }
 
 /// A revision to compare.

@@ -30,7 +30,7 @@ pub(super) fn routes() -> OpenApiRouter<App> {
 ///
 /// Its `ETag` is that of the whole pathway: send it with a write of any stage.
 #[utoipa::path(get, path = "/pathways/{id}/stages/{key}", tag = "pathways",
-    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, description = "Key of the stage."),
+    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, pattern = "^[a-z][a-z0-9-]{0,39}$", description = "Key of the stage."),
         ("If-None-Match" = Option<String>, Header, description = "The `ETag` you have.")),
     responses((status = 200, description = "The stage.", body = Stage, headers(("ETag" = String, description = "The revision."))),
         (status = 304, description = "You have it.")))]
@@ -52,8 +52,8 @@ async fn read_stage(
 ///
 /// In its place, or after the last one where the pathway has none of that key.
 #[utoipa::path(put, path = "/pathways/{id}/stages/{key}", tag = "pathways",
-    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, description = "Key of the stage."),
-        ("If-Match" = String, Header, description = "The `ETag` of the revision you read, or `*`."), Reason),
+    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, pattern = "^[a-z][a-z0-9-]{0,39}$", description = "Key of the stage."),
+        ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`."), Reason),
     request_body(content = Stage, content_type = "application/json"),
     responses((status = 200, description = "Saved.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn put_one(
@@ -77,8 +77,8 @@ async fn put_one(
 ///
 /// A pathway that needs it is refused with everything that would then be wrong.
 #[utoipa::path(delete, path = "/pathways/{id}/stages/{key}", tag = "pathways",
-    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, description = "Key of the stage."),
-        ("If-Match" = String, Header, description = "The `ETag` of the revision you read, or `*`."), Reason),
+    params(("id" = Uuid, Path, description = "Id of the pathway."), ("key" = String, Path, pattern = "^[a-z][a-z0-9-]{0,39}$", description = "Key of the stage."),
+        ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`."), Reason),
     responses((status = 200, description = "Saved without it.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn delete_one(
     State(app): State<App>,

@@ -165,7 +165,7 @@ pub(super) fn numbered(mut response: Response, revision: i64) -> Response {
 /// Saves the document as the next revision. The current document, saved again, makes none.
 #[utoipa::path(put, path = "/pathways/{id}", tag = "pathways",
     params(("id" = Uuid, Path, description = "Id of the pathway."),
-        ("If-Match" = String, Header, description = "The `ETag` of the revision you read, or `*`."), Reason),
+        ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`."), Reason),
     request_body(content = Pathway, content_type = "application/json"),
     responses((status = 200, description = "Saved.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn replace_pathway(
@@ -190,7 +190,7 @@ async fn replace_pathway(
 /// Hides it from lists. Nothing is removed: it can still be read, with all its revisions.
 #[utoipa::path(delete, path = "/pathways/{id}", tag = "pathways",
     params(("id" = Uuid, Path, description = "Id of the pathway."),
-        ("If-Match" = String, Header, description = "The `ETag` of the revision you read, or `*`.")),
+        ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`.")),
     responses((status = 204, description = "Archived.")))]
 async fn archive_pathway(
     State(app): State<App>,

@@ -50,6 +50,8 @@ async fn it_lists_what_there_is() {
         "get /api/v1/factors",
         "get /api/v1/factors/{edition}/{row}",
         "get /api/v1/factors/{edition}/{row}/uses",
+        "get /api/v1/gwp-sets",
+        "get /api/v1/gwp-sets/{id}",
         "get /api/v1/materials",
         "get /api/v1/materials/{id}",
         "get /api/v1/models",
@@ -140,7 +142,8 @@ async fn every_described_address_is_routed() {
             .replace("{row}", "fert_n_an")
             .replace("/editions/{id}", "/editions/eu-2022-996")
             .replace("/materials/{id}", "/materials/wheat")
-            .replace("/rule-sets/{id}", "/rule-sets/eu-2018-2001");
+            .replace("/rule-sets/{id}", "/rule-sets/eu-2018-2001")
+            .replace("/gwp-sets/{id}", "/gwp-sets/ar5");
         if method == "delete" {
             continue; // asked in tests of their own
         }

@@ -18,6 +18,7 @@ async fn every_list_is_whole_when_read_page_by_page() {
         ),
         ("/api/v1/materials", book.materials.len()),
         ("/api/v1/rule-sets", book.rule_sets.len()),
+        ("/api/v1/gwp-sets", book.gwp_sets.len()),
         ("/api/v1/models", wheelwort::core::models::ALL.len()),
     ] {
         for limit in [37, 200] {
@@ -62,10 +63,15 @@ async fn each_thing_has_an_address() {
     }
     for id in book.rule_sets.keys() {
         let rules = app.get(&format!("/api/v1/rule-sets/{id}")).await.json();
-        assert_eq!(
-            (rules["id"].as_str(), rules["gas_weights"]["n2o"].is_number()),
-            (Some(id.as_str()), true)
-        );
+        assert_eq!(rules["id"], *id);
+        let weights = app
+            .get(&format!(
+                "/api/v1/gwp-sets/{}",
+                rules["gwp_set"].as_str().unwrap()
+            ))
+            .await
+            .json();
+        assert!(weights["n2o"].is_number(), "{weights}");
     }
     for factor in book
         .editions
@@ -91,6 +97,7 @@ async fn each_thing_has_an_address() {
         "factors/none/none/uses",
         "materials/none",
         "rule-sets/none",
+        "gwp-sets/none",
         "models/haul",
     ] {
         app.get(&format!("/api/v1/{missing}")).await.refused(404);
