@@ -3,11 +3,13 @@
 pub mod api;
 mod documents;
 mod models;
+pub mod pages;
 
 pub use documents::{
     DefaultValues, EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument,
     RuleSetDocument, RuleSetLine, Split, Usage,
 };
+pub use pages::{ShowFactor, UseRow};
 pub use models::{ModelDocument, ParameterDocument, SpanDocument, TakesDocument, models};
 
 use crate::core::domain::{Book, Factor};

@@ -201,7 +201,7 @@ fn lead(comparison: &Comparison) -> String {
     let makes = one.largest.as_ref().map(|largest| {
         let kind = StageKind::from_name(&largest.kind).map_or("published default values", StageKind::words);
         let side = if largest.difference_g_co2e_per_mj < 0.0 { "less" } else { "more" };
-        format!(" {} makes most of it: {} g {side}.", super::show::capital(kind), show(largest.difference_g_co2e_per_mj.abs(), 1))
+        format!(" {} makes most of it: {} g {side}.", crate::web::filters::capital(kind), show(largest.difference_g_co2e_per_mj.abs(), 1))
     });
     format!("{difference}{}", makes.unwrap_or_default())
 }

@@ -326,7 +326,7 @@ fn facts(card: &Card, result: Option<&StageResult>) -> Vec<Fact> {
     }
     let kind = card.stage.get("kind").and_then(Value::as_str).and_then(StageKind::from_name);
     if let Some(kind) = kind {
-        out.push(Fact::new("Kind and term", format!("{}, {}", super::show::capital(kind.words()), kind.term().name())));
+        out.push(Fact::new("Kind and term", format!("{}, {}", crate::web::filters::capital(kind.words()), kind.term().name())));
     }
     if let (Some(found), Some(result)) = (card.found, result) {
         let words = format!("{} of {} g CO2e/MJ", show(result.g_co2e_per_mj, 2), show(found.net.g_co2e_per_mj, 2));

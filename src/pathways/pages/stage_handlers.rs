@@ -86,7 +86,7 @@ pub(super) async fn begin(State(app): State<App>, Path(id): Path<String>, Query(
     let taken: Vec<String> = seen.pathway.stages.iter().map(|stage| stage.key.clone()).collect();
     let kind = StageKind::from_name(&query.kind).unwrap_or(StageKind::Processing);
     let after = query.after.parse::<usize>().ok().and_then(|index| seen.pathway.stages.get(index));
-    let name = if query.name.trim().is_empty() { super::show::capital(kind.words()) } else { query.name.trim().to_owned() };
+    let name = if query.name.trim().is_empty() { crate::web::filters::capital(kind.words()) } else { query.name.trim().to_owned() };
     let key = build::free_key(&name, "stage", &taken);
     let value = begun(&key, kind, &name, after);
     let typed = Form::default();

@@ -110,7 +110,7 @@ fn words(pairs: impl IntoIterator<Item = (&'static str, &'static str)>) -> Shape
 
 /// A name of a document in words: `distance_km` is "distance km".
 pub fn named(name: &str) -> String {
-    super::super::show::capital(&name.replace('_', " "))
+    crate::web::filters::capital(&name.replace('_', " "))
 }
 
 /// Name, kind, sharing and note of the stage itself.
@@ -278,7 +278,7 @@ fn own_factor(at: &str) -> Vec<Spec> {
 fn gases(at: &str, unit: &str) -> Vec<Spec> {
     let mut out: Vec<Spec> = Gas::ALL
         .into_iter()
-        .map(|gas| Spec::new(at, gas.name(), &format!("{}, {unit}", super::super::show::capital(gas.words())), Shape::Number))
+        .map(|gas| Spec::new(at, gas.name(), &format!("{}, {unit}", crate::web::filters::capital(gas.words())), Shape::Number))
         .collect();
     for spec in &mut out {
         spec.rare = spec.pointer.ends_with("co2_biogenic") || spec.pointer.ends_with("co2_land");
@@ -332,12 +332,12 @@ fn parameter(row: &'static Parameter, base: &str, before: &str, ground: Ground) 
 }
 
 fn hint(row: &Parameter) -> String {
-    let mut out = super::super::show::capital(row.meaning);
+    let mut out = crate::web::filters::capital(row.meaning);
     if !row.default.is_empty() {
         out.push_str(&format!(" Left empty: {}.", row.default));
     }
     if let Some(hard) = row.hard {
-        out.push_str(&format!(" {}.", super::super::show::capital(&hard.words(row.unit()))));
+        out.push_str(&format!(" {}.", crate::web::filters::capital(&hard.words(row.unit()))));
     }
     out
 }
