@@ -1,6 +1,7 @@
 //! HTTP in common: router, layers, refusals, conditional requests, paging, the API's description, assets, health.
 
 pub mod answers;
+pub mod api_page;
 pub mod assets;
 pub mod blocking;
 pub mod conditional;

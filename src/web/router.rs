@@ -3,7 +3,7 @@
 
 use super::extract::Limits;
 use super::openapi::{self, Document};
-use super::error_page;
+use super::{api_page, error_page};
 use super::problem::{Refusal, RefusalPage};
 use super::{assets, health, layers};
 use crate::app::App;
@@ -12,7 +12,7 @@ use axum::Router;
 use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
 use axum::response::Redirect;
-use axum::routing::post;
+use axum::routing::{get, post};
 use std::time::Duration;
 use utoipa_axum::router::OpenApiRouter;
 
@@ -73,6 +73,7 @@ fn api() -> OpenApiRouter<App> {
 /// The pages for people. Their routes come with the pages themselves.
 pub fn pages_router() -> Router<App> {
     Router::new()
+        .route("/api", get(api_page::show))
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
