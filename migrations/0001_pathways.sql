@@ -23,6 +23,7 @@ CREATE TABLE pathway (
     updated_at       INTEGER NOT NULL,
     archived_at      INTEGER                         -- hidden from lists, never removed
 ) STRICT;
+CREATE INDEX pathway_in_order ON pathway (organisation_id, id);
 CREATE INDEX pathway_by_update ON pathway (organisation_id, updated_at, public_id);
 CREATE INDEX pathway_by_name ON pathway (organisation_id, name_folded, public_id);
 
@@ -116,7 +117,8 @@ CREATE TABLE factor_use (
     co_product_key  TEXT,
     UNIQUE (revision_id, pointer)
 ) STRICT;
-CREATE INDEX factor_use_by_factor ON factor_use (organisation_id, factor);
+-- The factor first: an index that began with the organisation would be taken for searches by revision as well.
+CREATE INDEX factor_use_by_factor ON factor_use (factor, organisation_id);
 
 -- A cache: revision, rule set and program make the same bytes again.
 CREATE TABLE assessment (

@@ -1,7 +1,7 @@
 //! `evaluate`: pathway files in, assessments out. Prints everything or nothing.
 
 use super::{WRONG, print, say};
-use crate::core::documents::{Assessment, Pathway, Problem, Problems};
+use crate::core::documents::{Assessment, Pathway, Problem, Problems, canonical};
 use crate::core::evaluate::{Options, evaluate};
 use crate::library;
 use clap::Args;
@@ -44,15 +44,17 @@ pub(super) fn run(command: &Evaluate) -> u8 {
         return WRONG;
     }
     let text = match &assessments[..] {
-        [alone] => serde_json::to_string_pretty(alone),
+        // For people, in the order in which the document is described.
+        [alone] => serde_json::to_vec_pretty(alone),
+        // For programs: the bytes that the API answers, a line each.
         many => many
             .iter()
-            .map(serde_json::to_string)
+            .map(canonical::bytes)
             .collect::<Result<Vec<_>, _>>()
-            .map(|lines| lines.join("\n")),
+            .map(|lines| lines.join(&b'\n')),
     };
     match text {
-        Ok(text) => print(text.as_bytes()),
+        Ok(text) => print(&text),
         Err(error) => {
             say(&format!("wheelwort: the assessment cannot be written: {error}"));
             super::COULD_NOT

@@ -13,8 +13,7 @@ use crate::web::Refusal;
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
 use axum::Json;
-use axum::extract::State;
-use axum::http::Uri;
+use axum::extract::{OriginalUri, State};
 use axum::response::Response;
 use serde::Deserialize;
 use utoipa::IntoParams;
@@ -72,7 +71,7 @@ struct PageQuestion {
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn editions(
     State(app): State<App>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
     let all = app.library.editions.values().map(EditionLine::of);
@@ -111,7 +110,7 @@ async fn edition(
 async fn edition_factors(
     State(app): State<App>,
     Path(id): Path<String>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<FactorQuestion>,
 ) -> Result<Response, Refusal> {
     if !app.library.editions.contains_key(&id) {
@@ -126,13 +125,18 @@ async fn edition_factors(
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn factors(
     State(app): State<App>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<FactorQuestion>,
 ) -> Result<Response, Refusal> {
     found(&app, &uri, None, &ask)
 }
 
-fn found(app: &App, uri: &Uri, edition: Option<&str>, ask: &FactorQuestion) -> Result<Response, Refusal> {
+fn found(
+    app: &App,
+    uri: &axum::http::Uri,
+    edition: Option<&str>,
+    ask: &FactorQuestion,
+) -> Result<Response, Refusal> {
     let limit = paging::limit(ask.limit)?;
     let mut found: Vec<&Factor> =
         search(app.library, edition, ask.search.as_deref(), ask.group.as_deref()).collect();
@@ -174,7 +178,7 @@ async fn factor(
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn materials(
     State(app): State<App>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
     let all = app.library.materials.values();
@@ -209,7 +213,7 @@ async fn material(
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn rule_sets(
     State(app): State<App>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
     let all = app.library.rule_sets.values().map(RuleSetLine::of);
@@ -246,7 +250,10 @@ async fn rule_set(
 #[utoipa::path(get, path = "/models", tag = "published data", params(PageQuestion),
     responses((status = 200, description = "Models in order of kind.", body = Page<ModelDocument>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
-async fn model_list(uri: Uri, Query(ask): Query<PageQuestion>) -> Result<Response, Refusal> {
+async fn model_list(
+    OriginalUri(uri): OriginalUri,
+    Query(ask): Query<PageQuestion>,
+) -> Result<Response, Refusal> {
     Ok(Page::cut(
         models(),
         |model| &model.kind,

@@ -31,7 +31,6 @@ pub struct ParameterDocument {
     /// What it is and how it enters the equation.
     pub meaning: String,
     /// What it takes.
-    #[schema(no_recursion)]
     pub takes: TakesDocument,
     /// True if the model cannot do without.
     pub required: bool,

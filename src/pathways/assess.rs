@@ -290,9 +290,23 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
         running.spawn_blocking(move || {
             let assess = |row: sql::CurrentRow| {
                 let id = public_id(&row.public_id, row.id)?;
-                match make(&app, &document(&row.document, row.revision_id)?, None) {
-                    Ok(made) => Ok((id, Some((row.revision_id, made)))),
-                    Err(PathwayError::Problems(_)) => Ok((id, None)),
+                let document = document(&row.document, row.revision_id)?;
+                let result = if keep {
+                    make(&app, &document, None)
+                        .map(|made| (made.summary.net_g_co2e_per_mj, Some((row.revision_id, made))))
+                } else {
+                    let options = Options {
+                        without_workings: true,
+                        ..Options::default()
+                    };
+                    let assessment = (app.evaluate)(&document, app.library, options);
+                    assessment
+                        .map(|made| (made.net.g_co2e_per_mj, None))
+                        .map_err(PathwayError::Problems)
+                };
+                match result {
+                    Ok((net, made)) => Ok((id, Some(net), made)),
+                    Err(PathwayError::Problems(_)) => Ok((id, None, None)),
                     Err(other) => Err(other),
                 }
             };
@@ -306,7 +320,8 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
     Ok(total)
 }
 
-type Batch = Result<Vec<(Uuid, Option<(i64, Made)>)>, PathwayError>;
+/// Of each pathway its net figure, unless it is refused, and what is to be kept.
+type Batch = Result<Vec<(Uuid, Option<f64>, Option<(i64, Made)>)>, PathwayError>;
 
 async fn gather(
     app: &App,
@@ -319,15 +334,15 @@ async fn gather(
     };
     let batch = done.map_err(|error| PathwayError::defect("assessed everything again", error))??;
     let mut made = Vec::new();
-    for (id, result) in batch {
-        match result {
-            Some((revision, assessment)) => {
+    for (id, net, assessment) in batch {
+        match net {
+            Some(net) => {
                 total.assessed += 1;
-                total.net_sum += assessment.summary.net_g_co2e_per_mj;
-                made.push((revision, assessment));
+                total.net_sum += net;
             }
             None => total.refused.push(id),
         }
+        made.extend(assessment);
     }
     if keep {
         let (who, now) = (app.organisation, app.clock.millis());

@@ -7,6 +7,10 @@
     reason = "a test fails by panicking"
 )]
 
+mod api;
+mod cli;
 mod engine;
+mod levers;
 mod store;
+mod support;
 mod tidy;

@@ -334,8 +334,10 @@ fn by_factor(
         input.gases = GasVector::ZERO;
     }
     input.biogenic_kg = input.gases[Gas::Co2Biogenic];
-    for (factor, gas) in factors::unpublished(&list) {
-        let gas = if gas == Gas::N2o { "N2O" } else { "CH4" };
+    let alone = factors::unpublished(&list);
+    let gap =
+        alone.and_then(|_| factors::unpublished(list.iter().chain(&burning_rows(stage, document, setting))));
+    if let Some((factor, gas)) = gap {
         findings.push(Finding {
             id: "K-02".to_owned(),
             severity: Severity::Warn,
@@ -348,6 +350,23 @@ fn by_factor(
             remedy: "Choose a factor that has one, or give the reason.".to_owned(),
         });
     }
+}
+
+/// Rows of burning emissions that another input of the stage counts for the same amount of energy.
+fn burning_rows(stage: &Stage, document: &InputDocument, setting: &Setting) -> Vec<Priced> {
+    let same = |other: &&InputDocument| {
+        other.key != document.key && other.amount == document.amount && other.unit == document.unit
+    };
+    let at = Place::ROOT;
+    stage
+        .inputs
+        .iter()
+        .filter(same)
+        .filter_map(|other| other.factor.as_ref())
+        .flat_map(OneOrMany::list)
+        .filter_map(|reference| factors::find(reference, setting.book, &at, &mut Problems::default()))
+        .filter(|row| row.group == "combustion non-CO2")
+        .collect()
 }
 
 fn price_list(

@@ -1,6 +1,10 @@
 //! Alcoholic strength: density of ethanol-water mixtures by the general formula of OIML R 22 (1975), which also stands
 //! in Council Directive 76/766/EEC, Annex, point 4. Mass, volume and pure ethanol convert through it.
 
+mod convert;
+
+pub use convert::{Mixture, Much, Strength, convert};
+
 /// Lowest and highest temperature of the formula, degC; the mixture must be liquid.
 pub const TEMPERATURE_RANGE_C: (f64, f64) = (-20.0, 40.0);
 

@@ -398,9 +398,14 @@ pub fn price(amount: f64, factor: &Priced, steps: &mut Vec<Step>) -> GasVector {
 
 /// The source of a factor for a step, with its status where nobody has read it.
 pub fn sourced(factor: &Priced) -> String {
-    match factor.status {
-        Status::Memory => format!("{} (recalled, not read at its source)", factor.source),
-        _ => factor.source.clone(),
+    source_words(&factor.source, factor.status)
+}
+
+/// A source for a step, with its status where nobody has read it.
+pub fn source_words(source: &str, status: Status) -> String {
+    match status {
+        Status::Memory => format!("{source} (recalled, not read at its source)"),
+        _ => source.to_owned(),
     }
 }
 
@@ -414,19 +419,29 @@ pub fn step(text: String, value: f64, unit: &str, source: &str) -> Step {
     }
 }
 
-/// Gases that a list of energy factors leaves unpublished: CH4 and N2O of fuels whose companions do not print them either.
-pub fn unpublished(list: &[Priced]) -> Vec<(String, Gas)> {
+/// The fuel of a list of energy factors whose burning gases (CH4, N2O) neither it nor a companion publishes, with the
+/// names of those gases in words.
+pub fn unpublished<'p>(list: impl IntoIterator<Item = &'p Priced> + Clone) -> Option<(String, String)> {
     let burns = |priced: &&Priced| priced.group == "fuel" && priced.gases.get(Gas::Co2eUnsplit).is_none();
-    let Some(fuel) = list.iter().find(burns) else {
-        return Vec::new();
+    let fuel = list.clone().into_iter().find(burns)?;
+    let published = |gas: Gas| {
+        list.clone()
+            .into_iter()
+            .any(|priced| priced.gases.get(gas).is_some())
     };
-    let published = |gas: Gas| list.iter().any(|priced| priced.gases.get(gas).is_some());
-    let mut gaps = Vec::new();
-    if !published(Gas::Ch4Fossil) && !published(Gas::Ch4Biogenic) {
-        gaps.push((fuel.id.clone(), Gas::Ch4Fossil));
+    gaps(
+        published(Gas::Ch4Fossil) || published(Gas::Ch4Biogenic),
+        published(Gas::N2o),
+    )
+    .map(|gases| (fuel.id.clone(), gases.to_owned()))
+}
+
+/// The burning gases that are not published, in words; none when both are.
+pub fn gaps(ch4: bool, n2o: bool) -> Option<&'static str> {
+    match (ch4, n2o) {
+        (true, true) => None,
+        (false, true) => Some("CH4"),
+        (true, false) => Some("N2O"),
+        (false, false) => Some("CH4 and N2O"),
     }
-    if !published(Gas::N2o) {
-        gaps.push((fuel.id.clone(), Gas::N2o));
-    }
-    gaps
 }

@@ -131,6 +131,15 @@ impl<'a> Given<'a> {
         self.within(name, figure, unit, row)
     }
 
+    /// A figure in the unit of its row, or what stands in where it is left out; none if it is wrong.
+    pub fn number_or(&mut self, name: &str, absent: f64) -> Option<f64> {
+        if self.has(name) {
+            self.number(name)
+        } else {
+            Some(absent)
+        }
+    }
+
     fn within(&mut self, name: &str, figure: f64, unit: &str, row: &Parameter) -> Option<f64> {
         if let Some(hard) = row.hard.filter(|hard| !hard.holds(figure)) {
             let unit_word = if unit.is_empty() {

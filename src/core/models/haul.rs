@@ -1,7 +1,7 @@
 //! `haul`: mass x distance x energy per tonne-kilometre x fuel factor, and the exhaust of the vehicle.
 //! Implementing Regulation (EU) 2022/996 Annex IX, transport efficiencies; Directive (EU) 2018/2001 Annex V C point 12.
 
-use super::factors::{Priced, price, sourced};
+use super::factors::{self, Priced, price, sourced};
 use super::flow::Measured;
 use super::given::Given;
 use super::parameter::{Parameter, Span, Takes};
@@ -243,7 +243,7 @@ fn row_fuel(given: &mut Given, name: &str, row: &HaulVehicle) -> Option<Option<P
         Some(id) => {
             let reference = crate::core::documents::input::FactorRef::Id(id.clone());
             let at = crate::core::documents::reader::Place::ROOT;
-            let fuel = super::factors::find_per_energy(&reference, given.setting.book, &at, given.problems)?;
+            let fuel = factors::find_per_energy(&reference, given.setting.book, &at, given.problems)?;
             given.record.factors.push(fuel.id.clone());
             Some(Some(fuel))
         }
@@ -326,14 +326,7 @@ fn gaps(given: &mut Given, fuel: &Priced, row: &HaulVehicle) {
     if fuel.gases.get(Gas::Co2eUnsplit).is_some() || fuel.group != "fuel" {
         return;
     }
-    let mut missing = Vec::new();
-    if !published(Gas::Ch4Fossil) {
-        missing.push("CH4");
-    }
-    if !published(Gas::N2o) {
-        missing.push("N2O");
-    }
-    for gas in missing {
+    if let Some(gas) = factors::gaps(published(Gas::Ch4Fossil), published(Gas::N2o)) {
         let message = format!(
             "{} and its vehicle have no published {gas}; nothing is counted for it.",
             fuel.id

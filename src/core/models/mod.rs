@@ -2,11 +2,26 @@
 //! parameters as a table. To add one: a file with `MODEL`, a row in `ALL`.
 
 pub mod alcoholometry;
+pub mod boiler;
+pub mod chp;
+pub mod combustion;
+pub mod constants;
+pub mod dehydration;
+pub mod distillation;
 pub mod factors;
+pub mod fermentation_co2;
 pub mod flow;
 pub mod given;
 pub mod haul;
+pub mod heat_from;
+pub mod lime;
 pub mod parameter;
+pub mod refusal;
+pub mod soil_n2o;
+pub mod still;
+#[cfg(test)]
+mod testing;
+pub mod urea;
 
 use crate::core::documents::assessment::Severity;
 use crate::core::documents::pathway::Period;
@@ -34,7 +49,18 @@ pub struct Model {
 }
 
 /// Every model, by kind.
-pub const ALL: &[&Model] = &[&haul::MODEL];
+pub const ALL: &[&Model] = &[
+    &soil_n2o::MODEL,
+    &lime::MODEL,
+    &urea::MODEL,
+    &haul::MODEL,
+    &boiler::MODEL,
+    &chp::MODEL,
+    &fermentation_co2::MODEL,
+    &distillation::MODEL,
+    &dehydration::MODEL,
+    &combustion::MODEL,
+];
 
 /// The model of a kind.
 pub fn find(kind: &str) -> Option<&'static Model> {
@@ -68,7 +94,8 @@ pub struct Outcome {
     pub gases: GasVector,
     /// CO2 of fermentation for the carbon balance, kg: what the sugar split gives, or what was measured.
     pub fermentation_kg: Option<f64>,
-    /// Biogenic CO2 for the carbon balance where it differs from the gases (the whole fuel of heat and power), kg.
+    /// Biogenic CO2 for the carbon balance where it differs from the gases (the whole fuel of heat and power; none
+    /// for fermentation, which stands in `fermentation_kg`), kg.
     pub biogenic_kg: Option<f64>,
     /// A limit on the deduction that only the whole chain can tell (soil carbon, degraded-land bonus).
     pub per_fuel: Option<PerFuel>,

@@ -57,6 +57,9 @@ impl Span {
         } else {
             format!(" {unit}")
         };
+        if !self.above && self.low == self.high {
+            return format!("{}{unit}", plain(self.low));
+        }
         match (self.above, self.high.is_infinite()) {
             (true, true) => format!("above {}{unit}", plain(self.low)),
             (false, true) => format!("{}{unit} or more", plain(self.low)),

@@ -14,8 +14,7 @@ use crate::web::conditional::IfNoneMatch;
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
 use axum::Json;
-use axum::extract::State;
-use axum::http::Uri;
+use axum::extract::{OriginalUri, State};
 use axum::response::Response;
 use serde::Serialize;
 use utoipa::ToSchema;
@@ -51,7 +50,7 @@ struct Changes {
 async fn list_revisions(
     State(app): State<App>,
     Path(id): Path<String>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
     let limit = paging::limit(ask.limit)? as usize;

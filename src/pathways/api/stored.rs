@@ -15,8 +15,8 @@ use crate::web::Refusal;
 use crate::web::conditional::{IfMatch, IfNoneMatch};
 use crate::web::extract::{JsonBody, NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
-use axum::extract::State;
-use axum::http::{HeaderValue, StatusCode, Uri};
+use axum::extract::{OriginalUri, State};
+use axum::http::{HeaderValue, StatusCode};
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
 use utoipa::IntoParams;
@@ -71,7 +71,7 @@ struct ListQuestion {
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn list_pathways(
     State(app): State<App>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<ListQuestion>,
 ) -> Result<Response, Refusal> {
     let ListQuestion {
@@ -278,7 +278,7 @@ pub(super) struct PageQuestion {
 async fn factor_uses(
     State(app): State<App>,
     Path((edition, row)): Path<(String, String)>,
-    uri: Uri,
+    OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
     let id = format!("{edition}/{row}");

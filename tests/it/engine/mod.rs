@@ -2,6 +2,9 @@
 
 mod contract;
 mod laws;
+mod models;
 mod published;
 mod refusals;
 mod shapes;
+mod still;
+mod strengths;

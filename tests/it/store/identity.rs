@@ -106,7 +106,10 @@ async fn the_assessment_survives_with_every_bit() {
         .expect("kept");
     assert_eq!(&*kept.bytes, canonical::bytes(&made).expect("json").as_slice());
     assert_eq!(kept.hash, canonical::hash(&kept.bytes));
-    assert_eq!((&kept.pathway_hash, &made.pathway_hash), (&saved.hash, &saved.hash));
+    assert_eq!(
+        (&kept.pathway_hash, &made.pathway_hash),
+        (&saved.hash, &saved.hash)
+    );
     let line = &pathways::list(&bench.app, &pathways::Question::default())
         .await
         .expect("listed")

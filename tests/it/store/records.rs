@@ -23,6 +23,34 @@ async fn every_statement_can_be_prepared() {
     bench.app.close().await;
 }
 
+/// Lists and what is done once may go through all pathways of an organisation; nothing else may, and nothing goes
+/// through a whole table.
+#[tokio::test]
+async fn every_statement_finds_its_rows_by_an_index() {
+    let bench = Bench::new().await;
+    let mut reader = bench.app.store.reader().await.expect("a reader");
+    // The plan of an INSERT names scans for children of the new row, which run only after a broken foreign key.
+    for sql in wheelwort::all_statements()
+        .into_iter()
+        .filter(|sql| !sql.contains("INSERT INTO"))
+    {
+        let explain = sqlx::AssertSqlSafe(format!("EXPLAIN QUERY PLAN {sql}"));
+        let plan: Vec<(i64, i64, i64, String)> = sqlx::query_as(explain)
+            .fetch_all(&mut *reader)
+            .await
+            .unwrap_or_else(|error| panic!("{sql}\n{error}"));
+        let goes_through_all = ["LIMIT $10", "p.example = 1", "example = 1 AND NOT EXISTS"];
+        for (_, _, _, step) in plan {
+            let whole = step.starts_with("SCAN") && !sql.contains("FROM organisation");
+            let all_of_one = step.ends_with("(organisation_id=?)")
+                && !goes_through_all.iter().any(|text| sql.contains(text));
+            assert!(!whole && !all_of_one, "{step}\n{sql}");
+        }
+    }
+    drop(reader);
+    bench.app.close().await;
+}
+
 /// Every statement names the organisation, except those that look for organisations.
 #[test]
 fn every_statement_names_the_organisation() {

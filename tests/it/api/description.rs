@@ -1,0 +1,184 @@
+//! The description of the API says what there is, and what it says is true.
+
+use crate::support::TestApp;
+use crate::support::documents::chain;
+use serde_json::Value;
+use std::collections::BTreeSet;
+
+const METHODS: [&str; 4] = ["get", "put", "post", "delete"];
+
+async fn description(app: &TestApp) -> Value {
+    app.get("/api/v1/openapi.json").await.json()
+}
+
+fn operations(description: &Value) -> Vec<(String, &'static str, &Value)> {
+    let paths = description["paths"].as_object().unwrap();
+    let of = |(path, item): (&String, &'_ Value)| {
+        let path = path.clone();
+        METHODS
+            .into_iter()
+            .filter(|method| item.get(*method).is_some())
+            .map(move |method| (path.clone(), method))
+            .collect::<Vec<_>>()
+    };
+    paths
+        .iter()
+        .flat_map(of)
+        .map(|(path, method)| {
+            let operation = &description["paths"][&path][method];
+            (path, method, operation)
+        })
+        .collect()
+}
+
+#[tokio::test]
+async fn it_lists_what_there_is() {
+    let app = TestApp::new().await;
+    let description = description(&app).await;
+    assert_eq!(description["openapi"], "3.1.0");
+    assert_eq!(description["info"]["title"], "Wheelwort");
+    let found: BTreeSet<String> = operations(&description)
+        .into_iter()
+        .map(|(path, method, _)| format!("{method} {path}"))
+        .collect();
+    let expected = [
+        "delete /api/v1/pathways/{id}",
+        "delete /api/v1/pathways/{id}/stages/{key}",
+        "get /api/v1/editions",
+        "get /api/v1/editions/{id}",
+        "get /api/v1/editions/{id}/factors",
+        "get /api/v1/factors",
+        "get /api/v1/factors/{edition}/{row}",
+        "get /api/v1/factors/{edition}/{row}/uses",
+        "get /api/v1/materials",
+        "get /api/v1/materials/{id}",
+        "get /api/v1/models",
+        "get /api/v1/openapi.json",
+        "get /api/v1/pathways",
+        "get /api/v1/pathways/{id}",
+        "get /api/v1/pathways/{id}/assessment",
+        "get /api/v1/pathways/{id}/revisions",
+        "get /api/v1/pathways/{id}/revisions/{number}",
+        "get /api/v1/pathways/{id}/revisions/{number}/changes",
+        "get /api/v1/pathways/{id}/stages/{key}",
+        "get /api/v1/rule-sets",
+        "get /api/v1/rule-sets/{id}",
+        "get /health/live",
+        "get /health/ready",
+        "post /api/v1/compare",
+        "post /api/v1/evaluate",
+        "post /api/v1/evaluate/batch",
+        "post /api/v1/pathways",
+        "put /api/v1/pathways/{id}",
+        "put /api/v1/pathways/{id}/stages/{key}",
+    ];
+    assert_eq!(found, expected.map(str::to_owned).into());
+}
+
+#[tokio::test]
+async fn every_reference_leads_somewhere_and_every_operation_is_named_once() {
+    let app = TestApp::new().await;
+    let description = description(&app).await;
+    let text = description.to_string();
+    for part in text.split("\"$ref\":\"#").skip(1) {
+        let pointer = part.split('"').next().unwrap();
+        assert!(description.pointer(pointer).is_some(), "{pointer}");
+    }
+    let operations = operations(&description);
+    let names: BTreeSet<&str> = operations
+        .iter()
+        .map(|(_, _, operation)| operation["operationId"].as_str().unwrap())
+        .collect();
+    assert_eq!(names.len(), operations.len());
+    for (path, method, operation) in &operations {
+        assert!(operation["summary"].is_string(), "{method} {path}");
+        let parameters = operation["parameters"]
+            .as_array()
+            .map_or(0, |p| p.iter().filter(|p| p["in"] == "path").count());
+        assert_eq!(parameters, path.matches('{').count(), "{method} {path}");
+    }
+}
+
+#[tokio::test]
+async fn every_refusal_is_described_as_problem_json() {
+    let app = TestApp::new().await;
+    let description = description(&app).await;
+    for (path, method, operation) in operations(&description) {
+        let responses = operation["responses"].as_object().unwrap();
+        for (status, response) in responses.iter().filter(|(status, _)| status.as_str() >= "400") {
+            let content: Vec<&String> = response["content"].as_object().expect("content").keys().collect();
+            assert_eq!(content, ["application/problem+json"], "{method} {path} {status}");
+        }
+        for status in ["400", "405", "500", "503"] {
+            assert!(responses.contains_key(status), "{method} {path} {status}");
+        }
+        if operation.get("requestBody").is_some() {
+            for status in ["408", "413", "415", "422"] {
+                assert!(responses.contains_key(status), "{method} {path} {status}");
+            }
+        }
+        if operation.to_string().contains("If-Match") {
+            for status in ["404", "409", "412", "422", "428"] {
+                assert!(responses.contains_key(status), "{method} {path} {status}");
+            }
+        }
+    }
+}
+
+#[tokio::test]
+async fn every_described_address_is_routed() {
+    let app = TestApp::new().await;
+    let (address, etag) = app.stores_chain().await;
+    let id = address.rsplit('/').next().unwrap();
+    let description = description(&app).await;
+    for (path, method, operation) in operations(&description) {
+        let real = path
+            .replace("/pathways/{id}", &format!("/pathways/{id}"))
+            .replace("{number}", "1")
+            .replace("{key}", "truck")
+            .replace("{edition}", "eu-2022-996")
+            .replace("{row}", "fert_n_an")
+            .replace("/editions/{id}", "/editions/eu-2022-996")
+            .replace("/materials/{id}", "/materials/wheat")
+            .replace("/rule-sets/{id}", "/rule-sets/eu-2018-2001");
+        if method == "delete" {
+            continue; // asked in tests of their own
+        }
+        let stage = chain()["stages"][2].clone();
+        let body = match (method, real.as_str()) {
+            ("get", _) => String::new(),
+            (_, path) if path.contains("/stages/") => stage.to_string(),
+            (_, path) if path.ends_with("/compare") => {
+                serde_json::json!({ "pathways": [chain(), id] }).to_string()
+            }
+            _ => chain().to_string(),
+        };
+        let kind = if real.ends_with("/batch") {
+            "application/x-ndjson"
+        } else {
+            "application/json"
+        };
+        let headers = [("content-type", kind), ("if-match", etag.as_str())];
+        let answer = app
+            .ask(
+                &method.to_uppercase(),
+                &real,
+                &headers[..if method == "get" { 0 } else { 2 }],
+                body,
+            )
+            .await;
+        assert!(
+            answer.status.is_success(),
+            "{method} {real}: {} {}",
+            answer.status,
+            answer.text()
+        );
+        let described = &operation["responses"][answer.status.as_str()];
+        let kinds: Vec<&String> = described["content"]
+            .as_object()
+            .unwrap_or_else(|| panic!("{method} {path} {}", answer.status))
+            .keys()
+            .collect();
+        assert_eq!(kinds, [answer.header("content-type")], "{method} {path}");
+    }
+}

@@ -1,0 +1,191 @@
+//! `serve` and `demo`: they say where they are, answer there, and stop in order when asked.
+
+use super::program;
+use crate::support::documents::chain;
+use std::io::{BufRead, BufReader, Read};
+use std::process::{Child, ChildStdout, Command, Stdio};
+use std::time::{Duration, Instant};
+
+/// A running program; killed if the test fails before it stops it.
+struct Running {
+    child: Child,
+    out: BufReader<ChildStdout>,
+    address: String,
+}
+
+impl Running {
+    fn start(command: &mut Command) -> Running {
+        let mut child = command
+            .stdout(Stdio::piped())
+            .stderr(Stdio::piped())
+            .spawn()
+            .expect("starts");
+        let mut out = BufReader::new(child.stdout.take().expect("output"));
+        let mut address = String::new();
+        out.read_line(&mut address).expect("a line");
+        let address = address.trim_end().to_owned();
+        Running { child, out, address }
+    }
+
+    fn url(&self, path: &str) -> String {
+        format!("{}{path}", self.address)
+    }
+
+    /// Asks it to stop; its exit code, the rest of its standard output, and its standard error.
+    fn stop(mut self, signal: &str) -> (Option<i32>, String, String) {
+        let asked = Command::new("kill")
+            .args([signal, &self.child.id().to_string()])
+            .status()
+            .expect("kill");
+        assert!(asked.success());
+        let status = self.child.wait().expect("ends");
+        let (mut rest, mut errors) = (String::new(), String::new());
+        self.out.read_to_string(&mut rest).expect("text");
+        self.child
+            .stderr
+            .take()
+            .expect("errors")
+            .read_to_string(&mut errors)
+            .expect("text");
+        (status.code(), rest, errors)
+    }
+}
+
+impl Drop for Running {
+    fn drop(&mut self) {
+        let _ = self.child.kill();
+        let _ = self.child.wait();
+    }
+}
+
+#[tokio::test]
+async fn serve_keeps_its_data_over_a_stop() {
+    let folder = tempfile::tempdir().unwrap();
+    let data = folder.path().join("deep/data");
+    let serve = || {
+        let mut command = program();
+        command
+            .arg("serve")
+            .arg("--data")
+            .arg(&data)
+            .args(["--listen", "127.0.0.1:0"]);
+        Running::start(&mut command)
+    };
+    let client = reqwest::Client::new();
+    let running = serve();
+    assert!(
+        running.address.starts_with("http://127.0.0.1:"),
+        "{}",
+        running.address
+    );
+    let answer = client
+        .post(running.url("/api/v1/pathways"))
+        .json(&chain())
+        .send()
+        .await
+        .expect("answers");
+    assert_eq!(answer.status(), 201);
+    let location = answer.headers()["location"].to_str().unwrap().to_owned();
+    let document = client
+        .get(running.url(&location))
+        .send()
+        .await
+        .unwrap()
+        .bytes()
+        .await
+        .unwrap();
+    let (code, rest, log) = running.stop("-TERM");
+    assert_eq!((code, rest.as_str()), (Some(0), ""), "{log}");
+    assert!(
+        !data.join("wheelwort.db-wal").exists(),
+        "an orderly end leaves one file"
+    );
+
+    let running = serve();
+    let again = client.get(running.url(&location)).send().await.unwrap();
+    assert_eq!(again.bytes().await.unwrap(), document);
+    assert_eq!(running.stop("-INT").0, Some(0));
+}
+
+#[tokio::test]
+async fn a_stop_does_not_wait_for_idle_connections() {
+    let folder = tempfile::tempdir().unwrap();
+    let mut command = program();
+    command
+        .arg("serve")
+        .arg("--data")
+        .arg(folder.path())
+        .args(["--listen", "127.0.0.1:0"]);
+    let running = Running::start(&mut command);
+    let client = reqwest::Client::new();
+    assert_eq!(
+        client
+            .get(running.url("/health/ready"))
+            .send()
+            .await
+            .unwrap()
+            .status(),
+        200
+    );
+    let begun = Instant::now();
+    assert_eq!(running.stop("-TERM").0, Some(0));
+    assert!(begun.elapsed() < Duration::from_secs(10));
+    drop(client);
+}
+
+#[test]
+fn an_address_in_use_is_told() {
+    let taken = std::net::TcpListener::bind("127.0.0.1:0").unwrap();
+    let folder = tempfile::tempdir().unwrap();
+    let listen = taken.local_addr().unwrap().to_string();
+    let output = super::run(
+        &[
+            "serve".as_ref(),
+            "--data".as_ref(),
+            folder.path().as_os_str(),
+            "--listen".as_ref(),
+            listen.as_ref(),
+        ],
+        b"",
+    );
+    assert_eq!((output.status.code(), output.stdout.len()), (Some(1), 0));
+    assert!(String::from_utf8(output.stderr).unwrap().contains(&listen));
+}
+
+#[test]
+fn an_address_that_others_can_reach_is_cautioned() {
+    let folder = tempfile::tempdir().unwrap();
+    let mut command = program();
+    command
+        .arg("serve")
+        .arg("--data")
+        .arg(folder.path())
+        .args(["--listen", "0.0.0.0:0"]);
+    let (code, _, errors) = Running::start(&mut command).stop("-TERM");
+    assert_eq!(code, Some(0));
+    assert!(
+        errors.contains("Caution") && errors.contains("no sign-in"),
+        "{errors}"
+    );
+}
+
+#[tokio::test]
+async fn the_demo_shows_its_pathways_and_leaves_nothing() {
+    let folder = tempfile::tempdir().unwrap();
+    let mut command = program();
+    command
+        .args(["demo", "--listen", "127.0.0.1:0"])
+        .env("TMPDIR", folder.path());
+    let running = Running::start(&mut command);
+    let answer = reqwest::get(running.url("/api/v1/pathways?example=true"))
+        .await
+        .expect("answers");
+    let list: serde_json::Value = answer.json().await.expect("JSON");
+    assert_eq!(
+        list["items"].as_array().unwrap().len(),
+        wheelwort::demo::PATHWAYS.len()
+    );
+    let (code, rest, errors) = running.stop("-TERM");
+    assert_eq!((code, rest.as_str()), (Some(0), ""), "{errors}");
+    assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 0);
+}
