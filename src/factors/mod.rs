@@ -9,8 +9,8 @@ pub use documents::{
     DefaultValues, EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument,
     RuleSetDocument, RuleSetLine, Split, Usage,
 };
-pub use pages::{ShowFactor, UseRow};
 pub use models::{ModelDocument, ParameterDocument, SpanDocument, TakesDocument, models};
+pub use pages::{ShowFactor, UseRow};
 
 use crate::core::domain::{Book, Factor};
 

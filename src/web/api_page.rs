@@ -67,7 +67,11 @@ pub struct Parameter {
 }
 
 fn text(value: &Value, name: &str) -> String {
-    value.get(name).and_then(Value::as_str).unwrap_or_default().to_owned()
+    value
+        .get(name)
+        .and_then(Value::as_str)
+        .unwrap_or_default()
+        .to_owned()
 }
 
 impl ApiPage {
@@ -77,20 +81,35 @@ impl ApiPage {
         let paths = description.get("paths").and_then(Value::as_object);
         for (path, item) in paths.into_iter().flatten() {
             let methods = ["get", "post", "put", "delete", "patch"];
-            for (method, operation) in methods.iter().filter_map(|method| Some((*method, item.get(*method)?))) {
-                let tag = operation.pointer("/tags/0").and_then(Value::as_str).unwrap_or("other");
-                groups.entry(tag.to_owned()).or_default().push(route(path, method, operation));
+            for (method, operation) in methods
+                .iter()
+                .filter_map(|method| Some((*method, item.get(*method)?)))
+            {
+                let tag = operation
+                    .pointer("/tags/0")
+                    .and_then(Value::as_str)
+                    .unwrap_or("other");
+                groups
+                    .entry(tag.to_owned())
+                    .or_default()
+                    .push(route(path, method, operation));
             }
         }
-        let mut frame = Frame::new("API", Section::Api, "GET /api/v1/openapi.json");
-        frame.example = false;
+        let frame = Frame::new("API", Section::Api, "GET /api/v1/openapi.json");
         ApiPage {
             frame,
-            about: description.pointer("/info/description").and_then(Value::as_str).unwrap_or_default().to_owned(),
+            about: description
+                .pointer("/info/description")
+                .and_then(Value::as_str)
+                .unwrap_or_default()
+                .to_owned(),
             groups: groups
                 .into_iter()
                 .map(|(name, routes)| Group {
-                    anchor: format!("about-{}", name.replace(|c: char| !c.is_ascii_alphanumeric(), "-")),
+                    anchor: format!(
+                        "about-{}",
+                        name.replace(|c: char| !c.is_ascii_alphanumeric(), "-")
+                    ),
                     name: filters::capital(&name),
                     routes,
                 })
@@ -100,7 +119,13 @@ impl ApiPage {
 }
 
 fn route(path: &str, method: &str, operation: &Value) -> Route {
-    let list = |name: &str| operation.get(name).and_then(Value::as_array).cloned().unwrap_or_default();
+    let list = |name: &str| {
+        operation
+            .get(name)
+            .and_then(Value::as_array)
+            .cloned()
+            .unwrap_or_default()
+    };
     let parameters: Vec<Parameter> = list("parameters")
         .iter()
         .map(|one| Parameter {
@@ -110,14 +135,20 @@ fn route(path: &str, method: &str, operation: &Value) -> Route {
             what: text(one, "description"),
         })
         .collect();
-    let answers = operation.get("responses").and_then(Value::as_object).into_iter().flatten();
+    let answers = operation
+        .get("responses")
+        .and_then(Value::as_object)
+        .into_iter()
+        .flatten();
     let method = method.to_uppercase();
     Route {
         example: example(&method, path, operation, &parameters),
         path: path.to_owned(),
         summary: text(operation, "summary"),
         description: text(operation, "description"),
-        answers: answers.map(|(status, answer)| (status.clone(), text(answer, "description"))).collect(),
+        answers: answers
+            .map(|(status, answer)| (status.clone(), text(answer, "description")))
+            .collect(),
         parameters,
         method,
     }
@@ -129,12 +160,21 @@ fn example(method: &str, path: &str, operation: &Value, parameters: &[Parameter]
     if method != "GET" {
         out.push_str(&format!(" -X {method}"));
     }
-    if parameters.iter().any(|one| one.name.eq_ignore_ascii_case("if-match") && method != "GET") {
+    if parameters
+        .iter()
+        .any(|one| one.name.eq_ignore_ascii_case("if-match") && method != "GET")
+    {
         out.push_str(" -H \"If-Match: $etag\"");
     }
-    let body = operation.pointer("/requestBody/content").and_then(Value::as_object);
+    let body = operation
+        .pointer("/requestBody/content")
+        .and_then(Value::as_object);
     if let Some(kind) = body.and_then(|kinds| kinds.keys().next()) {
-        let file = if kind.contains("ndjson") { "pathways.ndjson" } else { "pathway.json" };
+        let file = if kind.contains("ndjson") {
+            "pathways.ndjson"
+        } else {
+            "pathway.json"
+        };
         out.push_str(&format!(" -H \"Content-Type: {kind}\" --data-binary @{file}"));
     }
     format!("{out} \"{address}\"")
@@ -144,4 +184,35 @@ fn example(method: &str, path: &str, operation: &Value, parameters: &[Parameter]
 pub async fn show(Extension(document): Extension<Document>) -> Result<Response, Refusal> {
     let description: Value = serde_json::from_slice(document.bytes()).unwrap_or_default();
     page(&ApiPage::of(&description))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn every_route_of_the_description_is_told() {
+        let description: Value =
+            serde_json::from_slice(crate::web::router::description().bytes()).expect("json");
+        let page = ApiPage::of(&description);
+        let told: usize = page.groups.iter().map(|group| group.routes.len()).sum();
+        let paths = description["paths"].as_object().expect("paths");
+        let there: usize = paths
+            .values()
+            .map(|item| item.as_object().map_or(0, |item| item.len()))
+            .sum();
+        assert!(told > 15 && told == there, "{told} of {there}");
+        let put = page
+            .groups
+            .iter()
+            .flat_map(|group| &group.routes)
+            .find(|route| route.method == "PUT")
+            .expect("a write");
+        assert!(
+            put.example.contains("If-Match") && put.example.contains("--data-binary"),
+            "{}",
+            put.example
+        );
+        assert!(page.render().expect("renders").contains("openapi.json"));
+    }
 }

@@ -1,9 +1,9 @@
 //! The page of a refusal, in plain words: what is so, what was asked, and the ways on.
 
-use super::problem::{Asked, Refusal, shown};
-use crate::core::documents::Problem;
 use super::filters;
 use super::frame::{Frame, Section};
+use super::problem::{Asked, Refusal, shown};
+use crate::core::documents::Problem;
 use askama::Template;
 use axum::http::StatusCode;
 
@@ -34,15 +34,31 @@ impl ErrorPage {
     pub fn of(refusal: &Refusal, asked: Asked<'_>) -> ErrorPage {
         let status = refusal.status();
         let (title, lead) = words(status, refusal.words());
-        let nothing = if status.is_server_error() || asked.method != axum::http::Method::GET { ", nothing was changed" } else { "" };
+        let nothing = if status.is_server_error() || asked.method != axum::http::Method::GET {
+            ", nothing was changed"
+        } else {
+            ""
+        };
         ErrorPage {
             frame: Frame::bare(title.clone(), Section::Elsewhere),
             title,
             lead,
             ways: vec![
-                ("/".to_owned(), "All pathways".to_owned(), ", archived ones too.".to_owned()),
-                ("/factors".to_owned(), "Factors".to_owned(), ", materials and rule sets.".to_owned()),
-                ("/api".to_owned(), "The API in words".to_owned(), ", if a program of yours asked.".to_owned()),
+                (
+                    "/".to_owned(),
+                    "All pathways".to_owned(),
+                    ", archived ones too.".to_owned(),
+                ),
+                (
+                    "/factors".to_owned(),
+                    "Factors".to_owned(),
+                    ", materials and rule sets.".to_owned(),
+                ),
+                (
+                    "/api".to_owned(),
+                    "The API in words".to_owned(),
+                    ", if a program of yours asked.".to_owned(),
+                ),
             ],
             errors: refusal.errors().to_vec(),
             asked: format!("{} {}", asked.method, shown(asked.path)),
@@ -53,7 +69,12 @@ impl ErrorPage {
 
     /// The same with another way on, in the first place.
     #[must_use]
-    pub fn way(mut self, href: impl Into<String>, words: impl Into<String>, after: impl Into<String>) -> ErrorPage {
+    pub fn way(
+        mut self,
+        href: impl Into<String>,
+        words: impl Into<String>,
+        after: impl Into<String>,
+    ) -> ErrorPage {
         self.ways.insert(0, (href.into(), words.into(), after.into()));
         self
     }
@@ -62,7 +83,9 @@ impl ErrorPage {
 /// Makes the page of a refusal, for the shell.
 pub fn page(refusal: &Refusal, asked: Asked<'_>) -> String {
     // A template fails only where writing to memory does; the bare page then stands in.
-    ErrorPage::of(refusal, asked).render().unwrap_or_else(|_| super::problem::bare_page(refusal, asked))
+    ErrorPage::of(refusal, asked)
+        .render()
+        .unwrap_or_else(|_| super::problem::bare_page(refusal, asked))
 }
 
 fn words(status: StatusCode, detail: &str) -> (String, String) {
@@ -86,4 +109,29 @@ fn words(status: StatusCode, detail: &str) -> (String, String) {
         _ => detail.replace(" Read it, decide, and send its ETag in If-Match.", ""),
     };
     (title.to_owned(), lead)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use axum::http::Method;
+
+    #[test]
+    fn every_refusal_has_a_page_that_names_the_way_on() {
+        let asked = Asked {
+            method: &Method::POST,
+            path: "/pathways/<b>",
+            request: Some("01J2"),
+        };
+        for status in [400, 403, 404, 405, 409, 412, 413, 422, 500, 503] {
+            let status = StatusCode::from_u16(status).expect("a status");
+            let html = page(&Refusal::of(status).detail("It is <b>so</b>."), asked);
+            assert!(
+                html.contains("href=\"/factors\"") && html.contains("01J2"),
+                "{status}"
+            );
+            assert!(!html.contains("<b>so") && !html.contains("/<b>"), "{status}");
+            assert!(html.contains("nothing was changed"), "{status}");
+        }
+    }
 }

@@ -70,7 +70,9 @@ pub fn short_day(date: Date) -> String {
 /// The first letter made large.
 pub fn capital(words: &str) -> String {
     let mut letters = words.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+    letters
+        .next()
+        .map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
 /// Formulas with their subscripts, terms as e with its index, everything else escaped.
@@ -148,10 +150,16 @@ mod tests {
     #[test]
     fn formulas_get_their_subscripts_and_nothing_else_does() {
         assert_eq!(chem_html("g CO2e/MJ"), "g CO<sub>2</sub>e/MJ");
-        assert_eq!(chem_html("kg P2O5 & K2O"), "kg P<sub>2</sub>O<sub>5</sub> &amp; K<sub>2</sub>O");
+        assert_eq!(
+            chem_html("kg P2O5 & K2O"),
+            "kg P<sub>2</sub>O<sub>5</sub> &amp; K<sub>2</sub>O"
+        );
         assert_eq!(chem_html("- e_ccs"), "- e<sub>ccs</sub>");
         assert_eq!(chem_html("default:e_td"), "default:e<sub>td</sub>");
-        assert_eq!(chem_html("e_td_final_fuel, m3x, XCO2"), "e_td_final_fuel, m3x, XCO2");
+        assert_eq!(
+            chem_html("e_td_final_fuel, m3x, XCO2"),
+            "e_td_final_fuel, m3x, XCO2"
+        );
         assert_eq!(chem_html("<b>\"'"), "&lt;b&gt;&quot;&#39;");
     }
 

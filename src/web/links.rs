@@ -7,7 +7,11 @@ pub fn segment(text: &str) -> String {
         match byte {
             b'a'..=b'z' | b'A'..=b'Z' | b'0'..=b'9' | b'-' | b'_' | b'.' | b'~' => out.push(char::from(byte)),
             _ => {
-                let digit = |half: u8| char::from_digit(u32::from(half), 16).unwrap_or('0').to_ascii_uppercase();
+                let digit = |half: u8| {
+                    char::from_digit(u32::from(half), 16)
+                        .unwrap_or('0')
+                        .to_ascii_uppercase()
+                };
                 out.push('%');
                 out.push(digit(byte >> 4));
                 out.push(digit(byte & 15));

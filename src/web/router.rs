@@ -3,8 +3,8 @@
 
 use super::extract::Limits;
 use super::openapi::{self, Document};
-use super::{api_page, error_page};
 use super::problem::{Refusal, RefusalPage};
+use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
 use crate::{demo, factors, pathways};

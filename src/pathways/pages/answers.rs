@@ -10,7 +10,14 @@ use axum::response::{IntoResponse, Response};
 pub fn no_pathway(asked: &str, near: Option<(String, &str)>) -> Response {
     let path = format!("/pathways/{}", shown(asked));
     let refusal = Refusal::not_here("pathway", asked);
-    let mut found = ErrorPage::of(&refusal, Asked { method: &Method::GET, path: &path, request: None });
+    let mut found = ErrorPage::of(
+        &refusal,
+        Asked {
+            method: &Method::GET,
+            path: &path,
+            request: None,
+        },
+    );
     found.title = "There is no pathway at this address".to_owned();
     found.frame.title.clone_from(&found.title);
     if let Some((href, name)) = near {

@@ -48,9 +48,21 @@ impl CarbonView {
     pub fn of(carbon: &Carbon, net: f64) -> CarbonView {
         let whole = carbon.feedstock_g_co2_per_mj.filter(|g| *g > 0.0);
         let named = [
-            ("Ethanol, burnt in the engine", Kind::Fuel, Some(carbon.fuel_g_co2_per_mj)),
-            ("Fermentation gas", Kind::Fermentation, Some(carbon.fermentation_g_co2_per_mj)),
-            ("Co-products that leave", Kind::CoProduct, carbon.co_products_g_co2_per_mj),
+            (
+                "Ethanol, burnt in the engine",
+                Kind::Fuel,
+                Some(carbon.fuel_g_co2_per_mj),
+            ),
+            (
+                "Fermentation gas",
+                Kind::Fermentation,
+                Some(carbon.fermentation_g_co2_per_mj),
+            ),
+            (
+                "Co-products that leave",
+                Kind::CoProduct,
+                carbon.co_products_g_co2_per_mj,
+            ),
             ("Residues, yeast, losses", Kind::Other, carbon.other_g_co2_per_mj),
         ];
         let known = named.iter().all(|(_, _, g)| g.is_some());
@@ -60,7 +72,11 @@ impl CarbonView {
             in_crop,
             parts: named
                 .iter()
-                .map(|(name, kind, g)| Part { name: (*name).to_owned(), kind: *kind, g: g.unwrap_or(0.0) })
+                .map(|(name, kind, g)| Part {
+                    name: (*name).to_owned(),
+                    kind: *kind,
+                    g: g.unwrap_or(0.0),
+                })
                 .collect(),
         });
         let percent = |g: Option<f64>| Some(g? / whole? * 100.0);
@@ -76,13 +92,22 @@ impl CarbonView {
         if let Some(open) = split.as_ref().map(CarbonSplit::open) {
             rows.push(CarbonRow {
                 swatch: Markup(carbon_split::swatch(Kind::Open)),
-                name: if open < 0.0 { "More than went in" } else { "Not accounted for" },
+                name: if open < 0.0 {
+                    "More than went in"
+                } else {
+                    "Not accounted for"
+                },
                 g: Some(open),
                 percent: percent(Some(open)),
             });
         }
         CarbonView {
-            bar: Markup(split.as_ref().and_then(|split| carbon_split::draw(split).ok()).unwrap_or_default()),
+            bar: Markup(
+                split
+                    .as_ref()
+                    .and_then(|split| carbon_split::draw(split).ok())
+                    .unwrap_or_default(),
+            ),
             rows,
             in_crop: carbon.feedstock_g_co2_per_mj,
             closure: carbon.closure_percent,
@@ -99,9 +124,13 @@ impl CarbonView {
     pub fn table(&self) -> Table {
         let mut table = Table::new(&["where", "g_co2_per_mj", "percent_of_crop_carbon"]);
         for row in &self.rows {
-            table.rows.push(vec![row.name.into(), row.g.into(), row.percent.into()]);
+            table
+                .rows
+                .push(vec![row.name.into(), row.g.into(), row.percent.into()]);
         }
-        table.rows.push(vec!["In the crop".into(), self.in_crop.into(), Cell::Empty]);
+        table
+            .rows
+            .push(vec!["In the crop".into(), self.in_crop.into(), Cell::Empty]);
         table
     }
 }

@@ -53,6 +53,8 @@ pub struct Column {
     pub verdict: Verdict,
     /// The ladder as SVG.
     pub ladder: Markup,
+    /// Demonstration data.
+    pub example: bool,
     /// True for the first, which the others are compared with.
     pub base: bool,
 }
@@ -100,17 +102,33 @@ impl Compare {
         let rules = |one: &Picked| book.rule_sets.get(&one.found.rule_set);
         let subjects: Vec<Subject> = picked
             .iter()
-            .filter_map(|one| Some(Subject { pathway: one.pathway, assessment: one.found, rules: rules(one)? }))
+            .filter_map(|one| {
+                Some(Subject {
+                    pathway: one.pathway,
+                    assessment: one.found,
+                    rules: rules(one)?,
+                })
+            })
             .collect();
         let comparison = compare(&subjects);
         let names: Vec<&str> = picked.iter().map(|one| one.pathway.name.as_str()).collect();
         let ids: Vec<String> = picked.iter().map(|one| links::segment(one.id)).collect();
-        let mut frame = Frame::new(names.join(" beside "), Section::Compare, "POST /api/v1/compare").wide();
-        frame.example = comparison.example;
+        let all = picked.iter().all(|one| one.pathway.example);
+        let frame = Frame::new(names.join(" beside "), Section::Compare, "POST /api/v1/compare").wide();
+        let frame = if all {
+            frame.example(true)
+        } else {
+            frame.partly_example(comparison.example)
+        };
         let stages: Vec<Row> = comparison.stages.iter().rev().map(stage_row).collect();
         let notes = comparison.pathways.iter().enumerate().filter_map(|(index, one)| {
             let parts: Vec<f64> = stages.iter().filter_map(|row| row.cells.get(index)?.0).collect();
-            rounding_note(&format!("The stages of {}", one.name), &parts, one.net_g_co2e_per_mj, 2)
+            rounding_note(
+                &format!("The stages of {}", one.name),
+                &parts,
+                one.net_g_co2e_per_mj,
+                2,
+            )
         });
         Compare {
             frame,
@@ -125,13 +143,27 @@ impl Compare {
                 .collect(),
             net: Some(figures(
                 "Net",
-                &comparison.pathways.iter().map(|one| one.net_g_co2e_per_mj).collect::<Vec<_>>(),
-                &comparison.pathways.iter().map(|one| one.difference_g_co2e_per_mj).collect::<Vec<_>>(),
+                &comparison
+                    .pathways
+                    .iter()
+                    .map(|one| one.net_g_co2e_per_mj)
+                    .collect::<Vec<_>>(),
+                &comparison
+                    .pathways
+                    .iter()
+                    .map(|one| one.difference_g_co2e_per_mj)
+                    .collect::<Vec<_>>(),
             )),
             unlike: comparison
                 .unlike
                 .iter()
-                .map(|one| (super::card::spec::named(&one.setting), one.meaning.clone(), one.values.clone()))
+                .map(|one| {
+                    (
+                        super::card::spec::named(&one.setting),
+                        one.meaning.clone(),
+                        one.values.clone(),
+                    )
+                })
                 .collect(),
             stages,
             choices,
@@ -172,11 +204,17 @@ fn count_words(count: usize) -> &'static str {
 fn stage_row(row: &crate::core::levers::compare::StageRow) -> Row {
     let mut names: Vec<&str> = row.names.iter().flatten().map(String::as_str).collect();
     names.dedup();
-    let name = if names.is_empty() { row.key.clone() } else { names.join(", ") };
+    let name = if names.is_empty() {
+        row.key.clone()
+    } else {
+        names.join(", ")
+    };
     let differences = row.difference_g_co2e_per_mj.iter().enumerate();
     Row {
         name,
-        cells: differences.map(|(i, d)| (row.g_co2e_per_mj.get(i).copied().flatten(), (i > 0).then_some(*d))).collect(),
+        cells: differences
+            .map(|(i, d)| (row.g_co2e_per_mj.get(i).copied().flatten(), (i > 0).then_some(*d)))
+            .collect(),
     }
 }
 
@@ -184,24 +222,58 @@ fn figures(name: &str, all: &[f64], differences: &[f64]) -> Row {
     let cells = all.iter().zip(differences).enumerate();
     Row {
         name: name.to_owned(),
-        cells: cells.map(|(i, (g, d))| (Some(*g), (i > 0).then_some(*d))).collect(),
+        cells: cells
+            .map(|(i, (g, d))| (Some(*g), (i > 0).then_some(*d)))
+            .collect(),
     }
 }
 
 fn lead(comparison: &Comparison) -> String {
-    let lowest = comparison.pathways.iter().min_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
-    let (Some(first), Some(lowest)) = (comparison.pathways.first(), lowest) else { return String::new() };
+    let lowest = comparison
+        .pathways
+        .iter()
+        .min_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
+    let (Some(first), Some(lowest)) = (comparison.pathways.first(), lowest) else {
+        return String::new();
+    };
     let (one, difference) = if lowest == first {
-        let highest = comparison.pathways.iter().max_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
+        let highest = comparison
+            .pathways
+            .iter()
+            .max_by(|a, b| a.net_g_co2e_per_mj.total_cmp(&b.net_g_co2e_per_mj));
         let highest = highest.unwrap_or(first);
-        (highest, format!("{} is lowest, {} g CO2e/MJ below {}.", first.name, show(highest.difference_g_co2e_per_mj.abs(), 1), highest.name))
+        (
+            highest,
+            format!(
+                "{} is lowest, {} g CO2e/MJ below {}.",
+                first.name,
+                show(highest.difference_g_co2e_per_mj.abs(), 1),
+                highest.name
+            ),
+        )
     } else {
-        (lowest, format!("{} is lowest, {} g CO2e/MJ below {}.", lowest.name, show(lowest.difference_g_co2e_per_mj.abs(), 1), first.name))
+        (
+            lowest,
+            format!(
+                "{} is lowest, {} g CO2e/MJ below {}.",
+                lowest.name,
+                show(lowest.difference_g_co2e_per_mj.abs(), 1),
+                first.name
+            ),
+        )
     };
     let makes = one.largest.as_ref().map(|largest| {
         let kind = StageKind::from_name(&largest.kind).map_or("published default values", StageKind::words);
-        let side = if largest.difference_g_co2e_per_mj < 0.0 { "less" } else { "more" };
-        format!(" {} makes most of it: {} g {side}.", crate::web::filters::capital(kind), show(largest.difference_g_co2e_per_mj.abs(), 1))
+        let side = if largest.difference_g_co2e_per_mj < 0.0 {
+            "less"
+        } else {
+            "more"
+        };
+        format!(
+            " {} makes most of it: {} g {side}.",
+            filters::capital(kind),
+            show(largest.difference_g_co2e_per_mj.abs(), 1)
+        )
     });
     format!("{difference}{}", makes.unwrap_or_default())
 }
@@ -212,7 +284,12 @@ fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
         .enumerate()
         .map(|(index, one)| {
             let weights = super::weights(book, &one.found.gwp_set);
-            super::ladder::model(one.found, &weights, book.rule_sets.get(&one.found.rule_set), &format!("c{index}"))
+            super::ladder::model(
+                one.found,
+                &weights,
+                book.rule_sets.get(&one.found.rule_set),
+                &format!("c{index}"),
+            )
         })
         .collect();
     let scale = ladder::common_scale(&ladders);
@@ -225,6 +302,7 @@ fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
             href: links::pathway(one.id),
             verdict: Verdict::of(one.found, book.rule_sets.get(&one.found.rule_set)),
             ladder: Markup(ladder::draw(&Ladder { scale, ..ladder }, Form::Narrow).unwrap_or_default()),
+            example: one.pathway.example,
             base: index == 0,
         })
         .collect()
@@ -235,7 +313,10 @@ pub fn ids(query: &str) -> (Vec<String>, bool) {
     let mut out: Vec<String> = Vec::new();
     for (name, value) in query.split('&').filter_map(|pair| pair.split_once('=')) {
         if name == "ids" || name == "id" {
-            let parts = value.split(',').flat_map(|part| part.split("%2C")).flat_map(|part| part.split("%2c"));
+            let parts = value
+                .split(',')
+                .flat_map(|part| part.split("%2C"))
+                .flat_map(|part| part.split("%2c"));
             for id in parts.filter(|id| !id.is_empty()) {
                 if !out.iter().any(|known| known == id) {
                     out.push(id.to_owned());

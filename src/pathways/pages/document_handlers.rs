@@ -7,8 +7,8 @@ use super::show::ShowPathway;
 use super::workings::ShowWorkings;
 use super::{Fault, answers, fault_rows, links};
 use crate::app::App;
-use crate::core::documents::problem::{Problem, Problems};
 use crate::core::documents::Pathway;
+use crate::core::documents::problem::{Problem, Problems};
 use crate::pathways::{self, Expected, PathwayError, What};
 use crate::web::Refusal;
 use crate::web::extract::{Form, Path, Query};
@@ -20,20 +20,32 @@ use serde::Deserialize;
 
 /// The empty form.
 pub(super) async fn new(State(app): State<App>) -> Result<Response, Refusal> {
-    page(&NewPathway::of(Start::default(), Vec::new(), String::new(), Vec::new(), app.library))
+    page(&NewPathway::of(
+        Start::default(),
+        Vec::new(),
+        String::new(),
+        Vec::new(),
+        app.library,
+    ))
 }
 
 /// A short chain from a few facts.
 pub(super) async fn create(State(app): State<App>, Form(start): Form<Start>) -> Result<Response, Refusal> {
     let refuse = |start: Start, faults: Vec<Fault>| {
-        with_status(REFUSED, &NewPathway::of(start, faults, String::new(), Vec::new(), app.library))
+        with_status(
+            REFUSED,
+            &NewPathway::of(start, faults, String::new(), Vec::new(), app.library),
+        )
     };
     let document = match start.pathway(app.library) {
         Ok(document) => document,
         Err(faults) => return refuse(start, faults),
     };
     match pathways::create(&app, document, Some("Begun with a short chain".to_owned())).await {
-        Ok(saved) => Ok(see_other(&format!("{}?saved=1", links::pathway(&saved.id.to_string())))),
+        Ok(saved) => Ok(see_other(&format!(
+            "{}?saved=1",
+            links::pathway(&saved.id.to_string())
+        ))),
         Err(PathwayError::Problems(problems)) => refuse(start, rows(problems.list())),
         Err(error) => Err(error.into()),
     }
@@ -56,14 +68,26 @@ pub(super) struct Typed {
 /// A document becomes a pathway.
 pub(super) async fn bring_in(State(app): State<App>, Form(typed): Form<Typed>) -> Result<Response, Refusal> {
     let refuse = |document: String, problems: &[Problem]| {
-        with_status(REFUSED, &NewPathway::of(Start::default(), Vec::new(), document, rows(problems), app.library))
+        with_status(
+            REFUSED,
+            &NewPathway::of(
+                Start::default(),
+                Vec::new(),
+                document,
+                rows(problems),
+                app.library,
+            ),
+        )
     };
     let document = match Pathway::from_bytes(typed.document.as_bytes()) {
         Ok(document) => document,
         Err(problems) => return refuse(typed.document, problems.list()),
     };
     match pathways::create(&app, document, Some("Brought in as a document".to_owned())).await {
-        Ok(saved) => Ok(see_other(&format!("{}?saved=1", links::pathway(&saved.id.to_string())))),
+        Ok(saved) => Ok(see_other(&format!(
+            "{}?saved=1",
+            links::pathway(&saved.id.to_string())
+        ))),
         Err(PathwayError::Problems(problems)) => refuse(typed.document, problems.list()),
         Err(error) => Err(error.into()),
     }
@@ -77,7 +101,13 @@ async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Respon
     }
 }
 
-fn document_page(seen: &Seen, document: String, why: String, faults: Vec<Fault>, stale: bool) -> ShowDocument {
+fn document_page(
+    seen: &Seen,
+    document: String,
+    why: String,
+    faults: Vec<Fault>,
+    stale: bool,
+) -> ShowDocument {
     let head = seen.head();
     let frame = Frame::new(
         format!("Document of {}", seen.pathway.name),
@@ -102,11 +132,22 @@ fn pretty(pathway: &Pathway) -> String {
 /// The document as stored.
 pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
-    page(&document_page(&seen, pretty(&seen.pathway), String::new(), Vec::new(), false)).map_err(IntoResponse::into_response)
+    page(&document_page(
+        &seen,
+        pretty(&seen.pathway),
+        String::new(),
+        Vec::new(),
+        false,
+    ))
+    .map_err(IntoResponse::into_response)
 }
 
 /// Another document in its place.
-pub(super) async fn replace(State(app): State<App>, Path(id): Path<String>, Form(typed): Form<Typed>) -> Result<Response, Response> {
+pub(super) async fn replace(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Form(typed): Form<Typed>,
+) -> Result<Response, Response> {
     let now = seen(&app, &id, None).await?;
     let refuse = |typed: Typed, problems: &[Problem], stale: bool| {
         let shown = document_page(&now, typed.document, typed.why, rows(problems), stale);
@@ -116,9 +157,23 @@ pub(super) async fn replace(State(app): State<App>, Path(id): Path<String>, Form
         Ok(document) => document,
         Err(problems) => return refuse(typed, problems.list(), false),
     };
-    let why = Some(typed.why.trim()).filter(|why| !why.is_empty()).map(|why| why.chars().take(1_000).collect());
-    match pathways::replace(&app, now.stored.id, document, Expected::Number(typed.expected), why).await {
-        Ok(saved) => Ok(see_other(&format!("{}?saved={}", links::pathway(&id), saved.revision))),
+    let why = Some(typed.why.trim())
+        .filter(|why| !why.is_empty())
+        .map(|why| why.chars().take(1_000).collect());
+    match pathways::replace(
+        &app,
+        now.stored.id,
+        document,
+        Expected::Number(typed.expected),
+        why,
+    )
+    .await
+    {
+        Ok(saved) => Ok(see_other(&format!(
+            "{}?saved={}",
+            links::pathway(&id),
+            saved.revision
+        ))),
         Err(PathwayError::Problems(problems)) => refuse(typed, problems.list(), false),
         Err(PathwayError::Conflict { .. }) => refuse(typed, Problems::default().list(), true),
         Err(error) => Err(refused(&app, &id, error).await),
@@ -126,9 +181,16 @@ pub(super) async fn replace(State(app): State<App>, Path(id): Path<String>, Form
 }
 
 /// What a revision changed.
-pub(super) async fn revision(State(app): State<App>, Path((id, number)): Path<(String, i64)>) -> Result<Response, Response> {
+pub(super) async fn revision(
+    State(app): State<App>,
+    Path((id, number)): Path<(String, i64)>,
+) -> Result<Response, Response> {
     let one = seen(&app, &id, Some(number)).await?;
-    let before = if number > 1 { Some(seen(&app, &id, Some(number - 1)).await?) } else { None };
+    let before = if number > 1 {
+        Some(seen(&app, &id, Some(number - 1)).await?)
+    } else {
+        None
+    };
     let changes = match pathways::changes(&app, one.stored.id, number).await {
         Ok(changes) => changes,
         Err(error) => return Err(refused(&app, &id, error).await),
@@ -163,8 +225,20 @@ pub(super) async fn restore(
 ) -> Result<Response, Response> {
     let old = seen(&app, &id, Some(number)).await?;
     let why = Some(format!("Back to revision {number}"));
-    match pathways::replace(&app, old.stored.id, old.pathway, Expected::Number(form.expected), why).await {
-        Ok(saved) => Ok(see_other(&format!("{}?saved={}", links::pathway(&id), saved.revision))),
+    match pathways::replace(
+        &app,
+        old.stored.id,
+        old.pathway,
+        Expected::Number(form.expected),
+        why,
+    )
+    .await
+    {
+        Ok(saved) => Ok(see_other(&format!(
+            "{}?saved={}",
+            links::pathway(&id),
+            saved.revision
+        ))),
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }
@@ -182,17 +256,35 @@ pub(super) async fn download(
     Path((id, name)): Path<(String, String)>,
     Query(which): Query<Which>,
 ) -> Result<Response, Response> {
-    const KNOWN: [&str; 7] = ["document.json", "assessment.json", "stages.csv", "terms.csv", "carbon.csv", "checks.csv", "workings.csv"];
+    const KNOWN: [&str; 7] = [
+        "document.json",
+        "assessment.json",
+        "stages.csv",
+        "terms.csv",
+        "carbon.csv",
+        "checks.csv",
+        "workings.csv",
+    ];
     if !KNOWN.contains(&name.as_str()) {
         return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response());
     }
     let seen = seen(&app, &id, which.revision).await?;
-    let base = format!("{}-revision-{}", super::card::build::free_key(&seen.pathway.name, "pathway", &[]), seen.stored.revision);
+    let base = format!(
+        "{}-revision-{}",
+        super::card::build::free_key(&seen.pathway.name, "pathway", &[]),
+        seen.stored.revision
+    );
     if name == "document.json" {
-        return Ok(file(&format!("{base}.json"), "application/json", pretty(&seen.pathway)));
+        return Ok(file(
+            &format!("{base}.json"),
+            "application/json",
+            pretty(&seen.pathway),
+        ));
     }
     let Ok(found) = &seen.outcome else {
-        return Err(Refusal::from(PathwayError::NotFound(What::Revision)).detail("The pathway cannot be worked out, so there is no such table.").into_response());
+        return Err(Refusal::from(PathwayError::NotFound(What::Revision))
+            .detail("The pathway cannot be worked out, so there is no such table.")
+            .into_response());
     };
     if name == "assessment.json" {
         let text = serde_json::to_string_pretty(found).unwrap_or_default();
@@ -201,8 +293,17 @@ pub(super) async fn download(
     let table = if name == "workings.csv" {
         ShowWorkings::of(seen.head(), &seen.pathway, found, app.library, false).table()
     } else {
-        let shown = ShowPathway::of(seen.head(), &seen.pathway, Ok(found), app.library, Vec::new(), false);
-        let Some(result) = shown.result else { return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response()) };
+        let shown = ShowPathway::of(
+            seen.head(),
+            &seen.pathway,
+            Ok(found),
+            app.library,
+            Vec::new(),
+            false,
+        );
+        let Some(result) = shown.result else {
+            return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response());
+        };
         match name.as_str() {
             "stages.csv" => result.ladder.table(),
             "terms.csv" => result.terms_table(),

@@ -3,7 +3,10 @@
 use super::home::{Asked, Home, day_of};
 use super::show::ShowPathway;
 use super::workings::ShowWorkings;
-use super::{Head, Notice, RevisionRow, answers, compare, document_handlers, factor_handlers, links, notices, stage_handlers};
+use super::{
+    Head, Notice, RevisionRow, answers, compare, document_handlers, factor_handlers, links, notices,
+    stage_handlers,
+};
 use crate::app::App;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;
@@ -24,19 +27,34 @@ use uuid::Uuid;
 pub fn routes() -> Router<App> {
     Router::new()
         .route("/", get(home))
-        .route("/pathways", get(|| async { see_other("/") }).post(document_handlers::create))
+        .route(
+            "/pathways",
+            get(|| async { see_other("/") }).post(document_handlers::create),
+        )
         .route("/pathways.csv", get(home_csv))
         .route("/pathways/new", get(document_handlers::new))
         .route("/pathways/document", post(document_handlers::bring_in))
         .route("/pathways/{id}", get(show))
         .route("/pathways/{id}/workings", get(workings))
         .route("/pathways/{id}/archive", post(archive))
-        .route("/pathways/{id}/document", get(document_handlers::show).post(document_handlers::replace))
+        .route(
+            "/pathways/{id}/document",
+            get(document_handlers::show).post(document_handlers::replace),
+        )
         .route("/pathways/{id}/new-stage", get(stage_handlers::begin))
-        .route("/pathways/{id}/stages/{key}", get(stage_handlers::show).post(stage_handlers::save))
+        .route(
+            "/pathways/{id}/stages/{key}",
+            get(stage_handlers::show).post(stage_handlers::save),
+        )
         .route("/pathways/{id}/stages/{key}/remove", post(stage_handlers::remove))
-        .route("/pathways/{id}/revisions/{number}", get(document_handlers::revision))
-        .route("/pathways/{id}/revisions/{number}/restore", post(document_handlers::restore))
+        .route(
+            "/pathways/{id}/revisions/{number}",
+            get(document_handlers::revision),
+        )
+        .route(
+            "/pathways/{id}/revisions/{number}/restore",
+            post(document_handlers::restore),
+        )
         .route("/pathways/{id}/{file}", get(document_handlers::download))
         .route("/factors/{edition}/{row}", get(factor_handlers::show))
         .route("/compare", get(compare_page))
@@ -85,7 +103,11 @@ pub(super) async fn see(app: &App, id: Uuid, revision: Option<i64>) -> Result<Se
         Err(PathwayError::Problems(problems)) => Err(problems),
         Err(error) => return Err(error),
     };
-    Ok(Seen { stored, pathway, outcome })
+    Ok(Seen {
+        stored,
+        pathway,
+        outcome,
+    })
 }
 
 /// The id of an address, or the page that says what is nearest to it.
@@ -123,7 +145,12 @@ const MOST_LINES: usize = 1_000;
 
 async fn lines(app: &App, archived: bool) -> Result<Vec<Line>, PathwayError> {
     let mut out = Vec::new();
-    let mut question = Question { archived, limit: Some(200), sort: Sort::Updated, ..Question::default() };
+    let mut question = Question {
+        archived,
+        limit: Some(200),
+        sort: Sort::Updated,
+        ..Question::default()
+    };
     while out.len() < MOST_LINES {
         let page = pathways::list(app, &question).await?;
         out.extend(page.lines);
@@ -149,7 +176,12 @@ struct HomeQuery {
 async fn home_view(app: &App, query: HomeQuery) -> Result<Home, Refusal> {
     let mut all = lines(app, false).await?;
     all.extend(lines(app, true).await?);
-    let asked = Asked { q: query.q, feedstock: query.feedstock, state: query.state, sort: query.sort };
+    let asked = Asked {
+        q: query.q,
+        feedstock: query.feedstock,
+        state: query.state,
+        sort: query.sort,
+    };
     let mut home = Home::of(&all, app.library, asked);
     home.notice = query.examples.map(|count| notices::examples(count));
     Ok(home)
@@ -172,7 +204,11 @@ pub(super) struct ShowQuery {
     pub(super) open: String,
 }
 
-async fn show(State(app): State<App>, Path(id): Path<String>, Query(query): Query<ShowQuery>) -> Result<Response, Response> {
+async fn show(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Query(query): Query<ShowQuery>,
+) -> Result<Response, Response> {
     let uuid = id_of(&app, &id).await?;
     let seen = match see(&app, uuid, None).await {
         Ok(seen) => seen,
@@ -185,7 +221,14 @@ async fn show(State(app): State<App>, Path(id): Path<String>, Query(query): Quer
     let in_line = query.carbon == "in-line";
     let head = seen.head();
     let rows = revision_rows(&head, &rows);
-    let mut shown = ShowPathway::of(head, &seen.pathway, seen.outcome.as_ref(), app.library, rows, in_line);
+    let mut shown = ShowPathway::of(
+        head,
+        &seen.pathway,
+        seen.outcome.as_ref(),
+        app.library,
+        rows,
+        in_line,
+    );
     shown.notice = saved_notice(&app, &seen, query.saved).await;
     page(&shown).map_err(IntoResponse::into_response)
 }
@@ -193,8 +236,16 @@ async fn show(State(app): State<App>, Path(id): Path<String>, Query(query): Quer
 /// Told after a save, by the number in the address: what the current revision did to the net.
 pub(super) async fn saved_notice(app: &App, seen: &Seen, saved: Option<i64>) -> Option<Notice> {
     let number = saved.filter(|number| *number == seen.stored.revision)?;
-    let before = if number > 1 { see(app, seen.stored.id, Some(number - 1)).await.ok() } else { None };
-    Some(notices::saved(&seen.head(), seen.found(), before.as_ref().and_then(Seen::found)))
+    let before = if number > 1 {
+        see(app, seen.stored.id, Some(number - 1)).await.ok()
+    } else {
+        None
+    };
+    Some(notices::saved(
+        &seen.head(),
+        seen.found(),
+        before.as_ref().and_then(Seen::found),
+    ))
 }
 
 fn revision_rows(head: &Head, rows: &[Revision]) -> Vec<RevisionRow> {
@@ -210,14 +261,20 @@ fn revision_rows(head: &Head, rows: &[Revision]) -> Vec<RevisionRow> {
             saved: crate::web::filters::short_day(day_of(row.saved_at)),
             why: row.reason.clone().unwrap_or_default(),
             net: net(row.number),
-            change: net(row.number).zip(net(row.number - 1)).map(|(now, before)| now - before),
+            change: net(row.number)
+                .zip(net(row.number - 1))
+                .map(|(now, before)| now - before),
         })
         .collect();
     out.sort_by_key(|row| std::cmp::Reverse(row.number));
     out
 }
 
-async fn workings(State(app): State<App>, Path(id): Path<String>, Query(query): Query<ShowQuery>) -> Result<Response, Response> {
+async fn workings(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Query(query): Query<ShowQuery>,
+) -> Result<Response, Response> {
     let uuid = id_of(&app, &id).await?;
     match see(&app, uuid, None).await {
         Ok(seen) => match &seen.outcome {
@@ -239,7 +296,11 @@ struct Archive {
     archived: String,
 }
 
-async fn archive(State(app): State<App>, Path(id): Path<String>, Form(form): Form<Archive>) -> Result<Response, Response> {
+async fn archive(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Form(form): Form<Archive>,
+) -> Result<Response, Response> {
     let uuid = id_of(&app, &id).await?;
     let expected = Expected::Number(form.expected);
     let done = if form.archived == "yes" {
@@ -255,7 +316,9 @@ async fn archive(State(app): State<App>, Path(id): Path<String>, Form(form): For
 
 async fn comparison(app: &App, query: Option<&str>) -> Result<compare::Compare, Response> {
     let (ids, more) = compare::ids(query.unwrap_or_default());
-    let lines = lines(app, false).await.map_err(|error| Refusal::from(error).into_response())?;
+    let lines = lines(app, false)
+        .await
+        .map_err(|error| Refusal::from(error).into_response())?;
     let choices = lines
         .iter()
         .filter(|line| line.assessment.is_some())
@@ -266,10 +329,16 @@ async fn comparison(app: &App, query: Option<&str>) -> Result<compare::Compare, 
         })
         .collect();
     if more {
-        return Ok(compare::Compare::ask("Six stand side by side at most. Take some out of the list.", choices));
+        return Ok(compare::Compare::ask(
+            "Six stand side by side at most. Take some out of the list.",
+            choices,
+        ));
     }
     if ids.len() < crate::core::levers::compare::LEAST {
-        return Ok(compare::Compare::ask("Choose two to six pathways; the first is what the others are compared with.", choices));
+        return Ok(compare::Compare::ask(
+            "Choose two to six pathways; the first is what the others are compared with.",
+            choices,
+        ));
     }
     let mut seen = Vec::with_capacity(ids.len());
     for id in &ids {
@@ -281,12 +350,21 @@ async fn comparison(app: &App, query: Option<&str>) -> Result<compare::Compare, 
     }
     let without = seen.iter().find(|(_, one)| one.outcome.is_err());
     if let Some((_, one)) = without {
-        let words = format!("{} cannot be worked out yet, so it cannot be compared.", one.pathway.name);
+        let words = format!(
+            "{} cannot be worked out yet, so it cannot be compared.",
+            one.pathway.name
+        );
         return Ok(compare::Compare::ask(words, choices));
     }
     let picked: Vec<compare::Picked> = seen
         .iter()
-        .filter_map(|(id, one)| Some(compare::Picked { id, pathway: &one.pathway, found: one.found()? }))
+        .filter_map(|(id, one)| {
+            Some(compare::Picked {
+                id,
+                pathway: &one.pathway,
+                found: one.found()?,
+            })
+        })
         .collect();
     Ok(compare::Compare::of(&picked, app.library, choices))
 }

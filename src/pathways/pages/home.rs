@@ -3,8 +3,8 @@
 use super::links;
 use super::verdict::{Checks, Required, Verdict};
 use crate::core::domain::Book;
-use crate::pathways::{Line, Summary};
 use crate::core::units::rounding;
+use crate::pathways::{Line, Summary};
 use crate::web::csv::{Cell, Table};
 use crate::web::filters;
 use crate::web::frame::{Frame, Section};
@@ -127,14 +127,16 @@ impl Home {
     pub fn of(lines: &[Line], book: &Book, asked: Asked) -> Home {
         let all: Vec<HomeRow> = lines.iter().map(|line| HomeRow::of(line, book)).collect();
         let examples = all.iter().filter(|row| row.example).count();
-        let feedstocks: BTreeMap<String, String> =
-            all.iter().map(|row| (row.feedstock.clone(), material_name(book, &row.feedstock))).collect();
+        let feedstocks: BTreeMap<String, String> = all
+            .iter()
+            .map(|row| (row.feedstock.clone(), material_name(book, &row.feedstock)))
+            .collect();
         let lead = lead(&all);
         let empty = all.is_empty();
         let mut rows: Vec<HomeRow> = all.into_iter().filter(|row| asked.lets(row)).collect();
         asked.order(&mut rows);
-        let mut frame = Frame::new("Pathways", Section::Pathways, "GET /api/v1/pathways?limit=50");
-        frame.example = rows.iter().any(|row| row.example);
+        let frame = Frame::new("Pathways", Section::Pathways, "GET /api/v1/pathways?limit=50")
+            .partly_example(rows.iter().any(|row| row.example));
         Home {
             frame,
             notice: None,
@@ -151,9 +153,22 @@ impl Home {
 
     /// The list as CSV.
     pub fn table(&self) -> Table {
-        let mut table = Table::new(&["id", "name", "about", "net_g_co2e_per_mj", "saving_percent", "required", "checks", "revised"]);
+        let mut table = Table::new(&[
+            "id",
+            "name",
+            "about",
+            "net_g_co2e_per_mj",
+            "saving_percent",
+            "required",
+            "checks",
+            "revised",
+        ]);
         for row in &self.rows {
-            let required: Vec<String> = row.required.iter().map(|asked| format!("{} {} %", asked.word, asked.percent)).collect();
+            let required: Vec<String> = row
+                .required
+                .iter()
+                .map(|asked| format!("{} {} %", asked.word, asked.percent))
+                .collect();
             table.rows.push(vec![
                 row.id.clone().into(),
                 row.name.clone().into(),
@@ -170,7 +185,9 @@ impl Home {
 }
 
 fn material_name(book: &Book, id: &str) -> String {
-    book.materials.get(id).map_or_else(|| id.to_owned(), |material| material.name.clone())
+    book.materials
+        .get(id)
+        .map_or_else(|| id.to_owned(), |material| material.name.clone())
 }
 
 impl HomeRow {
@@ -193,13 +210,23 @@ impl HomeRow {
             net: found.map(|found| found.net_g_co2e_per_mj),
             saving: found.and_then(|found| found.saving_percent),
             required: verdict.map(|verdict| verdict.required).unwrap_or_default(),
-            scale: found.zip(comparator).map(|(found, comparator)| Scale::of(found, comparator)),
+            scale: found
+                .zip(comparator)
+                .map(|(found, comparator)| Scale::of(found, comparator)),
             checks: match &checks {
-                Some(checks) => ChecksShort { class: checks.class(), words: checks.words() },
-                None => ChecksShort { class: "blocks", words: "cannot be worked out".to_owned() },
+                Some(checks) => ChecksShort {
+                    class: checks.class(),
+                    words: checks.words(),
+                },
+                None => ChecksShort {
+                    class: "blocks",
+                    words: "cannot be worked out".to_owned(),
+                },
             },
             weight: checks.map_or(usize::MAX, |checks| checks.blocks * 1000 + checks.warns),
-            broken: found.is_none().then(|| "this version of the program refuses the document".to_owned()),
+            broken: found
+                .is_none()
+                .then(|| "this version of the program refuses the document".to_owned()),
             revised: day_of(line.updated_at),
             archived: line.archived_at.is_some(),
             example: line.example,
@@ -209,7 +236,11 @@ impl HomeRow {
 
 fn checks_of(found: &Summary) -> Checks {
     let count = |n: u32| usize::try_from(n).unwrap_or(usize::MAX);
-    Checks { blocks: count(found.blocks), warns: count(found.warnings), informs: count(found.infos) }
+    Checks {
+        blocks: count(found.blocks),
+        warns: count(found.warnings),
+        informs: count(found.infos),
+    }
 }
 
 /// The calendar day of a moment, UTC.
@@ -222,12 +253,18 @@ impl Scale {
 
     fn of(found: &Summary, comparator: f64) -> Scale {
         let net = (found.net_g_co2e_per_mj / comparator * Self::WIDE).clamp(-12.0, 176.0);
-        let strictest = found.thresholds.iter().map(|t| t.percent).fold(f64::NEG_INFINITY, f64::max);
+        let strictest = found
+            .thresholds
+            .iter()
+            .map(|t| t.percent)
+            .fold(f64::NEG_INFINITY, f64::max);
         let show = |x: f64| rounding::plain_fixed(x, 1);
         Scale {
             from: show(net.min(0.0)),
             width: show(net.abs().max(0.5)),
-            required: strictest.is_finite().then(|| show(Self::WIDE * (100.0 - strictest) / 100.0)),
+            required: strictest
+                .is_finite()
+                .then(|| show(Self::WIDE * (100.0 - strictest) / 100.0)),
             over: found.thresholds.iter().any(|t| !t.met),
         }
     }
@@ -235,16 +272,27 @@ impl Scale {
 
 fn lead(rows: &[HomeRow]) -> String {
     let shown: Vec<&HomeRow> = rows.iter().filter(|row| !row.archived).collect();
-    let count = |word: &str| shown.iter().filter(|row| row.required.iter().any(|required| required.word == word)).count();
+    let count = |word: &str| {
+        shown
+            .iter()
+            .filter(|row| row.required.iter().any(|required| required.word == word))
+            .count()
+    };
     let broken = shown.iter().filter(|row| row.broken.is_some()).count();
     let archived = rows.len() - shown.len();
     let (meets, misses) = (count("meets"), count("misses"));
     let mut parts = Vec::new();
     if meets > 0 {
-        parts.push(format!("{meets} {} the required saving", if meets == 1 { "meets" } else { "meet" }));
+        parts.push(format!(
+            "{meets} {} the required saving",
+            if meets == 1 { "meets" } else { "meet" }
+        ));
     }
     if misses > 0 {
-        parts.push(format!("{misses} {} it", if misses == 1 { "misses" } else { "miss" }));
+        parts.push(format!(
+            "{misses} {} it",
+            if misses == 1 { "misses" } else { "miss" }
+        ));
     }
     if broken > 0 {
         parts.push(format!("{broken} cannot be worked out yet"));
@@ -256,7 +304,11 @@ fn lead(rows: &[HomeRow]) -> String {
         1 => "One pathway".to_owned(),
         many => format!("{many} pathways"),
     };
-    if parts.is_empty() { format!("{begin}.") } else { format!("{begin}: {}.", parts.join(", ")) }
+    if parts.is_empty() {
+        format!("{begin}.")
+    } else {
+        format!("{begin}: {}.", parts.join(", "))
+    }
 }
 
 impl Asked {
@@ -277,8 +329,14 @@ impl Asked {
     fn order(&self, rows: &mut [HomeRow]) {
         let (down, column) = self.column();
         let by = |a: &HomeRow, b: &HomeRow| match column {
-            "net" => a.net.unwrap_or(f64::INFINITY).total_cmp(&b.net.unwrap_or(f64::INFINITY)),
-            "saving" => a.saving.unwrap_or(f64::NEG_INFINITY).total_cmp(&b.saving.unwrap_or(f64::NEG_INFINITY)),
+            "net" => a
+                .net
+                .unwrap_or(f64::INFINITY)
+                .total_cmp(&b.net.unwrap_or(f64::INFINITY)),
+            "saving" => a
+                .saving
+                .unwrap_or(f64::NEG_INFINITY)
+                .total_cmp(&b.saving.unwrap_or(f64::NEG_INFINITY)),
             "checks" => a.weight.cmp(&b.weight),
             "name" => a.name.to_lowercase().cmp(&b.name.to_lowercase()),
             _ => a.revised.cmp(&b.revised),
@@ -286,7 +344,11 @@ impl Asked {
         rows.sort_by(|a, b| {
             let first = by(a, b);
             let first = if down { first.reverse() } else { first };
-            if first == Ordering::Equal { a.name.cmp(&b.name).then_with(|| a.id.cmp(&b.id)) } else { first }
+            if first == Ordering::Equal {
+                a.name.cmp(&b.name).then_with(|| a.id.cmp(&b.id))
+            } else {
+                first
+            }
         });
     }
 
@@ -311,7 +373,12 @@ impl Asked {
         .map(|(column, words, class)| {
             let here = column == now;
             let sign = if here && !down { "-" } else { "" };
-            let rest = format!("{}{}{}", part("q", &self.q), part("feedstock", &self.feedstock), part("state", &self.state));
+            let rest = format!(
+                "{}{}{}",
+                part("q", &self.q),
+                part("feedstock", &self.feedstock),
+                part("state", &self.state)
+            );
             Column {
                 href: format!("/?sort={sign}{column}{rest}"),
                 words,
@@ -340,5 +407,9 @@ impl Asked {
 }
 
 fn part(name: &str, value: &str) -> String {
-    if value.is_empty() { String::new() } else { format!("&{name}={}", links::segment(value)) }
+    if value.is_empty() {
+        String::new()
+    } else {
+        format!("&{name}={}", links::segment(value))
+    }
 }

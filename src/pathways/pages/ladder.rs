@@ -63,7 +63,11 @@ pub struct CountedRow {
 
 /// The patterns that the pictures of a page refer to, once in a page.
 pub fn defs() -> Markup {
-    Markup(format!("{}{}", ladder::defs(), crate::charts::carbon_split::defs()))
+    Markup(format!(
+        "{}{}",
+        ladder::defs(),
+        crate::charts::carbon_split::defs()
+    ))
 }
 
 /// CO2e by gas group of a vector in g per MJ.
@@ -97,32 +101,41 @@ fn rungs(assessment: &Assessment, weights: &GwpSet) -> Vec<(String, Rung)> {
     };
     let mut out = Vec::with_capacity(assessment.stages.len() + 2);
     if carbon.uptake_g_co2_per_mj != 0.0 {
-        out.push((String::new(), Rung {
-            name: "Uptake by the crop".to_owned(),
-            counted: Counted::default(),
-            crop: Some(carbon.uptake_g_co2_per_mj),
-            uptake: true,
-            absent: false,
-        }));
+        out.push((
+            String::new(),
+            Rung {
+                name: "Uptake by the crop".to_owned(),
+                counted: Counted::default(),
+                crop: Some(carbon.uptake_g_co2_per_mj),
+                uptake: true,
+                absent: false,
+            },
+        ));
     }
     for stage in &assessment.stages {
-        out.push((stage.key.clone(), Rung {
-            name: stage_name(stage),
-            counted: counted(&stage.gases_g_per_mj, weights),
-            crop: back(&stage.key),
-            uptake: false,
-            absent: false,
-        }));
+        out.push((
+            stage.key.clone(),
+            Rung {
+                name: stage_name(stage),
+                counted: counted(&stage.gases_g_per_mj, weights),
+                crop: back(&stage.key),
+                uptake: false,
+                absent: false,
+            },
+        ));
     }
     let known = |key: &str| assessment.stages.iter().any(|stage| stage.key == key);
     for release in carbon.releases.iter().filter(|release| !known(&release.stage)) {
-        out.push((String::new(), Rung {
-            name: release.what.clone(),
-            counted: Counted::default(),
-            crop: Some(release.g_co2_per_mj),
-            uptake: false,
-            absent: false,
-        }));
+        out.push((
+            String::new(),
+            Rung {
+                name: crate::web::filters::capital(&release.what),
+                counted: Counted::default(),
+                crop: Some(release.g_co2_per_mj),
+                uptake: false,
+                absent: false,
+            },
+        ));
     }
     out
 }
@@ -130,9 +143,13 @@ fn rungs(assessment: &Assessment, weights: &GwpSet) -> Vec<(String, Rung)> {
 /// The ladder of an assessment, ready to draw.
 pub fn model(assessment: &Assessment, weights: &GwpSet, rules: Option<&RuleSet>, id: &str) -> Ladder {
     let comparator = assessment.comparator_g_co2e_per_mj;
-    let strictest = assessment.thresholds.iter().map(|t| t.percent).fold(None, |most: Option<f64>, percent| {
-        Some(most.map_or(percent, |most| most.max(percent)))
-    });
+    let strictest = assessment
+        .thresholds
+        .iter()
+        .map(|t| t.percent)
+        .fold(None, |most: Option<f64>, percent| {
+            Some(most.map_or(percent, |most| most.max(percent)))
+        });
     Ladder {
         title: format!("Field-to-wheel ladder of {}", assessment.pathway_name),
         id: id.to_owned(),
@@ -145,7 +162,10 @@ pub fn model(assessment: &Assessment, weights: &GwpSet, rules: Option<&RuleSet>,
             percent,
             g: comparator * (100.0 - percent) / 100.0,
         }),
-        stages: rungs(assessment, weights).into_iter().map(|(_, rung)| rung).collect(),
+        stages: rungs(assessment, weights)
+            .into_iter()
+            .map(|(_, rung)| rung)
+            .collect(),
         scale: None,
     }
 }
@@ -174,7 +194,11 @@ impl LadderView {
             named.id = id.to_owned();
             ladder::draw(&named, form)
         };
-        let (wide, print, narrow) = (draw("lw", Form::Wide), draw("lp", Form::Print), draw("ln", Form::Narrow));
+        let (wide, print, narrow) = (
+            draw("lw", Form::Wide),
+            draw("lp", Form::Print),
+            draw("ln", Form::Narrow),
+        );
         let absent = wide.as_ref().err().map(ToString::to_string);
         let mut running = 0.0;
         let mut rows: Vec<LadderRow> = rungs(assessment, weights)
@@ -201,7 +225,9 @@ impl LadderView {
             narrow: Markup(narrow.unwrap_or_default()),
             absent,
             in_line,
-            land: rows.iter().any(|row| row.counted.is_some_and(|counted| counted.land != 0.0)),
+            land: rows
+                .iter()
+                .any(|row| row.counted.is_some_and(|counted| counted.land != 0.0)),
             rows,
             foot: LadderRow {
                 name: "Net".to_owned(),
@@ -215,14 +241,23 @@ impl LadderView {
     /// The table as CSV, field first, figures in full.
     pub fn table(&self) -> Table {
         let mut table = Table::new(&[
-            "stage", "name", "counted_g_co2e_per_mj", "co2_fossil_g_co2e_per_mj", "n2o_g_co2e_per_mj",
-            "ch4_g_co2e_per_mj", "co2_land_g_co2e_per_mj", "co2e_unsplit_g_co2e_per_mj", "running_g_co2e_per_mj",
+            "stage",
+            "name",
+            "counted_g_co2e_per_mj",
+            "co2_fossil_g_co2e_per_mj",
+            "n2o_g_co2e_per_mj",
+            "ch4_g_co2e_per_mj",
+            "co2_land_g_co2e_per_mj",
+            "co2e_unsplit_g_co2e_per_mj",
+            "running_g_co2e_per_mj",
             "crop_co2_g_per_mj",
         ]);
         for row in self.rows.iter().rev().chain(std::iter::once(&self.foot)) {
             let mut cells: Vec<Cell> = vec![row.key.clone().into(), row.name.clone().into()];
             match row.counted {
-                Some(c) => cells.extend([c.sum, c.co2, c.n2o, c.ch4, c.land, c.unsplit, c.running].map(Cell::Figure)),
+                Some(c) => {
+                    cells.extend([c.sum, c.co2, c.n2o, c.ch4, c.land, c.unsplit, c.running].map(Cell::Figure))
+                }
                 None => cells.extend(std::iter::repeat_n(Cell::Empty, 7)),
             }
             cells.push(row.crop.into());

@@ -5,6 +5,7 @@ pub mod carbon;
 pub mod card;
 pub mod compare;
 mod document_handlers;
+mod entries;
 mod factor_handlers;
 mod handlers;
 pub mod home;

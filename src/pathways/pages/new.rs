@@ -70,15 +70,28 @@ pub struct Start {
 
 impl NewPathway {
     /// The page as typed.
-    pub fn of(typed: Start, faults: Vec<Fault>, document: String, document_faults: Vec<Fault>, book: &Book) -> NewPathway {
+    pub fn of(
+        typed: Start,
+        faults: Vec<Fault>,
+        document: String,
+        document_faults: Vec<Fault>,
+        book: &Book,
+    ) -> NewPathway {
         let crops = book.materials.values().filter(|material| {
             let kind = material.kind.as_str();
-            !matches!(material.id.as_str(), "ethanol" | "heat" | "power") && (kind.contains("crop") || kind.contains("residue") || kind.contains("feedstock"))
+            !matches!(material.id.as_str(), "ethanol" | "heat" | "power")
+                && (kind.contains("crop") || kind.contains("residue") || kind.contains("feedstock"))
         });
         NewPathway {
             frame: Frame::new("New pathway", Section::Pathways, "POST /api/v1/pathways"),
-            feedstocks: crops.map(|material| (material.id.clone(), material.name.clone())).collect(),
-            rule_sets: book.rule_sets.values().map(|rules| (rules.id.clone(), rules.title.clone())).collect(),
+            feedstocks: crops
+                .map(|material| (material.id.clone(), material.name.clone()))
+                .collect(),
+            rule_sets: book
+                .rule_sets
+                .values()
+                .map(|rules| (rules.id.clone(), rules.title.clone()))
+                .collect(),
             typed,
             faults,
             document,
@@ -104,37 +117,71 @@ impl Start {
         };
         let day = |text: &str| text.trim().parse::<Date>().ok();
         if self.name.trim().is_empty() {
-            fault("name", "Name", "The pathway has no name.", "Give it one that you will know it by.");
+            fault(
+                "name",
+                "Name",
+                "The pathway has no name.",
+                "Give it one that you will know it by.",
+            );
         }
         if !book.materials.contains_key(&self.feedstock) {
-            fault("feedstock", "Feedstock", "There is no such feedstock.", "Choose one of the list.");
+            fault(
+                "feedstock",
+                "Feedstock",
+                "There is no such feedstock.",
+                "Choose one of the list.",
+            );
         }
         if !book.rule_sets.contains_key(&self.rule_set) {
-            fault("rule_set", "Rule set", "There is no such rule set.", "Choose one of the list.");
+            fault(
+                "rule_set",
+                "Rule set",
+                "There is no such rule set.",
+                "Choose one of the list.",
+            );
         }
         let (from, to) = (day(&self.from), day(&self.to));
         if from.is_none() {
-            fault("from", "First day", "The first day is no day of the calendar.", "Give it as 2026-07-01.");
+            fault(
+                "from",
+                "First day",
+                "The first day is no day of the calendar.",
+                "Give it as 2026-07-01.",
+            );
         }
         if to.is_none() {
-            fault("to", "Last day", "The last day is no day of the calendar.", "Give it as 2027-06-30.");
+            fault(
+                "to",
+                "Last day",
+                "The last day is no day of the calendar.",
+                "Give it as 2027-06-30.",
+            );
         }
         let started = match self.plant_started.trim() {
             "" => None,
             text => {
                 let started = day(text);
                 if started.is_none() {
-                    fault("plant_started", "Plant started", "That is no day of the calendar.", "Give it as 2017-05-01, or leave it empty.");
+                    fault(
+                        "plant_started",
+                        "Plant started",
+                        "That is no day of the calendar.",
+                        "Give it as 2017-05-01, or leave it empty.",
+                    );
                 }
                 started
             }
         };
-        let (Some(from), Some(to), true) = (from, to, faults.is_empty()) else { return Err(faults) };
+        let (Some(from), Some(to), true) = (from, to, faults.is_empty()) else {
+            return Err(faults);
+        };
         Ok(Pathway {
             format: pathway::FORMAT.to_owned(),
             name: self.name.trim().to_owned(),
             example: false,
-            note: Some("The amounts are a start, not data: put your own in their place, stage by stage.".to_owned()),
+            note: Some(
+                "The amounts are a start, not data: put your own in their place, stage by stage.".to_owned(),
+            ),
             feedstock: self.feedstock.clone(),
             period: Period { from, to, kind: None },
             rule_set: self.rule_set.clone(),
@@ -148,28 +195,73 @@ impl Start {
 }
 
 fn starter(feedstock: &str) -> Vec<Stage> {
-    let tonne = |amount: f64| Flow { amount: Some(amount), unit: Some("t".to_owned()), ..Flow::default() };
-    let pure = |amount: f64| Flow { strength_percent_mass: Some(99.8), ..tonne(amount) };
-    let stage = |key: &str, kind: StageKind, name: &str, material: &str, flow: Flow, intakes: Vec<(&str, Flow)>| Stage {
-        key: key.to_owned(),
-        kind,
-        name: Some(name.to_owned()),
-        note: None,
-        grown: None,
-        output: Output { material: material.to_owned(), flow },
-        intakes: intakes
-            .into_iter()
-            .map(|(from, flow)| Intake { from: from.to_owned(), product: None, flow })
-            .collect(),
-        inputs: Vec::new(),
-        co_products: Vec::new(),
-        allocation: None,
-        stated: None,
+    let tonne = |amount: f64| Flow {
+        amount: Some(amount),
+        unit: Some("t".to_owned()),
+        ..Flow::default()
     };
+    let pure = |amount: f64| Flow {
+        strength_percent_mass: Some(99.8),
+        ..tonne(amount)
+    };
+    let stage =
+        |key: &str, kind: StageKind, name: &str, material: &str, flow: Flow, intakes: Vec<(&str, Flow)>| {
+            Stage {
+                key: key.to_owned(),
+                kind,
+                name: Some(name.to_owned()),
+                note: None,
+                grown: None,
+                output: Output {
+                    material: material.to_owned(),
+                    flow,
+                },
+                intakes: intakes
+                    .into_iter()
+                    .map(|(from, flow)| Intake {
+                        from: from.to_owned(),
+                        product: None,
+                        flow,
+                    })
+                    .collect(),
+                inputs: Vec::new(),
+                co_products: Vec::new(),
+                allocation: None,
+                stated: None,
+            }
+        };
     vec![
-        stage("field", StageKind::Cultivation, "Growing", feedstock, tonne(8.0), vec![]),
-        stage("haul-in", StageKind::FeedstockTransport, "Haul to works", feedstock, tonne(1.0), vec![("field", tonne(1.0))]),
-        stage("works", StageKind::Processing, "Works", "ethanol", pure(30.0), vec![("haul-in", tonne(100.0))]),
-        stage("delivery", StageKind::FuelTransport, "Delivery", "ethanol", pure(1.0), vec![("works", pure(1.0))]),
+        stage(
+            "field",
+            StageKind::Cultivation,
+            "Growing",
+            feedstock,
+            tonne(8.0),
+            vec![],
+        ),
+        stage(
+            "haul-in",
+            StageKind::FeedstockTransport,
+            "Haul to works",
+            feedstock,
+            tonne(1.0),
+            vec![("field", tonne(1.0))],
+        ),
+        stage(
+            "works",
+            StageKind::Processing,
+            "Works",
+            "ethanol",
+            pure(30.0),
+            vec![("haul-in", tonne(100.0))],
+        ),
+        stage(
+            "delivery",
+            StageKind::FuelTransport,
+            "Delivery",
+            "ethanol",
+            pure(1.0),
+            vec![("works", pure(1.0))],
+        ),
     ]
 }

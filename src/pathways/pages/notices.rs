@@ -10,12 +10,20 @@ pub fn saved(head: &Head, now: Option<&Assessment>, before: Option<&Assessment>)
     let number = head.revision;
     let what = format!("Saved as revision {number}.");
     let Some(now) = now else {
-        return Notice { what, then: String::new(), back: None };
+        return Notice {
+            what,
+            then: String::new(),
+            back: None,
+        };
     };
     let net = now.net.g_co2e_per_mj;
     let shown = show(net, 2);
     let Some(before) = before else {
-        return Notice { what, then: format!("The net is {shown} g CO2e/MJ."), back: None };
+        return Notice {
+            what,
+            then: format!("The net is {shown} g CO2e/MJ."),
+            back: None,
+        };
     };
     let earlier = number.saturating_sub(1);
     let change = net - before.net.g_co2e_per_mj;
@@ -23,18 +31,28 @@ pub fn saved(head: &Head, now: Option<&Assessment>, before: Option<&Assessment>)
     let then = if round_half_away(change, 2) == 0.0 {
         let inside = moved(Some(before), now);
         let within = match inside.first() {
-            Some(first) => format!(" \u{201c}{}\u{201d} moved by {}, others made up for it.", first.name, signed(first.change)),
+            Some(first) => format!(
+                " \u{201c}{}\u{201d} moved by {}, others made up for it.",
+                first.name,
+                signed(first.change)
+            ),
             None => String::new(),
         };
         format!("The net is {shown} g CO2e/MJ, as in revision {earlier}.{within}")
     } else {
         let side = if change < 0.0 { "lower" } else { "higher" };
-        format!("The net is {shown} g CO2e/MJ, {step} {side} than revision {earlier}{}", cause(before, now, change))
+        format!(
+            "The net is {shown} g CO2e/MJ, {step} {side} than revision {earlier}{}",
+            cause(before, now, change)
+        )
     };
     Notice {
         what,
         then,
-        back: Some((format!("{}/revisions/{earlier}", links::pathway(&head.id)), format!("Look at revision {earlier}, or go back to it"))),
+        back: Some((
+            format!("{}/revisions/{earlier}", links::pathway(&head.id)),
+            format!("Look at revision {earlier}, or go back to it"),
+        )),
     }
 }
 
@@ -45,7 +63,10 @@ fn signed(change: f64) -> String {
 /// The stage that moved most the same way, and how much of the change it is.
 fn cause(before: &Assessment, now: &Assessment, change: f64) -> String {
     let stages = moved(Some(before), now);
-    let Some(first) = stages.iter().find(|stage| stage.change.signum() == change.signum()) else {
+    let Some(first) = stages
+        .iter()
+        .find(|stage| stage.change.signum() == change.signum())
+    else {
         return ".".to_owned();
     };
     let verb = match (first.before, first.after, first.change < 0.0) {
@@ -57,7 +78,11 @@ fn cause(before: &Assessment, now: &Assessment, change: f64) -> String {
     if round_half_away(first.change, 2) == round_half_away(change, 2) {
         format!(": \u{201c}{}\u{201d} {verb} by as much.", first.name)
     } else {
-        format!(": \u{201c}{}\u{201d} {verb} by {}.", first.name, show(first.change.abs(), 2))
+        format!(
+            ": \u{201c}{}\u{201d} {verb} by {}.",
+            first.name,
+            show(first.change.abs(), 2)
+        )
     }
 }
 
@@ -66,9 +91,16 @@ pub fn examples(count: u64) -> Notice {
     let (what, then) = match count {
         0 => ("The example is gone.", String::new()),
         1 => ("The example is here:", "1 pathway, marked as such.".to_owned()),
-        many => ("The example is here:", format!("{many} pathways, each marked as such.")),
+        many => (
+            "The example is here:",
+            format!("{many} pathways, each marked as such."),
+        ),
     };
-    Notice { what: what.to_owned(), then, back: None }
+    Notice {
+        what: what.to_owned(),
+        then,
+        back: None,
+    }
 }
 
 #[cfg(test)]
@@ -84,12 +116,17 @@ mod tests {
             stage.inputs.clear();
         }
         let now = samples::assess(&changed);
-        let head = Head { revision: 15, ..samples::head() };
+        let head = Head {
+            revision: 15,
+            ..samples::head()
+        };
         let notice = saved(&head, Some(&now), Some(&before));
         assert_eq!(notice.what, "Saved as revision 15.");
         let step = show(before.net.g_co2e_per_mj - now.net.g_co2e_per_mj, 2);
         let net = show(now.net.g_co2e_per_mj, 2);
-        let words = format!("The net is {net} g CO2e/MJ, {step} lower than revision 14: \u{201c}Depot and stations\u{201d} fell by as much.");
+        let words = format!(
+            "The net is {net} g CO2e/MJ, {step} lower than revision 14: \u{201c}Depot and stations\u{201d} fell by as much."
+        );
         assert_eq!(notice.then, words);
         let same = saved(&head, Some(&before), Some(&before));
         assert!(same.then.ends_with("as in revision 14."), "{}", same.then);

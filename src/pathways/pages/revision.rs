@@ -83,7 +83,11 @@ impl ShowRevision {
         let frame = Frame::new(
             format!("Revision {} of {}", head.revision, pathway.name),
             Section::Pathways,
-            format!("GET /api/v1/pathways/{}/revisions/{}/changes", links::segment(&head.id), head.revision),
+            format!(
+                "GET /api/v1/pathways/{}/revisions/{}/changes",
+                links::segment(&head.id),
+                head.revision
+            ),
         );
         ShowRevision {
             frame: frame.example(pathway.example),
@@ -92,8 +96,17 @@ impl ShowRevision {
             why,
             verdict: now.map(|now| Verdict::of(now, rules).text()),
             moved: now.map(|now| moved(before, now)).unwrap_or_default(),
-            net: now.map(|now| (before.map(|before| before.net.g_co2e_per_mj), now.net.g_co2e_per_mj)),
-            changes: changes.iter().take(MOST).map(|change| row(change, pathway)).collect(),
+            net: now.map(|now| {
+                (
+                    before.map(|before| before.net.g_co2e_per_mj),
+                    now.net.g_co2e_per_mj,
+                )
+            }),
+            changes: changes
+                .iter()
+                .take(MOST)
+                .map(|change| row(change, pathway))
+                .collect(),
             more: changes.len().saturating_sub(MOST),
             head,
         }
@@ -103,7 +116,12 @@ impl ShowRevision {
 /// Stages whose figure moved by as much as tables show, largest first.
 pub fn moved(before: Option<&Assessment>, now: &Assessment) -> Vec<Moved> {
     let Some(before) = before else { return Vec::new() };
-    let find = |list: &Assessment, key: &str| list.stages.iter().find(|stage| stage.key == key).map(|stage| stage.g_co2e_per_mj);
+    let find = |list: &Assessment, key: &str| {
+        list.stages
+            .iter()
+            .find(|stage| stage.key == key)
+            .map(|stage| stage.g_co2e_per_mj)
+    };
     let mut out: Vec<Moved> = now
         .stages
         .iter()
@@ -117,7 +135,10 @@ pub fn moved(before: Option<&Assessment>, now: &Assessment) -> Vec<Moved> {
             }
         })
         .collect();
-    let gone = before.stages.iter().filter(|stage| find(now, &stage.key).is_none());
+    let gone = before
+        .stages
+        .iter()
+        .filter(|stage| find(now, &stage.key).is_none());
     out.extend(gone.map(|stage| Moved {
         name: super::ladder::stage_name(stage),
         before: Some(stage.g_co2e_per_mj),
@@ -136,7 +157,11 @@ fn row(change: &Change, pathway: &Pathway) -> ChangeRow {
     });
     ChangeRow {
         place: stage.unwrap_or_else(|| "The pathway".to_owned()),
-        field: if change.field.is_empty() { "the whole stage".to_owned() } else { change.field.replace('_', " ").replace('.', ", ") },
+        field: if change.field.is_empty() {
+            "the whole stage".to_owned()
+        } else {
+            change.field.replace('_', " ").replace('.', ", ")
+        },
         what: match change.what {
             Kind::Added => "added",
             Kind::Removed => "taken out",
@@ -152,15 +177,23 @@ fn shown(value: Option<&Value>) -> String {
     let text = match value {
         None | Some(Value::Null) => return "\u{2013}".to_owned(),
         Some(Value::String(text)) => text.clone(),
-        Some(Value::Number(number)) => {
-            number.as_f64().map_or_else(|| number.to_string(), crate::core::units::rounding::show_all)
-        }
-        Some(Value::Object(object)) => match (object.get("value"), object.get("unit"), object.get("label").or_else(|| object.get("name"))) {
+        Some(Value::Number(number)) => number
+            .as_f64()
+            .map_or_else(|| number.to_string(), crate::core::units::rounding::show_all),
+        Some(Value::Object(object)) => match (
+            object.get("value"),
+            object.get("unit"),
+            object.get("label").or_else(|| object.get("name")),
+        ) {
             (Some(figure), Some(Value::String(unit)), _) => format!("{} {unit}", shown(Some(figure))),
             (_, _, Some(Value::String(name))) => name.clone(),
             _ => Value::Object(object.clone()).to_string(),
         },
         Some(other) => other.to_string(),
     };
-    if text.chars().count() > 200 { text.chars().take(200).chain("...".chars()).collect() } else { text }
+    if text.chars().count() > 200 {
+        text.chars().take(200).chain("...".chars()).collect()
+    } else {
+        text
+    }
 }

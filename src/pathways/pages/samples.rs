@@ -77,7 +77,11 @@ pub fn revisions() -> Vec<RevisionRow> {
 pub fn lines() -> Vec<crate::pathways::Line> {
     use crate::core::documents::assessment::ThresholdResult;
     use crate::pathways::{Line, Summary};
-    let at = |day: &str| format!("{day}T10:00:00Z").parse::<jiff::Timestamp>().expect("a moment");
+    let at = |day: &str| {
+        format!("{day}T10:00:00Z")
+            .parse::<jiff::Timestamp>()
+            .expect("a moment")
+    };
     let line = |number: u128, name: &str, figures: Option<(f64, bool, u32, u32)>, day: &str| Line {
         id: uuid::Uuid::from_u128(number),
         name: name.to_owned(),
@@ -93,7 +97,11 @@ pub fn lines() -> Vec<crate::pathways::Line> {
             rule_set: "eu-2018-2001".to_owned(),
             net_g_co2e_per_mj: net,
             saving_percent: Some((94.0 - net) / 94.0 * 100.0),
-            thresholds: vec![ThresholdResult { percent: 60.0, because: "plant started 2017-05-01".to_owned(), met }],
+            thresholds: vec![ThresholdResult {
+                percent: 60.0,
+                because: "plant started 2017-05-01".to_owned(),
+                met,
+            }],
             blocks,
             warnings,
             infos: 1,
@@ -101,8 +109,18 @@ pub fn lines() -> Vec<crate::pathways::Line> {
         }),
     };
     vec![
-        line(1, "Autumn wheat, Tarn Bridge works", Some((31.41, true, 1, 2)), "2027-07-12"),
-        line(2, "Spring barley trial, Tarn Bridge works", Some((38.42, false, 0, 2)), "2027-06-30"),
+        line(
+            1,
+            "Autumn wheat, Tarn Bridge works",
+            Some((31.41, true, 1, 2)),
+            "2027-07-12",
+        ),
+        line(
+            2,
+            "Spring barley trial, Tarn Bridge works",
+            Some((38.42, false, 0, 2)),
+            "2027-06-30",
+        ),
         line(3, "Winter rye, bought in", None, "2027-07-13"),
         line(4, HOSTILE, Some((-2.0, true, 0, 0)), "2027-07-01"),
     ]

@@ -127,8 +127,12 @@ impl ShowPathway {
         in_line: bool,
     ) -> ShowPathway {
         let rules = book.rule_sets.get(&pathway.rule_set);
-        let mut frame = Frame::new(&pathway.name, Section::Pathways, links::data_assessment(&head.id, head.revision))
-            .example(pathway.example);
+        let mut frame = Frame::new(
+            &pathway.name,
+            Section::Pathways,
+            links::data_assessment(&head.id, head.revision),
+        )
+        .example(pathway.example);
         frame.data.push(format!("GET /api/v1/pathways/{}", head.id));
         ShowPathway {
             frame,
@@ -136,10 +140,18 @@ impl ShowPathway {
             note: pathway.note.clone().unwrap_or_default(),
             facts: facts(&head, pathway, outcome.ok(), book, rules),
             notice: None,
-            result: outcome.ok().map(|found| PathwayResult::of(&head, pathway, found, book, rules, in_line)),
-            faults: outcome.err().map(|problems| faults(&head, pathway, problems.list())).unwrap_or_default(),
+            result: outcome
+                .ok()
+                .map(|found| PathwayResult::of(&head, pathway, found, book, rules, in_line)),
+            faults: outcome
+                .err()
+                .map(|problems| faults(&head, pathway, problems.list()))
+                .unwrap_or_default(),
             stages: stage_links(&head.id, pathway),
-            kinds: StageKind::ALL.iter().map(|kind| (kind.name(), kind.words())).collect(),
+            kinds: StageKind::ALL
+                .iter()
+                .map(|kind| (kind.name(), kind.words()))
+                .collect(),
             revisions,
             head,
         }
@@ -159,7 +171,13 @@ fn faults(head: &Head, pathway: &Pathway, problems: &[Problem]) -> Vec<Fault> {
     fault_rows(problems, |pointer| links::place(&head.id, pathway, pointer))
 }
 
-fn facts(head: &Head, pathway: &Pathway, found: Option<&Assessment>, book: &Book, rules: Option<&RuleSet>) -> Vec<Fact> {
+fn facts(
+    head: &Head,
+    pathway: &Pathway,
+    found: Option<&Assessment>,
+    book: &Book,
+    rules: Option<&RuleSet>,
+) -> Vec<Fact> {
     let feedstock = book.materials.get(&pathway.feedstock);
     let mut out = vec![
         Fact {
@@ -167,7 +185,14 @@ fn facts(head: &Head, pathway: &Pathway, found: Option<&Assessment>, book: &Book
             value: feedstock.map_or_else(|| pathway.feedstock.clone(), |material| material.name.clone()),
             href: feedstock.map(|material| links::material(&material.id)),
         },
-        Fact::new("Period", format!("{} to {}", short_day(pathway.period.from), short_day(pathway.period.to))),
+        Fact::new(
+            "Period",
+            format!(
+                "{} to {}",
+                short_day(pathway.period.from),
+                short_day(pathway.period.to)
+            ),
+        ),
         Fact {
             label: "Rule set",
             value: rules.map_or_else(|| pathway.rule_set.clone(), |rules| rules.title.clone()),
@@ -183,7 +208,11 @@ fn facts(head: &Head, pathway: &Pathway, found: Option<&Assessment>, book: &Book
         None => Fact::new("Plant started", "not given: the required saving depends on it"),
     });
     if head.revision > 0 {
-        let saved = if head.saved.is_empty() { String::new() } else { format!(", saved {}", head.saved) };
+        let saved = if head.saved.is_empty() {
+            String::new()
+        } else {
+            format!(", saved {}", head.saved)
+        };
         out.push(Fact::new("Revision", format!("{}{saved}", head.revision)));
     }
     if head.archived {
@@ -204,10 +233,17 @@ impl PathwayResult {
         let verdict = Verdict::of(found, rules);
         let weights = super::weights(book, &found.gwp_set);
         let stage_page = |key: &str| {
-            pathway.stages.iter().any(|stage| stage.key == key).then(|| links::stage(&head.id, key))
+            pathway
+                .stages
+                .iter()
+                .any(|stage| stage.key == key)
+                .then(|| links::stage(&head.id, key))
         };
         let ladder = LadderView::of(found, &weights, rules, in_line, stage_page);
-        let terms: Vec<TermRow> = Term::ALL.into_iter().map(|term| term_row(term, pathway, found, rules)).collect();
+        let terms: Vec<TermRow> = Term::ALL
+            .into_iter()
+            .map(|term| term_row(term, pathway, found, rules))
+            .collect();
         let net = found.net.g_co2e_per_mj;
         let parts: Vec<f64> = terms.iter().map(|row| row.g).collect();
         let memo = found.memo.e_u_not_counted_g_co2e_per_mj;
@@ -253,7 +289,12 @@ fn ladder_notes(
         weights.citation.source
     ));
     out.push("A stage\u{2019}s figure is its share for the fuel.".to_owned());
-    let sums: Vec<f64> = ladder.rows.iter().filter_map(|row| row.counted).map(|counted| counted.sum).collect();
+    let sums: Vec<f64> = ladder
+        .rows
+        .iter()
+        .filter_map(|row| row.counted)
+        .map(|counted| counted.sum)
+        .collect();
     out.extend(rounding_note("The stages", &sums, found.net.g_co2e_per_mj, 2));
     out.push("Gas columns can differ from their sum in the last digit: rounding.".to_owned());
     out
@@ -278,8 +319,15 @@ fn term_row(term: Term, pathway: &Pathway, found: &Assessment, rules: Option<&Ru
     let g = found.terms_g_co2e_per_mj.get(term);
     let deducts = matches!(term, Term::Esca | Term::Eccs | Term::Eccr);
     let default = pathway.defaults.iter().find(|(key, _)| key.name() == term.name());
-    let part = pathway.defaults.iter().find(|(key, _)| key.name().starts_with(&format!("{}_", term.name())));
-    let used = found.stages.iter().flat_map(|stage| &stage.inputs).any(|input| input.term == term);
+    let part = pathway
+        .defaults
+        .iter()
+        .find(|(key, _)| key.name().starts_with(&format!("{}_", term.name())));
+    let used = found
+        .stages
+        .iter()
+        .flat_map(|stage| &stage.inputs)
+        .any(|input| input.term == term);
     let kind = if rules.is_some_and(|rules| rules.leaves_out(term)) {
         "zero by the rule".to_owned()
     } else if let Some((_, row)) = default {
@@ -311,7 +359,10 @@ fn finding_rows(head: &Head, pathway: &Pathway, findings: &[Finding]) -> Vec<Fin
             let (href, place) = match stage {
                 Some(stage) => {
                     let anchor = links::field_anchor(&finding.field);
-                    (Some(format!("{}{anchor}", links::stage(&head.id, &stage.key))), stage.title().to_owned())
+                    (
+                        Some(format!("{}{anchor}", links::stage(&head.id, &stage.key))),
+                        stage.title().to_owned(),
+                    )
                 }
                 None if finding.id.starts_with("C-") => (Some("#carbon".to_owned()), "Carbon".to_owned()),
                 None => (None, "the whole pathway".to_owned()),
@@ -334,9 +385,19 @@ impl PathwayResult {
     pub fn terms_table(&self) -> Table {
         let mut table = Table::new(&["term", "what_it_holds", "kind_of_value", "g_co2e_per_mj"]);
         for (term, row) in Term::ALL.into_iter().zip(&self.terms) {
-            table.rows.push(vec![term.name().into(), row.words.into(), row.kind.clone().into(), Cell::Figure(row.g)]);
+            table.rows.push(vec![
+                term.name().into(),
+                row.words.into(),
+                row.kind.clone().into(),
+                Cell::Figure(row.g),
+            ]);
         }
-        table.rows.push(vec!["net".into(), "net".into(), Cell::Empty, Cell::Figure(self.net)]);
+        table.rows.push(vec![
+            "net".into(),
+            "net".into(),
+            Cell::Empty,
+            Cell::Figure(self.net),
+        ]);
         table
     }
 

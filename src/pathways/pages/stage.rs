@@ -1,11 +1,11 @@
 //! The page of one stage, as a recipe card: what goes in, what is used, what comes out, each field with its figure.
 
-use super::card::build::{self, Source};
-use super::card::fields;
+use super::card::build::Source;
 use super::card::merge::Met;
 use super::card::search::{self, Found};
-use super::card::spec::{self, Ground, Shape, Spec};
+use super::card::spec::{self, Ground};
 use super::card::{Do, Form};
+use super::entries::Entries;
 use super::{Fact, Head, Notice, links};
 use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Assessment, StageResult};
@@ -200,10 +200,20 @@ impl ShowStage {
     /// The page of a card.
     pub fn of(card: Card) -> ShowStage {
         let stored = card.pathway.stages.iter().any(|stage| stage.key == card.key);
-        let ground = Ground { stage: card.stage, typed: card.typed };
-        let result = card.found.and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
+        let ground = Ground {
+            stage: card.stage,
+            typed: card.typed,
+        };
+        let result = card
+            .found
+            .and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
         let sources = sources(card.pathway, card.key);
-        let at = At { card: &card, ground, result, sources: &sources };
+        let at = Entries {
+            card: &card,
+            ground,
+            result,
+            sources: &sources,
+        };
         let title = match ground.word("/name") {
             name if name.is_empty() => card.key.to_owned(),
             name => name,
@@ -219,19 +229,33 @@ impl ShowStage {
             hidden.push(("new".to_owned(), "yes".to_owned()));
             hidden.push(("after".to_owned(), after.to_owned()));
             let takes = |stage: &&crate::core::documents::pathway::Stage| {
-                stage.intakes.iter().any(|intake| intake.from == after && intake.product.is_none())
+                stage
+                    .intakes
+                    .iter()
+                    .any(|intake| intake.from == after && intake.product.is_none())
             };
-            let names: Vec<&str> = card.pathway.stages.iter().filter(takes).map(|stage| stage.title()).collect();
+            let names: Vec<&str> = card
+                .pathway
+                .stages
+                .iter()
+                .filter(takes)
+                .map(|stage| stage.title())
+                .collect();
             takers = names.join(", ");
         }
         let about = at.entry(spec::stage(ground), "about");
         let output = at.output();
-        let (intakes, inputs, co_products) = (entries("/intakes"), entries("/inputs"), entries("/co_products"));
+        let (intakes, inputs, co_products) =
+            (entries("/intakes"), entries("/inputs"), entries("/co_products"));
         let mut page = ShowStage {
             frame: Frame::new(
                 format!("{title}, {}", card.pathway.name),
                 Section::Pathways,
-                format!("GET /api/v1/pathways/{}/stages/{}", links::segment(&card.head.id), links::segment(card.key)),
+                format!(
+                    "GET /api/v1/pathways/{}/stages/{}",
+                    links::segment(&card.head.id),
+                    links::segment(card.key)
+                ),
             )
             .example(card.pathway.example),
             pathway: card.pathway.name.clone(),
@@ -255,14 +279,22 @@ impl ShowStage {
             head: card.head.clone(),
         };
         if card.refused {
-            page.refused = card.problems.iter().map(|problem| page.refusal(problem)).collect();
+            page.refused = card
+                .problems
+                .iter()
+                .map(|problem| page.refusal(problem))
+                .collect();
         }
         page
     }
 
     fn every_entry(&self) -> impl Iterator<Item = &Entry> {
         let alone = [&self.about, &self.output];
-        alone.into_iter().chain(&self.intakes).chain(&self.inputs).chain(&self.co_products)
+        alone
+            .into_iter()
+            .chain(&self.intakes)
+            .chain(&self.inputs)
+            .chain(&self.co_products)
     }
 
     fn refusal(&self, problem: &Problem) -> Refused {
@@ -270,46 +302,80 @@ impl ShowStage {
             let all = entry.line.iter().chain(&entry.below).chain(&entry.rare);
             all.map(move |field| (entry, field))
         });
-        let best = fields.filter(|(_, field)| covers(&field.name, &problem.pointer)).max_by_key(|(_, field)| field.name.len());
+        let best = fields
+            .filter(|(_, field)| covers(&field.name, &problem.pointer))
+            .max_by_key(|(_, field)| field.name.len());
         let (anchor, place) = match best {
-            Some((entry, field)) => (Some(field.id.clone()), format!("{}, {}", entry.legend, field.label)),
+            Some((entry, field)) => (
+                Some(field.id.clone()),
+                format!("{}, {}", entry.legend, field.label),
+            ),
             None => {
-                let entry = self.every_entry().filter(|entry| entry.wrong.iter().any(|(fact, _)| *fact == problem.detail)).next();
+                let entry = self
+                    .every_entry()
+                    .filter(|entry| entry.wrong.iter().any(|(fact, _)| *fact == problem.detail))
+                    .next();
                 match entry {
                     Some(entry) => (Some(entry.anchor.clone()), entry.legend.clone()),
                     None => (None, self.title.clone()),
                 }
             }
         };
-        Refused { anchor, place, detail: problem.detail.clone(), remedy: problem.remedy.clone() }
+        Refused {
+            anchor,
+            place,
+            detail: problem.detail.clone(),
+            remedy: problem.remedy.clone(),
+        }
     }
 }
 
 /// True if a problem at `pointer` is one of the field `name`.
-fn covers(name: &str, pointer: &str) -> bool {
-    pointer.strip_prefix(name).is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
+pub(super) fn covers(name: &str, pointer: &str) -> bool {
+    pointer
+        .strip_prefix(name)
+        .is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
 }
 
 fn materials(book: &Book, pathway: &Pathway) -> Vec<(String, String)> {
-    let own = pathway.materials.iter().map(|material| (material.id.clone(), material.name.clone()));
-    let library = book.materials.values().map(|material| (material.id.clone(), material.name.clone()));
+    let own = pathway
+        .materials
+        .iter()
+        .map(|material| (material.id.clone(), material.name.clone()));
+    let library = book
+        .materials
+        .values()
+        .map(|material| (material.id.clone(), material.name.clone()));
     own.chain(library).collect()
 }
 
 fn input_kinds(chosen: &str) -> Vec<Choice> {
-    let choice = |value: &str, words: String| Choice { value: value.to_owned(), words, here: value == chosen };
+    let choice = |value: &str, words: String| Choice {
+        value: value.to_owned(),
+        words,
+        here: value == chosen,
+    };
     let mut out = vec![
         choice("factor", "an amount times a factor".to_owned()),
         choice("own", "an amount times an own factor".to_owned()),
         choice("gases", "gases as given".to_owned()),
     ];
-    out.extend(models::ALL.iter().map(|model| choice(model.kind, format!("a model: {}", model.title.to_lowercase()))));
+    out.extend(
+        models::ALL
+            .iter()
+            .map(|model| choice(model.kind, format!("a model: {}", model.title.to_lowercase()))),
+    );
     out
 }
 
 fn facts(card: &Card, result: Option<&StageResult>) -> Vec<Fact> {
     let mut out = Vec::new();
-    let order: Vec<&str> = card.pathway.stages.iter().map(|stage| stage.key.as_str()).collect();
+    let order: Vec<&str> = card
+        .pathway
+        .stages
+        .iter()
+        .map(|stage| stage.key.as_str())
+        .collect();
     let name = |index: usize| card.pathway.stages.get(index).map_or("", |stage| stage.title());
     match order.iter().position(|key| *key == card.key) {
         Some(place) => {
@@ -324,194 +390,51 @@ fn facts(card: &Card, result: Option<&StageResult>) -> Vec<Fact> {
         }
         None => out.push(Fact::new("Stage", "new, not saved yet")),
     }
-    let kind = card.stage.get("kind").and_then(Value::as_str).and_then(StageKind::from_name);
+    let kind = card
+        .stage
+        .get("kind")
+        .and_then(Value::as_str)
+        .and_then(StageKind::from_name);
     if let Some(kind) = kind {
-        out.push(Fact::new("Kind and term", format!("{}, {}", crate::web::filters::capital(kind.words()), kind.term().name())));
+        out.push(Fact::new(
+            "Kind and term",
+            format!("{}, {}", filters::capital(kind.words()), kind.term().name()),
+        ));
     }
     if let (Some(found), Some(result)) = (card.found, result) {
-        let words = format!("{} of {} g CO2e/MJ", show(result.g_co2e_per_mj, 2), show(found.net.g_co2e_per_mj, 2));
-        out.push(Fact { label: "Last saved", value: words, href: Some(workings(card, "")) });
-        out.push(Fact::new("Fuel\u{2019}s share", format!("{} % of its burden stays with the fuel", show(result.carried_share * 100.0, 1))));
+        let words = format!(
+            "{} of {} g CO2e/MJ",
+            show(result.g_co2e_per_mj, 2),
+            show(found.net.g_co2e_per_mj, 2)
+        );
+        out.push(Fact {
+            label: "Last saved",
+            value: words,
+            href: Some(workings(card, "")),
+        });
+        out.push(Fact::new(
+            "Fuel\u{2019}s share",
+            format!(
+                "{} % of its burden stays with the fuel",
+                show(result.carried_share * 100.0, 1)
+            ),
+        ));
     }
-    let saved = if card.head.saved.is_empty() { String::new() } else { format!(", saved {}", card.head.saved) };
+    let saved = if card.head.saved.is_empty() {
+        String::new()
+    } else {
+        format!(", saved {}", card.head.saved)
+    };
     out.push(Fact::new("Revision", format!("{}{saved}", card.head.revision)));
     out
 }
 
-fn workings(card: &Card, input: &str) -> String {
-    format!("{}#{}", links::workings(&card.head.id), links::workings_anchor(card.key, input))
-}
-
-/// Where entries are made.
-struct At<'a> {
-    card: &'a Card<'a>,
-    ground: Ground<'a>,
-    result: Option<&'a StageResult>,
-    sources: &'a [Source],
-}
-
-impl At<'_> {
-    fn entry(&self, specs: Vec<Spec>, anchor: &str) -> Entry {
-        let mut entry = Entry { anchor: anchor.to_owned(), legend: "The stage".to_owned(), ..Entry::default() };
-        for spec in &specs {
-            let field = self.field(spec);
-            if spec.rare {
-                entry.rare_open |= !field.wrong.is_empty() || field.found.is_some();
-                entry.rare.push(field);
-            } else if field.class.is_empty() {
-                entry.below.push(field);
-            } else {
-                entry.line.push(field);
-            }
-        }
-        // In the line in the order of its columns, whatever the order of the rows.
-        let column = |field: &FieldView| ["e-name", "e-amt", "e-unit", "e-q", "e-org"].iter().position(|class| *class == field.class);
-        entry.line.sort_by_key(column);
-        entry
-    }
-
-    fn output(&self) -> Entry {
-        let share = self.result.map(|result| result.share);
-        let mut entry = self.entry(spec::output(self.ground), "output");
-        entry.legend = "Main product".to_owned();
-        self.figure(&mut entry, "Share", share.map(|share| format!("{} %", show(share * 100.0, 1))));
-        entry
-    }
-
-    fn item(&self, list: &'static str, index: usize) -> Entry {
-        let at = format!("{list}/{index}");
-        let item = self.ground.at(&at);
-        let key = item.and_then(|item| item.get("key")).and_then(Value::as_str).unwrap_or_default().to_owned();
-        let (anchor, otherwise) = match list {
-            "/inputs" => (format!("input-{key}"), "Input"),
-            "/intakes" => (format!("intake-{index}"), "Intake"),
-            _ => (format!("co-product-{key}"), "Co-product"),
-        };
-        let anchor = if key.is_empty() && list != "/intakes" { format!("{anchor}new-{index}") } else { anchor };
-        let mut entry = self.entry(build::item_specs(self.ground, list, index, self.sources), &anchor);
-        let name = ["label", "name"].iter().map(|name| self.ground.word(&format!("{at}/{name}"))).find(|name| !name.is_empty());
-        entry.legend = name.unwrap_or_else(|| if key.is_empty() { format!("{otherwise} {}", index + 1) } else { key.clone() });
-        entry.remove = format!("remove:{at}");
-        let posted = self.card.typed.get("expected").is_some();
-        for steer in ["was", "as"] {
-            let typed = self.card.typed.text(&format!("{at}/{steer}"));
-            let value = if steer == "was" && !posted { index.to_string() } else { typed.to_owned() };
-            if !value.is_empty() {
-                entry.hidden.push((format!("{at}/{steer}"), value));
-            }
-        }
-        let known: Vec<String> = entry.line.iter().chain(&entry.below).chain(&entry.rare).map(|field| field.name.clone()).collect();
-        let problems = self.card.problems.iter().filter(|problem| covers(&at, &problem.pointer));
-        entry.wrong = problems
-            .filter(|problem| !known.iter().any(|name| covers(name, &problem.pointer)))
-            .map(|problem| (problem.detail.clone(), problem.remedy.clone()))
-            .collect();
-        match list {
-            "/inputs" => self.input(&mut entry, item, &key),
-            "/co_products" => {
-                let share = self.result.and_then(|result| result.products.iter().find(|product| product.product == key));
-                self.figure(&mut entry, "Share", share.map(|product| format!("{} %", show(product.share * 100.0, 1))));
-            }
-            _ => {}
-        }
-        entry
-    }
-
-    fn input(&self, entry: &mut Entry, item: Option<&Value>, key: &str) {
-        let result = self.result.and_then(|result| result.inputs.iter().find(|input| input.key == key));
-        self.figure(entry, "g CO2e/MJ", result.map(|input| show(input.g_co2e_per_mj, 2)));
-        if result.is_some() {
-            entry.workings = Some(workings(self.card, key));
-        }
-        let model = item.map(spec::input_as).and_then(|is| models::find(&is));
-        entry.explain = model.map(|model| (format!("{}. {}", model.title, model.what), model.source.to_owned()));
-    }
-
-    /// The figure at the end of the line; where the card is being changed it is the last good one.
-    fn figure(&self, entry: &mut Entry, label: &'static str, figure: Option<String>) {
-        entry.result_label = label;
-        if self.card.typed.get("expected").is_some() {
-            entry.was = figure;
-        } else {
-            entry.result = figure;
-        }
-    }
-
-    fn field(&self, spec: &Spec) -> FieldView {
-        let (text, unit) = fields::shown(spec, self.ground);
-        let name = spec.pointer.clone();
-        let last = name.rsplit('/').next().unwrap_or_default();
-        let has_unit = !fields::unit_of(&spec.shape).is_empty();
-        let kind = match &spec.shape {
-            Shape::Number | Shape::Measured(_) | Shape::Amount(_) => "number",
-            Shape::Word(_) | Shape::Flag => "select",
-            Shape::Area => "area",
-            Shape::Day => "date",
-            Shape::Factor | Shape::Factors => "factor",
-            Shape::NoneOrAmount(_) | Shape::Text | Shape::Texts => "text",
-        };
-        let model = name.contains("/model/") || name.contains("/stated/") || name.contains("/gases/") || name.contains("/displaces/");
-        let class = match last {
-            _ if model || spec.rare => "",
-            "label" | "name" | "from" | "material" if !name.starts_with("/co_products") || last == "name" => "e-name",
-            "amount" => "e-amt",
-            "unit" => "e-unit",
-            "origin" | "role" => "e-org",
-            "strength_percent_mass" | "moisture_percent" => "e-q",
-            "kind" | "allocation" => "e-org",
-            _ => "",
-        };
-        let found = self.card.search.filter(|field| *field == name).map(|_| search::find(self.card.book, &text));
-        FieldView {
-            id: links::field_id(&name),
-            label: spec.label.clone(),
-            choices: choices(&spec.shape, &text),
-            unit: has_unit.then_some(unit),
-            hint: spec.hint.clone(),
-            list: match last {
-                "unit" => "units",
-                "material" => "materials",
-                _ => "",
-            },
-            class,
-            wrong: self.wrong(&name),
-            found,
-            go: format!("{}#{}", links::stage(&self.card.head.id, self.card.key), links::field_id(&name)),
-            factors: factors(kind, &text, self.card.book),
-            required: spec.required,
-            kind,
-            text,
-            name,
-        }
-    }
-
-    fn wrong(&self, name: &str) -> Vec<(String, String)> {
-        let mine = self.card.problems.iter().filter(|problem| covers(name, &problem.pointer));
-        mine.map(|problem| (problem.detail.clone(), problem.remedy.clone())).collect()
-    }
-}
-
-fn choices(shape: &Shape, text: &str) -> Vec<Choice> {
-    let choice = |value: &str, words: &str| Choice { value: value.to_owned(), words: words.to_owned(), here: value == text };
-    let mut out = vec![choice("", "\u{2013}")];
-    match shape {
-        Shape::Word(words) => out.extend(words.iter().map(|(value, shown)| choice(value, shown))),
-        Shape::Flag => out.extend([choice("yes", "yes"), choice("no", "no")]),
-        _ => return Vec::new(),
-    }
-    // A word that the list does not know stays as it stands: the refusal names it.
-    if !out.iter().any(|choice| choice.here) {
-        out.push(Choice { value: text.to_owned(), words: text.to_owned(), here: true });
-    }
-    out
-}
-
-fn factors(kind: &str, text: &str, book: &Book) -> Vec<(String, String)> {
-    if kind != "factor" {
-        return Vec::new();
-    }
-    let ids = text.split(['+', ',', ' ']).map(str::trim).filter(|id| book.factor(id).is_some());
-    ids.map(|id| (id.to_owned(), links::factor(id))).collect()
+pub(super) fn workings(card: &Card, input: &str) -> String {
+    format!(
+        "{}#{}",
+        links::workings(&card.head.id),
+        links::workings_anchor(card.key, input)
+    )
 }
 
 /// What the pressed button changes in what was typed, before the card is shown again. True if it asks to save.
@@ -520,7 +443,11 @@ pub fn steer(form: &mut Form, asked: &Do) -> bool {
         Do::Save => return true,
         Do::Add(list) => {
             let is = form.text("add-as").to_owned();
-            let steering: &[(&str, &str)] = if *list == "/inputs" { &[("as", &is)] } else { &[("as", "new")] };
+            let steering: &[(&str, &str)] = if *list == "/inputs" {
+                &[("as", &is)]
+            } else {
+                &[("as", "new")]
+            };
             form.add(list, steering);
         }
         Do::Remove(list, index) => form.remove(list, *index),

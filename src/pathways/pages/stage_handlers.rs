@@ -36,9 +36,13 @@ pub(super) async fn show(
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
-    let Some(stage) = stage_of(&seen.pathway, &key) else { return Err(no_stage()) };
+    let Some(stage) = stage_of(&seen.pathway, &key) else {
+        return Err(no_stage());
+    };
     let (value, typed) = (value_of(stage), Form::default());
-    let mut shown = ShowStage::of(Card { ..card(&app, &seen, &key, &value, &typed) });
+    let mut shown = ShowStage::of(Card {
+        ..card(&app, &seen, &key, &value, &typed)
+    });
     shown.notice = saved_notice(&app, &seen, query.saved).await;
     page(&shown).map_err(IntoResponse::into_response)
 }
@@ -81,23 +85,51 @@ pub(super) struct NewStage {
 }
 
 /// The card of a stage that is not stored yet.
-pub(super) async fn begin(State(app): State<App>, Path(id): Path<String>, Query(query): Query<NewStage>) -> Result<Response, Response> {
+pub(super) async fn begin(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Query(query): Query<NewStage>,
+) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
-    let taken: Vec<String> = seen.pathway.stages.iter().map(|stage| stage.key.clone()).collect();
+    let taken: Vec<String> = seen
+        .pathway
+        .stages
+        .iter()
+        .map(|stage| stage.key.clone())
+        .collect();
     let kind = StageKind::from_name(&query.kind).unwrap_or(StageKind::Processing);
-    let after = query.after.parse::<usize>().ok().and_then(|index| seen.pathway.stages.get(index));
-    let name = if query.name.trim().is_empty() { crate::web::filters::capital(kind.words()) } else { query.name.trim().to_owned() };
+    let after = query
+        .after
+        .parse::<usize>()
+        .ok()
+        .and_then(|index| seen.pathway.stages.get(index));
+    let name = if query.name.trim().is_empty() {
+        crate::web::filters::capital(kind.words())
+    } else {
+        query.name.trim().to_owned()
+    };
     let key = build::free_key(&name, "stage", &taken);
     let value = begun(&key, kind, &name, after);
     let typed = Form::default();
-    let shown = ShowStage::of(Card { after: after.map(|stage| stage.key.as_str()), ..card(&app, &seen, &key, &value, &typed) });
+    let shown = ShowStage::of(Card {
+        after: after.map(|stage| stage.key.as_str()),
+        ..card(&app, &seen, &key, &value, &typed)
+    });
     page(&shown).map_err(IntoResponse::into_response)
 }
 
 /// A new stage hands on what it takes, until somebody says otherwise.
 fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value {
-    let Some(after) = after else { return build::blank(key, kind.name(), name) };
-    let flow = Flow { price: None, note: None, carbon_percent_dry: None, lhv: None, ..after.output.flow.clone() };
+    let Some(after) = after else {
+        return build::blank(key, kind.name(), name);
+    };
+    let flow = Flow {
+        price: None,
+        note: None,
+        carbon_percent_dry: None,
+        lhv: None,
+        ..after.output.flow.clone()
+    };
     let mut output = after.output.clone();
     output.flow.note = None;
     value_of(&Stage {
@@ -107,7 +139,11 @@ fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value
         note: None,
         grown: None,
         output,
-        intakes: vec![Intake { from: after.key.clone(), product: None, flow }],
+        intakes: vec![Intake {
+            from: after.key.clone(),
+            product: None,
+            flow,
+        }],
         inputs: Vec::new(),
         co_products: Vec::new(),
         allocation: None,
@@ -123,9 +159,16 @@ pub(super) async fn save(
 ) -> Result<Response, Response> {
     let mut form = Form::of(pairs);
     let asked = Do::of(form.get("do").unwrap_or("save"));
-    let expected = form.text("expected").parse::<i64>().ok().filter(|number| *number >= 1);
+    let expected = form
+        .text("expected")
+        .parse::<i64>()
+        .ok()
+        .filter(|number| *number >= 1);
     let Some(expected) = expected else {
-        return Err(Refusal::bad_request("The form does not say which revision it began from. Open the page again.").into_response());
+        return Err(Refusal::bad_request(
+            "The form does not say which revision it began from. Open the page again.",
+        )
+        .into_response());
     };
     // The card is read against the revision it began from: that is what was on the page.
     let base = seen(&app, &id, Some(expected)).await?;
@@ -173,21 +216,37 @@ pub(super) async fn save(
     let (Some(stage), true) = (stage, problems.is_empty()) else {
         return with_status(REFUSED, &shown(problems.list(), true)).map_err(IntoResponse::into_response);
     };
-    let why = Some(form.text("why")).filter(|why| !why.is_empty()).map(|why| why.chars().take(1_000).collect::<String>());
+    let why = Some(form.text("why"))
+        .filter(|why| !why.is_empty())
+        .map(|why| why.chars().take(1_000).collect::<String>());
     let (document, place) = with_stage(&base.pathway, stage, new.then_some(after.as_str()));
-    match pathways::replace(&app, base.stored.id, document.clone(), Expected::Number(expected), why).await {
+    match pathways::replace(
+        &app,
+        base.stored.id,
+        document.clone(),
+        Expected::Number(expected),
+        why,
+    )
+    .await
+    {
         Ok(saved) => Ok(see_other(&after_save(&links::stage(&id, &key), &saved))),
         Err(PathwayError::Problems(problems)) => {
             let own = of_stage(&document, place, problems.into_list());
             with_status(REFUSED, &shown(own.list(), true)).map_err(IntoResponse::into_response)
         }
-        Err(PathwayError::Conflict { .. }) if !new => met(&app, base.stored.id, &id, &key, &stood, &built, &form).await,
+        Err(PathwayError::Conflict { .. }) if !new => {
+            met(&app, base.stored.id, &id, &key, &stood, &built, &form).await
+        }
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }
 
 fn after_save(href: &str, saved: &Saved) -> String {
-    if saved.changed { format!("{href}?saved={}", saved.revision) } else { href.to_owned() }
+    if saved.changed {
+        format!("{href}?saved={}", saved.revision)
+    } else {
+        href.to_owned()
+    }
 }
 
 /// The document with the stage in its place, and that place. A new stage stands after the one it follows, and those
@@ -202,7 +261,11 @@ fn with_stage(pathway: &Pathway, stage: Stage, new_after: Option<&str>) -> (Path
             }
         }
         Some(after) => {
-            let place = document.stages.iter().position(|old| old.key == after).map_or(0, |place| place + 1);
+            let place = document
+                .stages
+                .iter()
+                .position(|old| old.key == after)
+                .map_or(0, |place| place + 1);
             let takes = |intake: &&mut Intake| intake.from == after && intake.product.is_none();
             for old in &mut document.stages {
                 for intake in old.intakes.iter_mut().filter(takes) {
@@ -221,10 +284,15 @@ fn of_stage(document: &Pathway, place: usize, problems: Vec<Problem>) -> Problem
     let own = format!("/stages/{place}");
     let mut out = Problems::default();
     for problem in problems {
-        match problem.pointer.strip_prefix(&own).filter(|rest| rest.is_empty() || rest.starts_with('/')) {
+        match problem
+            .pointer
+            .strip_prefix(&own)
+            .filter(|rest| rest.is_empty() || rest.starts_with('/'))
+        {
             Some(rest) => out.add(rest, problem.detail, problem.remedy),
             None => {
-                let at = links::stage_of(document, &problem.pointer).map_or("The pathway", |(stage, _)| stage.title());
+                let at = links::stage_of(document, &problem.pointer)
+                    .map_or("The pathway", |(stage, _)| stage.title());
                 out.add("", format!("{at}: {}", problem.detail), problem.remedy);
             }
         }
@@ -233,12 +301,22 @@ fn of_stage(document: &Pathway, place: usize, problems: Vec<Problem>) -> Problem
 }
 
 /// Somebody saved while the card was being filled in: both versions joined, on the new revision, nothing lost.
-async fn met(app: &App, uuid: Uuid, id: &str, key: &str, base: &Value, mine: &Value, form: &Form) -> Result<Response, Response> {
+async fn met(
+    app: &App,
+    uuid: Uuid,
+    id: &str,
+    key: &str,
+    base: &Value,
+    mine: &Value,
+    form: &Form,
+) -> Result<Response, Response> {
     let now = match see(app, uuid, None).await {
         Ok(now) => now,
         Err(error) => return Err(refused(app, id, error).await),
     };
-    let Some(theirs) = stage_of(&now.pathway, key) else { return Err(no_stage()) };
+    let Some(theirs) = stage_of(&now.pathway, key) else {
+        return Err(no_stage());
+    };
     let theirs = value_of(theirs);
     let (joined, met) = merge::join(base, &theirs, mine);
     let typed = joined_form(&now, &theirs, &joined);
@@ -246,7 +324,10 @@ async fn met(app: &App, uuid: Uuid, id: &str, key: &str, base: &Value, mine: &Va
     shown.why = form.text("why").to_owned();
     if met.is_empty() {
         shown.notice = Some(super::Notice {
-            what: format!("Revision {} was saved while you were typing.", count(now.stored.revision)),
+            what: format!(
+                "Revision {} was saved while you were typing.",
+                count(now.stored.revision)
+            ),
             then: "It changed nothing of this stage: look it over, then save.".to_owned(),
             back: None,
         });
@@ -259,9 +340,19 @@ async fn met(app: &App, uuid: Uuid, id: &str, key: &str, base: &Value, mine: &Va
 fn joined_form(now: &Seen, theirs: &Value, joined: &Value) -> Form {
     let mut form = Form::default();
     form.set("expected", now.stored.revision.to_string());
-    let same = |a: &Value, b: &Value| ["key", "from", "product"].iter().all(|name| a.get(*name) == b.get(*name));
+    let same = |a: &Value, b: &Value| {
+        ["key", "from", "product"]
+            .iter()
+            .all(|name| a.get(*name) == b.get(*name))
+    };
     for list in LISTS {
-        let items = |stage: &'_ Value| stage.pointer(list).and_then(Value::as_array).cloned().unwrap_or_default();
+        let items = |stage: &'_ Value| {
+            stage
+                .pointer(list)
+                .and_then(Value::as_array)
+                .cloned()
+                .unwrap_or_default()
+        };
         let stand = items(theirs);
         for (index, item) in items(joined).iter().enumerate() {
             match stand.iter().position(|old| same(old, item)) {
@@ -286,7 +377,9 @@ pub(super) async fn remove(
     Posted(form): Posted<Remove>,
 ) -> Result<Response, Response> {
     let base = seen(&app, &id, Some(form.expected)).await?;
-    let Some(gone) = stage_of(&base.pathway, &key) else { return Err(no_stage()) };
+    let Some(gone) = stage_of(&base.pathway, &key) else {
+        return Err(no_stage());
+    };
     let mut document = base.pathway.clone();
     document.stages.retain(|stage| stage.key != key);
     if let [only] = gone.intakes.as_slice() {
@@ -297,16 +390,32 @@ pub(super) async fn remove(
             }
         }
     }
-    let why = Some(format!("{} taken out", gone.title()).chars().take(1_000).collect());
-    match pathways::replace(&app, base.stored.id, document.clone(), Expected::Number(form.expected), why).await {
+    let why = Some(
+        format!("{} taken out", gone.title())
+            .chars()
+            .take(1_000)
+            .collect(),
+    );
+    match pathways::replace(
+        &app,
+        base.stored.id,
+        document.clone(),
+        Expected::Number(form.expected),
+        why,
+    )
+    .await
+    {
         Ok(saved) => Ok(see_other(&after_save(&links::pathway(&id), &saved))),
         Err(PathwayError::Problems(problems)) => {
             let own = of_stage(&document, usize::MAX, problems.into_list());
             let (value, typed) = (value_of(gone), Form::default());
-            let shown = ShowStage::of(Card { problems: own.list(), refused: true, ..card(&app, &base, &key, &value, &typed) });
+            let shown = ShowStage::of(Card {
+                problems: own.list(),
+                refused: true,
+                ..card(&app, &base, &key, &value, &typed)
+            });
             with_status(REFUSED, &shown).map_err(IntoResponse::into_response)
         }
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }
-

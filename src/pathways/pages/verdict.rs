@@ -43,7 +43,13 @@ impl Verdict {
         let net = assessment.net.g_co2e_per_mj;
         Verdict {
             basis,
-            ..Verdict::of_figures(net, assessment.saving_percent, comparator, &assessment.thresholds, rules)
+            ..Verdict::of_figures(
+                net,
+                assessment.saving_percent,
+                comparator,
+                &assessment.thresholds,
+                rules,
+            )
         }
     }
 
@@ -57,21 +63,38 @@ impl Verdict {
     ) -> Verdict {
         let limits = thresholds.iter().map(|t| t.percent);
         let saving_decimals = saving.map_or(1, |saving| {
-            limits.clone().map(|limit| decimals_against(saving, limit, 1)).max().unwrap_or(1)
+            limits
+                .clone()
+                .map(|limit| decimals_against(saving, limit, 1))
+                .max()
+                .unwrap_or(1)
         });
         let most = |percent: f64| comparator * (100.0 - percent) / 100.0;
-        let net_decimals = limits.map(|limit| decimals_against(net, most(limit), 1)).max().unwrap_or(1);
+        let net_decimals = limits
+            .map(|limit| decimals_against(net, most(limit), 1))
+            .max()
+            .unwrap_or(1);
         let open = thresholds.len() > 1 && thresholds.iter().all(|t| !t.met);
         Verdict {
             net: show(net, net_decimals),
             basis: None,
             saving: saving.map(|saving| show(saving.abs(), saving_decimals)),
-            side: if saving.is_some_and(|saving| saving < 0.0) { "above" } else { "below" },
+            side: if saving.is_some_and(|saving| saving < 0.0) {
+                "above"
+            } else {
+                "below"
+            },
             comparator: rules.map_or_else(|| "fossil baseline".to_owned(), |r| r.comparator_word.clone()),
             required: thresholds
                 .iter()
                 .map(|t| Required {
-                    word: if open { "needs" } else if t.met { "meets" } else { "misses" },
+                    word: if open {
+                        "needs"
+                    } else if t.met {
+                        "meets"
+                    } else {
+                        "misses"
+                    },
                     percent: percent_words(t.percent),
                     because: t.because.clone(),
                 })
@@ -115,7 +138,13 @@ pub struct Checks {
 impl Checks {
     /// Counted over an assessment.
     pub fn of(assessment: &Assessment) -> Checks {
-        let count = |severity| assessment.findings.iter().filter(|f| f.severity == severity).count();
+        let count = |severity| {
+            assessment
+                .findings
+                .iter()
+                .filter(|f| f.severity == severity)
+                .count()
+        };
         Checks {
             blocks: count(Severity::Block),
             warns: count(Severity::Warn),
@@ -193,17 +222,31 @@ mod tests {
 
     #[test]
     fn decimals_are_added_until_the_verdict_cannot_look_wrong() {
-        assert_eq!(verdict(31.41, 60.0), "31.4 g CO2e/MJ, 66.6 % below fossil fuel comparator, meets 60 %");
+        assert_eq!(
+            verdict(31.41, 60.0),
+            "31.4 g CO2e/MJ, 66.6 % below fossil fuel comparator, meets 60 %"
+        );
         // 94 x 0.35 = 32.9 is the most that 65 % allows.
-        assert_eq!(verdict(32.93, 65.0), "32.93 g CO2e/MJ, 64.97 % below fossil fuel comparator, misses 65 %");
-        assert_eq!(verdict(32.9, 65.0), "32.9 g CO2e/MJ, 65.0 % below fossil fuel comparator, meets 65 %");
-        assert_eq!(verdict(100.0, 60.0), "100.0 g CO2e/MJ, 6.4 % above fossil fuel comparator, misses 60 %");
+        assert_eq!(
+            verdict(32.93, 65.0),
+            "32.93 g CO2e/MJ, 64.97 % below fossil fuel comparator, misses 65 %"
+        );
+        assert_eq!(
+            verdict(32.9, 65.0),
+            "32.9 g CO2e/MJ, 65.0 % below fossil fuel comparator, meets 65 %"
+        );
+        assert_eq!(
+            verdict(100.0, 60.0),
+            "100.0 g CO2e/MJ, 6.4 % above fossil fuel comparator, misses 60 %"
+        );
     }
 
     #[test]
     fn says_when_shown_parts_miss_the_sum() {
-        assert_eq!(rounding_note("The terms", &[0.004, 0.004], 0.008, 2).as_deref(),
-            Some("The terms shown add to 0.00; the difference to 0.01 is rounding."));
+        assert_eq!(
+            rounding_note("The terms", &[0.004, 0.004], 0.008, 2).as_deref(),
+            Some("The terms shown add to 0.00; the difference to 0.01 is rounding.")
+        );
         assert_eq!(rounding_note("The terms", &[1.0, 2.0], 3.0, 2), None);
     }
 }

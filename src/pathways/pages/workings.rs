@@ -113,7 +113,11 @@ impl ShowWorkings {
     pub fn of(head: Head, pathway: &Pathway, found: &Assessment, book: &Book, open: bool) -> ShowWorkings {
         let rules = book.rule_sets.get(&found.rule_set);
         let rule_words = rules.map_or(found.rule_set.as_str(), |rules| rules.title.as_str());
-        let revision = if head.revision > 0 { format!("Revision {}, ", head.revision) } else { String::new() };
+        let revision = if head.revision > 0 {
+            format!("Revision {}, ", head.revision)
+        } else {
+            String::new()
+        };
         let stages: Vec<StageWork> = found
             .stages
             .iter()
@@ -129,11 +133,19 @@ impl ShowWorkings {
             )
             .example(pathway.example),
             name: pathway.name.clone(),
-            lead: format!("{revision}rule set {rule_words}, gas weights {}, program {}.", found.gwp_set, found.program),
+            lead: format!(
+                "{revision}rule set {rule_words}, gas weights {}, program {}.",
+                found.gwp_set, found.program
+            ),
             open,
             net: found.net.g_co2e_per_mj,
             sum: sum_words(found),
-            steps: net_steps(found, &stages, &Verdict::of(found, rules), rules.map(|rules| rules.comparator.source.as_str())),
+            steps: net_steps(
+                found,
+                &stages,
+                &Verdict::of(found, rules),
+                rules.map(|rules| rules.comparator.source.as_str()),
+            ),
             note: rounding_note("The stages", &sums, found.net.g_co2e_per_mj, 2),
             stages,
             hash: found.pathway_hash.clone(),
@@ -143,7 +155,15 @@ impl ShowWorkings {
 
     /// Every step as CSV, figures in full.
     pub fn table(&self) -> Table {
-        let mut table = Table::new(&["stage", "input", "step", "what_is_done", "value", "unit", "source"]);
+        let mut table = Table::new(&[
+            "stage",
+            "input",
+            "step",
+            "what_is_done",
+            "value",
+            "unit",
+            "source",
+        ]);
         let mut add = |stage: &str, input: &str, steps: &[StepRow]| {
             for step in steps {
                 table.rows.push(vec![
@@ -174,17 +194,32 @@ fn sum_words(found: &Assessment) -> String {
     let mut figures = String::from(" =");
     for (index, term) in Term::ALL.into_iter().enumerate() {
         let deducts = matches!(term, Term::Esca | Term::Eccs | Term::Eccr);
-        let sign = if deducts { " \u{2212} " } else if index == 0 { " " } else { " + " };
+        let sign = if deducts {
+            " \u{2212} "
+        } else if index == 0 {
+            " "
+        } else {
+            " + "
+        };
         let g = found.terms_g_co2e_per_mj.get(term);
         let shown = show(if deducts { -g } else { g }, 2);
-        let shown = if shown.starts_with('\u{2212}') { format!("({shown})") } else { shown };
+        let shown = if shown.starts_with('\u{2212}') {
+            format!("({shown})")
+        } else {
+            shown
+        };
         words.push_str(&format!("{sign}{}", term.name()));
         figures.push_str(&format!("{sign}{shown}"));
     }
     format!("{words}{figures} = {}", show(found.net.g_co2e_per_mj, 2))
 }
 
-fn net_steps(found: &Assessment, stages: &[StageWork], verdict: &Verdict, source: Option<&str>) -> Vec<StepRow> {
+fn net_steps(
+    found: &Assessment,
+    stages: &[StageWork],
+    verdict: &Verdict,
+    source: Option<&str>,
+) -> Vec<StepRow> {
     use crate::core::units::rounding::show_all;
     let unit = "g/MJ".to_owned();
     let mut out: Vec<StepRow> = stages
@@ -207,10 +242,18 @@ fn net_steps(found: &Assessment, stages: &[StageWork], verdict: &Verdict, source
         href: None,
     };
     let net = found.net.g_co2e_per_mj;
-    out.push(plain("Net, the sum of the stages".to_owned(), Some(net), "g/MJ", ""));
+    out.push(plain(
+        "Net, the sum of the stages".to_owned(),
+        Some(net),
+        "g/MJ",
+        "",
+    ));
     if let Some(saving) = found.saving_percent {
         let base = show_all(found.comparator_g_co2e_per_mj);
-        let text = format!("Saving: ({base} \u{2212} {}) / {base} × 100", filters::worked_text(net));
+        let text = format!(
+            "Saving: ({base} \u{2212} {}) / {base} × 100",
+            filters::worked_text(net)
+        );
         out.push(plain(text, Some(saving), "%", source.unwrap_or_default()));
         for (asked, required) in found.thresholds.iter().zip(&verdict.required) {
             let text = format!("{} {} %, compared unrounded", required.word, required.percent);
@@ -244,14 +287,22 @@ fn step_rows(steps: &[Step], prefix: &str) -> Vec<StepRow> {
 }
 
 fn recipe(gases: &GasVector) -> Vec<(&'static str, f64)> {
-    gases.entries().filter(|(_, kg)| *kg != 0.0).map(|(gas, kg): (Gas, f64)| (gas.words(), kg)).collect()
+    gases
+        .entries()
+        .filter(|(_, kg)| *kg != 0.0)
+        .map(|(gas, kg): (Gas, f64)| (gas.words(), kg))
+        .collect()
 }
 
 impl StageWork {
     fn of(head: &Head, pathway: &Pathway, stage: &StageResult, place: usize) -> StageWork {
         use crate::core::units::rounding::significant;
         let own = pathway.stages.iter().any(|own| own.key == stage.key);
-        let demand = format!("{} {}", significant(stage.demand.amount, 6, 12), stage.demand.unit);
+        let demand = format!(
+            "{} {}",
+            significant(stage.demand.amount, 6, 12),
+            stage.demand.unit
+        );
         StageWork {
             anchor: links::workings_anchor(&stage.key, ""),
             number: place,
@@ -280,7 +331,11 @@ impl StageWork {
                     InputWork {
                         anchor: links::workings_anchor(&stage.key, &input.key),
                         key: input.key.clone(),
-                        name: if input.label.is_empty() { input.key.clone() } else { input.label.clone() },
+                        name: if input.label.is_empty() {
+                            input.key.clone()
+                        } else {
+                            input.label.clone()
+                        },
                         term: input.term.name(),
                         g: input.g_co2e_per_mj,
                         replaced: input.replaced.clone(),

@@ -19,7 +19,8 @@ pub fn shaped(stage: &Value, form: &Form) -> Value {
             .map(|index| {
                 let was = form.text(&format!("{list}/{index}/was")).parse::<usize>().ok();
                 let old = was.and_then(|was| stood.and_then(|stood| stood.get(was)));
-                old.cloned().unwrap_or_else(|| begun(list, form.text(&format!("{list}/{index}/as"))))
+                old.cloned()
+                    .unwrap_or_else(|| begun(list, form.text(&format!("{list}/{index}/as"))))
             })
             .collect();
         let name = list.trim_start_matches('/');
@@ -50,7 +51,12 @@ fn begun(list: &str, is: &str) -> Value {
 pub fn specs(ground: Ground, sources: &[Source]) -> Vec<Spec> {
     let mut out = spec::stage(ground);
     out.extend(spec::output(ground));
-    for (list, count) in LISTS.map(|list| (list, ground.at(list).and_then(Value::as_array).map_or(0, Vec::len))) {
+    for (list, count) in LISTS.map(|list| {
+        (
+            list,
+            ground.at(list).and_then(Value::as_array).map_or(0, Vec::len),
+        )
+    }) {
         for index in 0..count {
             out.extend(item_specs(ground, list, index, sources));
         }
@@ -75,8 +81,12 @@ pub fn item_specs(ground: Ground, list: &str, index: usize, sources: &[Source]) 
     match list {
         "/intakes" => {
             let from = ground.word(&format!("{at}/from"));
-            let material = sources.iter().find(|source| source.key == from).map_or("", |source| source.material.as_str());
-            let names: Vec<(String, String)> = sources.iter().map(|s| (s.key.clone(), s.name.clone())).collect();
+            let material = sources
+                .iter()
+                .find(|source| source.key == from)
+                .map_or("", |source| source.material.as_str());
+            let names: Vec<(String, String)> =
+                sources.iter().map(|s| (s.key.clone(), s.name.clone())).collect();
             spec::intake(&at, &names, material)
         }
         "/inputs" => {
@@ -90,7 +100,10 @@ pub fn item_specs(ground: Ground, list: &str, index: usize, sources: &[Source]) 
 /// The stage as typed, and what could not be read.
 pub fn build(stage: &Value, form: &Form, sources: &[Source]) -> (Value, Problems) {
     let shaped = shaped(stage, form);
-    let ground = Ground { stage: &shaped, typed: form };
+    let ground = Ground {
+        stage: &shaped,
+        typed: form,
+    };
     let mut out = shaped.clone();
     let mut problems = Problems::default();
     for spec in specs(ground, sources) {
@@ -104,8 +117,13 @@ pub fn build(stage: &Value, form: &Form, sources: &[Source]) -> (Value, Problems
 
 /// The blank row that a list of fuels offers leaves nothing behind.
 fn drop_empty_fuels(stage: &mut Value) {
-    let Some(inputs) = stage.get_mut("inputs").and_then(Value::as_array_mut) else { return };
-    for fuels in inputs.iter_mut().filter_map(|input| input.pointer_mut("/model/fuels")) {
+    let Some(inputs) = stage.get_mut("inputs").and_then(Value::as_array_mut) else {
+        return;
+    };
+    for fuels in inputs
+        .iter_mut()
+        .filter_map(|input| input.pointer_mut("/model/fuels"))
+    {
         if let Value::Array(list) = fuels {
             list.retain(|fuel| fuel.as_object().is_none_or(|fuel| !fuel.is_empty()));
         }
@@ -114,7 +132,9 @@ fn drop_empty_fuels(stage: &mut Value) {
 
 /// New items get a key made of their name.
 fn name_keys(stage: &mut Value, list: &str, from: &str, otherwise: &str) {
-    let Some(items) = stage.pointer_mut(list).and_then(Value::as_array_mut) else { return };
+    let Some(items) = stage.pointer_mut(list).and_then(Value::as_array_mut) else {
+        return;
+    };
     let key_of = |item: &Value| item.get("key").and_then(Value::as_str).map(str::to_owned);
     let mut taken: Vec<String> = items.iter().filter_map(key_of).collect();
     for item in items.iter_mut().filter(|item| item.get("key").is_none()) {
@@ -186,7 +206,11 @@ mod tests {
     }
 
     fn stages() -> Vec<Value> {
-        samples::wheat().stages.iter().map(|stage| serde_json::to_value(stage).expect("json")).collect()
+        samples::wheat()
+            .stages
+            .iter()
+            .map(|stage| serde_json::to_value(stage).expect("json"))
+            .collect()
     }
 
     #[test]
@@ -202,7 +226,10 @@ mod tests {
 
     #[test]
     fn figures_are_changed_added_and_taken_out() {
-        let stage = stages().into_iter().find(|stage| stage["key"] == "grains").expect("there");
+        let stage = stages()
+            .into_iter()
+            .find(|stage| stage["key"] == "grains")
+            .expect("there");
         let mut form = post(&stage, &[]);
         form.set("/inputs/0/amount", "1 104.6");
         form.remove("/inputs", 1);
@@ -225,13 +252,21 @@ mod tests {
         let mut form = post(&stage, &[]);
         form.set("/output/amount", "8,9");
         let (_, problems) = build(&stage, &form, &[]);
-        let [one] = problems.list() else { panic!("one problem, not {problems:?}") };
-        assert_eq!((one.pointer.as_str(), one.remedy.as_str()), ("/output/amount", "Write a point, such as 8.9."));
+        let [one] = problems.list() else {
+            panic!("one problem, not {problems:?}")
+        };
+        assert_eq!(
+            (one.pointer.as_str(), one.remedy.as_str()),
+            ("/output/amount", "Write a point, such as 8.9.")
+        );
     }
 
     #[test]
     fn keys_are_made_of_names() {
-        assert_eq!(free_key("Natural gas, meter 3", "input", &[]), "natural-gas-meter-3");
+        assert_eq!(
+            free_key("Natural gas, meter 3", "input", &[]),
+            "natural-gas-meter-3"
+        );
         assert_eq!(free_key("42 \u{fc}", "input", &["input".to_owned()]), "input-2");
     }
 }

@@ -12,7 +12,11 @@ pub fn text_of(spec: &Spec, value: Option<&Value>) -> (String, String) {
     let Some(value) = value.filter(|value| !value.is_null()) else {
         return (String::new(), unit_of(&spec.shape).to_owned());
     };
-    let object_unit = value.get("unit").and_then(Value::as_str).unwrap_or(unit_of(&spec.shape)).to_owned();
+    let object_unit = value
+        .get("unit")
+        .and_then(Value::as_str)
+        .unwrap_or(unit_of(&spec.shape))
+        .to_owned();
     match &spec.shape {
         Shape::Measured(_) | Shape::Amount(_) | Shape::NoneOrAmount(_) => match value.get("value") {
             Some(figure) => (simple(figure), object_unit),
@@ -52,7 +56,9 @@ fn joined(value: &Value, between: &str) -> String {
 
 /// Writes what was typed into the document at `spec`; a field that the form did not have stays as it is.
 pub fn write(spec: &Spec, form: &Form, into: &mut Value, problems: &mut Problems) {
-    let Some(typed) = form.get(&spec.pointer) else { return };
+    let Some(typed) = form.get(&spec.pointer) else {
+        return;
+    };
     let typed = typed.trim();
     let unit_typed = form.get(&format!("{}/unit", spec.pointer)).map(str::trim);
     let stood = into.pointer(&spec.pointer).cloned();
@@ -69,14 +75,22 @@ pub fn write(spec: &Spec, form: &Form, into: &mut Value, problems: &mut Problems
     }
 }
 
-fn read(spec: &Spec, typed: &str, unit: Option<&str>, stood: Option<Value>, problems: &mut Problems) -> Option<Value> {
+fn read(
+    spec: &Spec,
+    typed: &str,
+    unit: Option<&str>,
+    stood: Option<Value>,
+    problems: &mut Problems,
+) -> Option<Value> {
     match &spec.shape {
         Shape::Number => number(typed, &spec.pointer, problems),
         Shape::Measured(own) if unit.is_none_or(|unit| unit == *own || unit.is_empty()) => match stood {
             Some(Value::Object(_)) => amount(number(typed, &spec.pointer, problems)?, own, stood),
             _ => number(typed, &spec.pointer, problems),
         },
-        Shape::NoneOrAmount(_) if typed.eq_ignore_ascii_case("none") => Some(Value::String("none".to_owned())),
+        Shape::NoneOrAmount(_) if typed.eq_ignore_ascii_case("none") => {
+            Some(Value::String("none".to_owned()))
+        }
         Shape::Measured(own) | Shape::Amount(own) | Shape::NoneOrAmount(own) => {
             let unit = unit.filter(|unit| !unit.is_empty()).unwrap_or(own);
             amount(number(typed, &spec.pointer, problems)?, unit, stood)
@@ -88,12 +102,17 @@ fn read(spec: &Spec, typed: &str, unit: Option<&str>, stood: Option<Value>, prob
             Value::Array(none) if none.is_empty() => None,
             many => Some(many),
         },
-        Shape::Word(_) | Shape::Text | Shape::Area | Shape::Day | Shape::Factor => Some(Value::String(typed.to_owned())),
+        Shape::Word(_) | Shape::Text | Shape::Area | Shape::Day | Shape::Factor => {
+            Some(Value::String(typed.to_owned()))
+        }
     }
 }
 
 fn list(typed: &str, between: &[char]) -> Value {
-    let parts = typed.split(between).map(str::trim).filter(|part| !part.is_empty());
+    let parts = typed
+        .split(between)
+        .map(str::trim)
+        .filter(|part| !part.is_empty());
     Value::Array(parts.map(|part| Value::String(part.to_owned())).collect())
 }
 
@@ -104,13 +123,19 @@ fn number(typed: &str, pointer: &str, problems: &mut Problems) -> Option<Value> 
         .filter(|c| !matches!(c, ' ' | '\u{2009}' | '\u{a0}' | '\u{202f}'))
         .map(|c| if c == '\u{2212}' { '-' } else { c })
         .collect();
-    let figure = spaced.parse::<f64>().ok().filter(|figure| figure.is_finite() && !spaced.contains(['n', 'N']));
+    let figure = spaced
+        .parse::<f64>()
+        .ok()
+        .filter(|figure| figure.is_finite() && !spaced.contains(['n', 'N']));
     if let Some(number) = figure.and_then(serde_json::Number::from_f64) {
         return Some(Value::Number(number));
     }
     let shown: String = typed.chars().take(40).collect();
     let remedy = if typed.contains(',') {
-        format!("Write a point, such as {}.", spaced.replace(',', ".").chars().take(40).collect::<String>())
+        format!(
+            "Write a point, such as {}.",
+            spaced.replace(',', ".").chars().take(40).collect::<String>()
+        )
     } else {
         "Give it in digits, such as 113.2.".to_owned()
     };
@@ -152,8 +177,18 @@ fn set_at(at: &mut Value, path: &[&str], value: Value) {
         *at = Value::Object(Map::new());
     }
     if let Value::Object(object) = at {
-        let begin = || if is_list(name) { Value::Array(Vec::new()) } else { Value::Null };
-        set_at(object.entry((*name).to_owned()).or_insert_with(begin), rest, value);
+        let begin = || {
+            if is_list(name) {
+                Value::Array(Vec::new())
+            } else {
+                Value::Null
+            }
+        };
+        set_at(
+            object.entry((*name).to_owned()).or_insert_with(begin),
+            rest,
+            value,
+        );
     }
 }
 
@@ -163,10 +198,17 @@ fn is_list(name: &str) -> bool {
 
 /// Takes a value out, and the objects that are empty without it (but never an item of a list).
 pub fn remove(from: &mut Value, pointer: &str) {
-    let Some((parent, name)) = pointer.rsplit_once('/') else { return };
-    let Some(Value::Object(object)) = from.pointer_mut(parent) else { return };
+    let Some((parent, name)) = pointer.rsplit_once('/') else {
+        return;
+    };
+    let Some(Value::Object(object)) = from.pointer_mut(parent) else {
+        return;
+    };
     object.remove(name);
-    let in_list = parent.rsplit('/').next().is_some_and(|last| last.parse::<usize>().is_ok());
+    let in_list = parent
+        .rsplit('/')
+        .next()
+        .is_some_and(|last| last.parse::<usize>().is_ok());
     if object.is_empty() && !parent.is_empty() && !in_list {
         remove(from, parent);
     }
@@ -176,6 +218,9 @@ pub fn remove(from: &mut Value, pointer: &str) {
 pub fn shown(spec: &Spec, ground: Ground) -> (String, String) {
     let (text, unit) = text_of(spec, ground.at(&spec.pointer));
     let typed = ground.typed.get(&spec.pointer).map(str::to_owned);
-    let typed_unit = ground.typed.get(&format!("{}/unit", spec.pointer)).map(str::to_owned);
+    let typed_unit = ground
+        .typed
+        .get(&format!("{}/unit", spec.pointer))
+        .map(str::to_owned);
     (typed.unwrap_or(text), typed_unit.unwrap_or(unit))
 }

@@ -42,7 +42,9 @@ impl Form {
 
     fn below<'f>(&'f self, pointer: &str) -> impl Iterator<Item = (&'f String, &'f String)> + 'f {
         let prefix = format!("{pointer}/");
-        self.0.range(prefix.clone()..).take_while(move |(name, _)| name.starts_with(&prefix))
+        self.0
+            .range(prefix.clone()..)
+            .take_while(move |(name, _)| name.starts_with(&prefix))
     }
 
     /// How many items of a list the form has.
@@ -64,15 +66,23 @@ impl Form {
 
     /// Takes an item out of a list; those after it move up.
     pub fn remove(&mut self, list: &str, index: usize) {
-        let fields: Vec<(String, String)> = self.below(list).map(|(name, text)| (name.clone(), text.clone())).collect();
+        let fields: Vec<(String, String)> = self
+            .below(list)
+            .map(|(name, text)| (name.clone(), text.clone()))
+            .collect();
         for (name, text) in fields {
-            let Some(at) = index_below(list, &name) else { continue };
+            let Some(at) = index_below(list, &name) else {
+                continue;
+            };
             if at < index {
                 continue;
             }
             self.0.remove(&name);
             if at > index {
-                let rest = name.strip_prefix(&format!("{list}/{at}")).unwrap_or_default().to_owned();
+                let rest = name
+                    .strip_prefix(&format!("{list}/{at}"))
+                    .unwrap_or_default()
+                    .to_owned();
                 self.0.insert(format!("{list}/{}{rest}", at - 1), text);
             }
         }
@@ -82,7 +92,11 @@ impl Form {
 /// `/inputs`, `/inputs/3/amount` is 3.
 fn index_below(list: &str, name: &str) -> Option<usize> {
     let rest = name.strip_prefix(list)?.strip_prefix('/')?;
-    rest.split('/').next()?.parse::<usize>().ok().filter(|index| *index < 10_000)
+    rest.split('/')
+        .next()?
+        .parse::<usize>()
+        .ok()
+        .filter(|index| *index < 10_000)
 }
 
 /// What the pressed button asks for.
@@ -126,12 +140,23 @@ mod tests {
     use super::*;
 
     fn form(pairs: &[(&str, &str)]) -> Form {
-        Form::of(pairs.iter().map(|(a, b)| ((*a).to_owned(), (*b).to_owned())).collect())
+        Form::of(
+            pairs
+                .iter()
+                .map(|(a, b)| ((*a).to_owned(), (*b).to_owned()))
+                .collect(),
+        )
     }
 
     #[test]
     fn items_are_taken_out_and_the_rest_move_up() {
-        let mut form = form(&[("/inputs/0/key", "a"), ("/inputs/1/key", "b"), ("/inputs/2/key", "c"), ("/inputs/2/model/x", "1"), ("why", "w")]);
+        let mut form = form(&[
+            ("/inputs/0/key", "a"),
+            ("/inputs/1/key", "b"),
+            ("/inputs/2/key", "c"),
+            ("/inputs/2/model/x", "1"),
+            ("why", "w"),
+        ]);
         form.remove("/inputs", 1);
         assert_eq!(form.count("/inputs"), 2);
         assert_eq!(form.get("/inputs/1/key"), Some("c"));
@@ -146,7 +171,10 @@ mod tests {
         assert_eq!(Do::of("save"), Do::Save);
         assert_eq!(Do::of("add:/inputs"), Do::Add("/inputs"));
         assert_eq!(Do::of("remove:/co_products/3"), Do::Remove("/co_products", 3));
-        assert_eq!(Do::of("search:/inputs/0/factor"), Do::Search("/inputs/0/factor".to_owned()));
+        assert_eq!(
+            Do::of("search:/inputs/0/factor"),
+            Do::Search("/inputs/0/factor".to_owned())
+        );
         assert_eq!(
             Do::of("choose:/inputs/0/factor=eu-2022-996/fert_n_an"),
             Do::Choose("/inputs/0/factor".to_owned(), "eu-2022-996/fert_n_an".to_owned())

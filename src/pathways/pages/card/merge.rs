@@ -48,10 +48,21 @@ fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mu
             let none = Vec::new();
             let base = base.and_then(Value::as_array).unwrap_or(&none);
             let mut out = Vec::new();
-            for key in union(mine.iter().filter_map(key).collect::<Vec<_>>().iter(), theirs.iter().filter_map(key).collect::<Vec<_>>().iter()) {
-                let find = |list: &[Value]| list.iter().find(|item| self::key(item).as_ref() == Some(&key)).cloned();
+            for key in union(
+                mine.iter().filter_map(key).collect::<Vec<_>>().iter(),
+                theirs.iter().filter_map(key).collect::<Vec<_>>().iter(),
+            ) {
+                let find = |list: &[Value]| {
+                    list.iter()
+                        .find(|item| self::key(item).as_ref() == Some(&key))
+                        .cloned()
+                };
                 let (b, t, m) = (find(base), find(theirs), find(mine));
-                path.push(m.as_ref().or(t.as_ref()).map_or_else(|| key.clone(), |item| name_of(item, &key)));
+                path.push(
+                    m.as_ref()
+                        .or(t.as_ref())
+                        .map_or_else(|| key.clone(), |item| name_of(item, &key)),
+                );
                 out.extend(one(path, b.as_ref(), t.as_ref(), m.as_ref(), met));
                 path.pop();
             }
@@ -71,7 +82,10 @@ fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mu
     }
 }
 
-fn union<'a>(mine: impl Iterator<Item = &'a String>, theirs: impl Iterator<Item = &'a String>) -> Vec<String> {
+fn union<'a>(
+    mine: impl Iterator<Item = &'a String>,
+    theirs: impl Iterator<Item = &'a String>,
+) -> Vec<String> {
     let mut out: Vec<String> = mine.cloned().collect();
     for name in theirs {
         if !out.contains(name) {
@@ -83,7 +97,13 @@ fn union<'a>(mine: impl Iterator<Item = &'a String>, theirs: impl Iterator<Item 
 
 fn key(item: &Value) -> Option<String> {
     let text = |name: &str| item.get(name).and_then(Value::as_str).map(str::to_owned);
-    text("key").or_else(|| Some(format!("{} {}", text("from")?, text("product").unwrap_or_default())))
+    text("key").or_else(|| {
+        Some(format!(
+            "{} {}",
+            text("from")?,
+            text("product").unwrap_or_default()
+        ))
+    })
 }
 
 fn keyed(list: &[Value]) -> bool {
@@ -102,9 +122,9 @@ fn shown(value: Maybe) -> String {
     match value {
         None | Some(Value::Null) => "nothing".to_owned(),
         Some(Value::String(text)) => text.clone(),
-        Some(Value::Number(number)) => {
-            number.as_f64().map_or_else(|| number.to_string(), crate::core::units::rounding::show_all)
-        }
+        Some(Value::Number(number)) => number
+            .as_f64()
+            .map_or_else(|| number.to_string(), crate::core::units::rounding::show_all),
         Some(Value::Object(object)) => match (object.get("value"), object.get("unit"), object.get("key")) {
             (Some(figure), Some(Value::String(unit)), _) => format!("{} {unit}", shown(Some(figure))),
             (_, _, Some(Value::String(key))) => name_of(value.unwrap_or(&Value::Null), key),
@@ -128,13 +148,31 @@ mod tests {
             }
             json!({ "key": "grains", "inputs": inputs, "co_products": [{ "key": "ddgs", "name": "Grains", "moisture_percent": moist }] })
         };
-        let (joined, met) = join(&stage(113.2, 10.0, false), &stage(104.6, 10.4, false), &stage(113.9, 10.0, true));
+        let (joined, met) = join(
+            &stage(113.2, 10.0, false),
+            &stage(104.6, 10.4, false),
+            &stage(113.9, 10.0, true),
+        );
         assert_eq!(joined, stage(113.9, 10.4, true));
-        let rows: Vec<_> = met.iter().map(|m| (m.field.as_str(), m.base.as_str(), m.theirs.as_str(), m.mine.as_str(), m.both)).collect();
-        assert_eq!(rows, [
-            ("co products, Grains, moisture percent", "10", "10.4", "10", false),
-            ("inputs, Gas, amount", "113.2", "104.6", "113.9", true),
-        ]);
+        let rows: Vec<_> = met
+            .iter()
+            .map(|m| {
+                (
+                    m.field.as_str(),
+                    m.base.as_str(),
+                    m.theirs.as_str(),
+                    m.mine.as_str(),
+                    m.both,
+                )
+            })
+            .collect();
+        assert_eq!(
+            rows,
+            [
+                ("co products, Grains, moisture percent", "10", "10.4", "10", false),
+                ("inputs, Gas, amount", "113.2", "104.6", "113.9", true),
+            ]
+        );
     }
 
     #[test]

@@ -34,7 +34,10 @@ pub struct Found {
 pub fn find(book: &Book, text: &str) -> Found {
     // Of several factors joined by +, the last is the one being typed.
     let words = text.rsplit('+').next().unwrap_or_default().trim().to_lowercase();
-    let parts: Vec<&str> = words.split(|c: char| !c.is_alphanumeric()).filter(|part| !part.is_empty()).collect();
+    let parts: Vec<&str> = words
+        .split(|c: char| !c.is_alphanumeric())
+        .filter(|part| !part.is_empty())
+        .collect();
     let mut hits: Vec<(usize, &Factor)> = book
         .editions
         .values()
@@ -54,7 +57,11 @@ pub fn find(book: &Book, text: &str) -> Found {
             memory: factor.citation.status == crate::core::domain::Status::Memory,
         })
         .collect();
-    Found { words, candidates, more }
+    Found {
+        words,
+        candidates,
+        more,
+    }
 }
 
 /// Smaller is better; none where a word is missing. Words of the name weigh less than those found elsewhere only.
@@ -63,7 +70,11 @@ fn weight(factor: &Factor, parts: &[&str]) -> Option<usize> {
         return None;
     }
     let name = factor.name.to_lowercase();
-    let all = format!("{name} {} {}", factor.id.to_lowercase(), factor.group.to_lowercase());
+    let all = format!(
+        "{name} {} {}",
+        factor.id.to_lowercase(),
+        factor.group.to_lowercase()
+    );
     let mut weight = 0;
     for part in parts {
         if !all.contains(part) {
