@@ -15,6 +15,10 @@ pub const PATHWAYS: &[(&str, &str)] = &[
         include_str!("pathways/b_maize_truck_and_barge.json"),
     ),
     (
+        "c_beet_campaign_biogas.json",
+        include_str!("pathways/c_beet_campaign_biogas.json"),
+    ),
+    (
         "d_straw_lignin.json",
         include_str!("pathways/d_straw_lignin.json"),
     ),
@@ -25,6 +29,14 @@ pub const PATHWAYS: &[(&str, &str)] = &[
     (
         "f_wheat_with_errors.json",
         include_str!("pathways/f_wheat_with_errors.json"),
+    ),
+    (
+        "g_wheat_converted_grassland.json",
+        include_str!("pathways/g_wheat_converted_grassland.json"),
+    ),
+    (
+        "h_wheat_co2_capture.json",
+        include_str!("pathways/h_wheat_co2_capture.json"),
     ),
 ];
 

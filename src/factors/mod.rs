@@ -3,12 +3,14 @@
 pub mod api;
 mod documents;
 mod models;
+pub mod pages;
 
 pub use documents::{
     DefaultValues, EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument,
     RuleSetLine, Split, Usage,
 };
 pub use models::{ModelDocument, ParameterDocument, SpanDocument, TakesDocument, models};
+pub use pages::{ShowFactor, UseRow};
 
 use crate::core::domain::{Book, Factor};
 

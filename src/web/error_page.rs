@@ -110,3 +110,28 @@ fn words(status: StatusCode, detail: &str) -> (String, String) {
     };
     (title.to_owned(), lead)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use axum::http::Method;
+
+    #[test]
+    fn every_refusal_has_a_page_that_names_the_way_on() {
+        let asked = Asked {
+            method: &Method::POST,
+            path: "/pathways/<b>",
+            request: Some("01J2"),
+        };
+        for status in [400, 403, 404, 405, 409, 412, 413, 422, 500, 503] {
+            let status = StatusCode::from_u16(status).expect("a status");
+            let html = page(&Refusal::of(status).detail("It is <b>so</b>."), asked);
+            assert!(
+                html.contains("href=\"/factors\"") && html.contains("01J2"),
+                "{status}"
+            );
+            assert!(!html.contains("<b>so") && !html.contains("/<b>"), "{status}");
+            assert!(html.contains("nothing was changed"), "{status}");
+        }
+    }
+}

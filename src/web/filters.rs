@@ -67,6 +67,14 @@ pub fn short_day(date: Date) -> String {
     date.strftime("%-d %b %Y").to_string()
 }
 
+/// The first letter made large.
+pub fn capital(words: &str) -> String {
+    let mut letters = words.chars();
+    letters
+        .next()
+        .map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+}
+
 /// Formulas with their subscripts, terms as e with its index, everything else escaped.
 #[askama::filter_fn]
 pub fn chem(words: impl std::fmt::Display, _: &dyn Values) -> Result<Safe<String>> {

@@ -24,8 +24,8 @@ pub struct Frame {
     pub section: Section,
     /// The requests that give the same as data, such as `GET /api/v1/pathways`; none where there is no data.
     pub data: Vec<String>,
-    /// True if the page shows demonstration data.
-    pub example: bool,
+    /// Said at the top where the page shows demonstration data; empty where it shows none.
+    pub example: &'static str,
     /// True for pages that print in landscape.
     pub wide: bool,
 }
@@ -37,7 +37,7 @@ impl Frame {
             title: title.into(),
             section,
             data: vec![data.into()],
-            example: false,
+            example: "",
             wide: false,
         }
     }
@@ -53,7 +53,22 @@ impl Frame {
     /// The same frame, marked as demonstration data if it is.
     #[must_use]
     pub fn example(self, example: bool) -> Frame {
-        Frame { example, ..self }
+        let words =
+            "Invented for demonstration: no figure on this page belongs to a real field, works or delivery.";
+        Frame {
+            example: if example { words } else { "" },
+            ..self
+        }
+    }
+
+    /// The same frame, where some of what it shows is demonstration data.
+    #[must_use]
+    pub fn partly_example(self, example: bool) -> Frame {
+        let words = "Some of what stands here was invented for demonstration; it is marked as an example.";
+        Frame {
+            example: if example { words } else { "" },
+            ..self
+        }
     }
 
     /// The same frame for a page that prints in landscape.

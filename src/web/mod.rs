@@ -1,5 +1,7 @@
 //! HTTP in common: router, layers, refusals, conditional requests, paging, the API's description, assets, health.
 
+pub mod answers;
+pub mod api_page;
 pub mod assets;
 pub mod blocking;
 pub mod conditional;
@@ -10,6 +12,7 @@ pub mod filters;
 pub mod frame;
 pub mod health;
 pub mod layers;
+pub mod links;
 pub mod openapi;
 pub mod paging;
 pub mod patience;

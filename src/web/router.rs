@@ -1,10 +1,10 @@
 //! Lays the routes of everything together: the API, its description, health, assets and the pages; answers what is
 //! nowhere; and puts the layers around it all.
 
-use super::error_page;
 use super::extract::Limits;
 use super::openapi::{self, Document};
 use super::problem::{Refusal, RefusalPage};
+use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
 use crate::{demo, factors, pathways};
@@ -12,7 +12,7 @@ use axum::Router;
 use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
 use axum::response::Redirect;
-use axum::routing::post;
+use axum::routing::{get, post};
 use std::time::Duration;
 use utoipa_axum::router::OpenApiRouter;
 
@@ -73,9 +73,11 @@ fn api() -> OpenApiRouter<App> {
 /// The pages for people. Their routes come with the pages themselves.
 pub fn pages_router() -> Router<App> {
     Router::new()
+        .route("/api", get(api_page::show))
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
+        .merge(factors::pages::routes())
 }
 
 /// Puts the demonstration in, marked as such.

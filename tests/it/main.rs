@@ -14,3 +14,4 @@ mod levers;
 mod store;
 mod support;
 mod tidy;
+mod web;

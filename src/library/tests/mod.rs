@@ -100,7 +100,12 @@ fn every_figure_has_a_source() {
         assert!(tables.residues.values().all(|row| row.citation.source.len() > 10));
     }
     let limits = book.limits.values().flat_map(|set| set.values());
-    assert!(book.land.values().chain(limits).all(|figure| figure.source.len() > 10));
+    assert!(
+        book.land
+            .values()
+            .chain(limits)
+            .all(|figure| figure.source.len() > 10)
+    );
     for material in book.materials.values() {
         assert!(
             material.properties.values().all(|p| p.figure.source.len() > 10),

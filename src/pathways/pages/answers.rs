@@ -1,58 +1,10 @@
-//! Answers of pages: HTML, CSV, a way on, and the page of what is not there.
+//! The page of a pathway that is not there, and the answers that all pages give.
 
-use crate::web::csv::Table;
+pub use crate::web::answers::{csv, file, page, see_other, with_status};
 use crate::web::error_page::ErrorPage;
 use crate::web::problem::{Asked, Refusal, shown};
-use askama::Template;
-use axum::http::header::{CONTENT_DISPOSITION, CONTENT_TYPE, LOCATION};
-use axum::http::{HeaderValue, Method, StatusCode};
-use axum::response::{Html, IntoResponse, Response};
-
-/// A page.
-///
-/// # Errors
-/// 500 when the template fails, which it does only where memory does.
-pub fn page(page: &impl Template) -> Result<Response, Refusal> {
-    with_status(StatusCode::OK, page)
-}
-
-/// A page with another status.
-///
-/// # Errors
-/// As [`page`].
-pub fn with_status(status: StatusCode, page: &impl Template) -> Result<Response, Refusal> {
-    match page.render() {
-        Ok(html) => Ok((status, Html(html)).into_response()),
-        Err(error) => {
-            tracing::error!(%error, "a page failed");
-            Err(Refusal::of(StatusCode::INTERNAL_SERVER_ERROR))
-        }
-    }
-}
-
-/// A table as a file to keep.
-pub fn csv(name: &str, table: &Table) -> Response {
-    file(&format!("{name}.csv"), "text/csv; charset=utf-8", table.csv())
-}
-
-/// A file to keep. The name is one of ours: letters, digits, hyphens and a point.
-pub fn file(name: &str, kind: &'static str, body: impl IntoResponse) -> Response {
-    let mut response = body.into_response();
-    let headers = response.headers_mut();
-    headers.insert(CONTENT_TYPE, HeaderValue::from_static(kind));
-    if let Ok(value) = HeaderValue::try_from(format!("attachment; filename=\"{name}\"")) {
-        headers.insert(CONTENT_DISPOSITION, value);
-    }
-    response
-}
-
-/// Go on there: after a form was taken.
-pub fn see_other(href: &str) -> Response {
-    match HeaderValue::try_from(href) {
-        Ok(location) => (StatusCode::SEE_OTHER, [(LOCATION, location)]).into_response(),
-        Err(_) => Refusal::of(StatusCode::NOT_FOUND).into_response(),
-    }
-}
+use axum::http::{Method, StatusCode};
+use axum::response::{IntoResponse, Response};
 
 /// The page of a pathway that is not there, with the one of the nearest name: address and name.
 pub fn no_pathway(asked: &str, near: Option<(String, &str)>) -> Response {

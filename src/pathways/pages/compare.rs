@@ -53,6 +53,8 @@ pub struct Column {
     pub verdict: Verdict,
     /// The ladder as SVG.
     pub ladder: Markup,
+    /// Demonstration data.
+    pub example: bool,
     /// True for the first, which the others are compared with.
     pub base: bool,
 }
@@ -111,8 +113,13 @@ impl Compare {
         let comparison = compare(&subjects);
         let names: Vec<&str> = picked.iter().map(|one| one.pathway.name.as_str()).collect();
         let ids: Vec<String> = picked.iter().map(|one| links::segment(one.id)).collect();
-        let mut frame = Frame::new(names.join(" beside "), Section::Compare, "POST /api/v1/compare").wide();
-        frame.example = comparison.example;
+        let all = picked.iter().all(|one| one.pathway.example);
+        let frame = Frame::new(names.join(" beside "), Section::Compare, "POST /api/v1/compare").wide();
+        let frame = if all {
+            frame.example(true)
+        } else {
+            frame.partly_example(comparison.example)
+        };
         let stages: Vec<Row> = comparison.stages.iter().rev().map(stage_row).collect();
         let notes = comparison.pathways.iter().enumerate().filter_map(|(index, one)| {
             let parts: Vec<f64> = stages.iter().filter_map(|row| row.cells.get(index)?.0).collect();
@@ -264,7 +271,7 @@ fn lead(comparison: &Comparison) -> String {
         };
         format!(
             " {} makes most of it: {} g {side}.",
-            super::show::capital(kind),
+            filters::capital(kind),
             show(largest.difference_g_co2e_per_mj.abs(), 1)
         )
     });
@@ -295,6 +302,7 @@ fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
             href: links::pathway(one.id),
             verdict: Verdict::of(one.found, book.rule_sets.get(&one.found.rule_set)),
             ladder: Markup(ladder::draw(&Ladder { scale, ..ladder }, Form::Narrow).unwrap_or_default()),
+            example: one.pathway.example,
             base: index == 0,
         })
         .collect()

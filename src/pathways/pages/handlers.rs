@@ -3,7 +3,10 @@
 use super::home::{Asked, Home, day_of};
 use super::show::ShowPathway;
 use super::workings::ShowWorkings;
-use super::{Head, Notice, RevisionRow, answers, compare, document_handlers, links, notices, stage_handlers};
+use super::{
+    Head, Notice, RevisionRow, answers, compare, document_handlers, factor_handlers, links, notices,
+    stage_handlers,
+};
 use crate::app::App;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;
@@ -53,6 +56,7 @@ pub fn routes() -> Router<App> {
             post(document_handlers::restore),
         )
         .route("/pathways/{id}/{file}", get(document_handlers::download))
+        .route("/factors/{edition}/{row}", get(factor_handlers::show))
         .route("/compare", get(compare_page))
         .route("/compare.csv", get(compare_csv))
 }

@@ -135,8 +135,8 @@ impl Home {
         let empty = all.is_empty();
         let mut rows: Vec<HomeRow> = all.into_iter().filter(|row| asked.lets(row)).collect();
         asked.order(&mut rows);
-        let mut frame = Frame::new("Pathways", Section::Pathways, "GET /api/v1/pathways?limit=50");
-        frame.example = rows.iter().any(|row| row.example);
+        let frame = Frame::new("Pathways", Section::Pathways, "GET /api/v1/pathways?limit=50")
+            .partly_example(rows.iter().any(|row| row.example));
         Home {
             frame,
             notice: None,

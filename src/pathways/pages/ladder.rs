@@ -129,7 +129,7 @@ fn rungs(assessment: &Assessment, weights: &GwpSet) -> Vec<(String, Rung)> {
         out.push((
             String::new(),
             Rung {
-                name: release.what.clone(),
+                name: crate::web::filters::capital(&release.what),
                 counted: Counted::default(),
                 crop: Some(release.g_co2_per_mj),
                 uptake: false,

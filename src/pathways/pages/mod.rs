@@ -5,6 +5,8 @@ pub mod carbon;
 pub mod card;
 pub mod compare;
 mod document_handlers;
+mod entries;
+mod factor_handlers;
 mod handlers;
 pub mod home;
 pub mod ladder;
@@ -18,7 +20,6 @@ mod stage_handlers;
 pub mod verdict;
 pub mod workings;
 
-pub use answers::{csv, file, page, with_status};
 pub use handlers::routes;
 
 #[cfg(test)]

@@ -10,7 +10,7 @@ use crate::core::documents::problem::Problem;
 use crate::core::documents::{Pathway, Problems};
 use crate::core::domain::{Book, RuleSet, StageKind, Term};
 use crate::web::csv::{Cell, Table};
-use crate::web::filters::{self, short_day};
+use crate::web::filters::{self, capital, short_day};
 use crate::web::frame::{Frame, Section};
 use askama::Template;
 
@@ -298,14 +298,6 @@ fn ladder_notes(
     out.extend(rounding_note("The stages", &sums, found.net.g_co2e_per_mj, 2));
     out.push("Gas columns can differ from their sum in the last digit: rounding.".to_owned());
     out
-}
-
-/// The first letter made large.
-pub fn capital(words: &str) -> String {
-    let mut letters = words.chars();
-    letters
-        .next()
-        .map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
 fn saving_sum(found: &Assessment, verdict: &Verdict) -> String {

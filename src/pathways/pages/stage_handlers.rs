@@ -104,7 +104,7 @@ pub(super) async fn begin(
         .ok()
         .and_then(|index| seen.pathway.stages.get(index));
     let name = if query.name.trim().is_empty() {
-        super::show::capital(kind.words())
+        crate::web::filters::capital(kind.words())
     } else {
         query.name.trim().to_owned()
     };

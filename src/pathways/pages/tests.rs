@@ -2,7 +2,7 @@
 
 use super::card::Form;
 use super::samples::{self, HOSTILE};
-use super::{home, show, stage, workings};
+use super::{Notice, compare, home, new, revision, show, stage, workings};
 use crate::core::documents::Problems;
 use askama::Template;
 
@@ -43,6 +43,7 @@ fn pages() -> Vec<(String, String)> {
         }
     }
     add("stage_refused", refused().render());
+    more(&mut add);
     let mut problems = Problems::default();
     problems.add("/stages/2/inputs/0/unit", HOSTILE, HOSTILE);
     problems.add("/period", "The period is empty.", "Give two days.");
@@ -220,4 +221,139 @@ fn a_refused_card_keeps_what_was_typed_and_names_each_field() {
         html.contains("choose:/inputs/1/factor=eu-2022-996/elec_"),
         "candidates can be chosen without script"
     );
+}
+
+/// Pages that are not of one pathway as it stands.
+fn more(add: &mut impl FnMut(&str, askama::Result<String>)) {
+    let book = samples::book();
+    let (wheat, hostile) = (samples::wheat(), samples::hostile());
+    let (one, other) = (samples::assess(&wheat), samples::assess(&hostile));
+    let picked = [("1", &wheat, &one), ("2", &hostile, &other)].map(|(id, pathway, found)| compare::Picked {
+        id,
+        pathway,
+        found,
+    });
+    let choices = vec![("1".to_owned(), HOSTILE.to_owned(), true)];
+    add(
+        "compare",
+        compare::Compare::of(&picked, book, choices.clone()).render(),
+    );
+    add(
+        "compare_ask",
+        compare::Compare::ask("Choose two.", choices).render(),
+    );
+    add(
+        "new",
+        new::NewPathway::of(new::Start::default(), Vec::new(), String::new(), Vec::new(), book).render(),
+    );
+    let start = new::Start {
+        name: HOSTILE.to_owned(),
+        from: HOSTILE.to_owned(),
+        ..new::Start::default()
+    };
+    let faults = start.pathway(book).expect_err("refused");
+    assert_eq!(faults.len(), 4, "{faults:?}");
+    add(
+        "new_refused",
+        new::NewPathway::of(start, faults.clone(), HOSTILE.to_owned(), Vec::new(), book).render(),
+    );
+    let changes = crate::pathways::changes::between(Some(&wheat), &hostile).expect("compares");
+    let shown = revision::ShowRevision::of(
+        samples::head(),
+        15,
+        HOSTILE.to_owned(),
+        &hostile,
+        Some(&other),
+        Some(&one),
+        &changes,
+        book,
+    );
+    add("revision", shown.render());
+    let first = revision::ShowRevision::of(samples::head(), 14, String::new(), &wheat, None, None, &[], book);
+    add("revision_first", first.render());
+    let mut saved = show::ShowPathway::of(
+        samples::head(),
+        &wheat,
+        Ok(&one),
+        book,
+        samples::revisions(),
+        false,
+    );
+    saved.notice = Some(Notice {
+        what: "Saved.".to_owned(),
+        then: HOSTILE.to_owned(),
+        back: Some(("/".to_owned(), HOSTILE.to_owned())),
+    });
+    add("pathway_saved", saved.render());
+    let mut met = refused();
+    met.met = vec![super::card::merge::Met {
+        field: HOSTILE.to_owned(),
+        base: "1".to_owned(),
+        theirs: HOSTILE.to_owned(),
+        mine: "3".to_owned(),
+        both: true,
+    }];
+    add("stage_met", met.render());
+}
+
+#[test]
+fn the_starter_chain_of_every_feedstock_can_be_worked_out() {
+    let book = samples::book();
+    let page = new::NewPathway::of(new::Start::default(), Vec::new(), String::new(), Vec::new(), book);
+    assert!(page.feedstocks.len() > 10, "{:?}", page.feedstocks);
+    for (feedstock, _) in page.feedstocks {
+        let start = new::Start {
+            name: "Trial".to_owned(),
+            feedstock: feedstock.clone(),
+            rule_set: "eu-2018-2001".to_owned(),
+            from: "2026-07-01".to_owned(),
+            to: "2027-06-30".to_owned(),
+            plant_started: String::new(),
+        };
+        let pathway = start.pathway(book).expect("a pathway");
+        let found = samples::assess(&pathway);
+        assert!(found.net.g_co2e_per_mj.abs() < 1e-9, "{feedstock}");
+    }
+}
+
+/// The words of a page without its markup, one line for each of its own.
+fn words(html: &str) -> String {
+    let mut out = String::new();
+    let mut inside = false;
+    for c in html.chars() {
+        match c {
+            '<' => inside = true,
+            '>' => {
+                inside = false;
+                out.push(' ');
+            }
+            _ if !inside => out.push(c),
+            _ => {}
+        }
+    }
+    let lines = out
+        .lines()
+        .map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
+    lines
+        .filter(|line| !line.is_empty())
+        .collect::<Vec<_>>()
+        .join("\n")
+}
+
+#[test]
+fn words_of_the_main_pages() {
+    let wheat = samples::wheat();
+    let found = samples::assess(&wheat);
+    let page = show::ShowPathway::of(
+        samples::head(),
+        &wheat,
+        Ok(&found),
+        samples::book(),
+        samples::revisions(),
+        false,
+    );
+    insta::assert_snapshot!("pathway", words(&page.render().expect("renders")));
+    let list = home::Home::of(&samples::lines(), samples::book(), home::Asked::default());
+    insta::assert_snapshot!("home", words(&list.render().expect("renders")));
+    insta::assert_snapshot!("stage_refused", words(&refused().render().expect("renders")));
 }

@@ -121,7 +121,7 @@ fn words(pairs: impl IntoIterator<Item = (&'static str, &'static str)>) -> Shape
 
 /// A name of a document in words: `distance_km` is "distance km".
 pub fn named(name: &str) -> String {
-    super::super::show::capital(&name.replace('_', " "))
+    crate::web::filters::capital(&name.replace('_', " "))
 }
 
 /// Name, kind, sharing and note of the stage itself.
@@ -409,7 +409,7 @@ fn gases(at: &str, unit: &str) -> Vec<Spec> {
             Spec::new(
                 at,
                 gas.name(),
-                &format!("{}, {unit}", super::super::show::capital(gas.words())),
+                &format!("{}, {unit}", crate::web::filters::capital(gas.words())),
                 Shape::Number,
             )
         })
@@ -493,14 +493,14 @@ fn parameter(row: &'static Parameter, base: &str, before: &str, ground: Ground) 
 }
 
 fn hint(row: &Parameter) -> String {
-    let mut out = super::super::show::capital(row.meaning);
+    let mut out = crate::web::filters::capital(row.meaning);
     if !row.default.is_empty() {
         out.push_str(&format!(" Left empty: {}.", row.default));
     }
     if let Some(hard) = row.hard {
         out.push_str(&format!(
             " {}.",
-            super::super::show::capital(&hard.words(row.unit()))
+            crate::web::filters::capital(&hard.words(row.unit()))
         ));
     }
     out

@@ -1,0 +1,63 @@
+//! Pages of published data: editions and their rows, materials, rule sets, and what nobody has read at its source.
+
+mod factor;
+mod list;
+mod published;
+#[cfg(test)]
+mod tests;
+
+pub use factor::{ShowFactor, UseRow};
+pub use list::{Asked, Factors};
+pub use published::{Memory, Published};
+
+use crate::app::App;
+use crate::web::Refusal;
+use crate::web::answers::{csv, page};
+use crate::web::extract::{Path, Query};
+use axum::Router;
+use axum::extract::State;
+use axum::response::Response;
+use axum::routing::get;
+
+/// The routes of this file. The page of one factor stands with the pathways, which know who uses it.
+pub fn routes() -> Router<App> {
+    Router::new()
+        .route("/factors", get(factors))
+        .route("/factors.csv", get(factors_csv))
+        .route("/factors/memory", get(memory))
+        .route("/materials/{id}", get(material))
+        .route("/rule-sets/{id}", get(rule_set))
+}
+
+async fn factors(State(app): State<App>, Query(asked): Query<Asked>) -> Result<Response, Refusal> {
+    page(&Factors::of(app.library, asked))
+}
+
+async fn factors_csv(State(app): State<App>, Query(asked): Query<Asked>) -> Response {
+    csv("factors", &Factors::table(app.library, &asked))
+}
+
+async fn memory() -> Result<Response, Refusal> {
+    page(&Memory::of(crate::library::figures_from_memory()))
+}
+
+async fn material(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {
+    let material = app
+        .library
+        .materials
+        .get(&id)
+        .ok_or_else(|| Refusal::not_here("material", &id))?;
+    page(&Published::material(material))
+}
+
+async fn rule_set(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {
+    let rules = app
+        .library
+        .rule_sets
+        .get(&id)
+        .ok_or_else(|| Refusal::not_here("rule set", &id))?;
+    page(&Published::rule_set(
+        rules,
+        app.library.gwp_sets.get(&rules.gwp_set),
+    ))
+}
