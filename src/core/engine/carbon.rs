@@ -11,8 +11,9 @@ use crate::core::units::rounding::plain;
 
 /// kg CO2 per kg of carbon, from molar masses.
 pub const CO2_PER_C: f64 = 44.0095 / 12.011;
-/// kg CO2 per kg of ethanol burnt: two CO2 for each C2H5OH (88.019 / 46.06844).
-pub const CO2_PER_ETHANOL: f64 = 2.0 * 44.0095 / 46.06844;
+/// kg CO2 per kg of ethanol burnt: 2 x 44.0095 / 46.06844, rounded to five decimals as documents print it, so that a
+/// reader who redoes the balance with the printed figure finds the same.
+pub const CO2_PER_ETHANOL: f64 = 1.91061;
 /// kg CO2 per kg of ethanol fermented: one CO2 for each C2H5OH.
 pub const FERMENTATION_CO2_PER_ETHANOL: f64 = 44.0095 / 46.06844;
 

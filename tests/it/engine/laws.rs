@@ -170,7 +170,7 @@ fn carbon_closes_where_what_leaves_is_what_came_in() {
     let mut document = chain(&Figures::usual());
     let crop = 870.0 * 45.0 / 100.0 * 44.0095 / 12.011;
     let pure = 300.0 * 0.997;
-    let fuel_and_fermentation = pure * 3.0 * 44.0095 / 46.06844;
+    let fuel_and_fermentation = pure * (1.91061 + 44.0095 / 46.06844);
     let grains_c = (crop - fuel_and_fermentation) * 12.011 / 44.0095;
     let dry = 288.0;
     stage(&mut document, "works")["co_products"][0]["carbon_percent_dry"] = json!(100.0 * grains_c / dry);
