@@ -362,7 +362,7 @@ fn input_kinds(chosen: &str) -> Vec<Choice> {
     out.extend(
         models::ALL
             .iter()
-            .map(|model| choice(model.kind, format!("a model: {}", model.title.to_lowercase()))),
+            .map(|model| choice(model.kind, format!("a model: {}", model.title))),
     );
     out
 }

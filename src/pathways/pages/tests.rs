@@ -341,7 +341,8 @@ fn words(html: &str) -> String {
         .lines()
         .map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
     lines
-        .filter(|line| !line.is_empty())
+        // The list of models grows with every model: it is tested where it is made.
+        .filter(|line| !line.is_empty() && !line.starts_with("Another input is"))
         .collect::<Vec<_>>()
         .join("\n")
 }
