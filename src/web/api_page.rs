@@ -199,7 +199,7 @@ mod tests {
         let paths = description["paths"].as_object().expect("paths");
         let there: usize = paths
             .values()
-            .map(|item| item.as_object().map_or(0, |item| item.len()))
+            .map(|item| item.as_object().map_or(0, serde_json::Map::len))
             .sum();
         assert!(told > 15 && told == there, "{told} of {there}");
         let put = page

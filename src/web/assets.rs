@@ -24,6 +24,10 @@ pub const FILES: &[(&str, &[u8])] = &[
         include_bytes!("../../templates/assets/fonts/source-sans-3-latin-wght-normal.woff2"),
     ),
     ("mark.svg", include_bytes!("../../templates/assets/mark.svg")),
+    (
+        "mark-dark.svg",
+        include_bytes!("../../templates/assets/mark-dark.svg"),
+    ),
     ("style.css", include_bytes!("../../templates/assets/style.css")),
 ];
 

@@ -1,4 +1,8 @@
 //! How pages dress figures and words. Numbers become text in `core::units::rounding` only.
+#![allow(
+    missing_docs,
+    reason = "the macro of filters makes types of its own; every filter says what it does"
+)]
 
 use crate::core::units::rounding;
 use askama::filters::{HtmlSafe, Safe};
@@ -108,13 +112,14 @@ pub fn chem_html(words: &str) -> String {
     let mut rest = words;
     let mut before = ' ';
     while let Some(next) = rest.chars().next() {
-        let formula = FORMULAS
-            .iter()
-            .find(|(plain, _)| rest.starts_with(plain) && stands_alone(before, rest, plain));
-        if let Some((plain, html)) = formula {
+        let formula = FORMULAS.iter().find_map(|(plain, html)| {
+            let after = rest.strip_prefix(plain)?;
+            stands_alone(before, after, plain).then_some((html, after))
+        });
+        if let Some((html, after)) = formula {
             out.push_str(html);
             before = '2';
-            rest = &rest[plain.len()..];
+            rest = after;
             continue;
         }
         match next {
@@ -126,16 +131,15 @@ pub fn chem_html(words: &str) -> String {
             other => out.push(other),
         }
         before = next;
-        rest = &rest[next.len_utf8()..];
+        rest = rest.strip_prefix(next).unwrap_or_default();
     }
     out
 }
 
-/// A formula is not part of a longer word or id; `CO2e` and `CO2eq` are.
-fn stands_alone(before: char, rest: &str, plain: &str) -> bool {
-    let after = rest[plain.len()..].chars().next();
+/// A formula is not part of a longer word or id; `CO2e` is one.
+fn stands_alone(before: char, after: &str, plain: &str) -> bool {
     let joins = |c: char| c.is_ascii_alphanumeric() || c == '_';
-    let ends = match after {
+    let ends = match after.chars().next() {
         Some('e') if plain == "CO2" => true,
         Some(c) => !joins(c),
         None => true,

@@ -174,8 +174,10 @@ impl Compare {
 
     /// Stages and terms as one CSV.
     pub fn table(&self) -> Table {
-        let mut table = Table::default();
-        table.head = vec!["part".to_owned(), "name".to_owned()];
+        let mut table = Table {
+            head: vec!["part".to_owned(), "name".to_owned()],
+            rows: Vec::new(),
+        };
         for column in &self.columns {
             table.head.push(format!("{}, g CO2e/MJ", column.name));
         }

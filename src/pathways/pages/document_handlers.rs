@@ -149,13 +149,13 @@ pub(super) async fn replace(
     Form(typed): Form<Typed>,
 ) -> Result<Response, Response> {
     let now = seen(&app, &id, None).await?;
-    let refuse = |typed: Typed, problems: &[Problem], stale: bool| {
+    let refuse = |typed: Typed, problems: &[Problem], stale: bool| -> Response {
         let shown = document_page(&now, typed.document, typed.why, rows(problems), stale);
-        with_status(REFUSED, &shown).map_err(IntoResponse::into_response)
+        with_status(REFUSED, &shown).unwrap_or_else(IntoResponse::into_response)
     };
     let document = match Pathway::from_bytes(typed.document.as_bytes()) {
         Ok(document) => document,
-        Err(problems) => return refuse(typed, problems.list(), false),
+        Err(problems) => return Ok(refuse(typed, problems.list(), false)),
     };
     let why = Some(typed.why.trim())
         .filter(|why| !why.is_empty())
@@ -174,8 +174,8 @@ pub(super) async fn replace(
             links::pathway(&id),
             saved.revision
         ))),
-        Err(PathwayError::Problems(problems)) => refuse(typed, problems.list(), false),
-        Err(PathwayError::Conflict { .. }) => refuse(typed, Problems::default().list(), true),
+        Err(PathwayError::Problems(problems)) => Ok(refuse(typed, problems.list(), false)),
+        Err(PathwayError::Conflict { .. }) => Ok(refuse(typed, Problems::default().list(), true)),
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }
@@ -200,11 +200,9 @@ pub(super) async fn revision(
     let why = one.stored.reason.clone().unwrap_or_default();
     let shown = ShowRevision::of(
         one.head(),
-        count(one.stored.current_revision),
-        why,
+        (count(one.stored.current_revision), why),
         &one.pathway,
-        one.found(),
-        before.as_ref().and_then(Seen::found),
+        (before.as_ref().and_then(Seen::found), one.found()),
         &changes,
         app.library,
     );

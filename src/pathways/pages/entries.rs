@@ -21,13 +21,13 @@ pub(super) struct Entries<'a> {
 }
 
 impl Entries<'_> {
-    pub(super) fn entry(&self, specs: Vec<Spec>, anchor: &str) -> Entry {
+    pub(super) fn entry(&self, specs: &[Spec], anchor: &str) -> Entry {
         let mut entry = Entry {
             anchor: anchor.to_owned(),
             legend: "The stage".to_owned(),
             ..Entry::default()
         };
-        for spec in &specs {
+        for spec in specs {
             let field = self.field(spec);
             if spec.rare {
                 entry.rare_open |= !field.wrong.is_empty() || field.found.is_some();
@@ -50,7 +50,7 @@ impl Entries<'_> {
 
     pub(super) fn output(&self) -> Entry {
         let share = self.result.map(|result| result.share);
-        let mut entry = self.entry(spec::output(self.ground), "output");
+        let mut entry = self.entry(&spec::output(self.ground), "output");
         entry.legend = "Main product".to_owned();
         self.figure(
             &mut entry,
@@ -78,7 +78,10 @@ impl Entries<'_> {
         } else {
             anchor
         };
-        let mut entry = self.entry(build::item_specs(self.ground, list, index, self.sources), &anchor);
+        let mut entry = self.entry(
+            &build::item_specs(self.ground, list, index, self.sources),
+            &anchor,
+        );
         let name = ["label", "name"]
             .iter()
             .map(|name| self.ground.word(&format!("{at}/{name}")))

@@ -183,7 +183,7 @@ async fn home_view(app: &App, query: HomeQuery) -> Result<Home, Refusal> {
         sort: query.sort,
     };
     let mut home = Home::of(&all, app.library, asked);
-    home.notice = query.examples.map(|count| notices::examples(count));
+    home.notice = query.examples.map(notices::examples);
     Ok(home)
 }
 

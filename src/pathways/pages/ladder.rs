@@ -256,7 +256,8 @@ impl LadderView {
             let mut cells: Vec<Cell> = vec![row.key.clone().into(), row.name.clone().into()];
             match row.counted {
                 Some(c) => {
-                    cells.extend([c.sum, c.co2, c.n2o, c.ch4, c.land, c.unsplit, c.running].map(Cell::Figure))
+                    cells
+                        .extend([c.sum, c.co2, c.n2o, c.ch4, c.land, c.unsplit, c.running].map(Cell::Figure));
                 }
                 None => cells.extend(std::iter::repeat_n(Cell::Empty, 7)),
             }

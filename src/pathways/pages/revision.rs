@@ -68,14 +68,13 @@ pub struct ChangeRow {
 const MOST: usize = 500;
 
 impl ShowRevision {
-    /// The page of a revision: its document and assessment, those of the revision before, and the changes.
+    /// The page of a revision: the number of the current one and the reason, its document, the assessments before and
+    /// after, and the changes.
     pub fn of(
         head: Head,
-        current: u64,
-        why: String,
+        (current, why): (u64, String),
         pathway: &Pathway,
-        now: Option<&Assessment>,
-        before: Option<&Assessment>,
+        (before, now): (Option<&Assessment>, Option<&Assessment>),
         changes: &[Change],
         book: &Book,
     ) -> ShowRevision {

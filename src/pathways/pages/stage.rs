@@ -198,7 +198,7 @@ pub fn sources(pathway: &Pathway, key: &str) -> Vec<Source> {
 
 impl ShowStage {
     /// The page of a card.
-    pub fn of(card: Card) -> ShowStage {
+    pub fn of(card: &Card) -> ShowStage {
         let stored = card.pathway.stages.iter().any(|stage| stage.key == card.key);
         let ground = Ground {
             stage: card.stage,
@@ -209,7 +209,7 @@ impl ShowStage {
             .and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
         let sources = sources(card.pathway, card.key);
         let at = Entries {
-            card: &card,
+            card,
             ground,
             result,
             sources: &sources,
@@ -239,11 +239,11 @@ impl ShowStage {
                 .stages
                 .iter()
                 .filter(takes)
-                .map(|stage| stage.title())
+                .map(crate::core::documents::pathway::Stage::title)
                 .collect();
             takers = names.join(", ");
         }
-        let about = at.entry(spec::stage(ground), "about");
+        let about = at.entry(&spec::stage(ground), "about");
         let output = at.output();
         let (intakes, inputs, co_products) =
             (entries("/intakes"), entries("/inputs"), entries("/co_products"));
@@ -259,7 +259,7 @@ impl ShowStage {
             )
             .example(card.pathway.example),
             pathway: card.pathway.name.clone(),
-            facts: facts(&card, result),
+            facts: facts(card, result),
             notice: None,
             refused: Vec::new(),
             met: Vec::new(),
@@ -313,8 +313,7 @@ impl ShowStage {
             None => {
                 let entry = self
                     .every_entry()
-                    .filter(|entry| entry.wrong.iter().any(|(fact, _)| *fact == problem.detail))
-                    .next();
+                    .find(|entry| entry.wrong.iter().any(|(fact, _)| *fact == problem.detail));
                 match entry {
                     Some(entry) => (Some(entry.anchor.clone()), entry.legend.clone()),
                     None => (None, self.title.clone()),

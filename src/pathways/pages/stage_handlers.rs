@@ -40,7 +40,7 @@ pub(super) async fn show(
         return Err(no_stage());
     };
     let (value, typed) = (value_of(stage), Form::default());
-    let mut shown = ShowStage::of(Card {
+    let mut shown = ShowStage::of(&Card {
         ..card(&app, &seen, &key, &value, &typed)
     });
     shown.notice = saved_notice(&app, &seen, query.saved).await;
@@ -111,7 +111,7 @@ pub(super) async fn begin(
     let key = build::free_key(&name, "stage", &taken);
     let value = begun(&key, kind, &name, after);
     let typed = Form::default();
-    let shown = ShowStage::of(Card {
+    let shown = ShowStage::of(&Card {
         after: after.map(|stage| stage.key.as_str()),
         ..card(&app, &seen, &key, &value, &typed)
     });
@@ -186,7 +186,7 @@ pub(super) async fn save(
     let to_save = steer(&mut form, &asked);
     let shaped = build::shaped(&stood, &form);
     let shown = |problems: &[Problem], refused: bool| {
-        ShowStage::of(Card {
+        ShowStage::of(&Card {
             problems,
             refused,
             search: match &asked {
@@ -320,7 +320,7 @@ async fn met(
     let theirs = value_of(theirs);
     let (joined, met) = merge::join(base, &theirs, mine);
     let typed = joined_form(&now, &theirs, &joined);
-    let mut shown = ShowStage::of(card(app, &now, key, &joined, &typed));
+    let mut shown = ShowStage::of(&card(app, &now, key, &joined, &typed));
     shown.why = form.text("why").to_owned();
     if met.is_empty() {
         shown.notice = Some(super::Notice {
@@ -409,7 +409,7 @@ pub(super) async fn remove(
         Err(PathwayError::Problems(problems)) => {
             let own = of_stage(&document, usize::MAX, problems.into_list());
             let (value, typed) = (value_of(gone), Form::default());
-            let shown = ShowStage::of(Card {
+            let shown = ShowStage::of(&Card {
                 problems: own.list(),
                 refused: true,
                 ..card(&app, &base, &key, &value, &typed)

@@ -178,3 +178,25 @@ async fn a_stage_comes_into_the_chain_and_goes_again_without_moving_the_net() {
         "{html}"
     );
 }
+
+#[tokio::test]
+async fn every_card_of_the_example_sent_back_untouched_changes_nothing() {
+    let app = TestApp::new().await;
+    follow(&app, &Form::find(&page(&app, "/").await, "/example/load")).await;
+    let list = app.get("/api/v1/pathways?limit=200").await.json();
+    let mut cards = 0;
+    for line in list["items"].as_array().expect("items") {
+        let id = line["id"].as_str().expect("an id");
+        let document = app.get(&format!("/api/v1/pathways/{id}")).await.json();
+        for stage in document["stages"].as_array().expect("stages") {
+            let path = format!("/pathways/{id}/stages/{}", stage["key"].as_str().expect("a key"));
+            let mut form = Form::find(&page(&app, &path).await, &path);
+            form.set("do", "save");
+            let answer = send(&app, &form).await;
+            assert_eq!(answer.status, 303, "{path}: {}", answer.text());
+            assert_eq!(answer.header("location"), path, "no revision was made");
+            cards += 1;
+        }
+    }
+    assert!(cards > 20, "{cards}");
+}

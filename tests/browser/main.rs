@@ -1,0 +1,265 @@
+//! The pages in a real browser: nothing overflows, the keyboard reaches everything, script is not needed, the rows of the
+//! ladder sit on its rungs, and pages print.
+#![allow(
+    clippy::unwrap_used,
+    clippy::expect_used,
+    clippy::panic,
+    reason = "a test fails by panicking"
+)]
+
+mod driver;
+
+use driver::{Browser, Driver, Setup};
+use serde_json::{Value, json};
+use std::net::SocketAddr;
+use wheelwort::app::App;
+use wheelwort::clock::Clock;
+use wheelwort::core::documents::Pathway;
+use wheelwort::web::{Shell, patience::Patient, router, serve};
+use wheelwort::{demo, library, pathways};
+
+/// The service with its demonstration data, on a free port; the pathway that is looked at.
+struct Site {
+    address: SocketAddr,
+    one: String,
+    compare: String,
+    _folder: tempfile::TempDir,
+}
+
+impl Site {
+    async fn open() -> Site {
+        let folder = tempfile::tempdir().expect("a folder");
+        let app = App::open(
+            &folder.path().join("wheelwort.db"),
+            Clock::system(),
+            library::book(),
+        )
+        .await
+        .expect("opens");
+        demo::load(&app).await.expect("the demonstration");
+        let sample = include_bytes!("../../src/pathways/pages/samples/wheat.json");
+        let wheat = Pathway::from_bytes(sample).expect("a pathway");
+        let one = pathways::create(&app, wheat.clone(), None)
+            .await
+            .expect("stored")
+            .id;
+        let other = Pathway {
+            name: "Second".to_owned(),
+            ..wheat
+        };
+        let two = pathways::create(&app, other, None).await.expect("stored").id;
+        let listener = tokio::net::TcpListener::bind("127.0.0.1:0")
+            .await
+            .expect("a port");
+        let address = listener.local_addr().expect("an address");
+        let patient = Patient::new(listener, 64, std::time::Duration::from_secs(30));
+        tokio::spawn(serve(
+            patient,
+            router(app, Shell::default()),
+            std::future::pending(),
+        ));
+        Site {
+            address,
+            one: format!("/pathways/{one}"),
+            compare: format!("/compare?ids={one},{two}"),
+            _folder: folder,
+        }
+    }
+
+    async fn goto(&self, browser: &Browser<'_>, path: &str) {
+        browser.goto(&format!("http://{}{path}", self.address)).await;
+    }
+
+    fn pages(&self) -> Vec<String> {
+        vec![
+            "/".to_owned(),
+            "/pathways/new".to_owned(),
+            self.one.clone(),
+            format!("{}?carbon=in-line", self.one),
+            format!("{}/workings?open=all", self.one),
+            format!("{}/stages/grains", self.one),
+            format!("{}/stages/haul-in", self.one),
+            format!("{}/document", self.one),
+            format!("{}/revisions/1", self.one),
+            self.compare.clone(),
+            "/factors?q=nitrate".to_owned(),
+            "/factors/eu-2022-996/fert_n_an".to_owned(),
+            "/materials/wheat".to_owned(),
+            "/rule-sets/eu-2018-2001".to_owned(),
+            "/api".to_owned(),
+            "/nowhere".to_owned(),
+        ]
+    }
+}
+
+const SETUP: Setup = Setup {
+    width: 1280,
+    dark: false,
+    script: true,
+};
+
+/// What sticks out of the page sideways: nothing may, except inside boxes that scroll.
+const OVERFLOW: &str = "
+    const wide = document.documentElement.clientWidth;
+    const out = [...document.querySelectorAll('body *')].filter(e => {
+        const r = e.getBoundingClientRect();
+        return r.width > 0 && r.right > wide + 1 && !e.closest('.box, .vh, svg, .skip') && getComputedStyle(e).position !== 'absolute';
+    }).map(e => e.tagName + '.' + e.className + ' ' + Math.round(e.getBoundingClientRect().right));
+    return { scroll: document.documentElement.scrollWidth - wide, out: out.slice(0, 5),
+             ground: getComputedStyle(document.body).backgroundColor };";
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn nothing_overflows_in_light_and_dark() {
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    let mut grounds = Vec::new();
+    for dark in [false, true] {
+        for width in [360, 768, 1280] {
+            let browser = driver.open(Setup { width, dark, ..SETUP }).await;
+            for path in site.pages() {
+                site.goto(&browser, &path).await;
+                let found = browser.ask(OVERFLOW).await;
+                assert!(found["scroll"].as_i64() <= Some(0), "{path} at {width}: {found}");
+                assert_eq!(found["out"], json!([]), "{path} at {width}");
+                grounds.push((dark, found["ground"].clone()));
+            }
+            browser.close().await;
+        }
+    }
+    let light = &grounds[0].1;
+    assert!(
+        grounds.iter().all(|(dark, ground)| *dark != (ground == light)),
+        "dark is dark, light is light"
+    );
+}
+
+/// The focus, by name of the field or text of the link or button.
+const FOCUS: &str = "const e = document.activeElement; return [e.name || '', e.value || '', e.textContent.trim(), getComputedStyle(e).outlineStyle];";
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn a_figure_is_edited_and_saved_by_keyboard_alone() {
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    let browser = driver.open(SETUP).await;
+    site.goto(&browser, &site.one).await;
+    let before = browser.text(".verdict").await;
+    site.goto(&browser, &format!("{}/stages/grains", site.one)).await;
+    tab_to(&browser, |focus| focus[0] == "/inputs/0/amount").await;
+    // Select all, then type over it; Enter saves, whatever field it is pressed in.
+    browser.ask("document.activeElement.select()").await;
+    browser.keys("250\u{e007}").await;
+    let notice = browser.text(".done").await;
+    assert!(
+        notice.contains("Saved as revision 2.") && notice.contains("higher than revision 1"),
+        "{notice}"
+    );
+    site.goto(&browser, &site.one).await;
+    assert_ne!(browser.text(".verdict").await, before);
+    browser.close().await;
+}
+
+async fn tab_to(browser: &Browser<'_>, there: impl Fn(&Value) -> bool) {
+    for _ in 0..120 {
+        browser.keys("\u{e004}").await;
+        let focus = browser.ask(FOCUS).await;
+        assert_ne!(focus[3], "none", "the focus is seen: {focus}");
+        if there(&focus) {
+            return;
+        }
+    }
+    panic!("the keyboard does not get there");
+}
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn a_factor_is_looked_up_with_script_off() {
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    let browser = driver
+        .open(Setup {
+            script: false,
+            ..SETUP
+        })
+        .await;
+    site.goto(&browser, &format!("{}/stages/grains", site.one)).await;
+    browser.click("#f-inputs-1-factor").await;
+    browser.ask("document.activeElement.select()").await;
+    browser.keys("sweden").await;
+    browser.click("button[value='search:/inputs/1/factor']").await;
+    browser.click("#f-inputs-1-factor-found button").await;
+    let chosen =
+        "return document.querySelector('#f-inputs-1-factor').value.startsWith('eu-2022-996/elec_sweden')";
+    browser.until(chosen).await;
+    browser.click("button.go").await;
+    let notice = browser.text(".done").await;
+    assert!(
+        notice.contains("lower than revision 1") && notice.contains("Drying the grains"),
+        "{notice}"
+    );
+    browser.close().await;
+}
+
+/// For each row of the table its middle, and for each rung of the picture its middle.
+const RUNGS: &str = "
+    const middle = e => { const r = e.getBoundingClientRect(); return r.top + r.height / 2; };
+    const rows = [...document.querySelectorAll('.ladder-pair tbody tr')];
+    const svg = document.querySelector('.only-wide svg');
+    const lines = svg.querySelector('path.rung').getAttribute('d').match(/M[\\d.]+ [\\d.]+/g).map(m => +m.split(' ')[1]);
+    const box = svg.getBoundingClientRect(), scale = box.height / svg.viewBox.baseVal.height;
+    const ys = [...new Set(lines)].sort((a, b) => a - b).map(y => box.top + y * scale);
+    const mids = ys.slice(1).map((y, i) => (y + ys[i]) / 2);
+    return { rows: rows.map(middle), rungs: mids };";
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn table_rows_sit_on_the_rungs() {
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    for width in [1280, 1440, 1600] {
+        let browser = driver.open(Setup { width, ..SETUP }).await;
+        site.goto(&browser, &site.one).await;
+        let found = browser.ask(RUNGS).await;
+        let list = |name: &str| -> Vec<f64> {
+            found[name]
+                .as_array()
+                .expect("a list")
+                .iter()
+                .filter_map(Value::as_f64)
+                .collect()
+        };
+        let (rows, rungs) = (list("rows"), list("rungs"));
+        assert_eq!(rows.len(), rungs.len(), "{found}");
+        for (row, rung) in rows.iter().zip(&rungs) {
+            assert!(
+                (row - rung).abs() <= 1.0,
+                "at {width}: row {row}, rung {rung}: {found}"
+            );
+        }
+        browser.close().await;
+    }
+}
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn pages_print() {
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    let browser = driver.open(SETUP).await;
+    for path in [
+        site.one.clone(),
+        format!("{}/workings", site.one),
+        site.compare.clone(),
+    ] {
+        site.goto(&browser, &path).await;
+        let pdf = browser.print().await;
+        // "%PDF-" in base64; an empty page is far smaller.
+        assert!(
+            pdf.starts_with("JVBERi0") && pdf.len() > 20_000,
+            "{path}: {} characters",
+            pdf.len()
+        );
+        browser
+            .devtools("Emulation.setEmulatedMedia", json!({ "media": "print" }))
+            .await;
+        let shown = browser
+            .ask("return getComputedStyle(document.querySelector('.mast nav')).display")
+            .await;
+        assert_eq!(shown, "none", "{path}: the navigation stays off paper");
+        browser
+            .devtools("Emulation.setEmulatedMedia", json!({ "media": "" }))
+            .await;
+    }
+    browser.close().await;
+}
