@@ -35,6 +35,12 @@ impl Resolved<'_> {
     pub fn lhv_dry(&self, material: &str) -> Option<f64> {
         self.materials.lhv_dry(material).map(|(lhv, _)| lhv)
     }
+
+    /// Energy of the ethanol that one recipe of a stage gives, MJ; none where its output is no ethanol.
+    pub fn fuel_mj(&self, stage: usize) -> Option<f64> {
+        let flow = &self.stages.get(stage)?.products.first()?.flow;
+        Some(self.rules.ethanol_mj(flow.pure_kg?, flow.strength.unwrap_or(1.0)))
+    }
 }
 
 /// A stage of the plan.
