@@ -39,7 +39,6 @@ pub fn resolve<'p>(
     let flows = measure_all(pathway, rules, &materials, &graph, &mut problems, &mut findings);
     let defaults = defaults::find(pathway, rules, book, &mut problems);
     let mut stages = Vec::with_capacity(pathway.stages.len());
-    let mut methods = Vec::with_capacity(pathway.stages.len());
     let fuel = graph.last.and_then(|last| flows.get(last)?.output.as_ref());
     let ground = Ground {
         rules,
@@ -62,7 +61,6 @@ pub fn resolve<'p>(
                 &mut share_steps,
             ),
         };
-        methods.push(shared.method);
         let neighbours = neighbours(document);
         let received: Vec<Measured> = flows[j].intakes.iter().flatten().cloned().collect();
         let setting = Setting {
@@ -93,10 +91,11 @@ pub fn resolve<'p>(
             intakes,
             inputs,
             share_steps,
+            allocation: shared.method,
             measure_unit: shared.unit,
         });
     }
-    substitution::not_taken(&pathway.stages, &methods, &graph, &mut problems);
+    substitution::not_taken(&stages, &graph, &mut problems);
     if let (Some(last), Some(strength)) = (graph.last, ground.wheel_strength)
         && rules.ethanol_mj_per_kg(strength) <= 0.0
     {

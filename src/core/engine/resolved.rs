@@ -4,6 +4,7 @@ use super::materials::Materials;
 use crate::core::documents::amount::Origin;
 use crate::core::documents::assessment::{Finding, Step};
 use crate::core::documents::pathway::{Pathway, ValueKind};
+use crate::core::domain::rule_set::AllocationMethod;
 use crate::core::domain::{GasVector, GwpSet, RuleSet, StageKind, Term};
 use crate::core::models::PerFuel;
 use crate::core::models::flow::Measured;
@@ -55,6 +56,8 @@ pub struct Stage<'p> {
     pub inputs: Vec<Input>,
     /// Steps that lead to the shares.
     pub share_steps: Vec<Step>,
+    /// How it shares.
+    pub allocation: Option<AllocationMethod>,
     /// How the sharing was measured (`MJ`, `MJ of exergy`, ...).
     pub measure_unit: &'static str,
 }

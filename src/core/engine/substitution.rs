@@ -3,7 +3,7 @@
 
 use super::graph::Graph;
 use super::inputs;
-use super::resolved::{Input, Product};
+use super::resolved::{Input, Product, Stage as Resolved};
 use crate::core::documents::assessment::Finding;
 use crate::core::documents::input::Input as InputDocument;
 use crate::core::documents::pathway::{Displaces, Role, Stage};
@@ -109,23 +109,19 @@ fn credit(
 }
 
 /// A co-product that brings a credit leaves the pathway: a stage that takes it would count it twice.
-pub fn not_taken(
-    stages: &[Stage],
-    methods: &[Option<AllocationMethod>],
-    graph: &Graph,
-    problems: &mut Problems,
-) {
+pub fn not_taken(stages: &[Resolved], graph: &Graph, problems: &mut Problems) {
     let stages_at = Place::ROOT.field("stages");
     for (j, sources) in graph.sources.iter().enumerate() {
         for (k, source) in sources.iter().enumerate() {
             let Some((i, product)) = *source else { continue };
-            let by_credit = methods.get(i) == Some(&Some(AllocationMethod::Substitution));
+            let Some(stage) = stages.get(i) else { continue };
             let Some(taken) = product
                 .checked_sub(1)
-                .and_then(|k| stages.get(i)?.co_products.get(k))
+                .and_then(|k| stage.document.co_products.get(k))
             else {
                 continue;
             };
+            let by_credit = stage.allocation == Some(AllocationMethod::Substitution);
             if by_credit && taken.displaces.is_some() {
                 let at = stages_at.item(j);
                 let at = at.field("intakes");

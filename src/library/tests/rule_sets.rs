@@ -4,7 +4,7 @@ use crate::core::documents::rule_set::{self, Document};
 use crate::core::documents::{Problems, canonical};
 use crate::core::domain::rule_set::{AllocationMethod, BiogenicCo2, EthanolWater, Standing};
 use crate::core::domain::{RuleSet, Status, Term};
-use crate::library::{book, figures_from_memory};
+use crate::library::{book, figures_from_memory, limits_elsewhere};
 use jiff::civil::{Date, date};
 
 fn set(id: &str) -> &'static RuleSet {
@@ -153,4 +153,37 @@ fn gaps_between_thresholds_are_found() {
     thresholds.remove(1);
     let found = rule_set::gap(&thresholds).expect("a gap");
     assert_eq!(found, (Date::MIN, date(2018, 1, 1)));
+}
+
+/// 42 USC 7545(o); SOR/2022-140 s.1, s.5, Schedules 1 and 2.
+#[test]
+fn limits_elsewhere_are_shown_with_the_reason() {
+    let rows = limits_elsewhere();
+    let savings: Vec<_> = rows
+        .iter()
+        .filter(|row| row.jurisdiction == "US")
+        .map(|row| (row.id.as_str(), row.min_saving_percent, row.baseline_g_per_mj))
+        .collect();
+    let wanted = [
+        ("us-rfs-20", Some(20.0), None),
+        ("us-rfs-gf", None, None),
+        ("us-rfs-50", Some(50.0), None),
+        ("us-rfs-60", Some(60.0), None),
+    ];
+    assert_eq!(savings, wanted);
+    let references: Vec<_> = rows
+        .iter()
+        .filter(|row| row.jurisdiction == "CA")
+        .filter_map(|row| row.reference_g_per_mj)
+        .collect();
+    assert_eq!(references, [89.2, 87.9, 86.6, 85.3, 84.0, 82.7, 81.4, 80.1]);
+    let days = rows.iter().filter_map(|row| row.applies_from);
+    assert_eq!(days.max(), Some(date(2030, 1, 1)));
+    for row in rows {
+        assert_eq!(row.citation.status, Status::Read, "{}", row.id);
+        assert!(row.why_no_rule_set.len() > 40, "{}", row.id);
+        let canadian = row.jurisdiction == "CA";
+        assert_eq!(row.heating_value.as_deref(), canadian.then_some("higher"));
+        assert_eq!(row.at_most_percent_of_reference, canadian.then_some(90.0));
+    }
 }

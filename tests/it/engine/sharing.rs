@@ -110,6 +110,26 @@ fn a_credit_stays_with_the_stage_through_the_chain() {
     );
 }
 
+#[test]
+fn drying_after_a_credit_burdens_the_fuel_and_is_no_mistake() {
+    let mut document = works("substitution");
+    document["stages"][1]["intakes"][0]["from"] = json!("dryer");
+    document["stages"].as_array_mut().unwrap().push(json!(
+        { "key": "dryer", "kind": "co_product_handling", "inputs": [ { "key": "heat", "gases": { "co2_fossil": 100 } } ],
+          "output": { "material": "ethanol", "amount": 1, "unit": "t", "strength_percent_mass": 100 },
+          "intakes": [ { "from": "works", "amount": 1, "unit": "t", "strength_percent_mass": 100 } ] }));
+    let assessment = good(&document);
+    near(assessment.net.g_co2e_per_mj, 7e5 / (1000.0 * LHV));
+    assert!(!assessment.findings.iter().any(|finding| finding.id == "B-05"));
+    document["stages"][0]["allocation"] = json!("mass");
+    assert!(
+        good(&document)
+            .findings
+            .iter()
+            .any(|finding| finding.id == "B-05")
+    );
+}
+
 type Spoil = fn(&mut Value);
 
 #[rstest]
@@ -128,7 +148,7 @@ type Spoil = fn(&mut Value);
 #[case::price_per_volume(|d: &mut Value| { d["stages"][0]["allocation"] = json!("economic"); d["stages"][0]["co_products"][0]["price"]["unit"] = json!("EUR/m3") }, "/stages/0/co_products/0/price/unit")]
 #[case::mass_of_a_volume(|d: &mut Value| { d["stages"][0]["allocation"] = json!("mass"); let grains = &mut d["stages"][0]["co_products"][0]; grains["unit"] = json!("m3"); grains.as_object_mut().unwrap().remove("moisture_percent"); }, "/stages/0/co_products/0/unit")]
 #[case::taken_and_credited(|d: &mut Value| { d["stages"].as_array_mut().unwrap().push(json!({ "key": "dryer", "kind": "co_product_handling",
-    "output": { "material": "ddgs_wheat", "amount": 1, "unit": "t" }, "intakes": [ { "from": "works", "product": "grains", "amount": 1, "unit": "t" } ] })) }, "/stages/2/intakes/0/product")]
+    "output": { "material": "ddgs_wheat", "amount": 1, "unit": "t" }, "intakes": [ { "from": "works", "product": "grains", "amount": 1, "unit": "t" } ] })); }, "/stages/2/intakes/0/product")]
 fn refused(#[case] spoil: Spoil, #[case] pointer: &str) {
     let mut document = works("substitution");
     spoil(&mut document);

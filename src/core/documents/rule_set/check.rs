@@ -285,8 +285,11 @@ fn thresholds(thresholds: &[Threshold], problems: &mut Problems) {
     }
 }
 
-/// True if two spans of days have a day in common; an absent end is open.
-fn meet(a: (Option<Date>, Option<Date>), b: (Option<Date>, Option<Date>)) -> bool {
+/// First and last day; an absent end is open.
+type Span = (Option<Date>, Option<Date>);
+
+/// True if two spans of days have a day in common.
+fn meet(a: Span, b: Span) -> bool {
     let begins_in_time = |from: Option<Date>, to: Option<Date>| match (from, to) {
         (Some(from), Some(to)) => from <= to,
         _ => true,
@@ -300,7 +303,7 @@ pub fn gap(thresholds: &[Threshold]) -> Option<(Date, Date)> {
     if thresholds.is_empty() {
         return None;
     }
-    let first_days = |spans: &dyn Fn(&Threshold) -> (Option<Date>, Option<Date>)| {
+    let first_days = |spans: &dyn Fn(&Threshold) -> Span| {
         let mut days = vec![Date::MIN];
         for threshold in thresholds {
             let (from, to) = spans(threshold);
