@@ -119,6 +119,12 @@ pub(super) fn fill_2009(reading: &mut Reading, edition: &mut Edition) {
             feedstock_materials: materials.iter().map(|id| (*id).to_owned()).collect(),
             description: description.to_owned(),
             process_fuel: fuel.to_owned(),
+            process_heat: match fuel {
+                fuel if fuel.ends_with("boiler") => Some(ProcessHeat::Boiler),
+                fuel if fuel.ends_with("CHP") => Some(ProcessHeat::Chp),
+                _ => None,
+            },
+            stillage_digested: None,
             default: values("default"),
             typical: values("typical"),
             citation: reading.citation(&row, &format!("{}/{id}", edition.id)),

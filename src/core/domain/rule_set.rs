@@ -53,27 +53,27 @@ impl AllocationMethod {
     }
 }
 
-/// Whether a rule set may be relied on.
+/// Whether a rule set may be relied on, in the order in which lists offer them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Serialize, Deserialize, ToSchema)]
 #[serde(rename_all = "snake_case")]
 pub enum Standing {
     /// Published and in force.
     InForce,
-    /// Published and repealed: for old statements only.
-    Repealed,
-    /// Published, but what it fixes was read in part only: for drafts.
-    Unconfirmed,
     /// Drawn up for a purpose of one's own: it proves compliance with nothing.
     Own,
+    /// Published, but what it fixes was read in part only: for drafts.
+    Unconfirmed,
+    /// Published and repealed: for old statements only.
+    Repealed,
 }
 
 impl Standing {
     /// Every standing.
     pub const ALL: [Standing; 4] = [
         Standing::InForce,
-        Standing::Repealed,
-        Standing::Unconfirmed,
         Standing::Own,
+        Standing::Unconfirmed,
+        Standing::Repealed,
     ];
 
     /// The name used in documents.
@@ -83,6 +83,16 @@ impl Standing {
             Standing::Repealed => "repealed",
             Standing::Unconfirmed => "unconfirmed",
             Standing::Own => "own",
+        }
+    }
+
+    /// Words for a page.
+    pub fn words(self) -> &'static str {
+        match self {
+            Standing::InForce => "in force",
+            Standing::Repealed => "repealed: for old statements only",
+            Standing::Unconfirmed => "read in part only: for drafts",
+            Standing::Own => "drawn up for a purpose of one's own: proves no compliance",
         }
     }
 }
@@ -108,6 +118,14 @@ impl EthanolWater {
             EthanolWater::Evaporated => "evaporated",
         }
     }
+
+    /// Words for a page.
+    pub fn words(self) -> &'static str {
+        match self {
+            EthanolWater::Ignored => "counts for nothing: energy is that of the pure ethanol",
+            EthanolWater::Evaporated => "takes its heat of evaporation off the energy of the fuel",
+        }
+    }
 }
 
 /// Where the crop's own CO2 stands in the presentation that the rule set asks for. The net is the same in both.
@@ -130,6 +148,14 @@ impl BiogenicCo2 {
         match self {
             BiogenicCo2::Apart => "apart",
             BiogenicCo2::InLine => "in_line",
+        }
+    }
+
+    /// Words for a page.
+    pub fn words(self) -> &'static str {
+        match self {
+            BiogenicCo2::Apart => "beside the account",
+            BiogenicCo2::InLine => "in the account: uptake negative, releases positive",
         }
     }
 }

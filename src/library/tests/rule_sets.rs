@@ -18,6 +18,12 @@ fn there_are_four() {
         ids,
         ["eu-2009-28", "eu-2018-2001", "inventory-ar6", "uk-si-2007-3072"]
     );
+    let offered = book().offered_rule_sets();
+    let offered: Vec<&str> = offered.into_iter().map(|set| set.id.as_str()).collect();
+    assert_eq!(
+        offered,
+        ["eu-2018-2001", "inventory-ar6", "uk-si-2007-3072", "eu-2009-28"]
+    );
 }
 
 #[test]
