@@ -22,6 +22,7 @@ pub(super) fn read(reading: &mut Reading) -> BTreeMap<String, Edition> {
     for about in [
         include_str!("editions/eu-2022-996/edition.toml"),
         include_str!("editions/eu-2018-2001/edition.toml"),
+        include_str!("editions/eu-2009-28/edition.toml"),
         include_str!("editions/ipcc-2006/edition.toml"),
         include_str!("editions/ipcc-2019/edition.toml"),
     ] {
@@ -33,6 +34,7 @@ pub(super) fn read(reading: &mut Reading) -> BTreeMap<String, Edition> {
                 super::eu_factors::fill(reading, &mut edition);
                 super::eu_electricity::fill(reading, &mut edition);
             }
+            "eu-2009-28" => super::eu_defaults::fill_2009(reading, &mut edition),
             "eu-2018-2001" => super::eu_defaults::fill(reading, &mut edition),
             "ipcc-2006" => super::ipcc_fuels::fill(reading, &mut edition),
             // Soil tables only, kept beside the editions.

@@ -1,4 +1,5 @@
-//! Default and typical values of ethanol pathways, Directive (EU) 2018/2001, Annex V Parts A, B, D and E.
+//! Default and typical values of ethanol pathways: Directive (EU) 2018/2001 and the repealed Directive 2009/28/EC, each in
+//! its Annex V Parts A, B, D and E.
 
 use super::reading::{Reading, Row};
 use crate::core::domain::factor::TermValues;
@@ -73,14 +74,73 @@ pub(super) fn fill(reading: &mut Reading, edition: &mut Edition) {
     }
 }
 
+/// Feedstocks of the 2009 print, by the beginning of the description, and the built-in materials that may use their rows.
+/// Wood has none: nothing says which.
+const FEEDSTOCKS_2009: [(&str, &[&str]); 7] = [
+    ("Sugar beet", &["sugar_beet"]),
+    ("Wheat grain", &["wheat"]),
+    ("EU-grown maize grain", &["maize_grain_only"]),
+    ("Sugar cane", &["sugar_cane"]),
+    ("Wheat straw", &["wheat_straw"]),
+    ("Waste wood", &[]),
+    ("Farmed wood", &[]),
+];
+
+/// Reads the 11 pathways of the repealed Directive. It prints neither soil N2O nor the final fuel apart; processing is net of
+/// the credit for surplus power (e_ee).
+pub(super) fn fill_2009(reading: &mut Reading, edition: &mut Edition) {
+    let text = include_str!("editions/eu-2009-28/default_values_ethanol.csv");
+    let columns = ["pathway_id", "description", "total_default", "source", "status"];
+    for row in reading.rows("eu-2009-28/default_values_ethanol.csv", text, &columns) {
+        let (id, description) = (row.text("pathway_id"), row.text("description"));
+        let feedstock = FEEDSTOCKS_2009
+            .iter()
+            .find(|(printed, _)| description.starts_with(printed));
+        let Some((feedstock, materials)) = feedstock else {
+            reading.problem(&row.place(), format!("no feedstock belongs to \"{description}\""));
+            continue;
+        };
+        let fuel = description.split_once(", ").map_or("", |(_, fuel)| fuel);
+        let mut values = |kind: &str| {
+            let mut need = |column: &str| reading.need(&row, &format!("{column}_{kind}"));
+            TermValues {
+                e_ec: need("eec"),
+                e_ec_soil_n2o: None,
+                e_p: need("ep_less_eee"),
+                e_td: need("etd"),
+                e_td_final_fuel: None,
+                total: need("total"),
+                saving_percent: reading.need(&row, &format!("saving_{kind}_pct")),
+            }
+        };
+        let pathway = PathwayDefault {
+            id: format!("{}/{id}", edition.id),
+            feedstock: (*feedstock).to_owned(),
+            feedstock_materials: materials.iter().map(|id| (*id).to_owned()).collect(),
+            description: description.to_owned(),
+            process_fuel: fuel.to_owned(),
+            process_heat: match fuel {
+                fuel if fuel.ends_with("boiler") => Some(ProcessHeat::Boiler),
+                fuel if fuel.ends_with("CHP") => Some(ProcessHeat::Chp),
+                _ => None,
+            },
+            stillage_digested: None,
+            default: values("default"),
+            typical: values("typical"),
+            citation: reading.citation(&row, &format!("{}/{id}", edition.id)),
+        };
+        edition.pathways.insert(id.to_owned(), pathway);
+    }
+}
+
 fn values(reading: &mut Reading, row: &Row, kind: &str) -> TermValues {
     let mut need = |column: &str| reading.need(row, &format!("{column}_{kind}"));
     TermValues {
         e_ec: need("eec"),
-        e_ec_soil_n2o: need("eec_soil_n2o"),
+        e_ec_soil_n2o: Some(need("eec_soil_n2o")),
         e_p: need("ep"),
         e_td: need("etd"),
-        e_td_final_fuel: need("etd_final_fuel"),
+        e_td_final_fuel: Some(need("etd_final_fuel")),
         total: need("total"),
         saving_percent: reading.need(row, &format!("saving_{kind}_pct")),
     }

@@ -3,6 +3,7 @@
 
 mod checks;
 mod editions;
+mod elsewhere;
 mod eu_defaults;
 mod eu_electricity;
 mod eu_factors;
@@ -17,12 +18,14 @@ mod soils;
 mod tests;
 
 use crate::core::domain::Book;
+pub use elsewhere::Elsewhere;
 use reading::Reading;
 use std::sync::LazyLock;
 
 /// The published data and the list of what is from memory.
 struct Loaded {
     book: Book,
+    elsewhere: Vec<Elsewhere>,
     memory: Vec<String>,
 }
 
@@ -35,6 +38,11 @@ static LOADED: LazyLock<Loaded> = LazyLock::new(|| match read() {
 /// The published data. The first call reads and checks them.
 pub fn book() -> &'static Book {
     &LOADED.book
+}
+
+/// Limits of other jurisdictions that were read and that no rule set here follows, with the reason.
+pub fn limits_elsewhere() -> &'static [Elsewhere] {
+    &LOADED.elsewhere
 }
 
 /// Every figure that nobody has read at its source, with that source, in alphabetical order. Pages say so too.
@@ -64,6 +72,7 @@ fn read() -> Result<Loaded, Vec<String>> {
         limits: land::limits(&mut reading),
         editions,
     };
+    let elsewhere = elsewhere::read(&mut reading);
     checks::run(&mut reading, &book);
     let Reading { problems, mut memory } = reading;
     if !problems.is_empty() {
@@ -71,5 +80,9 @@ fn read() -> Result<Loaded, Vec<String>> {
     }
     memory.sort();
     memory.dedup();
-    Ok(Loaded { book, memory })
+    Ok(Loaded {
+        book,
+        elsewhere,
+        memory,
+    })
 }

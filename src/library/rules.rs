@@ -1,7 +1,7 @@
 //! Rule sets and sets of gas weights: one TOML file each.
 
 use super::reading::Reading;
-use crate::core::domain::{Citation, Cited, GwpSet, RuleSet};
+use crate::core::domain::{Citation, GwpSet, RuleSet};
 use serde::Deserialize;
 use std::collections::BTreeMap;
 
@@ -23,6 +23,7 @@ struct Weights {
 pub(super) fn gwp_sets(reading: &mut Reading) -> BTreeMap<String, GwpSet> {
     let mut sets = BTreeMap::new();
     for text in [
+        include_str!("gwp/eu-2009-28.toml"),
         include_str!("gwp/eu-2018-2001.toml"),
         include_str!("gwp/ar4.toml"),
         include_str!("gwp/ar5.toml"),
@@ -70,7 +71,12 @@ pub(super) fn gwp_sets(reading: &mut Reading) -> BTreeMap<String, GwpSet> {
 /// Every rule set.
 pub(super) fn rule_sets(reading: &mut Reading) -> BTreeMap<String, RuleSet> {
     let mut sets = BTreeMap::new();
-    for text in [include_str!("rule_sets/eu-2018-2001.toml")] {
+    for text in [
+        include_str!("rule_sets/eu-2009-28.toml"),
+        include_str!("rule_sets/eu-2018-2001.toml"),
+        include_str!("rule_sets/inventory-ar6.toml"),
+        include_str!("rule_sets/uk-si-2007-3072.toml"),
+    ] {
         let set: RuleSet = match toml::from_str(text) {
             Ok(set) => set,
             Err(error) => {
@@ -89,9 +95,6 @@ pub(super) fn rule_sets(reading: &mut Reading) -> BTreeMap<String, RuleSet> {
 fn citations(reading: &mut Reading, set: &RuleSet) {
     let place = format!("rule set {}", set.id);
     reading.published(&place, &place, &set.citation());
-    if set.residues_source.trim().is_empty() {
-        reading.problem(&place, "the residue list has no source");
-    }
     for threshold in &set.thresholds {
         let citation = Citation {
             source: threshold.source.clone(),
@@ -103,7 +106,8 @@ fn citations(reading: &mut Reading, set: &RuleSet) {
             &citation,
         );
     }
-    for (name, cited) in figures(set) {
+    for (name, cited) in set.figures() {
+        let Some(cited) = cited else { continue };
         let citation = Citation {
             source: cited.source.clone(),
             status: cited.status,
@@ -113,28 +117,5 @@ fn citations(reading: &mut Reading, set: &RuleSet) {
             &format!("{place} {name} = {} {}", cited.value, cited.unit),
             &citation,
         );
-        reading.unit(
-            &format!("{place} {name}"),
-            cited.unit.trim_start_matches("g CO2e/").trim_start_matches("kg/"),
-        );
-        if !(cited.value.is_finite() && cited.value > 0.0) {
-            reading.problem(&place, format!("{name} is not above zero"));
-        }
     }
-}
-
-/// The figures of a rule set by field name.
-pub(super) fn figures(set: &RuleSet) -> [(&'static str, &Cited); 10] {
-    [
-        ("comparator", &set.comparator),
-        ("petrol", &set.petrol),
-        ("ethanol_lhv", &set.ethanol_lhv),
-        ("consignment_lhv_mass", &set.consignment_lhv_mass),
-        ("consignment_lhv_volume", &set.consignment_lhv_volume),
-        ("co2_per_carbon", &set.co2_per_carbon),
-        ("water_evaporation", &set.water_evaporation),
-        ("ambient", &set.ambient),
-        ("building_heat_carnot", &set.building_heat_carnot),
-        ("land_use_years", &set.land_use_years),
-    ]
 }

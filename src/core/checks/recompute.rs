@@ -255,20 +255,19 @@ fn bought(subject: &Subject, findings: &mut Vec<Finding>) {
             continue;
         };
         let flow = &stage.products[0].flow;
-        let by_mass = flow.pure_kg.map(|pure| pure * rules.consignment_lhv_mass.value);
-        let by_volume = (flow.dimension == Dimension::VOLUME)
-            .then(|| flow.base * 1000.0 * rules.consignment_lhv_volume.value);
+        let per_kg = rules.consignment_lhv_mass.as_ref().map(|lhv| lhv.value);
+        let per_litre = rules.consignment_lhv_volume.as_ref().map(|lhv| lhv.value);
+        let by_mass = flow.pure_kg.zip(per_kg).map(|(pure, lhv)| pure * lhv);
+        let by_volume = per_litre
+            .filter(|_| flow.dimension == Dimension::VOLUME)
+            .map(|lhv| flow.base * 1000.0 * lhv);
         let name = stated.proof.as_deref().unwrap_or(&stage.document.key);
         let expected = by_volume.or(by_mass);
         if let (true, Some(expected)) = (covers.dimension == Dimension::ENERGY, expected) {
             findings.extend(consignment_energy(name, covers.value / 1e6, expected, rules));
         }
-        if let (Dimension::MASS, Some(by_volume)) = (covers.dimension, by_volume) {
-            findings.extend(mass_and_volume(
-                name,
-                covers.value * rules.consignment_lhv_mass.value,
-                by_volume,
-            ));
+        if let (Dimension::MASS, Some(by_volume), Some(per_kg)) = (covers.dimension, by_volume, per_kg) {
+            findings.extend(mass_and_volume(name, covers.value * per_kg, by_volume));
         }
     }
 }

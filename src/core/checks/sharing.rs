@@ -3,6 +3,7 @@
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Finding, Severity, StageResult};
 use crate::core::domain::StageKind;
+use crate::core::domain::rule_set::AllocationMethod;
 use crate::core::engine::resolved::Resolved;
 use crate::core::units::rounding::plain;
 use crate::core::units::{Dimension, Quantity};
@@ -79,12 +80,11 @@ pub fn from_measures(stage: &StageResult) -> Vec<Finding> {
         .collect()
 }
 
+/// True if co-products take a part of the burden of a stage: not by substitution, where all of it stays with the output.
 fn splits(resolved: &Resolved, j: usize) -> bool {
-    resolved.stages[j]
-        .products
-        .iter()
-        .skip(1)
-        .any(|product| product.shares_burden)
+    let stage = &resolved.stages[j];
+    let shares = stage.products.iter().skip(1).any(|product| product.shares_burden);
+    shares && stage.allocation != Some(AllocationMethod::Substitution)
 }
 
 /// Stages upstream of `j`, itself left out.

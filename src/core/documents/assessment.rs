@@ -1,6 +1,7 @@
 //! The assessment document (`wheelwort.assessment/1`): a pathway evaluated under a rule set. Every entry of a sum is
 //! a signed contribution; terms and stages both add to the net.
 
+use crate::core::domain::rule_set::BiogenicCo2;
 use crate::core::domain::{GasVector, Term};
 use serde::{Deserialize, Serialize};
 use utoipa::ToSchema;
@@ -256,9 +257,31 @@ pub struct Carbon {
     pub other_biogenic_g_co2_per_mj: f64,
     /// Net with uptake and all biogenic releases in line: equals the net.
     pub net_in_line_g_co2e_per_mj: f64,
+    /// Where the rule set wants the crop's own CO2: beside the account or in line. Both are always given.
+    #[serde(default)]
+    pub presentation: BiogenicCo2,
+    /// The crop's own CO2 in line, from field to wheel: uptake negative, releases positive. They add to zero.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub rows: Vec<BiogenicRow>,
+    /// The net by term with these rows in line: adds to the same net.
+    #[serde(default)]
+    pub terms_in_line_g_co2e_per_mj: Terms,
     /// Which stages give biogenic CO2 back, in order.
     #[serde(default, skip_serializing_if = "Vec::is_empty")]
     pub releases: Vec<Release>,
+}
+
+/// A row of the account with the crop's own CO2 in line.
+#[derive(Clone, Debug, PartialEq, Serialize, Deserialize, ToSchema)]
+pub struct BiogenicRow {
+    /// Key of the stage; empty where the pathway has no such stage or several share the row.
+    pub stage: String,
+    /// The term it feeds.
+    pub term: Term,
+    /// What it is.
+    pub what: String,
+    /// Signed contribution, g CO2 per MJ of fuel.
+    pub g_co2_per_mj: f64,
 }
 
 /// Biogenic CO2 that a stage gives back.

@@ -61,6 +61,13 @@ impl Book {
         self.limits.get(rule_set)?.get(symbol)
     }
 
+    /// The rule sets in the order in which lists offer them: those in force first, the repealed ones last.
+    pub fn offered_rule_sets(&self) -> Vec<&RuleSet> {
+        let mut sets: Vec<&RuleSet> = self.rule_sets.values().collect();
+        sets.sort_by_key(|set| set.standing);
+        sets
+    }
+
     /// A published pathway's default values by full id, `edition/row`.
     pub fn pathway_default(&self, id: &str) -> Option<&PathwayDefault> {
         let (edition, row) = id.split_once('/')?;

@@ -137,14 +137,14 @@ pub struct PathwayDefault {
 pub struct TermValues {
     /// Cultivation.
     pub e_ec: f64,
-    /// Of it, soil N2O.
-    pub e_ec_soil_n2o: f64,
+    /// Of it, soil N2O; none where it is not printed apart.
+    pub e_ec_soil_n2o: Option<f64>,
     /// Processing.
     pub e_p: f64,
     /// Transport and distribution.
     pub e_td: f64,
-    /// Of it, the final fuel alone.
-    pub e_td_final_fuel: f64,
+    /// Of it, the final fuel alone; none where it is not printed apart.
+    pub e_td_final_fuel: Option<f64>,
     /// Printed total.
     pub total: f64,
     /// Printed saving, whole %.

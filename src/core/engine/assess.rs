@@ -44,7 +44,8 @@ pub fn assess(resolved: &Resolved, workings: bool) -> Result<Assessed, Problems>
         }
         .into());
     }
-    let (carbon, carbon_basis) = carbon::carbon(resolved, &demand, &resolved.materials, net, &mut findings);
+    let (carbon, carbon_basis) =
+        carbon::carbon(resolved, &demand, &resolved.materials, &sums.terms, &mut findings);
     let reach = saving::reach(resolved);
     let comparator = resolved.rules.comparator.value;
     let saving_percent = saving::saving_percent(net, comparator, &reach);
@@ -298,12 +299,13 @@ fn chain(resolved: &Resolved, demand: &Demand, j: usize) -> Vec<Step> {
         let pure = stage.products[0].flow.pure_kg.unwrap_or(0.0);
         let flow = &stage.document.output.flow;
         let made = flow_words(&stage.products[0].flow, flow.amount, flow.unit.as_deref());
-        let energy = pure * lhv.value;
+        let energy = resolved.fuel_mj(j).unwrap_or(0.0);
+        let strength = stage.products[0].flow.strength.unwrap_or(1.0);
         steps.push(step(
             format!(
-                "one recipe makes {made}: {} kg pure ethanol x {} MJ/kg",
+                "one recipe makes {made}: {} kg pure ethanol x {}",
                 plain(pure),
-                plain(lhv.value)
+                resolved.rules.ethanol_words(strength)
             ),
             energy,
             "MJ",

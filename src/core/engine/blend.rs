@@ -320,7 +320,12 @@ fn heating(request: &BlendRequest, rules: &RuleSet, book: &Book, problems: &mut 
     match request.heating_values {
         EnergyBasis::EmissionArithmetic => emission_arithmetic(rules, book, problems),
         EnergyBasis::ConsignmentEnergy => {
-            let ethanol = &rules.consignment_lhv_volume;
+            let Some(ethanol) = &rules.consignment_lhv_volume else {
+                let detail = format!("{} fixes no heating value for consignments.", rules.id);
+                let remedy = "Use \"emission_arithmetic\" or \"own\".";
+                problems.add(Place::ROOT.field("heating_values"), detail, remedy);
+                return None;
+            };
             let unit = "MJ/L";
             Some(Heating {
                 ethanol: ethanol.value,
@@ -348,7 +353,8 @@ fn heating(request: &BlendRequest, rules: &RuleSet, book: &Book, problems: &mut 
 
 /// MJ/kg x kg/m3 of the rule set's standard factors.
 fn emission_arithmetic(rules: &RuleSet, book: &Book, problems: &mut Problems) -> Option<Heating> {
-    let row = |name: &str| book.factor(&format!("{}/{name}", rules.standard_factors));
+    let edition = rules.standard_factors.as_deref();
+    let row = |name: &str| book.factor(&format!("{}/{name}", edition?));
     let figures = row(ETHANOL_ROW)
         .zip(row(PETROL_ROW))
         .and_then(|(ethanol, petrol)| {

@@ -4,8 +4,8 @@
 use super::demand::Demand;
 use super::materials::{CarbonContent, Materials};
 use super::resolved::{Product, Resolved};
-use crate::core::documents::assessment::{Carbon, Finding, Release, Severity};
-use crate::core::domain::{CarbonClass, StageKind};
+use crate::core::documents::assessment::{BiogenicRow, Carbon, Finding, Release, Severity, Terms};
+use crate::core::domain::{CarbonClass, StageKind, Term};
 use crate::core::models::flow::{ETHANOL, Measured};
 use crate::core::units::rounding::plain;
 
@@ -41,15 +41,19 @@ impl Parcel {
     }
 }
 
-/// Works the balance out. `net` is the net without any biogenic CO2.
+/// Works the balance out. `terms` are those of the net without any biogenic CO2.
 pub fn carbon(
     resolved: &Resolved,
     demand: &Demand,
     materials: &Materials,
-    net: f64,
+    terms: &Terms,
     findings: &mut Vec<Finding>,
 ) -> (Carbon, Basis) {
-    let fuel = 1000.0 * CO2_PER_ETHANOL / resolved.rules.ethanol_lhv.value;
+    let net = terms.sum();
+    let strength = resolved
+        .last
+        .and_then(|last| resolved.stages[last].products.first()?.flow.strength);
+    let fuel = 1000.0 * CO2_PER_ETHANOL / resolved.rules.ethanol_mj_per_kg(strength.unwrap_or(1.0));
     let mut releases = Vec::new();
     let fermentation = fermentation(resolved, demand, &mut releases);
     let (other_all, other_works) = other_inputs(resolved, demand, &mut releases);
@@ -57,6 +61,7 @@ pub fn carbon(
     let (leaving, residues) = products(resolved, demand, materials);
     releases.push(burning(resolved, fuel));
     let uptake = -(fuel + fermentation + other_all);
+    let rows = rows(resolved, uptake, &releases);
     let mut carbon = Carbon {
         fuel_g_co2_per_mj: fuel,
         fermentation_g_co2_per_mj: fermentation,
@@ -64,6 +69,9 @@ pub fn carbon(
         combustion_g_co2_per_mj: fuel,
         other_biogenic_g_co2_per_mj: other_all,
         net_in_line_g_co2e_per_mj: net + uptake + fermentation + fuel + other_all,
+        presentation: resolved.rules.biogenic_co2,
+        terms_in_line_g_co2e_per_mj: in_line(terms, &rows),
+        rows,
         releases,
         ..Carbon::default()
     };
@@ -176,6 +184,46 @@ fn burning(resolved: &Resolved, fuel: f64) -> Release {
         what: "burning the fuel".to_owned(),
         g_co2_per_mj: fuel,
     }
+}
+
+/// The crop's own CO2 as rows of the account: the uptake, then what gives it back.
+fn rows(resolved: &Resolved, uptake: f64, releases: &[Release]) -> Vec<BiogenicRow> {
+    let stage = |key: &str| {
+        resolved
+            .stages
+            .iter()
+            .find(|stage| !key.is_empty() && stage.document.key == key)
+    };
+    let grown: Vec<&str> = resolved
+        .stages
+        .iter()
+        .filter(|stage| matches!(stage.kind(), StageKind::Cultivation | StageKind::Bought))
+        .map(|stage| stage.document.key.as_str())
+        .collect();
+    let mut rows = vec![BiogenicRow {
+        stage: match grown[..] {
+            [one] => one.to_owned(),
+            _ => String::new(),
+        },
+        term: Term::Eec,
+        what: "taken up by the crop".to_owned(),
+        g_co2_per_mj: uptake,
+    }];
+    rows.extend(releases.iter().map(|release| BiogenicRow {
+        stage: release.stage.clone(),
+        term: stage(&release.stage).map_or(Term::Eu, |stage| stage.kind().term()),
+        what: release.what.clone(),
+        g_co2_per_mj: release.g_co2_per_mj,
+    }));
+    rows
+}
+
+/// Terms with the crop's own CO2 in line.
+fn in_line(terms: &Terms, rows: &[BiogenicRow]) -> Terms {
+    rows.iter().fold(*terms, |mut terms, row| {
+        terms.add(row.term, row.g_co2_per_mj);
+        terms
+    })
 }
 
 /// Every intake that crosses from the farm side into the works.

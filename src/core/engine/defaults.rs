@@ -5,10 +5,10 @@ use super::resolved::{DefaultTerm, Resolved};
 use crate::core::documents::pathway::{DefaultKey, Pathway};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
-use crate::core::domain::{Book, StageKind, Term};
+use crate::core::domain::{Book, RuleSet, StageKind, Term};
 
 /// Finds the default values a pathway asks for.
-pub fn find(pathway: &Pathway, book: &Book, problems: &mut Problems) -> Vec<DefaultTerm> {
+pub fn find(pathway: &Pathway, rules: &RuleSet, book: &Book, problems: &mut Problems) -> Vec<DefaultTerm> {
     let root = Place::ROOT;
     let at = root.field("defaults");
     for (whole, part) in [
@@ -34,10 +34,16 @@ pub fn find(pathway: &Pathway, book: &Book, problems: &mut Problems) -> Vec<Defa
     let mut out = Vec::new();
     for (key, row) in &pathway.defaults {
         let place = at.field(key.name());
+        let Some(edition) = &rules.default_values else {
+            let detail = format!("{} takes no published default values.", rules.id);
+            problems.add(place, detail, "Enter the stages, or choose another rule set.");
+            continue;
+        };
         let Some(published) = book.pathway_default(row) else {
             let known = book
                 .editions
-                .values()
+                .get(edition)
+                .into_iter()
                 .flat_map(|edition| edition.pathways.values().map(|pathway| pathway.id.as_str()))
                 .collect::<Vec<_>>();
             let remedy = match nearest(row, known.iter().copied()) {
@@ -47,6 +53,11 @@ pub fn find(pathway: &Pathway, book: &Book, problems: &mut Problems) -> Vec<Defa
             problems.add(place, format!("There is no published pathway \"{row}\"."), remedy);
             continue;
         };
+        if row.split_once('/').is_none_or(|(found, _)| found != edition) {
+            let detail = format!("\"{row}\" is no default value under {}.", rules.id);
+            problems.add(place, detail, format!("Choose a row of {edition}."));
+            continue;
+        }
         if !published.feedstock_materials.contains(&pathway.feedstock) {
             let detail = format!(
                 "\"{row}\" is for {}, not for {}.",
@@ -58,11 +69,16 @@ pub fn find(pathway: &Pathway, book: &Book, problems: &mut Problems) -> Vec<Defa
         }
         let value = published.default;
         let (term, g_per_mj) = match key {
-            DefaultKey::EEc => (Term::Eec, value.e_ec),
+            DefaultKey::EEc => (Term::Eec, Some(value.e_ec)),
             DefaultKey::EEcSoilN2o => (Term::Eec, value.e_ec_soil_n2o),
-            DefaultKey::EP => (Term::Ep, value.e_p),
-            DefaultKey::ETd => (Term::Etd, value.e_td),
+            DefaultKey::EP => (Term::Ep, Some(value.e_p)),
+            DefaultKey::ETd => (Term::Etd, Some(value.e_td)),
             DefaultKey::ETdFinalFuel => (Term::Etd, value.e_td_final_fuel),
+        };
+        let Some(g_per_mj) = g_per_mj else {
+            let detail = format!("\"{row}\" prints no {} apart from its term.", key.name());
+            problems.add(place, detail, "Use the whole term, or own figures.");
+            continue;
         };
         let source = published.citation.source.clone();
         out.push(DefaultTerm {

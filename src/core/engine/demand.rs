@@ -36,9 +36,7 @@ pub fn demand(resolved: &Resolved) -> Demand {
         fuel_mj: vec![0.0; resolved.stages.len()],
     };
     if let Some(last) = resolved.last {
-        let lhv = resolved.rules.ethanol_lhv.value;
-        let pure = resolved.stages[last].products[0].flow.pure_kg.unwrap_or(f64::NAN);
-        let recipes = 1.0 / (pure * lhv);
+        let recipes = 1.0 / resolved.fuel_mj(last).unwrap_or(f64::NAN);
         demand.by_product[last][0] = recipes;
         demand.whole_by_product[last][0] = recipes;
     }

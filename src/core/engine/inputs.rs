@@ -9,7 +9,7 @@ use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
 use crate::core::domain::{Gas, GasVector, StageKind, Term};
 use crate::core::models::factors::{self, HeatingValue, Priced, step};
-use crate::core::models::flow::{Measured, unit_words};
+use crate::core::models::flow::{Measured, no_heat, unit_words};
 use crate::core::models::given::{Given, Record};
 use crate::core::models::{self, Model, Setting};
 use crate::core::units::rounding::plain;
@@ -331,7 +331,7 @@ fn model_term(model: &Model, given: &ModelUse) -> Option<Term> {
     }
 }
 
-fn by_factor(
+pub(super) fn by_factor(
     stage: &Stage,
     document: &InputDocument,
     setting: &Setting,
@@ -468,7 +468,7 @@ pub fn stated(
     }
     let lhv_at = stated_at.field("lhv");
     let lhv = match &stated.lhv {
-        None => setting.rules.ethanol_lhv.value,
+        None => setting.rules.ethanol_mj_per_kg(output.strength.unwrap_or(1.0)),
         Some(own) => match Quantity::read_as(own.value, &own.unit, Dimension::ENERGY.per(Dimension::MASS)) {
             Ok(joules) if joules > 0.0 => joules / 1e6,
             Ok(_) => {
@@ -494,6 +494,16 @@ pub fn stated(
         );
         return Vec::new();
     };
+    if lhv <= 0.0 {
+        let output_at = at.field("output");
+        no_heat(
+            output.strength.unwrap_or(1.0),
+            setting.rules,
+            &output_at,
+            problems,
+        );
+        return Vec::new();
+    }
     let mj = pure * lhv;
     let terms_at = stated_at.field("terms");
     let mut out = Vec::new();

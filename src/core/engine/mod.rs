@@ -15,6 +15,7 @@ pub mod per_km;
 mod resolve;
 pub mod resolved;
 mod saving;
+mod substitution;
 
 pub use assess::{Assessed, assess};
 pub use inventory::{Totals, totals};

@@ -1,18 +1,20 @@
 //! From a document to a plan of numbers: units, factors, models, shares. All problems at once, each with its pointer.
 
-use super::allocation;
+use super::allocation::{self, Ground, Shared};
 use super::defaults;
 use super::graph::{Graph, Source, graph};
 use super::inputs;
 use super::materials::Materials;
 use super::resolved::{Intake, Product, Resolved, Stage};
+use super::substitution;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::pathway::{CoProduct, Pathway, Role, Stage as StageDocument};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
+use crate::core::domain::rule_set::EthanolWater;
 use crate::core::domain::{Book, RuleSet, StageKind};
 use crate::core::models::Setting;
-use crate::core::models::flow::{ETHANOL, Measured, measure};
+use crate::core::models::flow::{ETHANOL, Measured, measure, no_heat};
 use crate::core::units::rounding::plain;
 
 /// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none).
@@ -35,20 +37,25 @@ pub fn resolve<'p>(
     let graph = graph(pathway, &mut problems);
     let mut findings = Vec::new();
     let flows = measure_all(pathway, rules, &materials, &graph, &mut problems, &mut findings);
-    let defaults = defaults::find(pathway, book, &mut problems);
+    let defaults = defaults::find(pathway, rules, book, &mut problems);
     let mut stages = Vec::with_capacity(pathway.stages.len());
+    let fuel = graph.last.and_then(|last| flows.get(last)?.output.as_ref());
+    let ground = Ground {
+        rules,
+        materials: &materials,
+        wheel_strength: fuel.and_then(|fuel| fuel.strength),
+    };
     let stages_at = root.field("stages");
     for (j, document) in pathway.stages.iter().enumerate() {
         let at = stages_at.item(j);
         let mut products = products(document, &flows[j], rules, &mut findings);
         let mut share_steps = Vec::new();
-        let measure_unit = match products.len() {
-            0 => "",
+        let shared = match products.len() {
+            0 => Shared::default(),
             _ => allocation::share(
                 document,
                 &mut products,
-                rules,
-                &materials,
+                &ground,
                 &at,
                 &mut problems,
                 &mut share_steps,
@@ -68,6 +75,15 @@ pub fn resolve<'p>(
         };
         let mut inputs = inputs::inputs(document, &setting, &at, &mut problems, &mut findings);
         bought(document, &flows[j], &setting, &at, &mut problems, &mut inputs);
+        inputs.extend(substitution::credits(
+            document,
+            &products,
+            shared.method,
+            &setting,
+            &at,
+            &mut problems,
+            &mut findings,
+        ));
         let intakes = link(pathway, j, &graph, &flows, &at, &mut problems, &mut findings);
         stages.push(Stage {
             document,
@@ -75,8 +91,16 @@ pub fn resolve<'p>(
             intakes,
             inputs,
             share_steps,
-            measure_unit,
+            allocation: shared.method,
+            measure_unit: shared.unit,
         });
+    }
+    substitution::not_taken(&stages, &graph, &mut problems);
+    if let (Some(last), Some(strength)) = (graph.last, ground.wheel_strength)
+        && rules.ethanol_mj_per_kg(strength) <= 0.0
+    {
+        let at = stages_at.item(last);
+        no_heat(strength, rules, &at.field("output"), &mut problems);
     }
     if !problems.is_empty() {
         return Err(problems);
@@ -173,7 +197,6 @@ fn measure_all(
                 )
             })
             .flatten();
-        strength_missing(output.as_ref(), stage, "output", findings);
         let products_at = at.field("co_products");
         let co_products = stage
             .co_products
@@ -182,16 +205,9 @@ fn measure_all(
             .map(|(k, product)| {
                 let place = products_at.item(k);
                 let known = materials.check(&product.material, &place.field("material"), problems);
-                let flow = known
+                known
                     .then(|| measure(&product.flow, &product.material, rules, &place, problems))
-                    .flatten();
-                strength_missing(
-                    flow.as_ref(),
-                    stage,
-                    &format!("co_products.{}", product.key),
-                    findings,
-                );
-                flow
+                    .flatten()
             })
             .collect();
         flows.push(Flows {
@@ -200,7 +216,13 @@ fn measure_all(
             intakes: Vec::new(),
         });
     }
+    strengths_of_energy(rules, graph, &mut flows, problems);
     for (j, stage) in pathway.stages.iter().enumerate() {
+        strength_missing(flows[j].output.as_ref(), stage, "output", rules, findings);
+        for (product, flow) in stage.co_products.iter().zip(&flows[j].co_products) {
+            let field = format!("co_products.{}", product.key);
+            strength_missing(flow.as_ref(), stage, &field, rules, findings);
+        }
         let intakes_at = stages_at.item(j);
         let intakes_at = intakes_at.field("intakes");
         let mut received = Vec::with_capacity(stage.intakes.len());
@@ -219,18 +241,46 @@ fn measure_all(
                 received.push(burnt(flows[j].output.as_ref(), flows[i].product(product)));
                 continue;
             }
-            let flow = measure(&intake.flow, material, rules, &place, problems);
-            strength_missing(
-                flow.as_ref(),
-                stage,
-                &format!("intakes.{}", intake.from),
-                findings,
-            );
+            let mut flow = measure(&intake.flow, material, rules, &place, problems);
+            if let (Some(flow), Some(source)) = (flow.as_mut(), flows[i].product(product)) {
+                strength_of_energy(flow, source.strength, rules, &place, problems);
+            }
+            let field = format!("intakes.{}", intake.from);
+            strength_missing(flow.as_ref(), stage, &field, rules, findings);
             received.push(flow);
         }
         flows[j].intakes = received;
     }
     flows
+}
+
+/// Where the water of ethanol counts, fuel entered as energy without a strength has that of the fuel it is made from.
+fn strengths_of_energy(rules: &RuleSet, graph: &Graph, flows: &mut [Flows], problems: &mut Problems) {
+    let stages_at = Place::ROOT.field("stages");
+    for &j in &graph.order {
+        let sources = graph.sources[j].iter().flatten();
+        let strength = sources
+            .filter_map(|(i, product)| flows[*i].product(*product))
+            .find_map(|flow| flow.strength);
+        let at = stages_at.item(j);
+        if let Some(output) = flows[j].output.as_mut() {
+            strength_of_energy(output, strength, rules, &at.field("output"), problems);
+        }
+    }
+}
+
+fn strength_of_energy(
+    flow: &mut Measured,
+    strength: Option<f64>,
+    rules: &RuleSet,
+    at: &Place,
+    problems: &mut Problems,
+) {
+    let lacks = flow.is_ethanol() && flow.energy_j().is_some() && !flow.strength_given;
+    if let (true, EthanolWater::Evaporated, Some(strength)) = (lacks, rules.ethanol_water, strength) {
+        flow.take_strength(strength, rules, at, problems);
+        flow.strength_given = true;
+    }
 }
 
 /// What a combustion stage takes when it states the fuel burnt only: the same pure ethanol.
@@ -250,13 +300,14 @@ fn strength_missing(
     flow: Option<&Measured>,
     stage: &StageDocument,
     field: &str,
+    rules: &RuleSet,
     findings: &mut Vec<Finding>,
 ) {
     let Some(flow) = flow.filter(|flow| flow.is_ethanol() && !flow.strength_given) else {
         return;
     };
-    // Fuel given as energy holds the same pure ethanol whatever its strength.
-    if flow.energy_j().is_some() {
+    // Where water does not count, fuel given as energy holds the same pure ethanol whatever its strength.
+    if flow.energy_j().is_some() && rules.ethanol_water == EthanolWater::Ignored {
         return;
     }
     findings.push(Finding {

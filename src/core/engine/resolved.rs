@@ -4,6 +4,7 @@ use super::materials::Materials;
 use crate::core::documents::amount::Origin;
 use crate::core::documents::assessment::{Finding, Step};
 use crate::core::documents::pathway::{Pathway, ValueKind};
+use crate::core::domain::rule_set::AllocationMethod;
 use crate::core::domain::{GasVector, GwpSet, RuleSet, StageKind, Term};
 use crate::core::models::PerFuel;
 use crate::core::models::flow::Measured;
@@ -35,6 +36,12 @@ impl Resolved<'_> {
     pub fn lhv_dry(&self, material: &str) -> Option<f64> {
         self.materials.lhv_dry(material).map(|(lhv, _)| lhv)
     }
+
+    /// Energy of the ethanol that one recipe of a stage gives, MJ; none where its output is no ethanol.
+    pub fn fuel_mj(&self, stage: usize) -> Option<f64> {
+        let flow = &self.stages.get(stage)?.products.first()?.flow;
+        Some(self.rules.ethanol_mj(flow.pure_kg?, flow.strength.unwrap_or(1.0)))
+    }
 }
 
 /// A stage of the plan.
@@ -49,6 +56,8 @@ pub struct Stage<'p> {
     pub inputs: Vec<Input>,
     /// Steps that lead to the shares.
     pub share_steps: Vec<Step>,
+    /// How it shares.
+    pub allocation: Option<AllocationMethod>,
     /// How the sharing was measured (`MJ`, `MJ of exergy`, ...).
     pub measure_unit: &'static str,
 }

@@ -4,6 +4,7 @@
 use super::resolved::Resolved;
 use crate::core::documents::assessment::{Finding, Severity, ThresholdResult};
 use crate::core::documents::pathway::DefaultKey;
+use crate::core::domain::rule_set::Threshold;
 use crate::core::domain::{StageKind, Term};
 use jiff::civil::Date;
 
@@ -73,23 +74,28 @@ pub fn thresholds(
         .into_iter()
         .map(|(day, who)| day.map(|day| (day, who)))
         .collect();
-    let strictest = known.and_then(|days| {
-        days.into_iter()
+    let period = &resolved.pathway.period;
+    match known {
+        Some(days) => days
+            .into_iter()
             .filter_map(|(day, who)| {
-                all.iter()
-                    .find(|threshold| threshold.covers(day))
-                    .map(|t| (t, day, who))
+                let threshold = resolved.rules.threshold(day, period.from, period.to)?;
+                Some((threshold, format!("{who} started {day}{}", fuel_days(threshold))))
             })
             .max_by(|a, b| a.0.percent.total_cmp(&b.0.percent))
-    });
-    match strictest {
-        Some((threshold, day, who)) => vec![ThresholdResult {
-            percent: threshold.percent,
-            because: format!("{who} started {day}"),
-            met: saving >= threshold.percent,
-        }],
+            .map(|(threshold, because)| ThresholdResult {
+                percent: threshold.percent,
+                because,
+                met: saving >= threshold.percent,
+            })
+            .into_iter()
+            .collect(),
         None => {
-            let need = all
+            let asked: Vec<&Threshold> = all
+                .iter()
+                .filter(|threshold| threshold.asked_within(period.from, period.to))
+                .collect();
+            let need = asked
                 .iter()
                 .map(|t| format!("{} %", t.percent))
                 .collect::<Vec<_>>()
@@ -105,13 +111,23 @@ pub fn thresholds(
                 ),
                 remedy: "Enter the day of first production.".to_owned(),
             });
-            let unknown = |t: &crate::core::domain::rule_set::Threshold| ThresholdResult {
+            let unknown = |t: &Threshold| ThresholdResult {
                 percent: t.percent,
                 because: span(t.started_from, t.started_to),
                 met: false,
             };
-            all.iter().map(unknown).collect()
+            asked.into_iter().map(unknown).collect()
         }
+    }
+}
+
+/// The days of fuel that a threshold is asked of, where it is not asked of all.
+fn fuel_days(threshold: &Threshold) -> String {
+    match (threshold.applies_from, threshold.applies_to) {
+        (Some(from), Some(to)) => format!("; fuel of {from} to {to}"),
+        (Some(from), None) => format!("; fuel from {from} on"),
+        (None, Some(to)) => format!("; fuel up to {to}"),
+        (None, None) => String::new(),
     }
 }
 

@@ -156,19 +156,17 @@ fn energy(given: &mut Given) -> Option<f64> {
     if let Some(joules) = output.energy_j() {
         return Some(joules / 1e12);
     }
-    let lhv = &given.setting.rules.ethanol_lhv;
+    let rules = given.setting.rules;
+    let strength = output.strength.unwrap_or(1.0);
     let Some(pure) = output.pure_kg else {
         let detail = "The stage's output has no ethanol whose energy could be burnt.";
         given.problem("vehicle", detail, "Use this model in a stage that gives ethanol.");
         return None;
     };
-    let energy = pure * lhv.value / 1e6;
-    let text = format!(
-        "{} kg of ethanol x {} MJ/kg / 1000000",
-        plain(pure),
-        plain(lhv.value)
-    );
-    given.step(text, energy, "TJ", &lhv.source);
+    let energy = rules.ethanol_mj(pure, strength) / 1e6;
+    let words = rules.ethanol_words(strength);
+    let text = format!("{} kg of ethanol x {words} / 1000000", plain(pure));
+    given.step(text, energy, "TJ", &rules.ethanol_lhv.source);
     Some(energy)
 }
 

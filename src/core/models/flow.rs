@@ -5,6 +5,7 @@ use crate::core::documents::pathway::Flow;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::Place;
 use crate::core::domain::RuleSet;
+use crate::core::units::rounding::plain;
 use crate::core::units::{Dimension, UnitError, parse_unit};
 
 /// Id of the built-in material that is the fuel.
@@ -53,6 +54,21 @@ impl Measured {
         self.wet_kg.map(|wet| wet * (1.0 - self.moisture.unwrap_or(0.0)))
     }
 
+    /// Gives ethanol entered as energy its strength (mass fraction), and with it its pure and wet mass.
+    ///
+    /// Ethanol whose water takes more heat than it holds is noted as a problem.
+    pub fn take_strength(&mut self, strength: f64, rules: &RuleSet, at: &Place, problems: &mut Problems) {
+        self.strength = Some(strength);
+        let per_kg = rules.ethanol_mj_per_kg(strength);
+        if per_kg <= 0.0 {
+            no_heat(strength, rules, at, problems);
+            return;
+        }
+        let pure = self.base / 1e6 / per_kg;
+        self.pure_kg = Some(pure);
+        self.wet_kg = Some(pure / strength);
+    }
+
     /// Energy, J, where the flow was entered as energy.
     pub fn energy_j(&self) -> Option<f64> {
         (self.dimension == Dimension::ENERGY).then_some(self.base)
@@ -62,6 +78,20 @@ impl Measured {
     pub fn area_m2(&self) -> Option<f64> {
         (self.dimension == Dimension::AREA).then_some(self.base)
     }
+}
+
+/// Notes that ethanol of a strength (mass fraction) holds no heat under a rule set that counts its water.
+pub fn no_heat(strength: f64, rules: &RuleSet, at: &Place, problems: &mut Problems) {
+    let detail = format!(
+        "Ethanol of {} % mass holds no heat under {}: its water takes more than it gives.",
+        plain(100.0 * strength),
+        rules.id
+    );
+    problems.add(
+        at.field("strength_percent_mass"),
+        detail,
+        "Check the strength: fuel ethanol has more than 90 %.",
+    );
 }
 
 /// Detail and remedy of a unit error.
@@ -262,11 +292,7 @@ fn ethanol(flow: &Flow, rules: &RuleSet, at: &Place, problems: &mut Problems, me
     measured.strength = Some(strength);
     match measured.dimension {
         Dimension::MASS => measured.pure_kg = Some(measured.base * strength),
-        Dimension::ENERGY => {
-            let pure = measured.base / 1e6 / rules.ethanol_lhv.value;
-            measured.pure_kg = Some(pure);
-            measured.wet_kg = Some(pure / strength);
-        }
+        Dimension::ENERGY => measured.take_strength(strength, rules, at, problems),
         Dimension::VOLUME => {
             let Some(celsius) = flow.temperature_c else {
                 let remedy = "Add temperature_c, the temperature it was read at, such as 15 or 20.";

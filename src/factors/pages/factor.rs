@@ -209,15 +209,18 @@ fn trimmed(g: f64) -> String {
 
 fn terms(values: &TermValues, what: &str) -> Vec<(String, String, String)> {
     [
-        ("e_ec", values.e_ec),
+        ("e_ec", Some(values.e_ec)),
         ("of it soil N2O", values.e_ec_soil_n2o),
-        ("e_p", values.e_p),
-        ("e_td", values.e_td),
+        ("e_p", Some(values.e_p)),
+        ("e_td", Some(values.e_td)),
         ("of it the final fuel", values.e_td_final_fuel),
-        ("total", values.total),
-        ("saving, %", values.saving_percent),
+        ("total", Some(values.total)),
+        ("saving, %", Some(values.saving_percent)),
     ]
     .into_iter()
-    .map(|(name, value)| (name.to_owned(), show_all(value), what.to_owned()))
+    .map(|(name, value)| {
+        let shown = value.map_or_else(|| "not printed apart".to_owned(), show_all);
+        (name.to_owned(), shown, what.to_owned())
+    })
     .collect()
 }

@@ -156,8 +156,8 @@ impl Factors {
                 .map(|one| (links::material(&one.id), one.name.clone(), one.kind.clone()))
                 .collect(),
             rule_sets: book
-                .rule_sets
-                .values()
+                .offered_rule_sets()
+                .into_iter()
                 .map(|one| (links::rule_set(&one.id), one.title.clone(), one.source.clone()))
                 .collect(),
             asked,
@@ -212,9 +212,9 @@ fn defaults(book: &Book, asked: &Asked) -> Vec<DefaultRow> {
         .collect()
 }
 
-/// The weights that lists work CO2e out with: those of the first rule set.
+/// The weights that lists work CO2e out with: those of the first rule set on offer.
 pub(super) fn weights(book: &Book) -> Option<&GwpSet> {
-    let rules = book.rule_sets.values().next()?;
+    let rules = book.offered_rule_sets().into_iter().next()?;
     book.gwp_sets.get(&rules.gwp_set)
 }
 

@@ -113,27 +113,14 @@ impl Published {
             .map(|term| term.name())
             .collect::<Vec<_>>()
             .join(", ");
-        let mut rows: Vec<CitedRow> = [
-            (rules.comparator_word.as_str(), &rules.comparator),
-            ("petrol itself", &rules.petrol),
-            ("lower heating value of pure ethanol", &rules.ethanol_lhv),
-            (
-                "ethanol on consignment records, by mass",
-                &rules.consignment_lhv_mass,
-            ),
-            (
-                "ethanol on consignment records, by volume",
-                &rules.consignment_lhv_volume,
-            ),
-            ("CO2 per carbon", &rules.co2_per_carbon),
-            ("heat of evaporation of water", &rules.water_evaporation),
-            ("temperature of the surroundings", &rules.ambient),
-            ("Carnot factor of heat for buildings", &rules.building_heat_carnot),
-            ("years of land-use change", &rules.land_use_years),
-        ]
-        .into_iter()
-        .map(|(name, figure)| cited(name, figure, String::new()))
-        .collect();
+        let named = |field: &str| match field {
+            "comparator" => rules.comparator_word.clone(),
+            field => figure_words(field).to_owned(),
+        };
+        let figures = rules.figures().into_iter();
+        let mut rows: Vec<CitedRow> = figures
+            .filter_map(|(field, figure)| Some(cited(&named(field), figure?, String::new())))
+            .collect();
         for threshold in &rules.thresholds {
             let day = |day: Option<jiff::civil::Date>, open: &str| {
                 day.map_or_else(|| open.to_owned(), filters::short_day)
@@ -142,9 +129,17 @@ impl Published {
                 name: "Required saving".to_owned(),
                 figure: format!("{} %", show_all(threshold.percent)),
                 basis: format!(
-                    "plants started from {} to {}",
+                    "plants started from {} to {}{}",
                     day(threshold.started_from, "any day"),
-                    day(threshold.started_to, "today and on")
+                    day(threshold.started_to, "today and on"),
+                    match (threshold.applies_from, threshold.applies_to) {
+                        (None, None) => String::new(),
+                        (from, to) => format!(
+                            ", fuel from {} to {}",
+                            day(from, "any day"),
+                            day(to, "today and on")
+                        ),
+                    }
                 ),
                 source: threshold.source.clone(),
                 status: status_words(threshold.status),
@@ -199,16 +194,55 @@ impl Published {
                         terms
                     },
                 ),
-                ("Standard factors".to_owned(), rules.standard_factors.clone()),
+                ("Standing".to_owned(), rules.standing.words().to_owned()),
+                (
+                    "Water in ethanol".to_owned(),
+                    rules.ethanol_water.words().to_owned(),
+                ),
+                (
+                    "The crop's own CO2".to_owned(),
+                    rules.biogenic_co2.words().to_owned(),
+                ),
+                (
+                    "Standard factors".to_owned(),
+                    or_none(rules.standard_factors.as_ref()),
+                ),
+                (
+                    "Default values".to_owned(),
+                    or_none(rules.default_values.as_ref()),
+                ),
                 ("Soil N2O by".to_owned(), rules.soil_n2o_method.clone()),
                 (
                     "Residues whatever a file says".to_owned(),
-                    format!("{}: {}", rules.residues_by_law.join(", "), rules.residues_source),
+                    match &rules.residues_source {
+                        Some(source) => format!("{}: {source}", rules.residues_by_law.join(", ")),
+                        None => "none".to_owned(),
+                    },
                 ),
             ],
             rows,
             notes: rules.notes.clone(),
         }
+    }
+}
+
+fn or_none(id: Option<&String>) -> String {
+    id.map_or_else(|| "none".to_owned(), String::clone)
+}
+
+/// What a figure of a rule set is called on its page.
+fn figure_words(field: &str) -> &str {
+    match field {
+        "petrol" => "petrol itself",
+        "ethanol_lhv" => "lower heating value of pure ethanol",
+        "consignment_lhv_mass" => "ethanol on consignment records, by mass",
+        "consignment_lhv_volume" => "ethanol on consignment records, by volume",
+        "co2_per_carbon" => "CO2 per carbon",
+        "water_evaporation" => "heat of evaporation of water",
+        "ambient" => "temperature of the surroundings",
+        "building_heat_carnot" => "Carnot factor of heat for buildings",
+        "land_use_years" => "years of land-use change",
+        other => other,
     }
 }
 

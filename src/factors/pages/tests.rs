@@ -1,6 +1,7 @@
 //! Renders the pages of published data: all rows, all materials, all rule sets.
 
 use super::*;
+use crate::core::units::rounding::show_all;
 use askama::Template;
 use std::collections::BTreeSet;
 
@@ -90,7 +91,9 @@ fn lists_materials_and_rule_sets_render() {
             .render()
             .expect("renders");
         sound(&rules.id, &html);
-        assert!(html.contains("94 g CO<sub>2</sub>e/MJ"));
+        let comparator = format!("{} g CO<sub>2</sub>e/MJ", show_all(rules.comparator.value));
+        assert!(html.contains(&comparator), "{}", rules.id);
+        assert!(html.contains(rules.standing.words().split('\'').next().unwrap_or_default()));
     }
     let memory = Memory::of(crate::library::figures_from_memory());
     sound("memory", &memory.render().expect("renders"));

@@ -82,7 +82,7 @@ fn broken_sums_and_savings() {
     };
     assert!(cane(|row| row.default.e_p += 0.1).contains("add up"));
     assert!(cane(|row| row.typical.saving_percent += 1.0).contains("printed saving"));
-    assert!(cane(|row| row.default.e_td_final_fuel = 10.0).contains("larger than its term"));
+    assert!(cane(|row| row.default.e_td_final_fuel = Some(10.0)).contains("larger than its term"));
     assert!(cane(|row| row.feedstock_materials.push("moss".to_owned())).contains("no material moss"));
 }
 
@@ -100,7 +100,9 @@ fn broken_references() {
     };
     assert!(set(|set| set.ethanol_lhv.value = 26.8).contains("heating value of ethanol"));
     assert!(set(|set| set.allocation_allowed.clear()).contains("not allowed"));
-    assert!(set(|set| drop(set.thresholds.remove(1))).contains("gap or overlap"));
+    assert!(set(|set| drop(set.thresholds.remove(1))).contains("leave a gap"));
+    assert!(set(|set| set.thresholds[1].started_from = set.thresholds[0].started_to).contains("overlap"));
+    assert!(set(|set| set.comparator.unit = "kg CO2e/MJ".to_owned()).contains("counts in g CO2e/MJ"));
     let edition = |change: fn(&mut crate::core::domain::Edition)| {
         after(|book| change(book.editions.get_mut("eu-2022-996").expect("the edition")))
     };

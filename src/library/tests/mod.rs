@@ -6,6 +6,7 @@ mod factors;
 mod ipcc;
 mod land;
 mod materials;
+mod rule_sets;
 mod soils;
 
 use crate::core::domain::{Gas, Status};

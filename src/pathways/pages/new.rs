@@ -88,8 +88,8 @@ impl NewPathway {
                 .map(|material| (material.id.clone(), material.name.clone()))
                 .collect(),
             rule_sets: book
-                .rule_sets
-                .values()
+                .offered_rule_sets()
+                .into_iter()
                 .map(|rules| (rules.id.clone(), rules.title.clone()))
                 .collect(),
             typed,

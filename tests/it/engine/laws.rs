@@ -146,7 +146,7 @@ proptest! {
 }
 
 /// Walks down by the given turns and replaces what stands there.
-fn replace_somewhere(value: &mut Value, path: &[usize], put: Value) {
+pub(super) fn replace_somewhere(value: &mut Value, path: &[usize], put: Value) {
     let Some((turn, rest)) = path.split_first() else {
         *value = put;
         return;

@@ -10,6 +10,7 @@ use crate::core::documents::Assessment;
 use crate::core::documents::assessment::{Terms, ThresholdResult};
 use crate::core::documents::pathway::{DefaultKey, Pathway};
 use crate::core::documents::problem::{Problem, Problems};
+use crate::core::domain::rule_set::Standing;
 use crate::core::domain::{Book, PathwayDefault, RuleSet, StageKind, Status, Term};
 use crate::core::engine::{assess, resolve};
 use serde::Serialize;
@@ -225,10 +226,10 @@ pub fn table(pathway: &Pathway, assessment: &Assessment, book: &Book) -> Result<
         let detail = format!("There is no rule set \"{}\" here.", assessment.rule_set);
         return Err(whole(detail, "Assess the pathway under a rule set that is held."));
     };
-    // A rule set's default values stand in the edition of the same document.
-    let published: Vec<&PathwayDefault> = book
-        .editions
-        .get(&rules.id)
+    let published: Vec<&PathwayDefault> = rules
+        .default_values
+        .as_ref()
+        .and_then(|edition| book.editions.get(edition))
         .map_or_else(Vec::new, |edition| edition.pathways.values().collect());
     let actual = match pathway.stages.is_empty() {
         true => None,
@@ -270,7 +271,7 @@ pub fn table(pathway: &Pathway, assessment: &Assessment, book: &Book) -> Result<
         combinations,
         best,
         best_if_confirmed,
-        source: if subject.published.is_empty() {
+        source: if subject.published.is_empty() || rules.standing == Standing::Repealed {
             rules.source.clone()
         } else {
             SOURCE.to_owned()
@@ -320,7 +321,8 @@ fn notes(subject: &Subject, rows: &[PublishedRow]) -> Vec<String> {
     if rules.is_residue_by_law(&pathway.feedstock) {
         notes.push(format!(
             "{} is a residue: it starts at zero, and e_ec, own or default, counts from its collection on ({}).",
-            pathway.feedstock, rules.residues_source
+            pathway.feedstock,
+            rules.residues_source.as_deref().unwrap_or(&rules.source)
         ));
     }
     if !subject.has_stage(StageKind::Land) {

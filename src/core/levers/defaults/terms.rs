@@ -48,8 +48,8 @@ fn published(
             let published = subject.published(&row.id)?;
             Some(PublishedValue {
                 row: row.id.clone(),
-                default_g_co2e_per_mj: value(&published.default, key),
-                typical_g_co2e_per_mj: value(&published.typical, key),
+                default_g_co2e_per_mj: value(&published.default, key)?,
+                typical_g_co2e_per_mj: value(&published.typical, key)?,
                 may_serve: match key {
                     DefaultKey::EP => row.feedstock_fits.and(row.process_fits),
                     DefaultKey::EEcSoilN2o => Answer::No,
@@ -83,13 +83,13 @@ fn published(
     }
 }
 
-/// A value of a published pathway by key, g CO2e/MJ.
-fn value(values: &TermValues, key: DefaultKey) -> f64 {
+/// A value of a published pathway by key, g CO2e/MJ; none where it is not printed apart.
+fn value(values: &TermValues, key: DefaultKey) -> Option<f64> {
     match key {
-        DefaultKey::EEc => values.e_ec,
+        DefaultKey::EEc => Some(values.e_ec),
         DefaultKey::EEcSoilN2o => values.e_ec_soil_n2o,
-        DefaultKey::EP => values.e_p,
-        DefaultKey::ETd => values.e_td,
+        DefaultKey::EP => Some(values.e_p),
+        DefaultKey::ETd => Some(values.e_td),
         DefaultKey::ETdFinalFuel => values.e_td_final_fuel,
     }
 }
@@ -125,7 +125,7 @@ fn actual(subject: &Subject, key: DefaultKey, first: Option<&PublishedValue>) ->
 fn final_fuel(subject: &Subject, published: &PathwayDefault, own: f64) -> Option<f64> {
     let defaults = BTreeMap::from([(DefaultKey::ETdFinalFuel, published.id.clone())]);
     let changed = attempt(subject.pathway, &defaults, subject.rules, subject.book).ok()?;
-    let rest = changed.terms_g_co2e_per_mj.e_td - published.default.e_td_final_fuel;
+    let rest = changed.terms_g_co2e_per_mj.e_td - published.default.e_td_final_fuel?;
     Some(own - rest)
 }
 

@@ -1,173 +1,59 @@
-//! Shares of a stage's burden between its products. Directive (EU) 2018/2001 Annex V Part C points 16 to 18: energy by
-//! lower heating value; exergy where a stage gives only heat and power; residues and wastes take nothing.
+//! What a product weighs in sharing: energy, exergy, dry mass or value.
 
-use super::materials::Materials;
-use super::resolved::Product;
 use crate::core::documents::assessment::Step;
-use crate::core::documents::pathway::{CoProduct, Flow, Stage};
+use crate::core::documents::pathway::Flow;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::Place;
 use crate::core::domain::RuleSet;
-use crate::core::domain::rule_set::AllocationMethod;
+use crate::core::engine::materials::Materials;
 use crate::core::models::factors::step;
 use crate::core::models::flow::{HEAT, Measured, note_unit_error};
 use crate::core::units::rounding::plain;
-use crate::core::units::{Dimension, Quantity, parse_unit};
+use crate::core::units::{Currency, Dimension, Quantity, parse_unit};
 
-/// Sets share and measure of every product; returns the unit of the measure.
-pub fn share(
-    stage: &Stage,
-    products: &mut [Product],
-    rules: &RuleSet,
-    materials: &Materials,
-    at: &Place,
-    problems: &mut Problems,
-    steps: &mut Vec<Step>,
-) -> &'static str {
-    let Some(method) = method(stage, products, rules, at, problems) else {
-        return "";
-    };
-    let unit = match method {
-        AllocationMethod::Exergy => "MJ of exergy",
-        AllocationMethod::Mass => "kg dry",
-        AllocationMethod::Economic => "of money",
-        AllocationMethod::Energy | AllocationMethod::Substitution => "MJ",
-    };
-    if products.iter().filter(|product| product.shares_burden).count() < 2 {
-        for (index, product) in products.iter_mut().enumerate() {
-            product.share = if index == 0 { 1.0 } else { 0.0 };
-        }
-        return unit;
-    }
-    let before = problems.len();
-    let co_products_at = at.field("co_products");
-    let output_at = at.field("output");
-    for (index, product) in products.iter_mut().enumerate() {
-        if !product.shares_burden {
-            continue;
-        }
-        let (place, flow) = match index {
-            0 => (output_at, &stage.output.flow),
-            _ => (co_products_at.item(index - 1), &stage.co_products[index - 1].flow),
-        };
-        let scene = Scene {
-            flow,
-            rules,
-            materials,
-            at: &place,
-            is_output: index == 0,
-            name: product.name,
-        };
-        let measured = match method {
-            AllocationMethod::Exergy => exergy(&product.flow, &scene, problems, steps),
-            AllocationMethod::Mass => mass(&product.flow, &scene, problems),
-            AllocationMethod::Economic => value(&product.flow, &scene, problems),
-            AllocationMethod::Energy | AllocationMethod::Substitution => {
-                energy(&product.flow, &scene, problems, steps)
-            }
-        };
-        product.measure = measured.unwrap_or(0.0);
-    }
-    if problems.len() > before {
-        return unit;
-    }
-    let sum: f64 = products.iter().map(|product| product.measure).sum();
-    if sum <= 0.0 || !sum.is_finite() {
-        problems.add(
-            at.field("co_products"),
-            "The products hold nothing that could share the burden.",
-            "Give amounts and heating values above zero.",
-        );
-        return unit;
-    }
-    for product in products.iter_mut().filter(|product| product.shares_burden) {
-        product.share = product.measure / sum;
-        let text = format!(
-            "share of {}: {} / {} {unit}",
-            product.name,
-            plain(product.measure),
-            plain(sum)
-        );
-        steps.push(step(text, product.share, "", &rules.source));
-    }
-    unit
-}
-
-fn method(
-    stage: &Stage,
-    products: &[Product],
-    rules: &RuleSet,
-    at: &Place,
-    problems: &mut Problems,
-) -> Option<AllocationMethod> {
-    let energy_only = products[0].flow.is_heat_or_power();
-    let odd = |product: &CoProduct| {
-        let heat_or_power = product.material == HEAT || product.material == crate::core::models::flow::POWER;
-        heat_or_power != energy_only
-            && (heat_or_power || product.role == crate::core::documents::pathway::Role::CoProduct)
-    };
-    if stage.co_products.iter().any(odd) {
-        problems.add(
-            at.field("co_products"),
-            "Heat or power cannot share a burden beside another product.",
-            "Put the boiler house or turbine in a stage of its own, of kind utility, or use a model of kind chp; \
-             it then carries what the unit that makes it emits.",
-        );
-        return None;
-    }
-    let usual = if energy_only {
-        rules.allocation_heat_and_power
-    } else {
-        rules.allocation
-    };
-    let Some(asked) = stage.allocation else {
-        return Some(usual);
-    };
-    let allowed = asked == usual || (!energy_only && rules.allocation_allowed.contains(&asked));
-    if !allowed {
-        let mut names: Vec<&str> = match energy_only {
-            true => vec![usual.name()],
-            false => rules
-                .allocation_allowed
-                .iter()
-                .map(|method| method.name())
-                .collect(),
-        };
-        names.sort_unstable();
-        problems.add(
-            at.field("allocation"),
-            format!("{} does not allow sharing by {} here.", rules.id, asked.name()),
-            format!("Use {}, or leave it out.", names.join(" or ")),
-        );
-        return None;
-    }
-    Some(asked)
-}
-
-struct Scene<'s> {
-    flow: &'s Flow,
-    rules: &'s RuleSet,
-    materials: &'s Materials<'s>,
-    at: &'s Place<'s>,
-    is_output: bool,
-    name: &'s str,
+/// A product about to be weighed.
+pub(super) struct Scene<'s> {
+    pub flow: &'s Flow,
+    pub rules: &'s RuleSet,
+    pub materials: &'s Materials<'s>,
+    /// Strength of the fuel at the wheel, mass fraction.
+    pub wheel_strength: Option<f64>,
+    pub at: &'s Place<'s>,
+    pub is_output: bool,
+    pub name: &'s str,
 }
 
 /// Energy of a product, MJ: ethanol by its pure mass, an intermediate by its dry matter, a co-product as it leaves.
-fn energy(measured: &Measured, scene: &Scene, problems: &mut Problems, steps: &mut Vec<Step>) -> Option<f64> {
+pub(super) fn energy(
+    measured: &Measured,
+    scene: &Scene,
+    problems: &mut Problems,
+    steps: &mut Vec<Step>,
+) -> Option<f64> {
     let Scene {
         flow,
         rules,
         materials,
+        wheel_strength,
         at,
         is_output,
         name,
     } = scene;
     if let Some(pure) = measured.pure_kg {
-        let lhv = rules.ethanol_lhv.value;
-        let mj = pure * lhv;
+        let own = measured.strength.unwrap_or(1.0);
+        // Water that a later stage takes out is not counted, as with any main product that is not yet fuel.
+        let strength = if *is_output {
+            own.max(wheel_strength.unwrap_or(own))
+        } else {
+            own
+        };
+        let mj = rules.ethanol_mj(pure, strength).max(0.0);
         steps.push(step(
-            format!("{name}: {} kg pure ethanol x {} MJ/kg", plain(pure), plain(lhv)),
+            format!(
+                "{name}: {} kg pure ethanol x {}",
+                plain(pure),
+                rules.ethanol_words(strength)
+            ),
             mj,
             "MJ",
             &rules.ethanol_lhv.source,
@@ -269,7 +155,12 @@ fn energy(measured: &Measured, scene: &Scene, problems: &mut Problems, steps: &m
 }
 
 /// Exergy of heat or power, MJ: heat by its Carnot factor, power by 1 (Annex V Part C points 1(b) and 16).
-fn exergy(measured: &Measured, scene: &Scene, problems: &mut Problems, steps: &mut Vec<Step>) -> Option<f64> {
+pub(super) fn exergy(
+    measured: &Measured,
+    scene: &Scene,
+    problems: &mut Problems,
+    steps: &mut Vec<Step>,
+) -> Option<f64> {
     let Scene {
         flow,
         rules,
@@ -277,7 +168,19 @@ fn exergy(measured: &Measured, scene: &Scene, problems: &mut Problems, steps: &m
         name,
         ..
     } = scene;
-    let mj = measured.energy_j()? / 1e6;
+    let Some(joules) = measured.energy_j() else {
+        let detail = format!(
+            "The {} has no exergy here: it is neither heat nor power.",
+            measured.material
+        );
+        problems.add(
+            at.field("material"),
+            detail,
+            "Share by energy, or leave the method out.",
+        );
+        return None;
+    };
+    let mj = joules / 1e6;
     if measured.material != HEAT {
         steps.push(step(
             format!("{name}: {} MJ of power x 1", plain(mj)),
@@ -329,17 +232,35 @@ fn exergy(measured: &Measured, scene: &Scene, problems: &mut Problems, steps: &m
     Some(exergy)
 }
 
-fn mass(measured: &Measured, scene: &Scene, problems: &mut Problems) -> Option<f64> {
-    let kg = measured.pure_kg.or_else(|| measured.dry_kg());
-    if kg.is_none() {
+/// Dry mass of a product, kg: ethanol by its pure mass.
+pub(super) fn mass(
+    measured: &Measured,
+    scene: &Scene,
+    problems: &mut Problems,
+    steps: &mut Vec<Step>,
+) -> Option<f64> {
+    let Some(kg) = measured.pure_kg.or_else(|| measured.dry_kg()) else {
         let detail = format!("The {} is not given as a mass.", measured.material);
         problems.add(scene.at.field("unit"), detail, "Give it in kg or t.");
-    }
-    kg
+        return None;
+    };
+    let what = if measured.pure_kg.is_some() {
+        "pure ethanol"
+    } else {
+        "dry matter"
+    };
+    steps.push(step(format!("{}: {what}", scene.name), kg, "kg", ""));
+    Some(kg)
 }
 
-fn value(measured: &Measured, scene: &Scene, problems: &mut Problems) -> Option<f64> {
-    let Some(price) = &scene.flow.price else {
+/// Value of a product, in its currency.
+pub(super) fn value(
+    measured: &Measured,
+    scene: &Scene,
+    problems: &mut Problems,
+    steps: &mut Vec<Step>,
+) -> Option<(f64, Currency)> {
+    let Some(own) = &scene.flow.price else {
         let detail = format!("Sharing by value needs the price of {}.", scene.name);
         problems.add(
             scene.at.field("price"),
@@ -349,7 +270,15 @@ fn value(measured: &Measured, scene: &Scene, problems: &mut Problems) -> Option<
         return None;
     };
     let price_at = scene.at.field("price");
-    let price = match Quantity::read(price.value, &price.unit) {
+    if own.value < 0.0 {
+        problems.add(
+            price_at.field("value"),
+            "A price below zero is no value to share by.",
+            "Give zero or more, or the role waste.",
+        );
+        return None;
+    }
+    let price = match Quantity::read(own.value, &own.unit) {
         Ok(price) => price,
         Err(error) => {
             note_unit_error(&error, &price_at, problems);
@@ -360,7 +289,7 @@ fn value(measured: &Measured, scene: &Scene, problems: &mut Problems) -> Option<
         value: measured.base,
         dimension: measured.dimension,
     });
-    if money.dimension.as_currency().is_none() {
+    let Some(currency) = money.dimension.as_currency() else {
         let detail = "This price times this amount is no money.".to_owned();
         problems.add(
             price_at.field("unit"),
@@ -368,6 +297,19 @@ fn value(measured: &Measured, scene: &Scene, problems: &mut Problems) -> Option<
             "Give a price per mass for a mass, per volume for a volume.",
         );
         return None;
-    }
-    Some(money.value)
+    };
+    steps.push(step(
+        format!(
+            "{}: {} {} at {} {}",
+            scene.name,
+            plain(scene.flow.amount?),
+            scene.flow.unit.as_deref()?,
+            plain(own.value),
+            own.unit
+        ),
+        money.value,
+        currency.symbol(),
+        "price as entered",
+    ));
+    Some((money.value, currency))
 }
