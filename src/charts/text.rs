@@ -89,7 +89,7 @@ pub fn figure(value: f64) -> String {
 
 /// A given figure (a percentage, a tick) without trailing zeros, at most six decimals, true minus.
 pub fn plain(value: f64) -> String {
-    sign(value, trim(Decimal::of(value).round(6).text(6)), "\u{2212}")
+    sign(value, trim(&Decimal::of(value).round(6).text(6)), "\u{2212}")
 }
 
 /// A figure with a fixed number of decimals, halves away from zero, true minus, never -0.
@@ -105,7 +105,7 @@ pub fn coordinate(value: f64, places: usize) -> String {
 
 /// A coordinate as short as it goes, at most two decimals.
 pub fn short(value: f64) -> String {
-    trim(coordinate(value, 2))
+    trim(&coordinate(value, 2))
 }
 
 fn sign(value: f64, digits: String, minus: &str) -> String {
@@ -117,7 +117,7 @@ fn sign(value: f64, digits: String, minus: &str) -> String {
     }
 }
 
-fn trim(digits: String) -> String {
+fn trim(digits: &str) -> String {
     digits.trim_end_matches('0').trim_end_matches('.').to_owned()
 }
 
@@ -262,7 +262,7 @@ mod tests {
         #[test]
         fn a_coordinate_is_off_by_at_most_half_a_step(v in -1e5f64..1e5, places in 0usize..4) {
             let read: f64 = coordinate(v, places).parse()?;
-            prop_assert!((read - v).abs() <= 0.5 * 10f64.powi(-(places as i32)) + 1e-9);
+            prop_assert!((read - v).abs() <= 0.5 * 0.1f64.powi(i32::try_from(places)?) + 1e-9);
         }
 
         #[test]

@@ -29,9 +29,12 @@ struct Loaded {
     memory: Vec<String>,
 }
 
+#[expect(
+    clippy::panic,
+    reason = "the data are compiled in and a test loads them: no input can lead here"
+)]
 static LOADED: LazyLock<Loaded> = LazyLock::new(|| match read() {
     Ok(loaded) => loaded,
-    // The data are compiled in and a test loads them: no input can lead here.
     Err(problems) => panic!("the published data are broken:\n{}", problems.join("\n")),
 });
 

@@ -42,7 +42,7 @@ fn main() {
 }
 
 fn tokio(work: impl std::future::Future<Output = ()>) {
-    let runtime = ::tokio::runtime::Builder::new_multi_thread()
+    let runtime = tokio::runtime::Builder::new_multi_thread()
         .enable_all()
         .build()
         .expect("a runtime");

@@ -2,6 +2,7 @@
 
 use super::form::Measures;
 use super::model::{Ladder, NOTHING};
+use std::iter::successors;
 
 /// Where figures lie in the picture.
 pub(super) struct Scale {
@@ -82,17 +83,19 @@ fn crop_ends(ladder: &Ladder) -> (f64, f64) {
 /// Smallest of 1, 2, 5 x 10^n grams that is at least `min_gap` long.
 pub(super) fn nice_step(k: f64, min_gap: f64) -> f64 {
     let raw = min_gap / k;
-    let decade = 10f64.powi(raw.log10().floor() as i32);
+    let decade = 10f64.powf(raw.log10().floor());
     let steps = [1.0, 2.0, 5.0].map(|m| m * decade);
     let fits = steps.into_iter().find(|&step| step >= raw * (1.0 - 1e-12));
     fits.unwrap_or(10.0 * decade)
 }
 
 fn ticks((low, high): (f64, f64), step: f64, zero: f64, k: f64) -> Vec<(f64, f64)> {
-    let first = (low / step - 1e-9).ceil() as i64;
-    let last = (high / step + 1e-9).floor() as i64;
-    (first..=last)
-        .map(|i| i as f64 * step)
+    // the added zero turns a negative zero into a plain one
+    let first = (low / step - 1e-9).ceil() + 0.0;
+    let last = (high / step + 1e-9).floor();
+    successors(Some(first), |i| Some(i + 1.0))
+        .take_while(|i| *i <= last)
+        .map(|i| i * step)
         .map(|g| (zero + g * k, g))
         .collect()
 }

@@ -8,6 +8,7 @@ use super::materials::Materials;
 use super::resolved::{Intake, Product, Resolved, Stage};
 use super::substitution;
 use crate::core::documents::assessment::{Finding, Severity};
+use crate::core::documents::input::OneOrMany;
 use crate::core::documents::pathway::{CoProduct, Pathway, Role, Stage as StageDocument};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
@@ -395,7 +396,7 @@ fn neighbours(stage: &StageDocument) -> Vec<(String, String)> {
         .inputs
         .iter()
         .filter_map(|input| input.model.as_ref())
-        .flat_map(|uses| uses.list())
+        .flat_map(OneOrMany::list)
         .map(|model| (model.kind.clone(), word(model.parameters.get("method"))))
         .collect()
 }

@@ -421,14 +421,11 @@ pub fn step(text: String, value: f64, unit: &str, source: &str) -> Step {
 
 /// The fuel of a list of energy factors whose burning gases (CH4, N2O) neither it nor a companion publishes, with the
 /// names of those gases in words.
-pub fn unpublished<'p>(list: impl IntoIterator<Item = &'p Priced> + Clone) -> Option<(String, String)> {
+pub fn unpublished<'p>(list: impl IntoIterator<Item = &'p Priced>) -> Option<(String, String)> {
+    let list: Vec<&Priced> = list.into_iter().collect();
     let burns = |priced: &&Priced| priced.group == "fuel" && priced.gases.get(Gas::Co2eUnsplit).is_none();
-    let fuel = list.clone().into_iter().find(burns)?;
-    let published = |gas: Gas| {
-        list.clone()
-            .into_iter()
-            .any(|priced| priced.gases.get(gas).is_some())
-    };
+    let fuel = list.iter().copied().find(burns)?;
+    let published = |gas: Gas| list.iter().any(|priced| priced.gases.get(gas).is_some());
     gaps(
         published(Gas::Ch4Fossil) || published(Gas::Ch4Biogenic),
         published(Gas::N2o),

@@ -1,6 +1,6 @@
 //! Dimensions in words, for messages that a person reads.
 
-use super::dimension::{Base, Dimension};
+use super::dimension::{Base, Dimension, Substance};
 
 /// One side of a fraction: how it is named, with which article when it stands alone, and a unit of it.
 struct Part {
@@ -49,7 +49,7 @@ impl Dimension {
         if !fixed.is_empty() {
             return fixed.to_owned();
         }
-        match self.as_substance().map(|s| s.symbol()) {
+        match self.as_substance().map(Substance::symbol) {
             Some(s) => format!("kg {s}, t {s} or lb {s}"),
             None => self.symbol(),
         }
@@ -83,10 +83,10 @@ impl Dimension {
                 _ => part(base, exponent.saturating_abs()),
             };
             if exponent > 0 {
-                above.push(part)
+                above.push(part);
             } else {
-                below.push(part)
-            };
+                below.push(part);
+            }
         }
         (above, below)
     }

@@ -3,17 +3,29 @@
 /// A fertiliser or soil substance that is counted as itself, so that `kg N` never passes for `kg`.
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug)]
 pub enum Substance {
+    /// Nitrogen.
     N,
+    /// Phosphate, as phosphorus pentoxide.
     P2O5,
+    /// Potash, as potassium oxide.
     K2O,
+    /// Calcium carbonate.
     CaCO3,
+    /// Calcium oxide.
     CaO,
+    /// Magnesium oxide.
     MgO,
+    /// Sodium.
     Na,
+    /// Sodium oxide.
     Na2O,
+    /// Sulphur.
     S,
+    /// Sulphur trioxide.
     SO3,
+    /// Phosphorus.
     P,
+    /// Potassium.
     K,
 }
 
@@ -68,9 +80,55 @@ impl Substance {
 
 /// A currency; each is a base of its own, because nothing here knows an exchange rate.
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Debug)]
-#[rustfmt::skip]
 pub enum Currency {
-    EUR, USD, GBP, BRL, ARS, AUD, CAD, CHF, CNY, COP, CZK, DKK, HUF, INR, JPY, MXN, NOK, PLN, RON, RSD, SEK, THB, UAH, ZAR,
+    /// Euro.
+    EUR,
+    /// United States dollar.
+    USD,
+    /// Pound sterling.
+    GBP,
+    /// Brazilian real.
+    BRL,
+    /// Argentine peso.
+    ARS,
+    /// Australian dollar.
+    AUD,
+    /// Canadian dollar.
+    CAD,
+    /// Swiss franc.
+    CHF,
+    /// Chinese yuan renminbi.
+    CNY,
+    /// Colombian peso.
+    COP,
+    /// Czech koruna.
+    CZK,
+    /// Danish krone.
+    DKK,
+    /// Hungarian forint.
+    HUF,
+    /// Indian rupee.
+    INR,
+    /// Japanese yen.
+    JPY,
+    /// Mexican peso.
+    MXN,
+    /// Norwegian krone.
+    NOK,
+    /// Polish zloty.
+    PLN,
+    /// Romanian leu.
+    RON,
+    /// Serbian dinar.
+    RSD,
+    /// Swedish krona.
+    SEK,
+    /// Thai baht.
+    THB,
+    /// Ukrainian hryvnia.
+    UAH,
+    /// South African rand.
+    ZAR,
 }
 
 impl Currency {

@@ -14,19 +14,24 @@ pub use quantity::Quantity;
 /// Why a unit or an amount was refused. The text is for the person who typed it: what is so, then what to do.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
 pub enum UnitError {
-    /// The text is no unit. `unit` is what was written (shortened), `suggestion` what it most likely should be.
+    /// The text is no unit.
     #[error("\"{unit}\" is not a known unit. {}", remedy(.suggestion.as_deref()))]
     Unknown {
+        /// What was written, shortened.
         unit: String,
+        /// What it most likely should be: a unit, or a choice in words.
         suggestion: Option<String>,
     },
-    /// A good unit of the wrong dimension: `found` is a unit, `found_is` and `expected` are words,
-    /// `examples` are units that would do.
+    /// A good unit of the wrong dimension.
     #[error("{found} is {found_is}, but {expected} is wanted here. Give it in {examples}.")]
     Mismatch {
+        /// The unit as written.
         found: String,
+        /// What it counts, in words.
         found_is: String,
+        /// What is wanted, in words.
         expected: String,
+        /// Units that would do.
         examples: String,
     },
     /// The figure is not a finite number, or leaves the range of one when converted.

@@ -127,6 +127,10 @@ enum Token<'a> {
 /// A token with the byte positions of its start and end.
 type Placed<'a> = (Token<'a>, usize, usize);
 
+#[expect(
+    clippy::string_slice,
+    reason = "every position is one of `char_indices`, so the start of a character"
+)]
 fn tokens(text: &str) -> Vec<Placed<'_>> {
     let mut out = Vec::new();
     let mut start = None;
@@ -324,16 +328,17 @@ impl<'t> Reader<'t> {
 
 /// `m2`, `km^2`, `m³`: powers of lengths and times only.
 fn powered(word: &str) -> Option<(Dimension, f64)> {
-    let (base, power) = split_power(word)?;
+    let (base, _, power) = split_power(word)?;
     let (dimension, factor) = table::find(base)?;
     matches!(dimension, Dimension::LENGTH | Dimension::TIME)
         .then(|| (dimension.powi(power), factor.powi(i32::from(power))))
 }
 
-fn split_power(word: &str) -> Option<(&str, i8)> {
+/// A word that ends in a power: what stands before it, how it is written, and the power.
+fn split_power(word: &str) -> Option<(&str, &'static str, i8)> {
     [("^2", 2), ("^3", 3), ("2", 2), ("3", 3), ("²", 2), ("³", 3)]
         .iter()
-        .find_map(|&(end, power)| Some((word.strip_suffix(end)?, power)))
+        .find_map(|&(end, power)| Some((word.strip_suffix(end)?, end, power)))
 }
 
 /// What was most likely meant. A rewritten text is offered only if it can be read.
@@ -356,10 +361,7 @@ fn suggest(text: &str, refusal: Refusal) -> Option<String> {
         return Some(offer(hint).unwrap_or_else(|| hint.to_owned()));
     }
     // The same letters in another case: kwh, KG, M3.
-    let (stem, end) = match split_power(word) {
-        Some((stem, _)) => (stem, &word[stem.len()..]),
-        None => (word, ""),
-    };
+    let (stem, end) = split_power(word).map_or((word, ""), |(stem, end, _)| (stem, end));
     let other_case = table::known().find_map(|(symbol, ..)| {
         let same = symbol.eq_ignore_ascii_case(stem) || symbol.eq_ignore_ascii_case(word);
         same.then(|| offer(&format!("{symbol}{end}"))).flatten()

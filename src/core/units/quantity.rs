@@ -2,10 +2,12 @@
 
 use super::{Dimension, UnitError, parse_unit};
 
-/// An amount: `value` in SI base units (kg, m, s, K, J, kg of a substance, one of a currency) and its dimension.
+/// An amount: a figure in base units and what it counts.
 #[derive(Clone, Copy, PartialEq, Debug)]
 pub struct Quantity {
+    /// The figure in SI base units: kg, m, s, K, J, kg of a substance, one of a currency. Finite if it was read.
     pub value: f64,
+    /// What it counts.
     pub dimension: Dimension,
 }
 

@@ -194,8 +194,9 @@ fn vehicles_have_their_fuel() {
 #[test]
 fn printed_co2e_follows_from_the_gases() {
     let half_digit = |text: &str| {
-        text.split_once('.')
-            .map_or(0.5, |(_, d)| 0.5 * 0.1f64.powi(d.len() as i32))
+        text.split_once('.').map_or(0.5, |(_, d)| {
+            0.5 * 0.1f64.powi(i32::try_from(d.len()).expect("a few decimals"))
+        })
     };
     let mut reader = csv::Reader::from_reader(TABLE.as_bytes());
     let head: StringRecord = reader.headers().expect("a head").clone();

@@ -97,9 +97,9 @@ fn every_case_renders_in_every_form() {
 #[test]
 fn a_credit_moves_the_upright_and_takes_the_wheel_left_of_it() {
     let svg = drawn(&negative_net(), Form::Wide);
-    let upright: f64 = attribute(of_class(&svg, "path", "rail")[1], "d")[1..]
-        .split(' ')
-        .next()
+    let upright: f64 = attribute(of_class(&svg, "path", "rail")[1], "d")
+        .strip_prefix('M')
+        .and_then(|d| d.split(' ').next())
         .unwrap()
         .parse()
         .unwrap();
