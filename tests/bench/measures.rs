@@ -41,8 +41,8 @@ fn main() {
     }
 }
 
-fn tokio(work: impl std::future::Future<Output = ()>) {
-    let runtime = tokio::runtime::Builder::new_multi_thread()
+fn tokio(work: impl Future<Output = ()>) {
+    let runtime = ::tokio::runtime::Builder::new_multi_thread()
         .enable_all()
         .build()
         .expect("a runtime");

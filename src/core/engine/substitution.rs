@@ -90,7 +90,13 @@ fn credit(
         ..Input::default()
     };
     let first = findings.len();
-    inputs::by_factor(stage, &document, setting, at, problems, findings, &mut input);
+    let entry = inputs::Entry {
+        stage,
+        document: &document,
+        setting,
+        at: *at,
+    };
+    inputs::by_factor(&entry, &mut input, problems, findings);
     for finding in findings.iter_mut().skip(first) {
         finding.field = format!("co_products.{key}.displaces");
     }
