@@ -191,18 +191,12 @@ impl BlendRequest {
             let blend = fields.text("blend", at, problems);
             let share = fields.number("ethanol_percent_vol", at, problems);
             let temperature = required_number(fields, "temperature_c", at, problems);
-            required(fields, "heating_values", at, problems);
+            fields.need("heating_values", at, problems);
             let basis = fields.word("heating_values", &EnergyBasis::WORDS, at, problems);
-            let own = fields
-                .take("own_heating_values")
-                .and_then(|v| own_heating_values(v, &at.field("own_heating_values"), problems));
-            required(fields, "ethanol", at, problems);
-            let ethanol = fields
-                .take("ethanol")
-                .and_then(|v| intensity(v, &at.field("ethanol"), problems));
-            let petrol = fields
-                .take("petrol")
-                .and_then(|v| intensity(v, &at.field("petrol"), problems));
+            let own = fields.part("own_heating_values", at, problems, own_heating_values);
+            fields.need("ethanol", at, problems);
+            let ethanol = fields.part("ethanol", at, problems, intensity);
+            let petrol = fields.part("petrol", at, problems, intensity);
             Some(BlendRequest {
                 blend,
                 ethanol_percent_vol: share,
@@ -258,19 +252,13 @@ fn object<'v, T>(
     out
 }
 
-fn required(fields: &Fields, name: &'static str, at: &Place, problems: &mut Problems) {
-    if !fields.has(name) {
-        Fields::missing(name, at, problems);
-    }
-}
-
 fn required_number(
     fields: &mut Fields,
     name: &'static str,
     at: &Place,
     problems: &mut Problems,
 ) -> Option<f64> {
-    required(fields, name, at, problems);
+    fields.need(name, at, problems);
     fields.number(name, at, problems)
 }
 

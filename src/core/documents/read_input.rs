@@ -12,9 +12,7 @@ pub fn amount(value: &Value, at: &Place, problems: &mut Problems) -> Option<Amou
     let mut fields = Fields::open(value, at, problems)?;
     let figure = fields.number("value", at, problems);
     let unit = fields.required_text("unit", at, problems);
-    if !fields.has("value") {
-        Fields::missing("value", at, problems);
-    }
+    fields.need("value", at, problems);
     fields.close(at, problems);
     Some(Amount {
         value: figure?,
@@ -71,29 +69,25 @@ pub fn key(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Option<S
 pub fn input(value: &Value, at: &Place, problems: &mut Problems) -> Option<Input> {
     let mut fields = Fields::open(value, at, problems)?;
     let key = key(&mut fields, at, problems);
-    let factor = fields
-        .take("factor")
-        .and_then(|v| one_or_many(v, &at.field("factor"), problems, factor_ref));
-    let model = fields
-        .take("model")
-        .and_then(|v| one_or_many(v, &at.field("model"), problems, model_use));
+    let factor = fields.part("factor", at, problems, |v, place, problems| {
+        one_or_many(v, place, problems, factor_ref)
+    });
+    let model = fields.part("model", at, problems, |v, place, problems| {
+        one_or_many(v, place, problems, model_use)
+    });
     let input = Input {
         key: key.clone().unwrap_or_default(),
         label: fields.text("label", at, problems),
         amount: fields.number("amount", at, problems),
         unit: fields.text("unit", at, problems),
         factor,
-        gases: fields
-            .take("gases")
-            .and_then(|v| gases(v, &at.field("gases"), problems)),
+        gases: fields.part("gases", at, problems, gases),
         model,
         net_per_gross: fields.number("net_per_gross", at, problems),
         origin: fields.word("origin", &origins(), at, problems),
         estimated_percent: fields.number("estimated_percent", at, problems),
         evidence: evidence(&mut fields, at, problems),
-        uncertainty: fields
-            .take("uncertainty")
-            .and_then(|v| uncertainty(v, &at.field("uncertainty"), problems)),
+        uncertainty: fields.part("uncertainty", at, problems, uncertainty),
         note: fields.text("note", at, problems),
     };
     let by_factor = fields.has("factor") || fields.has("amount") || fields.has("unit");
@@ -109,9 +103,7 @@ pub fn input(value: &Value, at: &Place, problems: &mut Problems) -> Option<Input
         );
     } else if by_factor {
         for name in ["amount", "unit", "factor"] {
-            if !fields.has(name) {
-                Fields::missing(name, at, problems);
-            }
+            fields.need(name, at, problems);
         }
     }
     fields.close(at, problems);
@@ -162,12 +154,8 @@ pub fn factor_ref(value: &Value, at: &Place, problems: &mut Problems) -> Option<
 
 fn inline_factor(value: &Value, at: &Place, problems: &mut Problems) -> Option<InlineFactor> {
     let mut fields = Fields::open(value, at, problems)?;
-    let vector = fields
-        .take("gases")
-        .and_then(|v| gases(v, &at.field("gases"), problems));
-    if !fields.has("gases") {
-        Fields::missing("gases", at, problems);
-    }
+    let vector = fields.part("gases", at, problems, gases);
+    fields.need("gases", at, problems);
     let per = fields.required_text("per", at, problems);
     let citation = fields.required_text("citation", at, problems);
     if citation.as_deref().is_some_and(|text| text.trim().is_empty()) {
@@ -177,9 +165,7 @@ fn inline_factor(value: &Value, at: &Place, problems: &mut Problems) -> Option<I
             "Say where the figure comes from.",
         );
     }
-    let uncertainty = fields
-        .take("uncertainty")
-        .and_then(|v| uncertainty(v, &at.field("uncertainty"), problems));
+    let uncertainty = fields.part("uncertainty", at, problems, uncertainty);
     let note = fields.text("note", at, problems);
     fields.close(at, problems);
     Some(InlineFactor {
@@ -236,9 +222,7 @@ fn model_use(value: &Value, at: &Place, problems: &mut Problems) -> Option<Model
 pub fn uncertainty(value: &Value, at: &Place, problems: &mut Problems) -> Option<Uncertainty> {
     let mut fields = Fields::open(value, at, problems)?;
     let kinds = [("lognormal", 0), ("normal", 1), ("triangular", 2), ("uniform", 3)];
-    if !fields.has("kind") {
-        Fields::missing("kind", at, problems);
-    }
+    fields.need("kind", at, problems);
     let kind = fields.word("kind", &kinds, at, problems)?;
     let mut number = |name: &'static str| fields.number(name, at, problems);
     let read = match kind {

@@ -3,6 +3,7 @@
 use super::problem::Problems;
 use jiff::civil::Date;
 use serde_json::{Map, Value};
+use std::collections::BTreeSet;
 use std::fmt;
 
 /// A place in a document, built up as the reading goes down; printed only when a problem needs it.
@@ -92,6 +93,13 @@ impl<'v> Fields<'v> {
         self.map.get(name).is_some_and(|value| !value.is_null())
     }
 
+    /// Notes a required field that is absent; does not count as reading it.
+    pub fn need(&self, name: &str, at: &Place, problems: &mut Problems) {
+        if !self.has(name) {
+            Self::missing(name, at, problems);
+        }
+    }
+
     /// Notes that a required field is absent.
     pub fn missing(name: &str, at: &Place, problems: &mut Problems) {
         problems.add(
@@ -128,6 +136,20 @@ impl<'v> Fields<'v> {
         number_of(value, &at.field(name), problems)
     }
 
+    /// An optional share in %.
+    pub fn percent(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
+        let figure = self.number(name, at, problems)?;
+        if !(0.0..=100.0).contains(&figure) {
+            problems.add(
+                at.field(name),
+                format!("{figure} % is outside 0 to 100 %."),
+                "Check the figure.",
+            );
+            return None;
+        }
+        Some(figure)
+    }
+
     /// An optional truth value.
     pub fn flag(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<bool> {
         match self.take(name)? {
@@ -156,6 +178,18 @@ impl<'v> Fields<'v> {
     ) -> Option<T> {
         let value = self.take(name)?;
         word_of(value, words, &at.field(name), problems)
+    }
+
+    /// An optional field that `read` reads.
+    pub fn part<T>(
+        &mut self,
+        name: &'static str,
+        at: &Place,
+        problems: &mut Problems,
+        read: impl FnOnce(&'v Value, &Place, &mut Problems) -> Option<T>,
+    ) -> Option<T> {
+        let value = self.take(name)?;
+        read(value, &at.field(name), problems)
     }
 
     /// A list; each item is read by `read`.
@@ -199,6 +233,20 @@ impl<'v> Fields<'v> {
                 at.field(name),
                 format!("There is no field \"{name}\" here."),
                 remedy,
+            );
+        }
+    }
+}
+
+/// Notes every key that stands twice in a list; `field` is its name in the items.
+pub fn unique<'k>(keys: impl Iterator<Item = &'k str>, at: &Place, field: &str, problems: &mut Problems) {
+    let mut seen = BTreeSet::new();
+    for (index, key) in keys.enumerate() {
+        if !key.is_empty() && !seen.insert(key) {
+            problems.add(
+                at.item(index).field(field),
+                format!("\"{key}\" stands twice."),
+                "Give each a name of its own.",
             );
         }
     }

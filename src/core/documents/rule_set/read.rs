@@ -113,9 +113,7 @@ fn required_word<T: Copy>(
     at: &Place,
     problems: &mut Problems,
 ) -> Option<T> {
-    if !fields.has(name) {
-        Fields::missing(name, at, problems);
-    }
+    fields.need(name, at, problems);
     fields.word(name, words, at, problems)
 }
 
@@ -131,9 +129,7 @@ fn required_cited(
     at: &Place,
     problems: &mut Problems,
 ) -> Option<Cited> {
-    if !fields.has(name) {
-        Fields::missing(name, at, problems);
-    }
+    fields.need(name, at, problems);
     cited(fields, name, at, problems)
 }
 
@@ -141,9 +137,7 @@ fn cited(fields: &mut Fields, name: &'static str, at: &Place, problems: &mut Pro
     let value = fields.take(name)?;
     let at = &at.field(name);
     let mut fields = Fields::open(value, at, problems)?;
-    if !fields.has("value") {
-        Fields::missing("value", at, problems);
-    }
+    fields.need("value", at, problems);
     let figure = fields.number("value", at, problems);
     let unit = fields.required_text("unit", at, problems);
     let source = fields.required_text("source", at, problems);
@@ -161,9 +155,7 @@ fn cited(fields: &mut Fields, name: &'static str, at: &Place, problems: &mut Pro
 
 fn threshold(value: &Value, at: &Place, problems: &mut Problems) -> Option<Threshold> {
     let mut fields = Fields::open(value, at, problems)?;
-    if !fields.has("percent") {
-        Fields::missing("percent", at, problems);
-    }
+    fields.need("percent", at, problems);
     let percent = fields.number("percent", at, problems);
     let started_from = fields.day("started_from", at, problems);
     let started_to = fields.day("started_to", at, problems);
