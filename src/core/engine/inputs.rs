@@ -254,6 +254,7 @@ fn by_model(
                 field,
                 message: format!("{}: {}", input.label, note.message),
                 remedy: note.remedy,
+                reason: None,
             });
         }
         input.steps.extend(record.steps);
@@ -402,6 +403,7 @@ pub(super) fn by_factor(
                 input.label
             ),
             remedy: "Choose a factor that has one, or give the reason.".to_owned(),
+            reason: None,
         });
     }
 }

@@ -320,6 +320,7 @@ fn strength_missing(
             stage.title()
         ),
         remedy: "Enter it in % mass or % vol at 20 °C.".to_owned(),
+        reason: None,
     });
 }
 
@@ -384,6 +385,7 @@ fn shares_burden(
             product.name, rules.id
         ),
         remedy: "Set its role to residue.".to_owned(),
+        reason: None,
     });
     false
 }
@@ -534,6 +536,7 @@ fn one_moisture(stage: &StageDocument, from: &str, intake_has: bool) -> Finding 
             stage.title()
         ),
         remedy: "Enter the other moisture.".to_owned(),
+        reason: None,
     }
 }
 
