@@ -96,8 +96,8 @@ fn engine(ten: &str, sixty: &str, thousand: &str) {
         );
         for (what, without_workings) in [("json", true), ("json_with_workings", false)] {
             let options = Options {
-                rule_set: None,
                 without_workings,
+                ..Options::default()
             };
             say(
                 &format!("{what}_{label}"),

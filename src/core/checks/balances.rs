@@ -1,14 +1,10 @@
-//! Group C: balances. C-01, C-02 and C-18 are found by the models; C-16 needs the whole chain.
+//! Group C: the carbon balance of the whole chain (C-16). C-01, C-02 and C-18 are found by the models.
 
+use super::settings::Settings;
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Carbon, Finding, Severity};
 use crate::core::engine::carbon::Basis;
-use crate::core::units::rounding::plain_fixed;
-
-/// Closure outside this span warns, %.
-pub const WARN: (f64, f64) = (99.0, 101.0);
-/// Closure outside this span blocks where the contents are the pathway's own, %.
-pub const BLOCK: (f64, f64) = (95.0, 105.0);
+use crate::core::units::rounding::{plain, plain_fixed};
 
 /// Runs the group.
 pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
@@ -16,26 +12,36 @@ pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
         &subject.assessment.carbon,
         subject.carbon_basis,
         &subject.assessment.pathway_name,
+        subject.settings,
     ));
 }
 
 /// C-16: the crop's carbon closes.
-pub fn carbon_closes(carbon: &Carbon, basis: Basis, pathway: &str) -> Option<Finding> {
+pub fn carbon_closes(carbon: &Carbon, basis: Basis, pathway: &str, settings: &Settings) -> Option<Finding> {
     let closure = carbon.closure_percent?;
-    if (WARN.0..=WARN.1).contains(&closure) {
+    let around = |points: f64| (100.0 - points)..=(100.0 + points);
+    let (warn, block) = (
+        around(settings.closure_warn_points),
+        around(settings.closure_block_points),
+    );
+    if warn.contains(&closure) {
         return None;
     }
     let own = basis.main_feed_own && basis.largest_co_product_own;
-    let far = !(BLOCK.0..=BLOCK.1).contains(&closure);
+    let far = !block.contains(&closure);
     let severity = if far && own {
         Severity::Block
     } else {
         Severity::Warn
     };
     let then = match (far, own) {
-        (true, true) => "outside 95 to 105 % it blocks",
-        (true, false) => "the contents are typical ones, so it does not block",
-        (false, _) => "99 to 101 % is expected",
+        (true, true) => format!(
+            "outside {} to {} % it blocks",
+            plain(*block.start()),
+            plain(*block.end())
+        ),
+        (true, false) => "the contents are typical ones, so it does not block".to_owned(),
+        (false, _) => format!("{} to {} % is expected", plain(*warn.start()), plain(*warn.end())),
     };
     let message = format!(
         "The crop's carbon of {pathway} closes to {} %; {then}.",

@@ -1,8 +1,9 @@
 //! Captured CO2 and other deductions as far as the whole chain tells: no more than the works form, and proofs in place.
 
+use super::parameters::{mass_kg, models, word};
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Assessment, Finding, Severity};
-use crate::core::documents::input::{Input, ModelUse, OneOrMany};
+use crate::core::documents::input::{Input, ModelUse};
 use crate::core::documents::pathway::Stage;
 use crate::core::domain::StageKind;
 use crate::core::engine::demand::demand;
@@ -16,6 +17,7 @@ const SUM: f64 = 1e-9;
 /// Runs the checks.
 pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
     findings.extend(captured_not_above_formed(subject));
+    findings.extend(not_in_two_credits(&credits(subject.resolved)));
     for stage in &subject.resolved.stages {
         findings.extend(emissions_of_capture(stage.document));
         for input in &stage.document.inputs {
@@ -23,10 +25,6 @@ pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
             findings.extend(bonus_evidence(stage.document, input));
         }
     }
-}
-
-fn models(input: &Input) -> &[ModelUse] {
-    input.model.as_ref().map(OneOrMany::list).unwrap_or_default()
 }
 
 fn says(model: &ModelUse, name: &str, word: &str) -> bool {
@@ -165,4 +163,127 @@ pub fn bonus_evidence(stage: &Stage, input: &Input) -> Option<Finding> {
         message,
         remedy,
     ))
+}
+
+/// A credit for captured CO2, per MJ of fuel with all shares 1.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Credit {
+    /// Key of the stage.
+    pub stage: String,
+    /// Name of the stage.
+    pub name: String,
+    /// Field.
+    pub field: String,
+    /// Stored, or else in place of fossil CO2.
+    pub stored: bool,
+    /// What was captured, as read.
+    pub captured: f64,
+    /// What is credited.
+    pub delivered: f64,
+    /// Evidence of the figures.
+    pub evidence: Vec<String>,
+    /// t per unit of the two figures, to show them as entered.
+    pub tonnes: f64,
+}
+
+/// G-03: what a storage credit and a replacement credit share in one reading is credited once. Two readings are one where
+/// they are equal or rest on the same evidence.
+pub fn not_in_two_credits(credits: &[Credit]) -> Vec<Finding> {
+    let mut findings = Vec::new();
+    for store in credits.iter().filter(|credit| credit.stored) {
+        for other in credits.iter().filter(|credit| !credit.stored) {
+            let equal = (store.captured - other.captured).abs() <= 1e-6 * store.captured;
+            let one_reading = equal || store.evidence.iter().any(|id| other.evidence.contains(id));
+            let twice = store.delivered + other.delivered - store.captured.max(other.captured);
+            if !one_reading || twice <= SUM * store.captured {
+                continue;
+            }
+            let message = format!(
+                "{} t CO2 of {} appear in both storage and replacement.",
+                plain_fixed(twice * store.tonnes, 1),
+                store.name
+            );
+            let remedy = "Lower one of the two.";
+            findings.push(finding(
+                "G-03",
+                Severity::Block,
+                &store.stage,
+                &store.field,
+                message,
+                remedy,
+            ));
+        }
+    }
+    findings
+}
+
+fn credits(resolved: &Resolved) -> Vec<Credit> {
+    let whole = demand(resolved).whole;
+    let mut found = Vec::new();
+    for (stage, times) in resolved
+        .stages
+        .iter()
+        .zip(whole)
+        .filter(|(_, times)| *times > 0.0)
+    {
+        for input in &stage.document.inputs {
+            for model in models(input).iter().filter(|model| model.kind == "capture") {
+                let Some(captured) = mass_kg(model, "co2_captured") else {
+                    continue;
+                };
+                found.push(Credit {
+                    stage: stage.document.key.clone(),
+                    name: stage.document.title().to_owned(),
+                    field: format!("inputs.{}.co2_captured", input.key),
+                    stored: word(model, "use") == Some("store"),
+                    captured: captured * times,
+                    delivered: mass_kg(model, "co2_delivered").unwrap_or(captured) * times,
+                    evidence: input.evidence.clone(),
+                    tonnes: 1.0 / times / 1000.0,
+                });
+            }
+        }
+    }
+    found
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn credit(stored: bool, captured: f64, delivered: f64, evidence: &str) -> Credit {
+        let (stage, field) = (
+            if stored { "store" } else { "sell" }.to_owned(),
+            "inputs.credit".to_owned(),
+        );
+        let evidence = vec![evidence.to_owned()];
+        Credit {
+            name: stage.clone(),
+            stage,
+            field,
+            stored,
+            captured,
+            delivered,
+            evidence,
+            tonnes: 0.001,
+        }
+    }
+
+    #[test]
+    fn a_tonne_is_credited_once() {
+        let found = |a, b| not_in_two_credits(&[a, b]);
+        // One reading of 100 t divided between the two uses.
+        assert!(found(credit(true, 1e5, 6e4, "EV-1"), credit(false, 1e5, 4e4, "EV-1")).is_empty());
+        // Two readings of their own.
+        assert!(found(credit(true, 1e5, 9e4, "EV-1"), credit(false, 8e4, 8e4, "EV-2")).is_empty());
+        // The same reading credited in full twice, by its figure or by its evidence.
+        let equal = found(credit(true, 1e5, 1e5, "EV-1"), credit(false, 1e5, 1e5, "EV-2"));
+        assert!(equal[0].message.starts_with("100.0 t CO2 of store"));
+        assert_eq!(
+            found(credit(true, 1e5, 9e4, "EV-1"), credit(false, 8e4, 8e4, "EV-1"))[0].id,
+            "G-03"
+        );
+        // Two of one use are for C-03 to judge.
+        assert!(found(credit(true, 1e5, 1e5, "EV-1"), credit(true, 1e5, 1e5, "EV-1")).is_empty());
+    }
 }

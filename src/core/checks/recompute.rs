@@ -1,5 +1,6 @@
 //! Group A: the figures redo themselves. Each function takes plain figures, so that a wrong one can be shown to it.
 
+use super::settings::Settings;
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Assessment, Finding, Severity};
 use crate::core::domain::RuleSet;
@@ -212,9 +213,9 @@ pub fn consignment_energy(name: &str, found: f64, expected: f64, rules: &RuleSet
     })
 }
 
-/// the energy of a consignment by mass and by volume differ by more than 2.5 %.
-pub fn mass_and_volume(name: &str, by_mass: f64, by_volume: f64) -> Option<Finding> {
-    ((by_mass - by_volume).abs() > 0.025 * by_volume.abs()).then(|| {
+/// the energy of a consignment by mass and by volume differ by more than the setting.
+pub fn mass_and_volume(name: &str, by_mass: f64, by_volume: f64, settings: &Settings) -> Option<Finding> {
+    ((by_mass - by_volume).abs() > settings.mass_volume_percent / 100.0 * by_volume.abs()).then(|| {
         let message = format!(
             "By mass consignment {name} holds {} MJ, by volume {} MJ; 27 MJ/kg and 21 MJ/l are rounded and imply 0.778 kg/l.",
             plain(by_mass),
@@ -267,7 +268,12 @@ fn bought(subject: &Subject, findings: &mut Vec<Finding>) {
             findings.extend(consignment_energy(name, covers.value / 1e6, expected, rules));
         }
         if let (Dimension::MASS, Some(by_volume), Some(per_kg)) = (covers.dimension, by_volume, per_kg) {
-            findings.extend(mass_and_volume(name, covers.value * per_kg, by_volume));
+            findings.extend(mass_and_volume(
+                name,
+                covers.value * per_kg,
+                by_volume,
+                subject.settings,
+            ));
         }
     }
 }

@@ -310,6 +310,9 @@ pub struct Finding {
     pub message: String,
     /// What to do.
     pub remedy: String,
+    /// For a warning: the written reason why it is accepted.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub reason: Option<String>,
 }
 
 /// How much a finding matters.

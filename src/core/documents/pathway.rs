@@ -35,6 +35,9 @@ pub struct Pathway {
     #[serde(skip_serializing_if = "Option::is_none")]
     #[schema(value_type = Option<String>, format = Date)]
     pub plant_started: Option<Date>,
+    /// What the plant can make in a year, as ethanol: a volume, a mass or an energy.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub plant_capacity_per_year: Option<Amount>,
     /// Own materials.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub materials: Vec<OwnMaterial>,

@@ -114,6 +114,7 @@ fn partial(left_out: &[String]) -> Finding {
             left_out.join(", ")
         ),
         remedy: "Enter the missing stages or use a published default for their term.".to_owned(),
+        reason: None,
     }
 }
 

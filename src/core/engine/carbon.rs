@@ -424,6 +424,7 @@ fn typical(parcel: &Parcel, content: CarbonContent) -> Finding {
             plain(content.percent)
         ),
         remedy: "Enter a laboratory figure to make the balance a proof.".to_owned(),
+        reason: None,
     }
 }
 

@@ -321,6 +321,7 @@ fn strength_missing(
             stage.title()
         ),
         remedy: "Enter it in % mass or % vol at 20 °C.".to_owned(),
+        reason: None,
     });
 }
 
@@ -385,6 +386,7 @@ fn shares_burden(
             product.name, rules.id
         ),
         remedy: "Set its role to residue.".to_owned(),
+        reason: None,
     });
     false
 }
@@ -535,6 +537,7 @@ fn one_moisture(stage: &StageDocument, from: &str, intake_has: bool) -> Finding 
             stage.title()
         ),
         remedy: "Enter the other moisture.".to_owned(),
+        reason: None,
     }
 }
 

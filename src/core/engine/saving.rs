@@ -110,6 +110,7 @@ pub fn thresholds(
                     resolved.rules.id
                 ),
                 remedy: "Enter the day of first production.".to_owned(),
+                reason: None,
             });
             let unknown = |t: &Threshold| ThresholdResult {
                 percent: t.percent,

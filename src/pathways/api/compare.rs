@@ -199,6 +199,7 @@ fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Resu
         let options = Options {
             rule_set,
             without_workings: true,
+            ..Options::default()
         };
         match (app.evaluate)(pathway, app.library, options) {
             Ok(assessment) => assessed.push(assessment),

@@ -186,6 +186,7 @@ impl Start {
             period: Period { from, to, kind: None },
             rule_set: self.rule_set.clone(),
             plant_started: started,
+            plant_capacity_per_year: None,
             materials: Vec::new(),
             defaults: BTreeMap::new(),
             not_covered: Vec::new(),

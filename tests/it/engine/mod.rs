@@ -1,6 +1,7 @@
 //! The engine: documents with independent results, laws, published values, and what it refuses.
 
 mod blend;
+mod checks;
 mod contract;
 mod deductions;
 mod defaults_table;

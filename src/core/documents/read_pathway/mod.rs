@@ -4,12 +4,13 @@ mod flows;
 mod stage;
 mod stated;
 
-use super::json;
 use super::pathway::{DefaultKey, FORMAT, OwnMaterial, Pathway, Period, PeriodKind};
 use super::problem::Problems;
 use super::read_input::amount;
 use super::reader::{Fields, Place, nearest, shape, text_of, unique, word_of};
+use super::{Amount, json};
 use crate::core::domain::StageKind;
+use crate::core::units::{Dimension, Quantity};
 use serde_json::Value;
 use stage::stage;
 use std::collections::BTreeMap;
@@ -72,6 +73,9 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
     let period = fields.part("period", at, problems, period);
     let rule_set = fields.required_text("rule_set", at, problems);
     let plant_started = fields.day("plant_started", at, problems);
+    let plant_capacity_per_year = fields
+        .take("plant_capacity_per_year")
+        .and_then(|v| capacity(v, &at.field("plant_capacity_per_year"), problems));
     let materials = fields.list("materials", at, problems, own_material);
     let defaults = fields
         .take("defaults")
@@ -116,11 +120,43 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
         period: period?,
         rule_set: rule_set?,
         plant_started,
+        plant_capacity_per_year,
         materials,
         defaults,
         not_covered,
         stages,
     })
+}
+
+fn capacity(value: &Value, at: &Place, problems: &mut Problems) -> Option<Amount> {
+    let amount = amount(value, at, problems)?;
+    if amount.value <= 0.0 {
+        let detail = format!("A capacity of {} {} makes nothing.", amount.value, amount.unit);
+        problems.add(
+            at.field("value"),
+            detail,
+            "Give what the plant can make in a year.",
+        );
+        return None;
+    }
+    let wanted = [
+        Dimension::VOLUME,
+        Dimension::MASS,
+        Dimension::ENERGY,
+        Dimension::ENERGY_NET,
+    ];
+    match Quantity::read(amount.value, &amount.unit) {
+        Ok(read) if wanted.contains(&read.dimension) => Some(amount),
+        _ => {
+            let detail = format!("\"{}\" is no volume, mass or energy.", amount.unit);
+            problems.add(
+                at.field("unit"),
+                detail,
+                "Give it in m3, t or GJ; a year is understood.",
+            );
+            None
+        }
+    }
 }
 
 fn period(value: &Value, at: &Place, problems: &mut Problems) -> Option<Period> {

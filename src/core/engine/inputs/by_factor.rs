@@ -76,6 +76,7 @@ pub fn by_factor(entry: &Entry, input: &mut Input, problems: &mut Problems, find
                 input.label
             ),
             remedy: "Choose a factor that has one, or give the reason.".to_owned(),
+            reason: None,
         });
     }
 }

@@ -117,6 +117,7 @@ fn finding(entry: &Entry, label: &str, note: Note) -> Finding {
         field,
         message: format!("{label}: {}", note.message),
         remedy: note.remedy,
+        reason: None,
     }
 }
 

@@ -242,13 +242,7 @@ pub fn table(pathway: &Pathway, assessment: &Assessment, book: &Book) -> Result<
         published,
         actual,
     };
-    let works = heat::works(pathway, book);
-    let mut rows: Vec<PublishedRow> = subject
-        .published
-        .iter()
-        .map(|row| fit::judge(row, pathway, &works))
-        .collect();
-    rows.sort_by_key(|row| (row.feedstock_fits, row.process_fits));
+    let rows = judged(pathway, rules, book);
     let combinations = combine::all(&subject, &rows);
     let (best, best_if_confirmed) = combine::best(&combinations);
     let terms = terms::rows(
@@ -277,6 +271,19 @@ pub fn table(pathway: &Pathway, assessment: &Assessment, book: &Book) -> Result<
             SOURCE.to_owned()
         },
     })
+}
+
+/// The published pathways of a rule set, judged: those that belong to the chain come first.
+pub fn judged(pathway: &Pathway, rules: &RuleSet, book: &Book) -> Vec<PublishedRow> {
+    let edition = rules.default_values.as_ref();
+    let Some(edition) = edition.and_then(|edition| book.editions.get(edition)) else {
+        return Vec::new();
+    };
+    let works = heat::works(pathway, book);
+    let rows = edition.pathways.values();
+    let mut rows: Vec<PublishedRow> = rows.map(|row| fit::judge(row, pathway, &works)).collect();
+    rows.sort_by_key(|row| (row.feedstock_fits, row.process_fits));
+    rows
 }
 
 /// The pathway with other defaults, assessed: the same arithmetic as everywhere. What a default covers is no longer left out.
