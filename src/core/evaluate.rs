@@ -35,7 +35,7 @@ impl Default for Options<'_> {
 /// # Errors
 /// Everything that is wrong with the pathway, each with JSON pointer and remedy.
 pub fn evaluate(pathway: &Pathway, book: &Book, options: Options<'_>) -> Result<Assessment, Problems> {
-    let resolved = resolve(pathway, options.rule_set, book)?;
+    let resolved = resolve(pathway, options.rule_set, book, !options.without_workings)?;
     let assessed = assess(&resolved, !options.without_workings)?;
     let mut assessment = assessed.assessment;
     let typical = match assessment.saving_percent {

@@ -77,7 +77,7 @@ fn engine(ten: &str, sixty: &str, thousand: &str) {
     for (label, file) in [("10", ten), ("60", sixty), ("1000", thousand)] {
         let bytes = std::fs::read(file).expect("a document");
         let pathway = Pathway::from_bytes(&bytes).expect("a pathway");
-        let resolved = resolve(&pathway, None, book()).expect("a plan");
+        let resolved = resolve(&pathway, None, book(), false).expect("a plan");
         say(
             &format!("net_{label}"),
             rate(|| {
@@ -186,7 +186,7 @@ async fn one_read(app: &App, pathway: &Pathway) {
         "{}",
         json!({ "name": "read_one_document_seconds", "median": times[200] })
     );
-    let resolved = resolve(pathway, None, book()).expect("a plan");
+    let resolved = resolve(pathway, None, book(), false).expect("a plan");
     let (per_second, ..) = rate(|| {
         black_box(totals(&resolved, &demand(black_box(&resolved))));
     });

@@ -18,7 +18,8 @@ use crate::core::models::Setting;
 use crate::core::models::flow::{ETHANOL, Measured, measure, no_heat};
 use crate::core::units::rounding::plain;
 
-/// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none).
+/// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none). Without `workings` the
+/// figures are the same and the steps that lead to them are left out where they cost time.
 ///
 /// # Errors
 /// Everything that is wrong with the pathway.
@@ -26,6 +27,7 @@ pub fn resolve<'p>(
     pathway: &'p Pathway,
     rule_set: Option<&str>,
     book: &'p Book,
+    workings: bool,
 ) -> Result<Resolved<'p>, Problems> {
     let mut problems = Problems::default();
     let rules = rules(pathway, rule_set, book, &mut problems);
@@ -73,6 +75,7 @@ pub fn resolve<'p>(
             neighbours: &neighbours,
             period: &pathway.period,
             harvest_year: harvest_year(pathway, &graph, j),
+            workings,
         };
         let mut inputs = inputs::inputs(document, &setting, &at, &mut problems, &mut findings);
         bought(document, &flows[j], &setting, &at, &mut problems, &mut inputs);

@@ -368,30 +368,34 @@ fn unfit_unit(error: &crate::core::units::UnitError) -> Unfit {
     Unfit { detail, remedy }
 }
 
+/// The gases of an amount in the factor's unit.
+pub fn gases_of(amount: f64, factor: &Priced) -> GasVector {
+    factor.gases.vector() * amount
+}
+
 /// The gases of an amount in the factor's unit, with one step a gas.
 pub fn price(amount: f64, factor: &Priced, steps: &mut Vec<Step>) -> GasVector {
-    let mut gases = GasVector::ZERO;
-    for gas in Gas::ALL {
-        let Some(per_unit) = factor.gases.get(gas) else {
-            continue;
-        };
-        gases[gas] = amount * per_unit;
-        if per_unit != 0.0 {
-            steps.push(step(
-                format!(
-                    "{} {} x {} kg {} per {}, {}",
-                    plain(amount),
-                    factor.unit.symbol,
-                    plain(per_unit),
-                    gas.name(),
-                    factor.per,
-                    factor.id
-                ),
-                gases[gas],
-                &format!("kg {}", gas.name()),
-                &sourced(factor),
-            ));
-        }
+    let gases = gases_of(amount, factor);
+    for (gas, per_unit) in factor
+        .gases
+        .vector()
+        .entries()
+        .filter(|(_, per_unit)| *per_unit != 0.0)
+    {
+        steps.push(step(
+            format!(
+                "{} {} x {} kg {} per {}, {}",
+                plain(amount),
+                factor.unit.symbol,
+                plain(per_unit),
+                gas.name(),
+                factor.per,
+                factor.id
+            ),
+            gases[gas],
+            &format!("kg {}", gas.name()),
+            &sourced(factor),
+        ));
     }
     gases
 }

@@ -98,6 +98,8 @@ pub struct Setting<'a> {
     pub period: &'a Period,
     /// Year of the harvest, of this stage or of one that takes from it; else the year the period begins in.
     pub harvest_year: i16,
+    /// Whether anybody will read the arithmetic; without it the figures come sooner.
+    pub workings: bool,
 }
 
 /// What a model gives, per recipe.

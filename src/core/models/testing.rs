@@ -357,6 +357,7 @@ impl Bench {
             neighbours: &self.neighbours,
             period: &self.period,
             harvest_year: 2026,
+            workings: true,
         };
         let map = parameters.as_object().unwrap();
         let mut given = Given::open(

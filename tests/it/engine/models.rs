@@ -79,6 +79,7 @@ fn found(case: &Case) -> Result<f64, String> {
             kind: None,
         },
         harvest_year: 2026,
+        workings: true,
     };
     let (mut problems, mut record) = (Problems::default(), Record::default());
     let outcome = {

@@ -45,8 +45,13 @@ pub fn by_factor(entry: &Entry, input: &mut Input, problems: &mut Problems, find
     for factor in &list {
         match factors::convert(amount, &unit, document.net_per_gross, &heating, factor) {
             Ok(converted) => {
-                input.steps.extend(converted.step);
-                input.gases += factors::price(converted.amount, factor, &mut input.steps);
+                input.gases += match entry.setting.workings {
+                    true => {
+                        input.steps.extend(converted.step);
+                        factors::price(converted.amount, factor, &mut input.steps)
+                    }
+                    false => factors::gases_of(converted.amount, factor),
+                };
             }
             Err(unfit) => {
                 problems.add(entry.at.field("unit"), unfit.detail, unfit.remedy);

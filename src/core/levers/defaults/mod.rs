@@ -305,7 +305,7 @@ fn attempt(
         term || (kind == StageKind::FuelTransport && defaults.contains_key(&DefaultKey::ETdFinalFuel))
     };
     changed.not_covered.retain(|kind| !covers(*kind));
-    let resolved = resolve(&changed, Some(&rules.id), book)?;
+    let resolved = resolve(&changed, Some(&rules.id), book, false)?;
     Ok(assess(&resolved, false)?.assessment)
 }
 
