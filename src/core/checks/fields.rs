@@ -15,6 +15,9 @@ const SUM: f64 = 1e-9;
 /// Runs the checks.
 pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
     for stage in &subject.resolved.stages {
+        let output = &stage.products[0].flow;
+        // By dry matter where the output has a moisture, else wet.
+        let dry = output.moisture.is_some();
         let mut harvested = Some(0.0);
         let mut field = None;
         for input in &stage.document.inputs {
@@ -31,15 +34,12 @@ pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
                 content,
                 subject.settings,
             ));
-            harvested = growers.iter().filter(|g| g.stated).map(|g| g.dry_kg()).fold(
-                harvested.filter(|_| growers.iter().all(|g| g.stated)),
-                |sum, kg| Some(sum? + kg?),
-            );
+            let here: Option<f64> = growers.iter().map(|grower| grower.stated_kg(dry)).sum();
+            harvested = harvested.zip(here).map(|(sum, kg)| sum + kg);
             field = Some(input);
         }
-        if let (Some(input), Some(most), Some(delivered)) =
-            (field, harvested, stage.products[0].flow.dry_kg())
-        {
+        let delivered = if dry { output.dry_kg() } else { output.wet_kg };
+        if let (Some(input), Some(most), Some(delivered)) = (field, harvested, delivered) {
             findings.extend(delivery(stage.document, input, delivered, most, subject.settings));
         }
     }
@@ -66,6 +66,15 @@ impl Grower {
     /// Dry harvest, kg; none where its water is not known.
     fn dry_kg(&self) -> Option<f64> {
         Some(1000.0 * self.harvest_t? * (1.0 - self.moisture?))
+    }
+
+    /// Harvest as the model states it, dry or wet, kg.
+    fn stated_kg(&self, dry: bool) -> Option<f64> {
+        match (self.stated, dry) {
+            (false, _) => None,
+            (true, true) => self.dry_kg(),
+            (true, false) => Some(1000.0 * self.harvest_t?),
+        }
     }
 }
 
@@ -134,7 +143,7 @@ pub fn usual_yield(stage: &Stage, input: &Input, growers: &[Grower], settings: &
     ))
 }
 
-/// C-10: area times yield covers what the stage delivers; both in kg dry per recipe.
+/// C-10: area times yield covers what the stage delivers; both in kg per recipe, dry or both wet.
 pub fn delivery(
     stage: &Stage,
     input: &Input,
@@ -146,7 +155,7 @@ pub fn delivery(
         return None;
     }
     let message = format!(
-        "{} delivers {} t of dry matter, but its area and yield give {} t.",
+        "{} delivers {} t, but its area and yield give {} t.",
         stage.title(),
         plain_fixed(delivered / 1000.0, 1),
         plain_fixed(most / 1000.0, 1)

@@ -67,7 +67,7 @@ pub fn dry_matter(stage: &Stage, matter: &Matter, settings: &Settings) -> Option
     let missing = matter.into.0 - matter.out.1;
     let excess = matter.out.0 - matter.into.1;
     let percent = 100.0 * missing.max(excess) / matter.crop;
-    if !(percent > settings.dry_matter_percent) {
+    if percent <= settings.dry_matter_percent {
         return None;
     }
     let (name, shown) = (stage.title(), plain_fixed(percent, 1));

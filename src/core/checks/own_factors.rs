@@ -149,7 +149,17 @@ fn rows<'b>(book: &'b Book, edition: &str, own: &OwnFactor) -> Vec<&'b Factor> {
             && row.usage == Use::Amount
             && (counts != Counts::Other || row.unit.dimension == own.dimension)
     };
-    edition.factors.values().filter(like).collect()
+    let rows: Vec<&Factor> = edition.factors.values().filter(like).collect();
+    // Fertiliser and what its acid does in the soil share a unit: the group with most rows is what the unit is for.
+    let size = |group: &str| rows.iter().filter(|row| row.group == group).count();
+    match rows
+        .iter()
+        .max_by_key(|row| size(&row.group))
+        .map(|row| row.group.clone())
+    {
+        Some(group) if counts == Counts::Other => rows.into_iter().filter(|row| row.group == group).collect(),
+        _ => rows,
+    }
 }
 
 /// E-07: an own factor where the standard edition has rows for the same counted thing is explained in a note. What fuel

@@ -76,7 +76,7 @@ pub fn within_capacity(
     settings: &Settings,
 ) -> Option<Finding> {
     let most = capacity * days / 365.0 * settings.capacity_percent / 100.0;
-    if !(output > most) {
+    if output <= most {
         return None;
     }
     let message = format!(

@@ -364,7 +364,7 @@ fn finding_rows(head: &Head, pathway: &Pathway, findings: &[Finding]) -> Vec<Fin
                         stage.title().to_owned(),
                     )
                 }
-                None if finding.id.starts_with("C-") => (Some("#carbon".to_owned()), "Carbon".to_owned()),
+                None if finding.field == "carbon" => (Some("#carbon".to_owned()), "Carbon".to_owned()),
                 None => (None, "the whole pathway".to_owned()),
             };
             FindingRow {

@@ -164,6 +164,11 @@ fn a_field_delivers_no_more_than_it_grew() {
     let mut document = demo("a");
     input(&mut document, "field", "n2o")["model"]["yield_t"] = json!(60076.2);
     assert_eq!(found(&assessed(&document), "C-10")[0].field, "inputs.n2o.yield_t");
+    // A crop that is delivered without a moisture is compared wet.
+    let mut document = demo("a");
+    let output = document["stages"][0]["output"].as_object_mut().unwrap();
+    output.remove("moisture_percent");
+    assert!(found(&assessed(&document), "C-10").is_empty());
 }
 
 #[test]
