@@ -1,7 +1,6 @@
 //! Soil N2O, acidity and lime of Implementing Regulation (EU) 2022/996, Annex VII points 1.4 and 1.5.
 
 use super::reading::{Reading, Row};
-use super::soils::add;
 use crate::core::domain::Cited;
 use crate::core::domain::book::{ResidueRow, SoilTables};
 use std::collections::BTreeMap;
@@ -66,7 +65,7 @@ fn constants(reading: &mut Reading, tables: &mut SoilTables) {
             other => other,
         };
         let figure = reading.cited(&row, "value", &format!("eu-2022-996 soil constant {symbol}"));
-        add(reading, tables, symbol.to_owned(), figure);
+        reading.constant(tables, symbol.to_owned(), figure);
     }
 }
 
@@ -87,7 +86,7 @@ fn effects(reading: &mut Reading, tables: &mut SoilTables) {
         };
         let mut figure = reading.cited(&row, "effect_value", &format!("eu-2022-996 {symbol}"));
         figure.unit = unit.to_owned();
-        add(reading, tables, symbol, figure);
+        reading.constant(tables, symbol, figure);
     }
 }
 
@@ -115,9 +114,9 @@ fn acidity_and_lime(reading: &mut Reading, tables: &mut SoilTables) {
                 note: None,
                 ..figure.clone()
             };
-            add(reading, tables, "lime.ph_limit".to_owned(), limit);
+            reading.constant(tables, "lime.ph_limit".to_owned(), limit);
         }
-        add(reading, tables, symbol.to_owned(), figure);
+        reading.constant(tables, symbol.to_owned(), figure);
     }
 }
 

@@ -1,5 +1,6 @@
 //! Reads published tables cell by cell. What is wrong is collected, so that one start reports everything.
 
+use crate::core::domain::book::SoilTables;
 use crate::core::domain::{Citation, Cited, Status};
 use crate::core::units::{Unit, parse_unit};
 use csv::StringRecord;
@@ -118,6 +119,14 @@ impl Reading {
             self.problem(&row.place(), format!("{column} is blank"));
         }
         self.figure(row, column).unwrap_or(0.0)
+    }
+
+    /// Adds a constant of a soil method; a symbol has one value.
+    pub fn constant(&mut self, tables: &mut SoilTables, symbol: String, figure: Cited) {
+        if tables.constants.contains_key(&symbol) {
+            self.problem("soils", format!("{symbol} is given twice"));
+        }
+        tables.constants.insert(symbol, figure);
     }
 
     /// A unit as a table prints it.

@@ -47,14 +47,6 @@ pub(super) fn read(reading: &mut Reading) -> BTreeMap<String, SoilTables> {
     ])
 }
 
-/// Adds a constant; a symbol has one value.
-pub(super) fn add(reading: &mut Reading, tables: &mut SoilTables, symbol: String, figure: Cited) {
-    if tables.constants.contains_key(&symbol) {
-        reading.problem("soils", format!("{symbol} is given twice"));
-    }
-    tables.constants.insert(symbol, figure);
-}
-
 /// The three tables of an IPCC edition: name and text.
 struct Ipcc {
     edition: &'static str,
@@ -70,7 +62,7 @@ impl Ipcc {
             for row in reading.rows(name, text, &["symbol", value, "unit", "source", "status", "note"]) {
                 let symbol = row.text("symbol").to_owned();
                 let figure = reading.cited(&row, value, &format!("{} soil constant {symbol}", self.edition));
-                add(reading, &mut tables, symbol, figure);
+                reading.constant(&mut tables, symbol, figure);
             }
         }
         self.residues(reading, &mut tables);
@@ -174,8 +166,7 @@ fn fertiliser_classes(reading: &mut Reading, tables: &mut SoilTables) {
         );
         let Citation { source, status } = reading.citation(&row, &named);
         let status = weakest([status, class.status]);
-        add(
-            reading,
+        reading.constant(
             tables,
             symbol,
             Cited {

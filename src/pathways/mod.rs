@@ -42,12 +42,17 @@ pub enum Expected {
 }
 
 impl Expected {
-    fn fits(&self, number: i64, hash: &str) -> bool {
-        match self {
+    /// `Conflict` unless the current revision, `number` with `hash`, is the expected one.
+    fn check(&self, number: i64, hash: &str) -> Result<(), PathwayError> {
+        let fits = match self {
             Expected::Hash(seen) => seen == hash,
             Expected::Number(seen) => *seen == number,
             Expected::Any => true,
-        }
+        };
+        fits.then_some(()).ok_or_else(|| PathwayError::Conflict {
+            revision: number,
+            hash: hash.to_owned(),
+        })
     }
 }
 

@@ -131,12 +131,7 @@ pub async fn replace(
                     let head = sql::head(c, who, id)
                         .await?
                         .ok_or(PathwayError::NotFound(What::Pathway))?;
-                    if !expected.fits(head.number, &head.hash) {
-                        return Err(PathwayError::Conflict {
-                            revision: head.number,
-                            hash: head.hash,
-                        });
-                    }
+                    expected.check(head.number, &head.hash)?;
                     if head.archived_at.is_some() {
                         return Err(PathwayError::Archived);
                     }
@@ -181,12 +176,7 @@ async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -
             let head = sql::head(c, who, id)
                 .await?
                 .ok_or(PathwayError::NotFound(What::Pathway))?;
-            if !expected.fits(head.number, &head.hash) {
-                return Err(PathwayError::Conflict {
-                    revision: head.number,
-                    hash: head.hash,
-                });
-            }
+            expected.check(head.number, &head.hash)?;
             if head.archived_at.is_some() != archived {
                 sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
             }
@@ -256,12 +246,7 @@ async fn current(app: &App, id: Uuid, expected: &Expected) -> Result<(Pathway, E
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, None).await?;
     let found = found.ok_or(PathwayError::NotFound(What::Pathway))?;
-    if !expected.fits(found.number, &found.hash) {
-        return Err(PathwayError::Conflict {
-            revision: found.number,
-            hash: found.hash,
-        });
-    }
+    expected.check(found.number, &found.hash)?;
     Ok((
         document(&found.document, found.revision_id)?,
         Expected::Number(found.number),

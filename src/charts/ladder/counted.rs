@@ -1,13 +1,12 @@
 //! The counted side: bars of the gases, the running line, the uprights, the wheel.
 
-use super::model::{Part, Rung};
+use super::look::{bar, class, fill_of_width};
+use super::model::Rung;
 use super::picture::Picture;
 use crate::charts::text::{coordinate, short};
 
 /// A part shorter than this is left out; up to 1 it is drawn 1 wide.
 const LEFT_OUT: f64 = 0.25;
-/// A part shorter than this is solid: its pattern would not be seen.
-const SOLID: f64 = 4.0;
 
 /// Bars of all stages.
 pub(super) fn bars(p: &Picture, out: &mut Vec<String>) {
@@ -28,42 +27,12 @@ fn row(p: &Picture, stage: &Rung, y: f64, out: &mut Vec<String>) {
             let x = if sign > 0.0 { at } else { at - w };
             at += w * sign;
             if w >= LEFT_OUT {
-                out.push(format!(
-                    r#"<rect class="b {}" x="{}" y="{}" width="{}" height="{}"{}/>"#,
-                    class(part, g),
-                    coordinate(x, 2),
-                    short(y),
-                    coordinate(w.max(1.0), 2),
-                    short(p.form.bar),
-                    fill(part, g, w)
-                ));
+                let class = class(part, g);
+                let fill = fill_of_width(class, w);
+                let x = coordinate(x, 2);
+                out.push(bar(class, &fill, &x, y, w.max(1.0), p.form.bar));
             }
         }
-    }
-}
-
-/// Class of a part in the stylesheet.
-pub(super) fn class(part: Part, g: f64) -> &'static str {
-    match part {
-        Part::Fossil => "co2_fossil",
-        Part::N2o => "n2o",
-        Part::Ch4 => "ch4",
-        Part::Land => "co2_land",
-        Part::Unsplit => "co2e_unsplit",
-        Part::Biogenic if g < 0.0 => "uptake",
-        Part::Biogenic => "release",
-    }
-}
-
-/// The fill attribute of a part of width `w`; empty where the class alone makes it solid.
-/// Crop CO2 given back keeps its pattern at every width, as solid green means taken up.
-pub(super) fn fill(part: Part, g: f64, w: f64) -> String {
-    let class = class(part, g);
-    match class {
-        "co2_fossil" | "uptake" => String::new(),
-        "release" => format!(r##" fill="url(#g-{class})""##),
-        _ if w < SOLID => String::new(),
-        _ => format!(r##" fill="url(#g-{class})""##),
     }
 }
 

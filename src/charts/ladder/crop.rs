@@ -1,5 +1,6 @@
 //! The crop's carbon: a waterfall hanging from the left upright, or in the narrow form a strip below the axis.
 
+use super::look::{RELEASE, UPTAKE, bar, fill};
 use super::model::NOTHING;
 use super::picture::Picture;
 use crate::charts::text::{coordinate, figure, short, width};
@@ -10,13 +11,6 @@ const OPEN_SHARE: f64 = 0.005;
 const ROOM_BELOW: f64 = 34.0;
 const STRIP: f64 = 62.0;
 const STRIP_BAR: f64 = 10.0;
-
-/// True if the picture shows crop carbon apart from what is counted.
-pub(super) fn is_shown(p: &Picture) -> bool {
-    let (taken_up, given_back) = p.ladder.crop_sums();
-    let room = p.form.names.is_some() || p.ladder.scale.is_none();
-    room && taken_up + given_back > NOTHING
-}
 
 /// Uptake from zero to its value, then each release from the running sum back towards zero.
 pub(super) fn waterfall(p: &Picture, out: &mut Vec<String>) {
@@ -38,8 +32,9 @@ pub(super) fn waterfall(p: &Picture, out: &mut Vec<String>) {
                 short(y + p.form.bar)
             ));
         }
-        let look = if g < 0.0 { UPTAKE } else { RELEASE };
-        out.push(look.rect(&coordinate(a, 2), y, (b - a).max(1.0), p.form.bar));
+        let class = if g < 0.0 { UPTAKE } else { RELEASE };
+        let w = (b - a).max(1.0);
+        out.push(bar(class, &fill(class), &coordinate(a, 2), y, w, p.form.bar));
         out.push(value(p, g, (a, b), y));
         sum += g;
         last_y = Some(y);
@@ -82,7 +77,7 @@ fn value(p: &Picture, g: f64, (a, b): (f64, f64), y: f64) -> String {
 /// Height that the narrow form needs for its strip.
 pub(super) fn strip_height(p: &Picture) -> f64 {
     match p.form.names {
-        None if is_shown(p) => STRIP,
+        None if p.shows_crop() => STRIP,
         _ => 0.0,
     }
 }
@@ -101,36 +96,28 @@ pub(super) fn strip(p: &Picture, y: f64, out: &mut Vec<String>) {
         figure(given_back)
     ));
     if taken_up > NOTHING {
-        out.push(UPTAKE.rect(&short(from), y + 21.0, taken_up * k, STRIP_BAR));
+        let fill = fill(UPTAKE);
+        out.push(bar(
+            UPTAKE,
+            &fill,
+            &short(from),
+            y + 21.0,
+            taken_up * k,
+            STRIP_BAR,
+        ));
     }
-    let mut at = to;
+    let (mut at, fill) = (to, fill(RELEASE));
     for g in p.ladder.stages.iter().filter_map(|s| s.crop) {
         if g > NOTHING {
             at -= g * k;
-            out.push(RELEASE.rect(&coordinate(at, 2), y + 34.0, g * k, STRIP_BAR));
+            out.push(bar(
+                RELEASE,
+                &fill,
+                &coordinate(at, 2),
+                y + 34.0,
+                g * k,
+                STRIP_BAR,
+            ));
         }
-    }
-}
-
-/// How the two directions look.
-struct Look {
-    class: &'static str,
-    fill: &'static str,
-}
-
-const UPTAKE: Look = Look {
-    class: "uptake",
-    fill: "",
-};
-const RELEASE: Look = Look {
-    class: "release",
-    fill: r##" fill="url(#g-release)""##,
-};
-
-impl Look {
-    fn rect(&self, x: &str, y: f64, w: f64, h: f64) -> String {
-        let (class, fill) = (self.class, self.fill);
-        let (y, w, h) = (short(y), coordinate(w, 2), short(h));
-        format!(r#"<rect class="b {class}" x="{x}" y="{y}" width="{w}" height="{h}"{fill}/>"#)
     }
 }

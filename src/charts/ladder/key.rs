@@ -1,6 +1,6 @@
 //! The key: what each colour and pattern means. Gases that are empty everywhere are left out.
 
-use super::crop;
+use super::look::{RELEASE, UPTAKE, fill};
 use super::model::{NOTHING, Part};
 use super::picture::Picture;
 use super::words::part_words;
@@ -29,9 +29,9 @@ fn layout(p: &Picture) -> Vec<Item> {
         .filter(|q| seen(q.0))
         .map(|q| (q.1, q.2))
         .collect();
-    if crop::is_shown(p) || seen(Part::Biogenic) {
-        items.push(("uptake", "taken up by the crop"));
-        items.push(("release", "crop CO2 given back"));
+    if p.shows_crop() || seen(Part::Biogenic) {
+        items.push((UPTAKE, "taken up by the crop"));
+        items.push((RELEASE, "crop CO2 given back"));
     }
     let (mut x, mut line, mut out) = (p.form.pad, 0, Vec::new());
     for (class, words) in items {
@@ -61,10 +61,7 @@ pub(super) fn height(p: &Picture) -> f64 {
 pub(super) fn draw(p: &Picture, y: f64, out: &mut Vec<String>) {
     out.extend(layout(p).into_iter().map(|item| {
         let y = y + item.line as f64 * p.form.key;
-        let fill = match item.class {
-            "co2_fossil" | "uptake" => String::new(),
-            class => format!(r##" fill="url(#g-{class})""##),
-        };
+        let fill = fill(item.class);
         format!(
             r#"<rect class="b {}" x="{}" y="{}" width="14" height="11"{fill}/><text class="keyt" x="{}" y="{}">{}</text>"#,
             item.class,

@@ -1,6 +1,5 @@
 //! Words that could collide: labels of the verticals, names, values, heads.
 
-use super::crop;
 use super::model::Rung;
 use super::picture::Picture;
 use crate::charts::text::{chem, clip, coordinate, escape, figure, plain, short, width};
@@ -209,7 +208,7 @@ pub(super) fn heads(p: &Picture, out: &mut Vec<String>) {
         ));
         return;
     };
-    if crop::is_shown(p) {
+    if p.shows_crop() {
         let x = short(p.form.pad);
         out.push(format!(
             r#"<text class="head" x="{x}" y="16">The crop’s carbon</text><text class="unit" x="{x}" y="32">{}</text>"#,

@@ -7,9 +7,11 @@
 
 mod counted;
 mod crop;
+mod draw;
 mod form;
 mod key;
 mod labels;
+mod look;
 mod model;
 mod picture;
 mod scale;
@@ -17,9 +19,9 @@ mod scale;
 mod tests;
 mod words;
 
+pub use draw::{NotDrawable, draw};
 pub use form::Form;
 pub use model::{Baseline, Counted, Ladder, Required, Rung, common_scale, in_line};
-pub use picture::{NotDrawable, draw};
 
 /// The pattern definitions that the bars refer to. They stand once in a page, in an element that is never hidden by
 /// `display: none`, or the bars would lose their filling.

@@ -1,6 +1,6 @@
 //! The picture in words, for those who do not see it.
 
-use super::counted::class;
+use super::look::class;
 use super::model::{Ladder, Part};
 use crate::charts::text::{figure, plain};
 

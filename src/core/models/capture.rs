@@ -1,7 +1,7 @@
 //! `capture`: CO2 of biological origin that is captured and replaces fossil CO2 (e_ccr) or is stored (e_ccs). Directive
 //! (EU) 2018/2001 Annex V Part C points 14 and 15; Implementing Regulation (EU) 2022/996 Articles 14(3) and 20(4).
 
-use super::factors::price;
+use super::factors::{KWH, price_energy};
 use super::given::Given;
 use super::parameter::{Parameter, Span, Takes};
 use super::{Model, Outcome};
@@ -128,12 +128,7 @@ fn compute(given: &mut Given) -> Option<Outcome> {
             plain(kwh_per_t)
         );
         given.step(text, kwh, "kWh", "");
-        let amount = kwh * 3.6e6 / factor.unit.factor;
-        if factor.unit.factor != 3.6e6 {
-            let text = format!("{} kWh in {}", plain(kwh), factor.unit.symbol);
-            given.step(text, amount, &factor.unit.symbol, "");
-        }
-        gases += price(amount, &factor, &mut given.record.steps);
+        gases += price_energy(kwh, KWH, &factor, &mut given.record.steps);
     }
     Some(Outcome {
         gases,

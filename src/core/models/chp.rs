@@ -226,14 +226,7 @@ fn plant(given: &mut Given) -> Option<Plant> {
     if DESIGN.iter().any(|name| given.has(name)) {
         return design(given);
     }
-    for name in METERED
-        .into_iter()
-        .filter(|name| !given.has(name))
-        .collect::<Vec<_>>()
-    {
-        let remedy = format!("Add \"{name}\", or heat_used with both efficiencies for a design.");
-        given.problem(name, format!("\"{name}\" is missing."), remedy);
-    }
+    given.need(&METERED, "heat_used with both efficiencies for a design");
     let [fuel, heat_made, power_made] = METERED.map(|name| given.number(name));
     let (fuel, heat_made, power_made) = (fuel?, heat_made?, power_made?);
     let plant = Plant {

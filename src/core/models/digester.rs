@@ -1,7 +1,7 @@
 //! `digester`: methane that slips from a biogas plant and from the store of its digestate. Heating value of methane and
 //! storage: Implementing Regulation (EU) 2022/996 Annex IX.
 
-use super::factors::price;
+use super::factors::{MJ, price_energy};
 use super::given::Given;
 use super::parameter::{Parameter, Span, Takes};
 use super::{Model, Outcome};
@@ -92,16 +92,7 @@ fn compute(given: &mut Given) -> Option<Outcome> {
     match &store {
         None => given.step("closed store of digestate".to_owned(), 0.0, "kg ch4_biogenic", ""),
         Some(factor) => {
-            let amount = biogas * 1e6 / factor.unit.factor;
-            if factor.unit.factor != 1e6 {
-                given.step(
-                    format!("{} MJ in {}", plain(biogas), factor.unit.symbol),
-                    amount,
-                    &factor.unit.symbol,
-                    "",
-                );
-            }
-            gases += price(amount, factor, &mut given.record.steps);
+            gases += price_energy(biogas, MJ, factor, &mut given.record.steps);
         }
     }
     if let Some(percent) = content {

@@ -89,28 +89,11 @@ fn compute(given: &mut Given) -> Option<Outcome> {
 fn water(given: &mut Given) -> Option<f64> {
     let names = ["dry_t", "moisture_in_percent", "moisture_out_percent"];
     if given.has("water_t") {
-        let beside: Vec<&str> = names.into_iter().filter(|name| given.has(name)).collect();
-        for name in &beside {
-            given.problem(
-                name,
-                format!("\"{name}\" stands beside \"water_t\"."),
-                "Keep one of the two.",
-            );
-        }
+        let alone = given.stands_alone("water_t", &names, "Keep one of the two.");
         let water = given.number("water_t")?;
-        return beside.is_empty().then_some(water);
+        return alone.then_some(water);
     }
-    for name in names
-        .into_iter()
-        .filter(|name| !given.has(name))
-        .collect::<Vec<_>>()
-    {
-        given.problem(
-            name,
-            format!("\"{name}\" is missing."),
-            format!("Add \"{name}\", or give the water evaporated as \"water_t\"."),
-        );
-    }
+    given.need(&names, "give the water evaporated as \"water_t\"");
     let [dry, wet_in, wet_out] = names.map(|name| given.number(name));
     let (dry, wet_in, wet_out) = (dry?, wet_in?, wet_out?);
     if wet_out > wet_in {

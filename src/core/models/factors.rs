@@ -239,21 +239,22 @@ pub fn convert(
     let base = unit.to_base(amount).map_err(|error| unfit_unit(&error))?;
     let entered = format!("{} {}", plain(amount), unit.symbol);
     let direct = |base: f64| base / factor.unit.factor;
+    let as_it_is = || {
+        let same = unit.factor == factor.unit.factor;
+        let value = if same { amount } else { direct(base) };
+        let step = (!same).then(|| {
+            step(
+                format!("{entered} in {}", factor.unit.symbol),
+                value,
+                &factor.per,
+                "",
+            )
+        });
+        Converted { amount: value, step }
+    };
     if !energy_factor {
         return match unit.need(wanted) {
-            Ok(()) => {
-                let same = unit.factor == factor.unit.factor;
-                let value = if same { amount } else { direct(base) };
-                let step = (!same).then(|| {
-                    step(
-                        format!("{entered} in {}", factor.unit.symbol),
-                        value,
-                        &factor.per,
-                        "",
-                    )
-                });
-                Ok(Converted { amount: value, step })
-            }
+            Ok(()) => Ok(as_it_is()),
             Err(error) => Err(unfit_unit(&error)),
         };
     }
@@ -269,17 +270,7 @@ pub fn convert(
         }
     };
     if takes {
-        let same = unit.factor == factor.unit.factor;
-        let value = if same { amount } else { direct(base) };
-        let step = (!same).then(|| {
-            step(
-                format!("{entered} in {}", factor.unit.symbol),
-                value,
-                &factor.per,
-                "",
-            )
-        });
-        return Ok(Converted { amount: value, step });
+        return Ok(as_it_is());
     }
     let fuel = matches!(factor.counts, Counts::Fuel | Counts::Other);
     if found == Dimension::ENERGY_GROSS && fuel {
@@ -398,6 +389,29 @@ pub fn price(amount: f64, factor: &Priced, steps: &mut Vec<Step>) -> GasVector {
         ));
     }
     gases
+}
+
+/// An energy unit that models work in: its symbol and its size, J.
+pub type EnergyUnit = (&'static str, f64);
+/// Megajoules.
+pub const MJ: EnergyUnit = ("MJ", 1e6);
+/// Kilowatt-hours.
+pub const KWH: EnergyUnit = ("kWh", 3.6e6);
+
+/// The gases of an energy, with a step to the factor's unit where that is another, and one step a gas.
+pub fn price_energy(
+    energy: f64,
+    (symbol, joules): EnergyUnit,
+    factor: &Priced,
+    steps: &mut Vec<Step>,
+) -> GasVector {
+    if factor.unit.factor == joules {
+        return price(energy, factor, steps);
+    }
+    let amount = energy * joules / factor.unit.factor;
+    let text = format!("{} {symbol} in {}", plain(energy), factor.unit.symbol);
+    steps.push(step(text, amount, &factor.unit.symbol, ""));
+    price(amount, factor, steps)
 }
 
 /// The source of a factor for a step, with its status where nobody has read it.

@@ -1,7 +1,7 @@
 //! `haul`: mass x distance x energy per tonne-kilometre x fuel factor, and the exhaust of the vehicle.
 //! Implementing Regulation (EU) 2022/996 Annex IX, transport efficiencies; Directive (EU) 2018/2001 Annex V C point 12.
 
-use super::factors::{self, Priced, price, sourced};
+use super::factors::{self, MJ, Priced, price_energy, sourced};
 use super::flow::Measured;
 use super::given::Given;
 use super::parameter::{Parameter, Span, Takes};
@@ -132,16 +132,7 @@ fn compute(given: &mut Given) -> Option<Outcome> {
     );
     let mut gases = GasVector::ZERO;
     if let Some(fuel) = &fuel {
-        let amount = energy * 1e6 / fuel.unit.factor;
-        if fuel.unit.factor != 1e6 {
-            given.step(
-                format!("{} MJ in {}", plain(energy), fuel.unit.symbol),
-                amount,
-                &fuel.unit.symbol,
-                "",
-            );
-        }
-        gases += price(amount, fuel, &mut given.record.steps);
+        gases += price_energy(energy, MJ, fuel, &mut given.record.steps);
         gaps(given, fuel, &row);
     }
     for gas in Gas::ALL {

@@ -1,7 +1,7 @@
 //! Where heat comes from: fuels with their stacks burnt at an efficiency, or heat bought with a factor. Shared by every
 //! model that needs heat; the fuels also serve combined heat and power.
 
-use super::factors::{Priced, price, unpublished};
+use super::factors::{MJ, Priced, price_energy, unpublished};
 use super::given::Given;
 use super::parameter::{Parameter, Span, Takes};
 use crate::core::documents::assessment::Severity;
@@ -139,10 +139,7 @@ impl HeatFrom {
                 given.step(text, fuel_mj, "MJ of fuel", "");
                 burn(fuel_mj, fuels, given)
             }
-            HeatFrom::Bought(factor) => {
-                let amount = in_unit(heat_mj, factor, given);
-                price(amount, factor, &mut given.record.steps)
-            }
+            HeatFrom::Bought(factor) => price_energy(heat_mj, MJ, factor, &mut given.record.steps),
         }
     }
 }
@@ -213,8 +210,7 @@ pub fn burn(fuel_mj: f64, fuels: &[FuelShare], given: &mut Given) -> GasVector {
             given.step(text, mj, "MJ of fuel", "");
         }
         for factor in &fuel.factors {
-            let amount = in_unit(mj, factor, given);
-            gases += price(amount, factor, &mut given.record.steps);
+            gases += price_energy(mj, MJ, factor, &mut given.record.steps);
         }
         if let Some((id, gas)) = unpublished(&fuel.factors) {
             let message = format!("{id} has no published {gas}; nothing is counted for it.");
@@ -223,14 +219,4 @@ pub fn burn(fuel_mj: f64, fuels: &[FuelShare], given: &mut Given) -> GasVector {
         }
     }
     gases
-}
-
-fn in_unit(mj: f64, factor: &Priced, given: &mut Given) -> f64 {
-    if factor.unit.factor == 1e6 {
-        return mj;
-    }
-    let amount = mj * 1e6 / factor.unit.factor;
-    let text = format!("{} MJ in {}", plain(mj), factor.unit.symbol);
-    given.step(text, amount, &factor.unit.symbol, "");
-    amount
 }

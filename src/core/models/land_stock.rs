@@ -115,17 +115,7 @@ impl Stock {
         if given.has("carbon_t_per_ha") {
             return measured(given, when);
         }
-        for name in ["use", "vegetation"]
-            .into_iter()
-            .filter(|name| !given.has(name))
-            .collect::<Vec<_>>()
-        {
-            given.problem(
-                name,
-                format!("\"{name}\" is missing."),
-                format!("Add \"{name}\", or \"carbon_t_per_ha\" for a measured stock."),
-            );
-        }
+        given.need(&["use", "vegetation"], "\"carbon_t_per_ha\" for a measured stock");
         let land = given.word("use");
         let management = land.and_then(|land| management(given, land));
         let input = if given.has("input") {

@@ -2,6 +2,7 @@
 //! parameters as a table. To add one: a file with `MODEL`, a row in `ALL`.
 
 pub mod alcoholometry;
+mod alternatives;
 pub mod boiler;
 pub mod capture;
 pub mod chp;

@@ -86,32 +86,16 @@ fn compute(given: &mut Given) -> Option<Outcome> {
 fn burnt(given: &mut Given) -> Option<f64> {
     let parts = ["fuel_load", "combustion_factor_percent"];
     if given.has("burnt_t") {
-        let beside: Vec<&str> = parts.into_iter().filter(|name| given.has(name)).collect();
-        for name in &beside {
-            given.problem(
-                name,
-                format!("\"{name}\" stands beside \"burnt_t\"."),
-                "Keep one of the two: burnt_t is area x fuel load x combustion factor.",
-            );
-        }
+        let remedy = "Keep one of the two: burnt_t is area x fuel load x combustion factor.";
+        let alone = given.stands_alone("burnt_t", &parts, remedy);
         if given.has("area_ha") {
             given.number("area_ha")?;
         }
         let burnt = given.number("burnt_t")?;
-        return beside.is_empty().then_some(burnt);
+        return alone.then_some(burnt);
     }
     let names = ["area_ha", "fuel_load", "combustion_factor_percent"];
-    for name in names
-        .into_iter()
-        .filter(|name| !given.has(name))
-        .collect::<Vec<_>>()
-    {
-        given.problem(
-            name,
-            format!("\"{name}\" is missing."),
-            format!("Add \"{name}\", or give the dry matter burnt as \"burnt_t\"."),
-        );
-    }
+    given.need(&names, "give the dry matter burnt as \"burnt_t\"");
     let [area, load, factor] = names.map(|name| given.number(name));
     let (area, load, factor) = (area?, load?, factor?);
     let burnt = area * load * factor / 100.0;
