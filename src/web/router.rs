@@ -7,7 +7,7 @@ use super::problem::{Refusal, RefusalPage};
 use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{calculators, demo, factors, pathways};
+use crate::{calculators, demo, factors, pathways, rules};
 use axum::Router;
 use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
@@ -64,6 +64,7 @@ fn api() -> OpenApiRouter<App> {
         .merge(openapi::routes())
         .merge(pathways::api::routes())
         .merge(factors::api::routes())
+        .merge(rules::api::routes())
         .merge(calculators::api::routes());
     let mut all = OpenApiRouter::with_openapi(openapi::begun()).nest("/api/v1", v1);
     // Described with the rest, routed apart.

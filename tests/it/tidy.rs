@@ -18,6 +18,7 @@ const THINGS: &[&str] = &[
     "people",
     "evidence",
     "calculators",
+    "rules",
     "factors",
     "pathways",
     "statements",

@@ -2,11 +2,12 @@
 
 use super::super::{Stored, read, revision};
 use super::stored::known_rule_set;
-use crate::app::App;
+use crate::app::{App, Basis};
 use crate::core::documents::reader::{Fields, Place, text_of};
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::evaluate::Options;
 use crate::core::levers::compare::{Comparison, LEAST, MOST, Subject, compare};
+use crate::rules::basis;
 use crate::web::extract::{JsonBody, NoQuery};
 use crate::web::{Refusal, blocking};
 use axum::Json;
@@ -76,7 +77,8 @@ async fn compare_pathways(
     JsonBody(body): JsonBody,
 ) -> Result<Json<Comparison>, Refusal> {
     let (asked, rule_set) = question(&body)?;
-    known_rule_set(&app, rule_set.as_deref())?;
+    let basis = basis(&app).await?;
+    known_rule_set(&basis.book, rule_set.as_deref())?;
     let mut pathways = Vec::with_capacity(asked.len());
     for choice in asked {
         pathways.push(match choice {
@@ -86,7 +88,7 @@ async fn compare_pathways(
         });
     }
     Ok(Json(
-        blocking::run(move || side_by_side(&app, &pathways, rule_set.as_deref())).await??,
+        blocking::run(move || side_by_side(&app, &basis, &pathways, rule_set.as_deref())).await??,
     ))
 }
 
@@ -192,7 +194,12 @@ fn under(at: &str, found: Problems, problems: &mut Problems) {
     }
 }
 
-fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Result<Comparison, Refusal> {
+fn side_by_side(
+    app: &App,
+    basis: &Basis,
+    pathways: &[Pathway],
+    rule_set: Option<&str>,
+) -> Result<Comparison, Refusal> {
     let mut problems = Problems::default();
     let mut assessed: Vec<Assessment> = Vec::with_capacity(pathways.len());
     for (index, pathway) in pathways.iter().enumerate() {
@@ -201,7 +208,7 @@ fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Resu
             without_workings: true,
             ..Options::default()
         };
-        match (app.evaluate)(pathway, app.library, options) {
+        match (app.evaluate)(pathway, &basis.book, options) {
             Ok(assessment) => assessed.push(assessment),
             Err(found) => under(&format!("/pathways/{index}"), found, &mut problems),
         }
@@ -211,7 +218,7 @@ fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Resu
     }
     let mut subjects = Vec::with_capacity(pathways.len());
     for (pathway, assessment) in pathways.iter().zip(&assessed) {
-        let rules = app.library.rule_sets.get(&assessment.rule_set).ok_or_else(|| {
+        let rules = basis.book.rule_sets.get(&assessment.rule_set).ok_or_else(|| {
             tracing::error!(
                 rule_set = assessment.rule_set,
                 "an assessment names a rule set that is not there"
