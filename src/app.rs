@@ -1,6 +1,7 @@
 //! What every use case gets: the store, the clock, the published data, and on whose behalf records are kept.
 
 use crate::clock::Clock;
+use crate::core::checks::settings::Settings as CheckSettings;
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
 use crate::core::evaluate::{Options, evaluate};
@@ -41,6 +42,8 @@ pub struct Basis {
     /// Published data with the organisation's own rule sets: the newest version of each by its id, every version as
     /// `id@version`.
     pub book: SharedBook,
+    /// Settings of the checks.
+    pub settings: Arc<CheckSettings>,
     /// Hash of everything in it that is not standard; empty where all is.
     pub(crate) hash: Arc<str>,
     /// Hash of the settings of the checks; empty for the standard ones.
@@ -49,6 +52,17 @@ pub struct Basis {
     pub(crate) last_rule_set: i64,
     /// The last settings that are in it, by inner id.
     pub(crate) last_settings: i64,
+}
+
+impl Basis {
+    /// What an evaluation is told: a rule set other than the document's, and the settings in force.
+    pub fn options<'o>(&'o self, rule_set: Option<&'o str>) -> Options<'o> {
+        Options {
+            rule_set,
+            settings: &self.settings,
+            ..Options::default()
+        }
+    }
 }
 
 /// The running program. Cheap to clone; clones share everything.

@@ -157,7 +157,9 @@ fn read(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Option<Requ
         fields.one_number(&warmths, "warmth of the wash", at, problems)
     } else {
         // Read all the same, so that both names are known here; `null` counts as absent.
-        warmths.iter().for_each(|name| drop(fields.take(name)));
+        for name in warmths {
+            fields.take(name);
+        }
         None
     };
     let coupling = fields.number("coupling_factor", at, problems);

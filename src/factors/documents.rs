@@ -1,7 +1,7 @@
 //! Editions, factors and rule sets as documents. They are made from the published data, never read.
 
 use crate::core::domain::factor::{FuelSplit, ProcessHeat, TermValues, Use};
-use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault, RuleSet, Status};
+use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault};
 use serde::Serialize;
 use std::collections::BTreeMap;
 use utoipa::ToSchema;

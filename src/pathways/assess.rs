@@ -93,10 +93,7 @@ pub(super) fn make(
     document: &Pathway,
     rule_set: Option<&str>,
 ) -> Result<Made, PathwayError> {
-    let options = Options {
-        rule_set,
-        ..Options::default()
-    };
+    let options = basis.options(rule_set);
     let assessment = (app.evaluate)(document, &basis.book, options)?;
     let defect = |error| PathwayError::defect("wrote an assessment", error);
     let bytes = canonical::bytes(&assessment).map_err(defect)?;
@@ -334,7 +331,7 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
                 } else {
                     let options = Options {
                         without_workings: true,
-                        ..Options::default()
+                        ..basis.options(None)
                     };
                     let assessment = (app.evaluate)(&document, &basis.book, options);
                     assessment

@@ -1,7 +1,8 @@
 //! The basis of evaluations: published data with the organisation's own rule sets, made once and kept at hand.
 
-use super::sql::{self, RuleSetRow};
+use super::sql::{self, RuleSetRow, SettingsRow};
 use crate::app::{App, Basis, SharedBook};
+use crate::core::checks::settings::Settings;
 use crate::core::documents::{Problems, canonical, json, rule_set};
 use crate::core::domain::RuleSet;
 use crate::store::StoreError;
@@ -23,7 +24,8 @@ pub async fn basis(app: &App) -> Result<Arc<Basis>, StoreError> {
         Some(older) if (older.last_rule_set, older.last_settings) == last => older,
         _ => {
             let rows = sql::rule_sets(&mut reader, app.organisation).await?;
-            Arc::new(made(app, &rows))
+            let settings = sql::settings(&mut reader, app.organisation).await?;
+            Arc::new(made(app, &rows, settings))
         }
     };
     drop(reader);
@@ -32,7 +34,7 @@ pub async fn basis(app: &App) -> Result<Arc<Basis>, StoreError> {
     Ok(basis)
 }
 
-fn made(app: &App, rows: &[RuleSetRow]) -> Basis {
+fn made(app: &App, rows: &[RuleSetRow], saved: Option<SettingsRow>) -> Basis {
     let mut book = SharedBook::Published(app.library);
     let mut parts = Vec::new();
     if !rows.is_empty() {
@@ -49,6 +51,11 @@ fn made(app: &App, rows: &[RuleSetRow]) -> Basis {
         }
         book = SharedBook::Own(Arc::new(own));
     }
+    let last_settings = saved.as_ref().map_or(0, |row| row.id);
+    let (settings, settings_hash) = in_force(saved);
+    if !settings_hash.is_empty() {
+        parts.push(format!("settings {settings_hash}"));
+    }
     let hash = match parts.is_empty() {
         true => String::new(),
         false => canonical::hash(parts.join("\n").as_bytes()),
@@ -56,9 +63,24 @@ fn made(app: &App, rows: &[RuleSetRow]) -> Basis {
     Basis {
         book,
         hash: hash.into(),
-        settings_hash: "".into(),
+        settings,
+        settings_hash: settings_hash.into(),
         last_rule_set: rows.last().map_or(0, |row| row.id),
-        last_settings: 0,
+        last_settings,
+    }
+}
+
+/// Settings with their hash; the standard ones have none, so that what was made under them serves for good.
+fn in_force(saved: Option<SettingsRow>) -> (Arc<Settings>, String) {
+    let standard = || (Arc::new(Settings::standard().clone()), String::new());
+    let Some(row) = saved else { return standard() };
+    match serde_json::from_str::<Settings>(&row.document) {
+        Ok(settings) if settings == *Settings::standard() => standard(),
+        Ok(settings) => (Arc::new(settings), row.hash),
+        Err(error) => {
+            tracing::error!(%error, "stored settings cannot be read: the standard ones stand in");
+            standard()
+        }
     }
 }
 

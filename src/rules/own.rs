@@ -34,6 +34,12 @@ pub enum RuleError {
     /// There are too many versions (409).
     #[error("There are {MOST_VERSIONS} versions of rule sets here already. No more can be added.")]
     TooMany,
+    /// Somebody saved in between (412).
+    #[error("Somebody changed the settings in the meantime.")]
+    Stale {
+        /// Hash of what is there now.
+        hash: String,
+    },
     /// The database.
     #[error(transparent)]
     Store(#[from] StoreError),

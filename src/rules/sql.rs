@@ -20,6 +20,11 @@ const DROP_ASSESSMENTS: &str = "\
     (SELECT r.id FROM pathway p JOIN revision r ON r.pathway_id = p.id AND r.organisation_id = p.organisation_id \
      WHERE p.organisation_id = $1)";
 
+const SETTINGS: &str = "\
+    SELECT id, document, hash FROM check_settings WHERE organisation_id = $1 ORDER BY id DESC LIMIT 1";
+const ADD_SETTINGS: &str = "\
+    INSERT INTO check_settings (organisation_id, document, hash, saved_at) VALUES ($1, $2, $3, $4)";
+
 /// The statements of this file.
 pub(crate) const STATEMENTS: &[&str] = &[
     LAST,
@@ -29,6 +34,8 @@ pub(crate) const STATEMENTS: &[&str] = &[
     COUNT,
     ADD_RULE_SET,
     DROP_ASSESSMENTS,
+    SETTINGS,
+    ADD_SETTINGS,
 ];
 
 /// A version of a rule set with its document.
@@ -37,6 +44,14 @@ pub(super) struct RuleSetRow {
     pub(super) id: i64,
     pub(super) name: String,
     pub(super) version: String,
+    pub(super) document: String,
+    pub(super) hash: String,
+}
+
+/// Settings of the checks.
+#[derive(sqlx::FromRow)]
+pub(super) struct SettingsRow {
+    pub(super) id: i64,
     pub(super) document: String,
     pub(super) hash: String,
 }
@@ -108,6 +123,27 @@ pub(super) async fn add_rule_set(
 /// Drops kept assessments under a rule set: they are a cache.
 pub(super) async fn drop_assessments(c: &mut Connection, who: OrganisationId, rule_set: &str) -> Answer<()> {
     let query = sqlx::query(DROP_ASSESSMENTS).bind(who.0).bind(rule_set);
+    query.execute(c).await?;
+    Ok(())
+}
+
+/// The settings saved last, if there are any.
+pub(super) async fn settings(c: &mut Connection, who: OrganisationId) -> Answer<Option<SettingsRow>> {
+    Ok(sqlx::query_as(SETTINGS).bind(who.0).fetch_optional(c).await?)
+}
+
+pub(super) async fn add_settings(
+    c: &mut Connection,
+    who: OrganisationId,
+    document: &str,
+    hash: &str,
+    now: i64,
+) -> Answer<()> {
+    let query = sqlx::query(ADD_SETTINGS)
+        .bind(who.0)
+        .bind(document)
+        .bind(hash)
+        .bind(now);
     query.execute(c).await?;
     Ok(())
 }

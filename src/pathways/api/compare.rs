@@ -204,9 +204,8 @@ fn side_by_side(
     let mut assessed: Vec<Assessment> = Vec::with_capacity(pathways.len());
     for (index, pathway) in pathways.iter().enumerate() {
         let options = Options {
-            rule_set,
             without_workings: true,
-            ..Options::default()
+            ..basis.options(rule_set)
         };
         match (app.evaluate)(pathway, &basis.book, options) {
             Ok(assessment) => assessed.push(assessment),

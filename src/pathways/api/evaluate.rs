@@ -7,7 +7,6 @@
 use super::stored::known_rule_set;
 use crate::app::{App, Basis};
 use crate::core::documents::{Assessment, Pathway, canonical};
-use crate::core::evaluate::Options;
 use crate::rules::basis;
 use crate::web::extract::{JsonBody, Query};
 use crate::web::{Refusal, blocking};
@@ -63,10 +62,7 @@ pub(super) fn assessed(
     rule_set: Option<&str>,
 ) -> Result<Vec<u8>, Refusal> {
     let pathway = Pathway::from_value(body).map_err(Refusal::invalid)?;
-    let options = Options {
-        rule_set,
-        ..Options::default()
-    };
+    let options = basis.options(rule_set);
     let assessment = (app.evaluate)(&pathway, &basis.book, options).map_err(Refusal::invalid)?;
     canonical::bytes(&assessment).map_err(|error| {
         tracing::error!(%error, "an assessment could not be written");

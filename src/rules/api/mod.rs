@@ -1,4 +1,4 @@
-//! The API of rule sets: the built-in ones, and those of one's own with their versions.
+//! The API of rule sets, built-in and one's own with their versions, and of the settings of the checks.
 #![allow(
     unused_qualifications,
     reason = "utoipa's macro writes the types of queries in full"
@@ -6,6 +6,7 @@
 
 mod documents;
 mod refusals;
+mod settings;
 
 pub use documents::{RuleSetDocument, RuleSetLine};
 
@@ -31,9 +32,9 @@ use utoipa_axum::routes;
 pub fn routes() -> OpenApiRouter<App> {
     OpenApiRouter::new()
         .routes(routes!(rule_sets))
-        .routes(routes!(read_rule_set))
-        .routes(routes!(put_rule_set))
+        .routes(routes!(read_rule_set, put_rule_set))
         .routes(routes!(rule_set_versions))
+        .merge(settings::routes())
 }
 
 /// Which page of a list.

@@ -3,6 +3,7 @@
 use super::super::RuleError;
 use crate::store::StoreError;
 use crate::web::Refusal;
+use crate::web::conditional::etag;
 use axum::http::StatusCode;
 use std::error::Error;
 
@@ -14,6 +15,12 @@ impl From<RuleError> for Refusal {
                 .detail("There is no such rule set here. /api/v1/rule-sets lists those there are."),
             RuleError::Taken { .. } | RuleError::TooMany => {
                 Refusal::of(StatusCode::CONFLICT).detail(error.to_string())
+            }
+            RuleError::Stale { ref hash } => {
+                let words = format!("{error} Read them, decide, and send their ETag in If-Match.");
+                Refusal::of(StatusCode::PRECONDITION_FAILED)
+                    .detail(words)
+                    .current(etag(hash))
             }
             RuleError::Store(error) => error.into(),
         }
