@@ -1,6 +1,7 @@
 //! Assessments: made from a document, kept beside its revision, found again or made again.
 
-use super::sql::SummaryRow;
+use super::reasons::{list, with_reasons};
+use super::sql::{RevisionRow, SummaryRow};
 use super::{PathwayError, Summary, What, public_id, sql};
 use crate::app::{App, Basis};
 use crate::core::documents::assessment::{Finding, Severity};
@@ -183,8 +184,8 @@ pub(super) fn document(text: &str, row: i64) -> Result<Pathway, StoreError> {
     })
 }
 
-/// The assessment of a pathway: of the current revision or another, under its own rule set or another. Kept bytes
-/// where there are some, made and kept where not.
+/// The assessment of a pathway: of the current revision or another, under its own rule set or another, with the reasons
+/// given for its warnings. Kept bytes where there are some, made and kept where not.
 ///
 /// # Errors
 /// When there is no such pathway or revision, when the document cannot be evaluated under the rule set, or when the
@@ -199,23 +200,58 @@ pub async fn assessment(
     if revision.is_none() {
         let head = head(app, id).await?;
         let rule_set = rule_set.unwrap_or(&head.rule_set);
-        if let Some(kept) = app.memory.assessment(key(&head.hash, rule_set, &basis)) {
+        let key = AssessmentKey {
+            reasons: &head.reasons,
+            ..key(&head.hash, rule_set, &basis)
+        };
+        if let Some(kept) = app.memory.assessment(key) {
             return Ok(answer(head.revision, head.hash.clone(), rule_set, kept));
         }
     }
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, revision).await?;
     let found = found.ok_or(PathwayError::NotFound(missing(revision)))?;
+    let reasons = sql::reasons(&mut reader, app.organisation, found.id).await?;
+    drop(reader);
     let rule_set = rule_set.unwrap_or(&found.rule_set).to_owned();
-    if let Some(kept) = app.memory.assessment(key(&found.hash, &rule_set, &basis)) {
-        return Ok(answer(found.number, found.hash, &rule_set, kept));
+    let kept = match reasons {
+        None => bare(app, &basis, &found, &rule_set).await?,
+        Some((text, hash)) => {
+            let key = AssessmentKey {
+                reasons: &hash,
+                ..key(&found.hash, &rule_set, &basis)
+            };
+            match app.memory.assessment(key) {
+                Some(kept) => kept,
+                None => {
+                    let bare = bare(app, &basis, &found, &rule_set).await?;
+                    let kept = with_reasons(bare, list(&text, found.id)?).await?;
+                    app.memory.keep(key, kept.clone());
+                    kept
+                }
+            }
+        }
+    };
+    Ok(answer(found.number, found.hash, &rule_set, kept))
+}
+
+/// The assessment of a revision without reasons: kept bytes where there are some, made and kept where not.
+pub(super) async fn bare(
+    app: &App,
+    basis: &Arc<Basis>,
+    found: &RevisionRow,
+    rule_set: &str,
+) -> Result<Kept, PathwayError> {
+    if let Some(kept) = app.memory.assessment(key(&found.hash, rule_set, basis)) {
+        return Ok(kept);
     }
     let settings = &basis.settings_hash;
+    let mut reader = app.store.reader().await?;
     let kept = sql::assessment(
         &mut reader,
         app.organisation,
         found.revision_id,
-        &rule_set,
+        rule_set,
         settings,
     )
     .await?;
@@ -227,7 +263,7 @@ pub async fn assessment(
         },
         None => {
             let document = document(&found.document, found.revision_id)?;
-            let (app_too, basis, under) = (app.clone(), basis.clone(), rule_set.clone());
+            let (app_too, basis, under) = (app.clone(), basis.clone(), rule_set.to_owned());
             let lines = lines(&document);
             let work = move || make(&app_too, &basis, &document, Some(&under));
             let made = compute(lines, work).await?;
@@ -236,8 +272,8 @@ pub async fn assessment(
             kept
         }
     };
-    app.memory.keep(key(&found.hash, &rule_set, &basis), kept.clone());
-    Ok(answer(found.number, found.hash, &rule_set, kept))
+    app.memory.keep(key(&found.hash, rule_set, basis), kept.clone());
+    Ok(kept)
 }
 
 /// The key of an assessment without reasons.

@@ -66,6 +66,13 @@ const KEEP_ASSESSMENT: &str = "\
         thresholds = excluded.thresholds, blocks = excluded.blocks, warnings = excluded.warnings, \
         infos = excluded.infos, made_at = excluded.made_at, settings = excluded.settings";
 
+const REASONS: &str = "\
+    SELECT document, hash FROM reasons WHERE organisation_id = $1 AND pathway_id = $2 ORDER BY number DESC LIMIT 1";
+const ADD_REASONS: &str = "\
+    INSERT INTO reasons (organisation_id, pathway_id, number, document, hash, saved_at) \
+    VALUES ($1, $2, 1 + COALESCE((SELECT MAX(number) FROM reasons WHERE organisation_id = $1 AND pathway_id = $2), 0), \
+            $3, $4, $5)";
+
 /// The statements of this file.
 pub(crate) const STATEMENTS: &[&str] = &[
     HEAD,
@@ -80,6 +87,8 @@ pub(crate) const STATEMENTS: &[&str] = &[
     CURRENT_AFTER,
     ASSESSMENT,
     KEEP_ASSESSMENT,
+    REASONS,
+    ADD_REASONS,
 ];
 
 /// The current revision of a pathway, by its inner ids.
@@ -317,6 +326,37 @@ pub(super) async fn assessment(
         .bind(PROGRAM)
         .bind(settings);
     Ok(query.fetch_optional(c).await?)
+}
+
+/// Document and hash of the reasons saved last.
+pub(super) async fn reasons(
+    c: &mut Connection,
+    who: OrganisationId,
+    pathway: i64,
+) -> Answer<Option<(String, String)>> {
+    Ok(sqlx::query_as(REASONS)
+        .bind(who.0)
+        .bind(pathway)
+        .fetch_optional(c)
+        .await?)
+}
+
+pub(super) async fn add_reasons(
+    c: &mut Connection,
+    who: OrganisationId,
+    pathway: i64,
+    document: &str,
+    hash: &str,
+    now: i64,
+) -> Answer<()> {
+    let query = sqlx::query(ADD_REASONS)
+        .bind(who.0)
+        .bind(pathway)
+        .bind(document)
+        .bind(hash)
+        .bind(now);
+    query.execute(c).await?;
+    Ok(())
 }
 
 /// Removes demonstration data whole; how many pathways went.

@@ -1,9 +1,10 @@
 //! Comparison of two to six pathways, stored ones by id, others as documents.
 
 use super::super::{Stored, read, revision};
+use super::choice::{StoredChoice, stored, under};
 use super::stored::known_rule_set;
 use crate::app::{App, Basis};
-use crate::core::documents::reader::{Fields, Place, text_of};
+use crate::core::documents::reader::{Fields, Place};
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::evaluate::Options;
 use crate::core::levers::compare::{Comparison, LEAST, MOST, Subject, compare};
@@ -47,20 +48,9 @@ enum Chosen {
     /// A stored one, at its current revision.
     Id(Uuid),
     /// A stored one, at a revision.
-    Revision(ChosenRevision),
+    Revision(StoredChoice),
     /// A document that need not be stored.
     Document(Box<Pathway>),
-}
-
-/// A revision to compare.
-#[derive(Debug, Serialize, ToSchema)]
-#[allow(dead_code, reason = "describes the body")]
-struct ChosenRevision {
-    /// Id of the pathway.
-    id: Uuid,
-    /// Number of the revision; the current one when left out.
-    #[schema(minimum = 1)]
-    revision: Option<i64>,
 }
 
 /// Compare pathways
@@ -150,48 +140,8 @@ fn choice(value: &Value, at: &Place<'_>, problems: &mut Problems) -> Option<Choi
             }
         };
     }
-    if value.is_string() {
-        return Some(Choice::Stored(id(value, at, problems)?, None));
-    }
-    let mut fields = Fields::open(value, at, problems)?;
-    let named = match fields.take("id") {
-        Some(value) => id(value, &at.field("id"), problems),
-        None => {
-            Fields::missing("id", at, problems);
-            None
-        }
-    };
-    let revision = fields
-        .take("revision")
-        .map(|value| (value, value.as_i64().filter(|number| *number >= 1)));
-    if let Some((_, None)) = revision {
-        problems.add(
-            at.field("revision"),
-            "This is not the number of a revision.",
-            "Give a whole number from 1.",
-        );
-    }
-    fields.close(at, problems);
-    Some(Choice::Stored(named?, revision.and_then(|(_, number)| number)))
-}
-
-fn id(value: &Value, at: &Place<'_>, problems: &mut Problems) -> Option<Uuid> {
-    let id = text_of(value, at, problems)?.parse().ok();
-    if id.is_none() {
-        problems.add(
-            at,
-            "This is not the id of a pathway.",
-            "Give an id from the list of pathways, or a document.",
-        );
-    }
-    id
-}
-
-/// Problems of a document that stands inside another.
-fn under(at: &str, found: Problems, problems: &mut Problems) {
-    for problem in found.into_list() {
-        problems.add(format!("{at}{}", problem.pointer), problem.detail, problem.remedy);
-    }
+    let (id, revision) = stored(value, at, problems)?;
+    Some(Choice::Stored(id, revision))
 }
 
 fn side_by_side(
