@@ -1,11 +1,13 @@
 //! What every use case gets: the store, the clock, the published data, and on whose behalf records are kept.
 
 use crate::clock::Clock;
+use crate::core::checks::settings::Settings as CheckSettings;
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
 use crate::core::evaluate::{Options, evaluate};
 use crate::store::memory::Memory;
 use crate::store::{OrganisationId, Settings, Store, StoreError};
+use std::ops::Deref;
 use std::path::Path;
 use std::sync::Arc;
 
@@ -13,6 +15,55 @@ pub use crate::core::engine::assess::PROGRAM;
 
 /// The accounting as a value, so that tests of the shell can bring their own.
 pub type Evaluate = fn(&Pathway, &Book, Options<'_>) -> Result<Assessment, Problems>;
+
+/// Published data, alone or with what an organisation adds. Cheap to clone.
+#[derive(Clone, Debug)]
+pub enum SharedBook {
+    /// As published.
+    Published(&'static Book),
+    /// With rule sets of one's own.
+    Own(Arc<Book>),
+}
+
+impl Deref for SharedBook {
+    type Target = Book;
+
+    fn deref(&self) -> &Book {
+        match self {
+            SharedBook::Published(book) => book,
+            SharedBook::Own(book) => book,
+        }
+    }
+}
+
+/// What evaluations for an organisation rest on beside the document.
+#[derive(Clone, Debug)]
+pub struct Basis {
+    /// Published data with the organisation's own rule sets: the newest version of each by its id, every version as
+    /// `id@version`.
+    pub book: SharedBook,
+    /// Settings of the checks.
+    pub settings: Arc<CheckSettings>,
+    /// Hash of everything in it that is not standard; empty where all is.
+    pub(crate) hash: Arc<str>,
+    /// Hash of the settings of the checks; empty for the standard ones.
+    pub(crate) settings_hash: Arc<str>,
+    /// The last version of a rule set that is in it, by inner id.
+    pub(crate) last_rule_set: i64,
+    /// The last settings that are in it, by inner id.
+    pub(crate) last_settings: i64,
+}
+
+impl Basis {
+    /// What an evaluation is told: a rule set other than the document's, and the settings in force.
+    pub fn options<'o>(&'o self, rule_set: Option<&'o str>) -> Options<'o> {
+        Options {
+            rule_set,
+            settings: &self.settings,
+            ..Options::default()
+        }
+    }
+}
 
 /// The running program. Cheap to clone; clones share everything.
 #[derive(Clone)]

@@ -1,6 +1,7 @@
 //! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
 
 pub mod app;
+pub mod calculators;
 pub mod charts;
 pub mod cli;
 pub mod clock;
@@ -10,11 +11,17 @@ pub mod demo;
 pub mod factors;
 pub mod library;
 pub mod pathways;
+pub mod rules;
 pub mod store;
 pub mod telemetry;
 pub mod web;
 
 /// Every SQL text of the program; a test prepares them all on a fresh database.
 pub fn all_statements() -> Vec<&'static str> {
-    [store::STATEMENTS.to_vec(), pathways::statements()].concat()
+    [
+        store::STATEMENTS.to_vec(),
+        pathways::statements(),
+        rules::statements(),
+    ]
+    .concat()
 }

@@ -1,12 +1,12 @@
-//! The API of published data: editions, factors, materials, rule sets, models. Reading only.
+//! The API of published data: editions, factors, materials, models. Reading only.
 #![allow(
     unused_qualifications,
     reason = "utoipa's macro writes the types of queries in full"
 )]
 
-use super::{EditionDocument, EditionLine, FactorDocument, ModelDocument, RuleSetLine, models, search};
+use super::{EditionDocument, EditionLine, FactorDocument, ModelDocument, models, search};
 use crate::app::App;
-use crate::core::domain::{Factor, GwpSet, Material, RuleSet};
+use crate::core::domain::{Factor, GwpSet, Material};
 use crate::web::Refusal;
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
@@ -28,8 +28,6 @@ pub fn routes() -> OpenApiRouter<App> {
         .routes(routes!(factor))
         .routes(routes!(materials))
         .routes(routes!(material))
-        .routes(routes!(rule_sets))
-        .routes(routes!(rule_set))
         .routes(routes!(gwp_sets))
         .routes(routes!(gwp_set))
         .routes(routes!(model_list))
@@ -205,43 +203,6 @@ async fn material(
         .get(&id)
         .ok_or_else(|| Refusal::not_here("material", &id))?;
     Ok(Json(material.clone()))
-}
-
-/// Rule sets
-#[utoipa::path(get, path = "/rule-sets", tag = "published data", params(PageQuestion),
-    responses((status = 200, description = "Rule sets in order of id.", body = Page<RuleSetLine>,
-        headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
-async fn rule_sets(
-    State(app): State<App>,
-    OriginalUri(uri): OriginalUri,
-    Query(ask): Query<PageQuestion>,
-) -> Result<Response, Refusal> {
-    let all = app.library.rule_sets.values().map(RuleSetLine::of);
-    Ok(Page::cut(
-        all,
-        |line| &line.id,
-        ask.after.as_deref(),
-        paging::limit(ask.limit)?,
-    )
-    .answer(&uri))
-}
-
-/// A rule set
-///
-/// Everything the engine asks of it, each figure with its source.
-#[utoipa::path(get, path = "/rule-sets/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the rule set.")),
-    responses((status = 200, description = "The rule set.", body = RuleSet)))]
-async fn rule_set(
-    State(app): State<App>,
-    Path(id): Path<String>,
-    _: NoQuery,
-) -> Result<Json<RuleSet>, Refusal> {
-    let rules = app
-        .library
-        .rule_sets
-        .get(&id)
-        .ok_or_else(|| Refusal::not_here("rule set", &id))?;
-    Ok(Json(rules.clone()))
 }
 
 /// Models

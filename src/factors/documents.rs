@@ -1,7 +1,7 @@
 //! Editions, factors and rule sets as documents. They are made from the published data, never read.
 
 use crate::core::domain::factor::{FuelSplit, ProcessHeat, TermValues, Use};
-use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault, RuleSet, Status};
+use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault};
 use serde::Serialize;
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
@@ -171,25 +171,6 @@ pub struct Split {
     pub citation: Citation,
 }
 
-/// A rule set in the list of rule sets.
-#[derive(Clone, Debug, Serialize, ToSchema)]
-pub struct RuleSetLine {
-    /// Id as used in documents.
-    pub id: String,
-    /// Title.
-    pub title: String,
-    /// Version of its data here.
-    pub version: String,
-    /// Id of the set of gas weights.
-    pub gwp_set: String,
-    /// The fossil baseline, g CO2e/MJ.
-    pub comparator_g_co2e_per_mj: f64,
-    /// The document.
-    pub source: String,
-    /// Whether it was read.
-    pub status: Status,
-}
-
 impl EditionLine {
     /// The line of an edition.
     pub fn of(edition: &Edition) -> EditionLine {
@@ -357,21 +338,6 @@ impl Split {
             combustion_g_per_mj,
             note,
             citation,
-        }
-    }
-}
-
-impl RuleSetLine {
-    /// The line of a rule set.
-    pub fn of(rules: &RuleSet) -> RuleSetLine {
-        RuleSetLine {
-            id: rules.id.clone(),
-            title: rules.title.clone(),
-            version: rules.version.clone(),
-            gwp_set: rules.gwp_set.clone(),
-            comparator_g_co2e_per_mj: rules.comparator.value,
-            source: rules.source.clone(),
-            status: rules.status,
         }
     }
 }

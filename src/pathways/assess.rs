@@ -1,13 +1,15 @@
 //! Assessments: made from a document, kept beside its revision, found again or made again.
 
-use super::sql::SummaryRow;
+use super::reasons::{list, with_reasons};
+use super::sql::{RevisionRow, SummaryRow};
 use super::{PathwayError, Summary, What, public_id, sql};
-use crate::app::App;
+use crate::app::{App, Basis};
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::{Assessment, Pathway, canonical};
 use crate::core::evaluate::Options;
+use crate::rules::basis;
 use crate::store::StoreError;
-use crate::store::memory::{Head, Kept};
+use crate::store::memory::{AssessmentKey, Head, Kept};
 use std::sync::Arc;
 use tokio::task::JoinSet;
 use uuid::Uuid;
@@ -25,6 +27,8 @@ pub(super) struct Made {
     pub(super) text: String,
     pub(super) summary: Summary,
     pub(super) thresholds: String,
+    /// What it rests on.
+    pub(super) basis: Arc<Basis>,
 }
 
 impl Made {
@@ -84,12 +88,14 @@ pub(super) fn lines(document: &Pathway) -> usize {
 }
 
 /// Evaluates a document, its own rule set or another.
-pub(super) fn make(app: &App, document: &Pathway, rule_set: Option<&str>) -> Result<Made, PathwayError> {
-    let options = Options {
-        rule_set,
-        ..Options::default()
-    };
-    let assessment = (app.evaluate)(document, app.library, options)?;
+pub(super) fn make(
+    app: &App,
+    basis: &Arc<Basis>,
+    document: &Pathway,
+    rule_set: Option<&str>,
+) -> Result<Made, PathwayError> {
+    let options = basis.options(rule_set);
+    let assessment = (app.evaluate)(document, &basis.book, options)?;
     let defect = |error| PathwayError::defect("wrote an assessment", error);
     let bytes = canonical::bytes(&assessment).map_err(defect)?;
     let assessment_hash = canonical::hash(&bytes);
@@ -99,11 +105,17 @@ pub(super) fn make(app: &App, document: &Pathway, rule_set: Option<&str>) -> Res
     Ok(Made {
         text,
         thresholds,
-        summary: summary(assessment, assessment_hash),
+        summary: summary(
+            assessment,
+            rule_set.unwrap_or(&document.rule_set),
+            assessment_hash,
+        ),
+        basis: basis.clone(),
     })
 }
 
-fn summary(assessment: Assessment, assessment_hash: String) -> Summary {
+/// In short, under the rule set as it was asked for: the assessment itself names the version of one of one's own.
+fn summary(assessment: Assessment, rule_set: &str, assessment_hash: String) -> Summary {
     let count = |severity: Severity| {
         let findings = assessment
             .findings
@@ -117,7 +129,7 @@ fn summary(assessment: Assessment, assessment_hash: String) -> Summary {
         blocks: count(Severity::Block),
         warnings: count(Severity::Warn),
         infos: count(Severity::Info),
-        rule_set: assessment.rule_set,
+        rule_set: rule_set.to_owned(),
         thresholds: assessment.thresholds,
         assessment_hash,
     }
@@ -172,8 +184,8 @@ pub(super) fn document(text: &str, row: i64) -> Result<Pathway, StoreError> {
     })
 }
 
-/// The assessment of a pathway: of the current revision or another, under its own rule set or another. Kept bytes
-/// where there are some, made and kept where not.
+/// The assessment of a pathway: of the current revision or another, under its own rule set or another, with the reasons
+/// given for its warnings. Kept bytes where there are some, made and kept where not.
 ///
 /// # Errors
 /// When there is no such pathway or revision, when the document cannot be evaluated under the rule set, or when the
@@ -184,21 +196,65 @@ pub async fn assessment(
     revision: Option<i64>,
     rule_set: Option<&str>,
 ) -> Result<AssessmentBytes, PathwayError> {
+    let basis = basis(app).await?;
     if revision.is_none() {
         let head = head(app, id).await?;
         let rule_set = rule_set.unwrap_or(&head.rule_set);
-        if let Some(kept) = app.memory.assessment(&head.hash, rule_set) {
+        let key = AssessmentKey {
+            reasons: &head.reasons,
+            ..key(&head.hash, rule_set, &basis)
+        };
+        if let Some(kept) = app.memory.assessment(key) {
             return Ok(answer(head.revision, head.hash.clone(), rule_set, kept));
         }
     }
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, revision).await?;
     let found = found.ok_or(PathwayError::NotFound(missing(revision)))?;
+    let reasons = sql::reasons(&mut reader, app.organisation, found.id).await?;
+    drop(reader);
     let rule_set = rule_set.unwrap_or(&found.rule_set).to_owned();
-    if let Some(kept) = app.memory.assessment(&found.hash, &rule_set) {
-        return Ok(answer(found.number, found.hash, &rule_set, kept));
+    let kept = match reasons {
+        None => bare(app, &basis, &found, &rule_set).await?,
+        Some((text, hash)) => {
+            let key = AssessmentKey {
+                reasons: &hash,
+                ..key(&found.hash, &rule_set, &basis)
+            };
+            match app.memory.assessment(key) {
+                Some(kept) => kept,
+                None => {
+                    let bare = bare(app, &basis, &found, &rule_set).await?;
+                    let kept = with_reasons(bare, list(&text, found.id)?).await?;
+                    app.memory.keep(key, kept.clone());
+                    kept
+                }
+            }
+        }
+    };
+    Ok(answer(found.number, found.hash, &rule_set, kept))
+}
+
+/// The assessment of a revision without reasons: kept bytes where there are some, made and kept where not.
+pub(super) async fn bare(
+    app: &App,
+    basis: &Arc<Basis>,
+    found: &RevisionRow,
+    rule_set: &str,
+) -> Result<Kept, PathwayError> {
+    if let Some(kept) = app.memory.assessment(key(&found.hash, rule_set, basis)) {
+        return Ok(kept);
     }
-    let kept = sql::assessment(&mut reader, app.organisation, found.revision_id, &rule_set).await?;
+    let settings = &basis.settings_hash;
+    let mut reader = app.store.reader().await?;
+    let kept = sql::assessment(
+        &mut reader,
+        app.organisation,
+        found.revision_id,
+        rule_set,
+        settings,
+    )
+    .await?;
     drop(reader);
     let kept = match kept {
         Some((hash, text)) => Kept {
@@ -207,15 +263,27 @@ pub async fn assessment(
         },
         None => {
             let document = document(&found.document, found.revision_id)?;
-            let (app_too, under) = (app.clone(), rule_set.clone());
-            let made = compute(lines(&document), move || make(&app_too, &document, Some(&under))).await?;
+            let (app_too, basis, under) = (app.clone(), basis.clone(), rule_set.to_owned());
+            let lines = lines(&document);
+            let work = move || make(&app_too, &basis, &document, Some(&under));
+            let made = compute(lines, work).await?;
             let kept = made.kept();
             keep_soon(app, found.revision_id, made).await;
             kept
         }
     };
-    app.memory.keep(&found.hash, &rule_set, kept.clone());
-    Ok(answer(found.number, found.hash, &rule_set, kept))
+    app.memory.keep(key(&found.hash, rule_set, basis), kept.clone());
+    Ok(kept)
+}
+
+/// The key of an assessment without reasons.
+pub(super) fn key<'k>(document: &'k str, rule_set: &'k str, basis: &'k Basis) -> AssessmentKey<'k> {
+    AssessmentKey {
+        document,
+        rule_set,
+        basis: &basis.hash,
+        reasons: "",
+    }
 }
 
 pub(super) fn missing(revision: Option<i64>) -> What {
@@ -251,6 +319,7 @@ pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError>
         revision: row.number,
         hash: row.hash,
         rule_set: row.rule_set,
+        reasons: row.reasons,
     });
     app.memory.learn(app.organisation, id, head.clone(), now, writes);
     Ok(head)
@@ -273,6 +342,7 @@ pub(super) async fn keep_soon(app: &App, revision: i64, made: Made) {
 /// # Errors
 /// When the database fails or a stored document cannot be read.
 pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayError> {
+    let basis = basis(app).await?;
     let width = std::thread::available_parallelism().map_or(1, std::num::NonZero::get);
     let mut total = Reassessed::default();
     let mut running = JoinSet::new();
@@ -286,20 +356,20 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
         if running.len() >= width {
             gather(app, &mut running, keep, &mut total).await?;
         }
-        let app = app.clone();
+        let (app, basis) = (app.clone(), basis.clone());
         running.spawn_blocking(move || {
             let assess = |row: sql::CurrentRow| {
                 let id = public_id(&row.public_id, row.id)?;
                 let document = document(&row.document, row.revision_id)?;
                 let result = if keep {
-                    make(&app, &document, None)
+                    make(&app, &basis, &document, None)
                         .map(|made| (made.summary.net_g_co2e_per_mj, Some((row.revision_id, made))))
                 } else {
                     let options = Options {
                         without_workings: true,
-                        ..Options::default()
+                        ..basis.options(None)
                     };
-                    let assessment = (app.evaluate)(&document, app.library, options);
+                    let assessment = (app.evaluate)(&document, &basis.book, options);
                     assessment
                         .map(|made| (made.net.g_co2e_per_mj, None))
                         .map_err(PathwayError::Problems)

@@ -3,24 +3,29 @@
 
 pub mod api;
 pub mod assess;
+pub mod blend;
 pub mod changes;
+mod defaults;
 mod error;
 mod examples;
 pub mod list;
 pub mod pages;
 mod read;
+mod reasons;
 pub mod rows;
 mod save;
 mod sql;
 
 pub use assess::{AssessmentBytes, Reassessed, assessment, reassess_all};
 pub use changes::{Change, Kind};
+pub use defaults::{Defaults, defaults};
 pub use error::{PathwayError, What};
 pub use examples::{load_examples, remove_examples};
 pub use list::{Line, Page, Question, Sort, list};
 pub use read::{
     FactorUse, Revision, Stored, changes, read, revision, revisions, rows_differ, stage, uses_of_factor,
 };
+pub use reasons::{MOST_REASONS, Reasons, ReasonsDocument, put_reasons, reasons};
 pub use save::{archive, create, delete_stage, put_stage, replace, restore};
 
 use crate::core::documents::assessment::ThresholdResult;
@@ -73,7 +78,7 @@ pub struct Summary {
     pub warnings: u32,
     /// Findings that inform.
     pub infos: u32,
-    /// Hash of the whole assessment.
+    /// Hash of the whole assessment, before reasons are put on its findings.
     pub assessment_hash: String,
 }
 

@@ -6,6 +6,7 @@ use super::sql::RevisionRow;
 use super::{Change, PathwayError, Summary, What, changes as differences, public_id, sql, time};
 use crate::app::App;
 use crate::core::documents::pathway::Stage;
+use crate::rules::basis;
 use jiff::Timestamp;
 use serde::Serialize;
 use std::sync::Arc;
@@ -138,8 +139,9 @@ pub async fn stage(app: &App, id: Uuid, key: &str) -> Result<(Stage, String), Pa
 /// # Errors
 /// `NotFound`, or when the database fails.
 pub async fn revisions(app: &App, id: Uuid) -> Result<Vec<Revision>, PathwayError> {
+    let basis = basis(app).await?;
     let mut reader = app.store.reader().await?;
-    let history = sql::revisions(&mut reader, app.organisation, id).await?;
+    let history = sql::revisions(&mut reader, app.organisation, id, &basis.settings_hash).await?;
     if history.is_empty() {
         return Err(PathwayError::NotFound(What::Pathway));
     }

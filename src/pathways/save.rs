@@ -1,12 +1,13 @@
 //! Saving: a document is evaluated whole and becomes a revision, or nothing is stored at all.
 
-use super::assess::{Made, compute, document, lines, make};
+use super::assess::{Made, compute, document, key, lines, make};
 use super::rows::{RowTexts, Rows};
 use super::{Expected, PathwayError, Saved, Summary, What, sql, time};
 use crate::app::App;
 use crate::core::documents::pathway::Stage;
 use crate::core::documents::{Pathway, Problem, canonical};
-use crate::store::memory::Head;
+use crate::rules::basis;
+use crate::store::memory::{Head, Memory};
 use std::sync::Arc;
 use uuid::Uuid;
 
@@ -22,6 +23,7 @@ pub(super) struct Prepared {
 
 /// Evaluates a document and works out everything that is written with it.
 pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
+    let basis = basis(app).await?;
     let app = app.clone();
     compute(lines(&document), move || {
         let defect = |error| PathwayError::defect("wrote a pathway", error);
@@ -33,7 +35,7 @@ pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared
             let lost = std::io::Error::other("the canonical bytes read back as another document");
             return Err(PathwayError::defect("wrote a pathway", lost));
         }
-        let assessment = make(&app, &document, None)?;
+        let assessment = make(&app, &basis, &document, None)?;
         let rows = Rows::of(&document).texts();
         let rows = rows.map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
         let hash = canonical::hash(&bytes);
@@ -64,12 +66,20 @@ impl Prepared {
         })
     }
 
-    fn head(&self, revision: i64) -> Head {
+    fn head(&self, revision: i64, reasons: String) -> Head {
         Head {
             revision,
             hash: self.hash.clone(),
             rule_set: self.document.rule_set.clone(),
+            reasons,
         }
+    }
+
+    /// Keeps the assessment at hand.
+    fn keep(&self, memory: &Memory) {
+        let assessment = &self.assessment;
+        let key = key(&self.hash, &self.document.rule_set, &assessment.basis);
+        memory.keep(key, assessment.kept());
     }
 }
 
@@ -100,8 +110,8 @@ pub(super) async fn create_prepared(
                 })
             },
             move |()| {
-                memory.wrote(who, id, kept.head(1), now);
-                memory.keep(&kept.hash, &kept.document.rule_set, kept.assessment.kept());
+                memory.wrote(who, id, kept.head(1, String::new()), now);
+                kept.keep(&memory);
             },
         )
         .await?;
@@ -123,7 +133,7 @@ pub async fn replace(
     let made = prepare(app, document).await?;
     let (who, now) = (app.organisation, app.clock.millis());
     let (memory, job, after) = (app.memory.clone(), made.clone(), made.clone());
-    let (revision, at, changed) = app
+    let (revision, at, changed, _) = app
         .store
         .write_then(
             move |c| {
@@ -136,17 +146,17 @@ pub async fn replace(
                         return Err(PathwayError::Archived);
                     }
                     if head.hash == job.hash {
-                        return Ok((head.number, head.saved_at, false));
+                        return Ok((head.number, head.saved_at, false, head.reasons));
                     }
                     let number = head.number + 1;
                     sql::add_revision(c, who, head.id, number, &job, reason.as_deref(), now).await?;
                     sql::move_on(c, who, head.id, number, &job, now).await?;
-                    Ok((number, now, true))
+                    Ok((number, now, true, head.reasons))
                 })
             },
-            move |&(number, _, _)| {
-                memory.wrote(who, id, after.head(number), now);
-                memory.keep(&after.hash, &after.document.rule_set, after.assessment.kept());
+            move |(number, _, _, reasons)| {
+                memory.wrote(who, id, after.head(*number, reasons.clone()), now);
+                after.keep(&memory);
             },
         )
         .await?;

@@ -8,7 +8,8 @@ use crate::store::{Connection, OrganisationId, StoreError};
 use uuid::Uuid;
 
 const HEAD: &str = "\
-    SELECT p.id, p.archived_at, r.number, r.hash, r.rule_set, r.saved_at \
+    SELECT p.id, p.archived_at, r.number, r.hash, r.rule_set, r.saved_at, \
+           COALESCE((SELECT s.hash FROM reasons s WHERE s.pathway_id = p.id ORDER BY s.number DESC LIMIT 1), '') AS reasons \
     FROM pathway p \
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.public_id = $2";
@@ -25,7 +26,7 @@ const REVISIONS: &str = "\
     FROM pathway p \
     JOIN revision r ON r.pathway_id = p.id AND r.organisation_id = p.organisation_id \
     LEFT JOIN assessment a ON a.organisation_id = r.organisation_id AND a.revision_id = r.id AND a.program = $3 \
-                          AND a.rule_set = r.rule_set \
+                          AND a.rule_set = r.rule_set AND a.settings = $4 \
     WHERE p.organisation_id = $1 AND p.public_id = $2 ORDER BY r.number DESC";
 const ADD_PATHWAY: &str = "\
     INSERT INTO pathway (organisation_id, public_id, name, name_folded, feedstock, rule_set, example, current_revision, \
@@ -54,15 +55,23 @@ const CURRENT_AFTER: &str = "\
 
 const ASSESSMENT: &str = "\
     SELECT hash, document FROM assessment \
-    WHERE organisation_id = $1 AND revision_id = $2 AND rule_set = $3 AND program = $4";
+    WHERE organisation_id = $1 AND revision_id = $2 AND rule_set = $3 AND program = $4 AND settings = $5";
 const KEEP_ASSESSMENT: &str = "\
     INSERT INTO assessment (organisation_id, revision_id, rule_set, program, document, hash, net, saving, thresholds, \
-                            blocks, warnings, infos, made_at) \
-    VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13) \
+                            blocks, warnings, infos, made_at, settings) \
+    SELECT $1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13, $14 \
+    WHERE $15 = COALESCE((SELECT MAX(id) FROM own_rule_set WHERE organisation_id = $1), 0) \
     ON CONFLICT (revision_id, rule_set, program) DO UPDATE SET \
         document = excluded.document, hash = excluded.hash, net = excluded.net, saving = excluded.saving, \
         thresholds = excluded.thresholds, blocks = excluded.blocks, warnings = excluded.warnings, \
-        infos = excluded.infos, made_at = excluded.made_at";
+        infos = excluded.infos, made_at = excluded.made_at, settings = excluded.settings";
+
+const REASONS: &str = "\
+    SELECT document, hash FROM reasons WHERE organisation_id = $1 AND pathway_id = $2 ORDER BY number DESC LIMIT 1";
+const ADD_REASONS: &str = "\
+    INSERT INTO reasons (organisation_id, pathway_id, number, document, hash, saved_at) \
+    VALUES ($1, $2, 1 + COALESCE((SELECT MAX(number) FROM reasons WHERE organisation_id = $1 AND pathway_id = $2), 0), \
+            $3, $4, $5)";
 
 /// The statements of this file.
 pub(crate) const STATEMENTS: &[&str] = &[
@@ -78,6 +87,8 @@ pub(crate) const STATEMENTS: &[&str] = &[
     CURRENT_AFTER,
     ASSESSMENT,
     KEEP_ASSESSMENT,
+    REASONS,
+    ADD_REASONS,
 ];
 
 /// The current revision of a pathway, by its inner ids.
@@ -89,6 +100,8 @@ pub(super) struct HeadRow {
     pub(super) hash: String,
     pub(super) rule_set: String,
     pub(super) saved_at: i64,
+    /// Hash of the reasons given for its warnings; empty for none.
+    pub(super) reasons: String,
 }
 
 /// A revision with its document.
@@ -167,11 +180,17 @@ pub(super) async fn revision(
 }
 
 /// The history, newest first; empty when there is no such pathway.
-pub(super) async fn revisions(c: &mut Connection, who: OrganisationId, id: Uuid) -> Answer<Vec<HistoryRow>> {
+pub(super) async fn revisions(
+    c: &mut Connection,
+    who: OrganisationId,
+    id: Uuid,
+    settings: &str,
+) -> Answer<Vec<HistoryRow>> {
     Ok(sqlx::query_as(REVISIONS)
         .bind(who.0)
         .bind(id.to_string())
         .bind(PROGRAM)
+        .bind(settings)
         .fetch_all(c)
         .await?)
 }
@@ -264,7 +283,7 @@ pub(super) async fn add_revision(
     Ok(revision)
 }
 
-/// Keeps an assessment beside its revision.
+/// Keeps an assessment beside its revision, unless an own rule set was saved since it was made.
 pub(super) async fn keep(
     c: &mut Connection,
     who: OrganisationId,
@@ -285,7 +304,9 @@ pub(super) async fn keep(
         .bind(made.summary.blocks)
         .bind(made.summary.warnings)
         .bind(made.summary.infos)
-        .bind(now);
+        .bind(now)
+        .bind(&*made.basis.settings_hash)
+        .bind(made.basis.last_rule_set);
     query.execute(c).await?;
     Ok(())
 }
@@ -296,13 +317,46 @@ pub(super) async fn assessment(
     who: OrganisationId,
     revision: i64,
     rule_set: &str,
+    settings: &str,
 ) -> Answer<Option<(String, String)>> {
     let query = sqlx::query_as(ASSESSMENT)
         .bind(who.0)
         .bind(revision)
         .bind(rule_set)
-        .bind(PROGRAM);
+        .bind(PROGRAM)
+        .bind(settings);
     Ok(query.fetch_optional(c).await?)
+}
+
+/// Document and hash of the reasons saved last.
+pub(super) async fn reasons(
+    c: &mut Connection,
+    who: OrganisationId,
+    pathway: i64,
+) -> Answer<Option<(String, String)>> {
+    Ok(sqlx::query_as(REASONS)
+        .bind(who.0)
+        .bind(pathway)
+        .fetch_optional(c)
+        .await?)
+}
+
+pub(super) async fn add_reasons(
+    c: &mut Connection,
+    who: OrganisationId,
+    pathway: i64,
+    document: &str,
+    hash: &str,
+    now: i64,
+) -> Answer<()> {
+    let query = sqlx::query(ADD_REASONS)
+        .bind(who.0)
+        .bind(pathway)
+        .bind(document)
+        .bind(hash)
+        .bind(now);
+    query.execute(c).await?;
+    Ok(())
 }
 
 /// Removes demonstration data whole; how many pathways went.

@@ -1,7 +1,9 @@
 //! Immutable bytes kept in memory, and which revision of a pathway is current, so that a hot read need not ask the
-//! file. Assessments are found by the hash of their document and the rule set: they never go stale, only old.
+//! file. Assessments are found by the hash of their document, the rule set, and the hashes of what else they rest on: they
+//! never go stale, only old.
 
 use super::OrganisationId;
+use crate::app::Basis;
 use std::collections::{BTreeMap, HashMap};
 use std::sync::{Arc, Mutex, MutexGuard, PoisonError};
 use uuid::Uuid;
@@ -19,6 +21,21 @@ pub(crate) struct Head {
     pub(crate) revision: i64,
     pub(crate) hash: String,
     pub(crate) rule_set: String,
+    /// Hash of the reasons given for its warnings; empty where there are none.
+    pub(crate) reasons: String,
+}
+
+/// What makes the bytes of an assessment: the same key, the same bytes.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct AssessmentKey<'k> {
+    /// Hash of the document.
+    pub(crate) document: &'k str,
+    /// The rule set asked for.
+    pub(crate) rule_set: &'k str,
+    /// Hash of the basis.
+    pub(crate) basis: &'k str,
+    /// Hash of the reasons in its findings; empty for none.
+    pub(crate) reasons: &'k str,
 }
 
 /// An assessment as bytes with their hash.
@@ -37,6 +54,9 @@ struct Inner {
     heads: HashMap<(OrganisationId, Uuid), (Arc<Head>, i64)>,
     /// Counts writes: what was read before a write is not remembered after it.
     writes: u64,
+    bases: HashMap<OrganisationId, (Arc<Basis>, i64)>,
+    /// Counts writes to what bases are made of.
+    basis_writes: u64,
     kept: HashMap<String, (Kept, u64)>,
     /// Keys of `kept` from the one used longest ago.
     order: BTreeMap<u64, String>,
@@ -80,11 +100,40 @@ impl Memory {
         inner.heads.clear();
     }
 
-    /// The assessment of a document under a rule set, if it is at hand.
-    pub(crate) fn assessment(&self, document: &str, rule_set: &str) -> Option<Kept> {
+    /// The basis of an organisation, if it was learnt within the last second. Else an older one, to be compared with the
+    /// file, and the count to give to [`Memory::learn_basis`].
+    pub(crate) fn basis(
+        &self,
+        who: OrganisationId,
+        now: i64,
+    ) -> Result<Arc<Basis>, (Option<Arc<Basis>>, u64)> {
+        let inner = self.inner();
+        match inner.bases.get(&who) {
+            Some((basis, since)) if (0..TRUST).contains(&now.saturating_sub(*since)) => Ok(basis.clone()),
+            older => Err((older.map(|(basis, _)| basis.clone()), inner.basis_writes)),
+        }
+    }
+
+    /// Remembers a basis that was read from the file, unless one was written since.
+    pub(crate) fn learn_basis(&self, who: OrganisationId, basis: Arc<Basis>, now: i64, writes: u64) {
+        let mut inner = self.inner();
+        if inner.basis_writes == writes {
+            inner.bases.insert(who, (basis, now));
+        }
+    }
+
+    /// Forgets the basis of an organisation: it has changed.
+    pub(crate) fn forget_basis(&self, who: OrganisationId) {
+        let mut inner = self.inner();
+        inner.basis_writes += 1;
+        inner.bases.remove(&who);
+    }
+
+    /// An assessment, if it is at hand.
+    pub(crate) fn assessment(&self, key: AssessmentKey<'_>) -> Option<Kept> {
         let mut inner = self.inner();
         let turn = inner.next_turn();
-        let key = key(document, rule_set);
+        let key = text_of(key);
         let (kept, last) = inner.kept.get_mut(&key)?;
         let (kept, last) = (kept.clone(), std::mem::replace(last, turn));
         inner.order.remove(&last);
@@ -93,14 +142,14 @@ impl Memory {
     }
 
     /// Keeps an assessment at hand; the ones used longest ago give way.
-    pub(crate) fn keep(&self, document: &str, rule_set: &str, kept: Kept) {
+    pub(crate) fn keep(&self, key: AssessmentKey<'_>, kept: Kept) {
         let size = kept.bytes.len();
         if size > MOST_BYTES / 4 {
             return;
         }
         let mut inner = self.inner();
         let turn = inner.next_turn();
-        let key = key(document, rule_set);
+        let key = text_of(key);
         inner.drop_kept(&key);
         inner.bytes += size;
         inner.kept.insert(key.clone(), (kept, turn));
@@ -135,8 +184,15 @@ impl Inner {
     }
 }
 
-fn key(document: &str, rule_set: &str) -> String {
-    format!("{document} {rule_set}")
+fn text_of(key: AssessmentKey<'_>) -> String {
+    let AssessmentKey {
+        document,
+        rule_set,
+        basis,
+        reasons,
+    } = key;
+    // Hashes hold no space, and the rule set comes last.
+    format!("{document} {basis} {reasons} {rule_set}")
 }
 
 #[cfg(test)]
@@ -150,21 +206,53 @@ mod tests {
         }
     }
 
+    fn key(document: &str) -> AssessmentKey<'_> {
+        AssessmentKey {
+            document,
+            rule_set: "r",
+            basis: "",
+            reasons: "",
+        }
+    }
+
+    #[test]
+    fn what_else_it_rests_on_tells_assessments_apart() {
+        let memory = Memory::default();
+        memory.keep(key("a"), kept(1));
+        for other in [
+            AssessmentKey {
+                basis: "b",
+                ..key("a")
+            },
+            AssessmentKey {
+                reasons: "c",
+                ..key("a")
+            },
+            AssessmentKey {
+                rule_set: "s",
+                ..key("a")
+            },
+        ] {
+            assert!(memory.assessment(other).is_none(), "{other:?}");
+        }
+        assert!(memory.assessment(key("a")).is_some());
+    }
+
     #[test]
     fn the_oldest_bytes_give_way() {
         let memory = Memory::default();
         let big = MOST_BYTES / 4;
         for name in ["a", "b", "c", "d"] {
-            memory.keep(name, "r", kept(big));
+            memory.keep(key(name), kept(big));
         }
-        assert!(memory.assessment("a", "r").is_some(), "used last, so it stays");
-        memory.keep("e", "r", kept(big));
-        assert!(memory.assessment("b", "r").is_none());
-        assert!(memory.assessment("a", "r").is_some());
-        memory.keep("a", "r", kept(1));
+        assert!(memory.assessment(key("a")).is_some(), "used last, so it stays");
+        memory.keep(key("e"), kept(big));
+        assert!(memory.assessment(key("b")).is_none());
+        assert!(memory.assessment(key("a")).is_some());
+        memory.keep(key("a"), kept(1));
         assert_eq!(memory.inner().bytes, 3 * big + 1);
-        memory.keep("f", "r", kept(big + 1));
-        assert!(memory.assessment("f", "r").is_none(), "too large to keep");
+        memory.keep(key("f"), kept(big + 1));
+        assert!(memory.assessment(key("f")).is_none(), "too large to keep");
     }
 
     #[test]
@@ -175,6 +263,7 @@ mod tests {
             revision,
             hash: "h".into(),
             rule_set: "r".into(),
+            reasons: String::new(),
         };
         let writes = memory.head(who, id, 0).expect_err("empty");
         memory.wrote(who, id, head(2), 0);

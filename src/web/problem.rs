@@ -122,6 +122,14 @@ impl Refusal {
         Refusal::of(StatusCode::NOT_FOUND).detail(format!("There is no {what} \"{}\" here.", shown(name)))
     }
 
+    /// The same refusal of a document that stands inside another, at this pointer.
+    pub fn under(mut self, pointer: &str) -> Refusal {
+        for error in &mut self.errors {
+            error.pointer.insert_str(0, pointer);
+        }
+        self
+    }
+
     /// A query parameter, path or header is wrong: 400.
     pub fn bad_request(detail: impl Into<String>) -> Refusal {
         Refusal::of(StatusCode::BAD_REQUEST).detail(detail)

@@ -7,7 +7,7 @@ use super::problem::{Refusal, RefusalPage};
 use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{demo, factors, pathways};
+use crate::{calculators, demo, factors, pathways, rules};
 use axum::Router;
 use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
@@ -63,7 +63,9 @@ fn api() -> OpenApiRouter<App> {
     let v1 = OpenApiRouter::new()
         .merge(openapi::routes())
         .merge(pathways::api::routes())
-        .merge(factors::api::routes());
+        .merge(factors::api::routes())
+        .merge(rules::api::routes())
+        .merge(calculators::api::routes());
     let mut all = OpenApiRouter::with_openapi(openapi::begun()).nest("/api/v1", v1);
     // Described with the rest, routed apart.
     all.get_openapi_mut().merge(health::routes().into_openapi());

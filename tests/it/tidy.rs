@@ -17,6 +17,8 @@ const THINGS: &[&str] = &[
     "audit_trail",
     "people",
     "evidence",
+    "calculators",
+    "rules",
     "factors",
     "pathways",
     "statements",

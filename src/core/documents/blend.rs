@@ -2,7 +2,7 @@
 
 use super::assessment::{Assessment, Step};
 use super::problem::Problems;
-use super::reader::{Fields, Place};
+use super::reader::{Place, object, whole};
 use crate::core::units::rounding::plain;
 use serde::{Deserialize, Serialize};
 use serde_json::Value;
@@ -190,7 +190,7 @@ impl BlendRequest {
         whole(value, |fields, at, problems| {
             let blend = fields.text("blend", at, problems);
             let share = fields.number("ethanol_percent_vol", at, problems);
-            let temperature = required_number(fields, "temperature_c", at, problems);
+            let temperature = fields.required_number("temperature_c", at, problems);
             fields.need("heating_values", at, problems);
             let basis = fields.word("heating_values", &EnergyBasis::WORDS, at, problems);
             let own = fields.part("own_heating_values", at, problems, own_heating_values);
@@ -227,45 +227,10 @@ impl PerKmRequest {
     }
 }
 
-/// Opens the whole document, reads it, and refuses unknown fields.
-fn whole<'v, T>(
-    value: &'v Value,
-    read: impl FnOnce(&mut Fields<'v>, &Place, &mut Problems) -> Option<T>,
-) -> Result<T, Problems> {
-    let mut problems = Problems::default();
-    let read = object(value, &Place::ROOT, &mut problems, read);
-    match read {
-        Some(read) if problems.is_empty() => Ok(read),
-        _ => Err(problems),
-    }
-}
-
-fn object<'v, T>(
-    value: &'v Value,
-    at: &Place,
-    problems: &mut Problems,
-    read: impl FnOnce(&mut Fields<'v>, &Place, &mut Problems) -> Option<T>,
-) -> Option<T> {
-    let mut fields = Fields::open(value, at, problems)?;
-    let out = read(&mut fields, at, problems);
-    fields.close(at, problems);
-    out
-}
-
-fn required_number(
-    fields: &mut Fields,
-    name: &'static str,
-    at: &Place,
-    problems: &mut Problems,
-) -> Option<f64> {
-    fields.need(name, at, problems);
-    fields.number(name, at, problems)
-}
-
 fn own_heating_values(value: &Value, at: &Place, problems: &mut Problems) -> Option<OwnHeatingValues> {
     object(value, at, problems, |fields, at, problems| {
-        let ethanol = required_number(fields, "ethanol_mj_per_l", at, problems);
-        let petrol = required_number(fields, "petrol_mj_per_l", at, problems);
+        let ethanol = fields.required_number("ethanol_mj_per_l", at, problems);
+        let petrol = fields.required_number("petrol_mj_per_l", at, problems);
         let ethanol_density = fields.number("ethanol_kg_per_m3", at, problems);
         let petrol_density = fields.number("petrol_kg_per_m3", at, problems);
         let source = fields.required_text("source", at, problems);
@@ -281,7 +246,7 @@ fn own_heating_values(value: &Value, at: &Place, problems: &mut Problems) -> Opt
 
 fn intensity(value: &Value, at: &Place, problems: &mut Problems) -> Option<Intensity> {
     object(value, at, problems, |fields, at, problems| {
-        let figure = required_number(fields, "g_co2e_per_mj", at, problems);
+        let figure = fields.required_number("g_co2e_per_mj", at, problems);
         let source = fields.required_text("source", at, problems);
         Some(Intensity {
             g_co2e_per_mj: figure?,

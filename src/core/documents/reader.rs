@@ -150,6 +150,57 @@ impl<'v> Fields<'v> {
         Some(figure)
     }
 
+    /// A required number.
+    pub fn required_number(
+        &mut self,
+        name: &'static str,
+        at: &Place,
+        problems: &mut Problems,
+    ) -> Option<f64> {
+        self.need(name, at, problems);
+        self.number(name, at, problems)
+    }
+
+    /// The one of several numbers that is given, by its position in `names`. None, with a problem, where none or more than
+    /// one is.
+    pub fn one_number(
+        &mut self,
+        names: &[&'static str],
+        what: &str,
+        at: &Place,
+        problems: &mut Problems,
+    ) -> Option<(usize, f64)> {
+        let given: Vec<(usize, &'static str)> = names
+            .iter()
+            .copied()
+            .enumerate()
+            .filter(|(_, name)| self.has(name))
+            .collect();
+        let figures: Vec<Option<f64>> = names.iter().map(|name| self.number(name, at, problems)).collect();
+        match given[..] {
+            [(index, _)] => figures
+                .get(index)
+                .copied()
+                .flatten()
+                .map(|figure| (index, figure)),
+            [] => {
+                let first = names.first().copied().unwrap_or("");
+                let remedy = format!("Give one of: {}.", names.join(", "));
+                problems.add(at.field(first), format!("The {what} is missing."), remedy);
+                None
+            }
+            [.., (_, last)] => {
+                let remedy = format!("Keep one of: {}.", names.join(", "));
+                problems.add(
+                    at.field(last),
+                    format!("The {what} is given more than once."),
+                    remedy,
+                );
+                None
+            }
+        }
+    }
+
     /// An optional truth value.
     pub fn flag(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<bool> {
         match self.take(name)? {
@@ -250,6 +301,34 @@ pub fn unique<'k>(keys: impl Iterator<Item = &'k str>, at: &Place, field: &str, 
             );
         }
     }
+}
+
+/// Opens a whole document, reads it, and refuses unknown fields.
+///
+/// # Errors
+/// Everything that is wrong with its shape, each with its pointer.
+pub fn whole<'v, T>(
+    value: &'v Value,
+    read: impl FnOnce(&mut Fields<'v>, &Place, &mut Problems) -> Option<T>,
+) -> Result<T, Problems> {
+    let mut problems = Problems::default();
+    match object(value, &Place::ROOT, &mut problems, read) {
+        Some(read) if problems.is_empty() => Ok(read),
+        _ => Err(problems),
+    }
+}
+
+/// Opens an object inside a document, reads it, and refuses unknown fields.
+pub fn object<'v, T>(
+    value: &'v Value,
+    at: &Place,
+    problems: &mut Problems,
+    read: impl FnOnce(&mut Fields<'v>, &Place, &mut Problems) -> Option<T>,
+) -> Option<T> {
+    let mut fields = Fields::open(value, at, problems)?;
+    let out = read(&mut fields, at, problems);
+    fields.close(at, problems);
+    out
 }
 
 /// A text, kept as given; control characters other than tab and line ends are refused.

@@ -61,9 +61,11 @@ impl Book {
         self.limits.get(rule_set)?.get(symbol)
     }
 
-    /// The rule sets in the order in which lists offer them: those in force first, the repealed ones last.
+    /// The rule sets in the order in which lists offer them: those in force first, the repealed ones last. Versions of
+    /// one's own stand here as `id@version` too: the newest is offered.
     pub fn offered_rule_sets(&self) -> Vec<&RuleSet> {
-        let mut sets: Vec<&RuleSet> = self.rule_sets.values().collect();
+        let newest = self.rule_sets.iter().filter(|(id, _)| !id.contains('@'));
+        let mut sets: Vec<&RuleSet> = newest.map(|(_, set)| set).collect();
         sets.sort_by_key(|set| set.standing);
         sets
     }

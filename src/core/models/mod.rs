@@ -13,6 +13,7 @@ pub mod digester;
 pub mod distillation;
 pub mod dryer;
 pub mod factors;
+pub mod fermentation;
 pub mod fermentation_co2;
 pub mod flow;
 pub mod given;

@@ -7,8 +7,9 @@
 
 use super::evaluate::{RuleSetQuestion, assessed};
 use super::stored::known_rule_set;
-use crate::app::App;
+use crate::app::{App, Basis};
 use crate::core::documents::{Assessment, json};
+use crate::rules::basis;
 use crate::web::extract::{Limits, Query, is_of_type, next_piece};
 use crate::web::problem::ProblemDocument;
 use crate::web::{Refusal, blocking};
@@ -69,7 +70,8 @@ async fn evaluate_batch(
     Query(ask): Query<RuleSetQuestion>,
     request: Request,
 ) -> Result<Response, Refusal> {
-    known_rule_set(&app, ask.rule_set.as_deref())?;
+    let basis = basis(&app).await?;
+    known_rule_set(&basis.book, ask.rule_set.as_deref())?;
     let lines = |kind: &str| matches!(kind, NDJSON | "application/ndjson" | "application/jsonl");
     if !is_of_type(request.headers(), lines) {
         return Err(
@@ -85,7 +87,7 @@ async fn evaluate_batch(
     let (made, answer) = mpsc::channel(LINES);
     let body = request.into_body().into_data_stream();
     tokio::spawn(read_lines(body, limits, arrived));
-    tokio::spawn(start(app, ask.rule_set, waiting, started));
+    tokio::spawn(start(app, basis, ask.rule_set, waiting, started));
     tokio::spawn(finish(running, made, place));
     Ok((
         [(CONTENT_TYPE, NDJSON)],
@@ -205,6 +207,7 @@ impl Cutter {
 /// Starts the evaluation of each line as places come free.
 async fn start(
     app: App,
+    basis: Arc<Basis>,
     rule_set: Option<String>,
     mut waiting: mpsc::UnboundedReceiver<Arrived>,
     started: mpsc::Sender<(u64, JoinHandle<Bytes>)>,
@@ -213,11 +216,11 @@ async fn start(
         let Ok(place) = started.reserve().await else {
             return;
         };
-        let (app, rule_set) = (app.clone(), rule_set.clone());
+        let (app, basis, rule_set) = (app.clone(), basis.clone(), rule_set.clone());
         let work = tokio::spawn(async move {
             let work = blocking::run(move || {
                 let body = json::parse(&text?).map_err(Refusal::not_json)?;
-                assessed(&app, &body, rule_set.as_deref())
+                assessed(&app, &basis, &body, rule_set.as_deref())
             });
             written(line, work.await.unwrap_or_else(Err))
         });

@@ -1,12 +1,14 @@
 //! Comparison of two to six pathways, stored ones by id, others as documents.
 
 use super::super::{Stored, read, revision};
+use super::choice::{StoredChoice, stored, under};
 use super::stored::known_rule_set;
-use crate::app::App;
-use crate::core::documents::reader::{Fields, Place, text_of};
+use crate::app::{App, Basis};
+use crate::core::documents::reader::{Fields, Place};
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::evaluate::Options;
 use crate::core::levers::compare::{Comparison, LEAST, MOST, Subject, compare};
+use crate::rules::basis;
 use crate::web::extract::{JsonBody, NoQuery};
 use crate::web::{Refusal, blocking};
 use axum::Json;
@@ -46,20 +48,9 @@ enum Chosen {
     /// A stored one, at its current revision.
     Id(Uuid),
     /// A stored one, at a revision.
-    Revision(ChosenRevision),
+    Revision(StoredChoice),
     /// A document that need not be stored.
     Document(Box<Pathway>),
-}
-
-/// A revision to compare.
-#[derive(Debug, Serialize, ToSchema)]
-#[allow(dead_code, reason = "describes the body")]
-struct ChosenRevision {
-    /// Id of the pathway.
-    id: Uuid,
-    /// Number of the revision; the current one when left out.
-    #[schema(minimum = 1)]
-    revision: Option<i64>,
 }
 
 /// Compare pathways
@@ -76,7 +67,8 @@ async fn compare_pathways(
     JsonBody(body): JsonBody,
 ) -> Result<Json<Comparison>, Refusal> {
     let (asked, rule_set) = question(&body)?;
-    known_rule_set(&app, rule_set.as_deref())?;
+    let basis = basis(&app).await?;
+    known_rule_set(&basis.book, rule_set.as_deref())?;
     let mut pathways = Vec::with_capacity(asked.len());
     for choice in asked {
         pathways.push(match choice {
@@ -86,7 +78,7 @@ async fn compare_pathways(
         });
     }
     Ok(Json(
-        blocking::run(move || side_by_side(&app, &pathways, rule_set.as_deref())).await??,
+        blocking::run(move || side_by_side(&app, &basis, &pathways, rule_set.as_deref())).await??,
     ))
 }
 
@@ -148,60 +140,24 @@ fn choice(value: &Value, at: &Place<'_>, problems: &mut Problems) -> Option<Choi
             }
         };
     }
-    if value.is_string() {
-        return Some(Choice::Stored(id(value, at, problems)?, None));
-    }
-    let mut fields = Fields::open(value, at, problems)?;
-    let named = match fields.take("id") {
-        Some(value) => id(value, &at.field("id"), problems),
-        None => {
-            Fields::missing("id", at, problems);
-            None
-        }
-    };
-    let revision = fields
-        .take("revision")
-        .map(|value| (value, value.as_i64().filter(|number| *number >= 1)));
-    if let Some((_, None)) = revision {
-        problems.add(
-            at.field("revision"),
-            "This is not the number of a revision.",
-            "Give a whole number from 1.",
-        );
-    }
-    fields.close(at, problems);
-    Some(Choice::Stored(named?, revision.and_then(|(_, number)| number)))
+    let (id, revision) = stored(value, at, problems)?;
+    Some(Choice::Stored(id, revision))
 }
 
-fn id(value: &Value, at: &Place<'_>, problems: &mut Problems) -> Option<Uuid> {
-    let id = text_of(value, at, problems)?.parse().ok();
-    if id.is_none() {
-        problems.add(
-            at,
-            "This is not the id of a pathway.",
-            "Give an id from the list of pathways, or a document.",
-        );
-    }
-    id
-}
-
-/// Problems of a document that stands inside another.
-fn under(at: &str, found: Problems, problems: &mut Problems) {
-    for problem in found.into_list() {
-        problems.add(format!("{at}{}", problem.pointer), problem.detail, problem.remedy);
-    }
-}
-
-fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Result<Comparison, Refusal> {
+fn side_by_side(
+    app: &App,
+    basis: &Basis,
+    pathways: &[Pathway],
+    rule_set: Option<&str>,
+) -> Result<Comparison, Refusal> {
     let mut problems = Problems::default();
     let mut assessed: Vec<Assessment> = Vec::with_capacity(pathways.len());
     for (index, pathway) in pathways.iter().enumerate() {
         let options = Options {
-            rule_set,
             without_workings: true,
-            ..Options::default()
+            ..basis.options(rule_set)
         };
-        match (app.evaluate)(pathway, app.library, options) {
+        match (app.evaluate)(pathway, &basis.book, options) {
             Ok(assessment) => assessed.push(assessment),
             Err(found) => under(&format!("/pathways/{index}"), found, &mut problems),
         }
@@ -211,7 +167,7 @@ fn side_by_side(app: &App, pathways: &[Pathway], rule_set: Option<&str>) -> Resu
     }
     let mut subjects = Vec::with_capacity(pathways.len());
     for (pathway, assessment) in pathways.iter().zip(&assessed) {
-        let rules = app.library.rule_sets.get(&assessment.rule_set).ok_or_else(|| {
+        let rules = basis.book.rule_sets.get(&assessment.rule_set).ok_or_else(|| {
             tracing::error!(
                 rule_set = assessment.rule_set,
                 "an assessment names a rule set that is not there"

@@ -5,9 +5,9 @@
 )]
 
 use super::stored::known_rule_set;
-use crate::app::App;
+use crate::app::{App, Basis};
 use crate::core::documents::{Assessment, Pathway, canonical};
-use crate::core::evaluate::Options;
+use crate::rules::basis;
 use crate::web::extract::{JsonBody, Query};
 use crate::web::{Refusal, blocking};
 use axum::extract::State;
@@ -45,8 +45,9 @@ async fn evaluate(
     Query(ask): Query<RuleSetQuestion>,
     JsonBody(body): JsonBody,
 ) -> Result<Response, Refusal> {
-    known_rule_set(&app, ask.rule_set.as_deref())?;
-    let bytes = blocking::run(move || assessed(&app, &body, ask.rule_set.as_deref())).await??;
+    let basis = basis(&app).await?;
+    known_rule_set(&basis.book, ask.rule_set.as_deref())?;
+    let bytes = blocking::run(move || assessed(&app, &basis, &body, ask.rule_set.as_deref())).await??;
     Ok(([(CONTENT_TYPE, "application/json")], bytes).into_response())
 }
 
@@ -54,13 +55,15 @@ async fn evaluate(
 ///
 /// # Errors
 /// 422 with everything that is wrong with it.
-pub(super) fn assessed(app: &App, body: &Value, rule_set: Option<&str>) -> Result<Vec<u8>, Refusal> {
+pub(super) fn assessed(
+    app: &App,
+    basis: &Basis,
+    body: &Value,
+    rule_set: Option<&str>,
+) -> Result<Vec<u8>, Refusal> {
     let pathway = Pathway::from_value(body).map_err(Refusal::invalid)?;
-    let options = Options {
-        rule_set,
-        ..Options::default()
-    };
-    let assessment = (app.evaluate)(&pathway, app.library, options).map_err(Refusal::invalid)?;
+    let options = basis.options(rule_set);
+    let assessment = (app.evaluate)(&pathway, &basis.book, options).map_err(Refusal::invalid)?;
     canonical::bytes(&assessment).map_err(|error| {
         tracing::error!(%error, "an assessment could not be written");
         Refusal::of(StatusCode::INTERNAL_SERVER_ERROR)

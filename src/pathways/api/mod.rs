@@ -1,12 +1,17 @@
-//! The API of pathways: stored ones with their revisions, stages and assessments; evaluation and comparison without storing.
+//! The API of pathways: stored ones with their revisions, stages and assessments; evaluation, comparison and blends
+//! without storing.
 #![allow(
     unused_qualifications,
     reason = "utoipa's macro writes the types of queries in full"
 )]
 
 mod batch;
+mod blend;
+mod choice;
 mod compare;
+mod defaults;
 mod evaluate;
+mod reasons;
 mod refusals;
 mod revisions;
 mod stages;
@@ -33,6 +38,9 @@ pub fn routes() -> OpenApiRouter<App> {
         .merge(evaluate::routes())
         .merge(batch::routes())
         .merge(compare::routes())
+        .merge(blend::routes())
+        .merge(defaults::routes())
+        .merge(reasons::routes())
 }
 
 /// Why a revision is saved.

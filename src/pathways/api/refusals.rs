@@ -1,7 +1,6 @@
 //! Errors of the use cases as refusals. The chain of causes, which may name SQL, goes to the log alone.
 
 use super::super::{PathwayError, What};
-use crate::store::StoreError;
 use crate::web::Refusal;
 use crate::web::conditional::etag;
 use axum::http::StatusCode;
@@ -28,33 +27,13 @@ impl From<PathwayError> for Refusal {
                     .current(etag(hash))
             }
             PathwayError::Archived => Refusal::of(StatusCode::CONFLICT).detail(error.to_string()),
-            PathwayError::Store(error) => of_store(&error),
+            PathwayError::Store(error) => error.into(),
             PathwayError::Defect { .. } => {
                 tracing::error!(error = %chain(&error), "a use case failed");
                 Refusal::of(StatusCode::INTERNAL_SERVER_ERROR)
             }
         }
     }
-}
-
-/// What can be tried again, or mended by whoever runs the service, is 503; a defect is 500.
-fn of_store(error: &StoreError) -> Refusal {
-    let status = match error {
-        StoreError::NotFound => StatusCode::NOT_FOUND,
-        StoreError::Busy
-        | StoreError::Closed
-        | StoreError::Locked(_)
-        | StoreError::Lost(_)
-        | StoreError::Full(_)
-        | StoreError::ReadOnly(_)
-        | StoreError::Disk(_)
-        | StoreError::Unopenable(_) => StatusCode::SERVICE_UNAVAILABLE,
-        _ => StatusCode::INTERNAL_SERVER_ERROR,
-    };
-    if status != StatusCode::NOT_FOUND {
-        tracing::error!(error = %chain(error), "the store failed");
-    }
-    Refusal::of(status).detail(error.to_string())
 }
 
 /// An error with its causes.

@@ -11,6 +11,8 @@ use super::{Reason, expected, id_of, must_be_there, saved};
 use crate::app::App;
 use crate::core::documents::assessment::Assessment;
 use crate::core::documents::pathway::Pathway;
+use crate::core::domain::Book;
+use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::conditional::{IfMatch, IfNoneMatch};
 use crate::web::extract::{JsonBody, NoQuery, Path, Query};
@@ -217,10 +219,10 @@ struct AssessmentQuestion {
 }
 
 /// An unknown rule set is a wrong query, not a wrong document.
-pub(super) fn known_rule_set(app: &App, asked: Option<&str>) -> Result<(), Refusal> {
+pub(super) fn known_rule_set(book: &Book, asked: Option<&str>) -> Result<(), Refusal> {
     match asked {
-        Some(asked) if !app.library.rule_sets.contains_key(asked) => {
-            let known: Vec<&str> = app.library.rule_sets.keys().map(String::as_str).collect();
+        Some(asked) if !book.rule_sets.contains_key(asked) => {
+            let known: Vec<&str> = book.rule_sets.keys().map(String::as_str).collect();
             let asked = crate::web::problem::shown(asked);
             Err(Refusal::bad_request(format!(
                 "There is no rule set \"{asked}\". Choose one of: {}.",
@@ -248,7 +250,7 @@ async fn read_assessment(
     Query(ask): Query<AssessmentQuestion>,
     seen: IfNoneMatch,
 ) -> Result<Response, Refusal> {
-    known_rule_set(&app, ask.rule_set.as_deref())?;
+    known_rule_set(&basis(&app).await?.book, ask.rule_set.as_deref())?;
     let found = assessment(&app, id_of(&id)?, ask.revision, ask.rule_set.as_deref()).await?;
     Ok(numbered(
         seen.json(&found.hash, axum::body::Bytes::from_owner(found.bytes)),

@@ -4,11 +4,13 @@ pub(crate) mod sql;
 
 use super::assess::{Made, compute, document, keep_soon, lines, make};
 use super::{PathwayError, Summary, public_id, time};
-use crate::app::App;
+use crate::app::{App, Basis};
 use crate::core::documents::Problem;
+use crate::rules;
 use jiff::Timestamp;
 use serde::{Deserialize, Serialize};
 use sql::{LineRow, Place};
+use std::sync::Arc;
 use utoipa::ToSchema;
 use uuid::Uuid;
 
@@ -100,6 +102,7 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         Some(text) => Some(Place::from_text(question.sort, text).ok_or_else(unknown_place)?),
         None => None,
     };
+    let basis = rules::basis(app).await?;
     let mut reader = app.store.reader().await?;
     let mut rows = sql::lines(
         &mut reader,
@@ -107,6 +110,7 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         question,
         after.as_ref(),
         i64::from(limit) + 1,
+        &basis.settings_hash,
     )
     .await?;
     drop(reader);
@@ -119,7 +123,7 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         .map(|row| Place::of(question.sort, row).to_text());
     let mut lines = Vec::with_capacity(rows.len());
     for row in rows {
-        lines.push(line(app, row).await?);
+        lines.push(line(app, &basis, row).await?);
     }
     Ok(Page { lines, next })
 }
@@ -137,10 +141,10 @@ fn unknown_place() -> PathwayError {
     )
 }
 
-async fn line(app: &App, row: LineRow) -> Result<Line, PathwayError> {
+async fn line(app: &App, basis: &Arc<Basis>, row: LineRow) -> Result<Line, PathwayError> {
     let assessment = match row.summary.into_summary(row.id)? {
         Some(summary) => Some(summary),
-        None => made_now(app, row.revision_id, &row.public_id, row.id).await?,
+        None => made_now(app, basis, row.revision_id, &row.public_id, row.id).await?,
     };
     Ok(Line {
         id: public_id(&row.public_id, row.id)?,
@@ -160,8 +164,14 @@ async fn line(app: &App, row: LineRow) -> Result<Line, PathwayError> {
     })
 }
 
-/// The program has been brought up to date since the last save: assess now.
-async fn made_now(app: &App, revision: i64, id: &str, row: i64) -> Result<Option<Summary>, PathwayError> {
+/// The program has been brought up to date since the last save, or what it rests on has changed: assess now.
+async fn made_now(
+    app: &App,
+    basis: &Arc<Basis>,
+    revision: i64,
+    id: &str,
+    row: i64,
+) -> Result<Option<Summary>, PathwayError> {
     let mut reader = app.store.reader().await?;
     let found = super::sql::revision(&mut reader, app.organisation, public_id(id, row)?, None).await?;
     drop(reader);
@@ -169,8 +179,10 @@ async fn made_now(app: &App, revision: i64, id: &str, row: i64) -> Result<Option
         return Ok(None);
     };
     let document = document(&found.document, revision)?;
-    let app_too = app.clone();
-    let made: Made = match compute(lines(&document), move || make(&app_too, &document, None)).await {
+    let (app_too, basis) = (app.clone(), basis.clone());
+    let lines = lines(&document);
+    let work = move || make(&app_too, &basis, &document, None);
+    let made: Made = match compute(lines, work).await {
         Ok(made) => made,
         Err(PathwayError::Problems(_)) => return Ok(None),
         Err(other) => return Err(other),

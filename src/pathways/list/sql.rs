@@ -15,7 +15,7 @@ macro_rules! listed {
             "JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision ",
             "AND r.organisation_id = p.organisation_id ",
             "LEFT JOIN assessment a ON a.organisation_id = p.organisation_id AND a.revision_id = r.id ",
-            "AND a.rule_set = r.rule_set AND a.program = $2 ",
+            "AND a.rule_set = r.rule_set AND a.program = $2 AND a.settings = $11 ",
             "WHERE p.organisation_id = $1 AND (p.archived_at IS NOT NULL) = $3 ",
             "AND ($4 IS NULL OR p.name_folded LIKE $4 ESCAPE '\\') ",
             "AND ($5 IS NULL OR p.feedstock = $5) AND ($6 IS NULL OR p.rule_set = $6) ",
@@ -153,6 +153,7 @@ pub(super) async fn lines(
     question: &Question,
     after: Option<&Place>,
     limit: i64,
+    settings: &str,
 ) -> Result<Vec<LineRow>, StoreError> {
     let text = match question.sort {
         Sort::Updated => BY_UPDATE,
@@ -177,6 +178,7 @@ pub(super) async fn lines(
     Ok(query
         .bind(after.map(|place| place.id.as_str()))
         .bind(limit)
+        .bind(settings)
         .fetch_all(c)
         .await?)
 }
