@@ -1,6 +1,7 @@
 //! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
 
 pub mod app;
+pub mod calculators;
 pub mod charts;
 pub mod cli;
 pub mod clock;

@@ -7,7 +7,7 @@ use super::problem::{Refusal, RefusalPage};
 use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{demo, factors, pathways};
+use crate::{calculators, demo, factors, pathways};
 use axum::Router;
 use axum::extract::{Extension, State};
 use axum::http::{StatusCode, Uri};
@@ -77,6 +77,7 @@ pub fn pages_router() -> Router<App> {
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
+        .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
 }
 

@@ -17,6 +17,7 @@ const THINGS: &[&str] = &[
     "audit_trail",
     "people",
     "evidence",
+    "calculators",
     "factors",
     "pathways",
     "statements",
