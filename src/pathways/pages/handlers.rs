@@ -4,8 +4,8 @@ use super::home::{Asked, Home, day_of};
 use super::show::ShowPathway;
 use super::workings::ShowWorkings;
 use super::{
-    Head, Notice, RevisionRow, answers, compare, document_handlers, factor_handlers, links, notices,
-    stage_handlers,
+    Head, Notice, RevisionRow, answers, compare, defaults_handlers, document_handlers, factor_handlers,
+    links, notices, stage_handlers,
 };
 use crate::app::App;
 use crate::core::documents::problem::Problems;
@@ -37,6 +37,10 @@ pub fn routes() -> Router<App> {
         .route("/pathways/{id}", get(show))
         .route("/pathways/{id}/workings", get(workings))
         .route("/pathways/{id}/archive", post(archive))
+        .route(
+            "/pathways/{id}/defaults",
+            get(defaults_handlers::show).post(defaults_handlers::choose),
+        )
         .route(
             "/pathways/{id}/document",
             get(document_handlers::show).post(document_handlers::replace),

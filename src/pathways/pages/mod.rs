@@ -4,6 +4,8 @@ mod answers;
 pub mod carbon;
 pub mod card;
 pub mod compare;
+pub mod defaults;
+mod defaults_handlers;
 mod document_handlers;
 mod entries;
 mod factor_handlers;
