@@ -84,6 +84,17 @@ impl Asked {
         self.figure(name, wrong)
     }
 
+    /// The same with what a form begins with, where nothing is said.
+    #[must_use]
+    pub fn filled(mut self, groups: &[Group]) -> Asked {
+        for field in groups.iter().flat_map(|group| &group.fields) {
+            self.0
+                .entry(field.name.to_owned())
+                .or_insert_with(|| field.text.clone());
+        }
+        self
+    }
+
     /// The query again, escaped.
     fn query(&self) -> String {
         let pairs: Vec<String> = self
