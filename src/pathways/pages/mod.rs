@@ -10,6 +10,7 @@ mod defaults_handlers;
 mod document_handlers;
 mod entries;
 mod factor_handlers;
+pub mod findings;
 mod handlers;
 pub mod home;
 pub mod ladder;
