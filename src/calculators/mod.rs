@@ -5,6 +5,7 @@ pub mod api;
 mod dehydration;
 mod distillation;
 mod fermentation;
+pub mod pages;
 
 pub use alcoholometry::{AlcoholometryAnswer, AlcoholometryRequest, alcoholometry};
 pub use dehydration::{DehydrationAnswer, DehydrationRequest, dehydration};

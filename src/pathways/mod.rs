@@ -47,17 +47,22 @@ pub enum Expected {
 }
 
 impl Expected {
-    /// `Conflict` unless the current revision, `number` with `hash`, is the expected one.
-    fn check(&self, number: i64, hash: &str) -> Result<(), PathwayError> {
-        let fits = match self {
+    fn fits(&self, number: i64, hash: &str) -> bool {
+        match self {
             Expected::Hash(seen) => seen == hash,
             Expected::Number(seen) => *seen == number,
             Expected::Any => true,
-        };
-        fits.then_some(()).ok_or_else(|| PathwayError::Conflict {
-            revision: number,
-            hash: hash.to_owned(),
-        })
+        }
+    }
+
+    /// `Conflict` unless the current revision, `number` with `hash`, is the expected one.
+    fn check(&self, number: i64, hash: &str) -> Result<(), PathwayError> {
+        self.fits(number, hash)
+            .then_some(())
+            .ok_or_else(|| PathwayError::Conflict {
+                revision: number,
+                hash: hash.to_owned(),
+            })
     }
 }
 

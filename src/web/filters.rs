@@ -85,7 +85,7 @@ pub fn chem(words: impl std::fmt::Display, _: &dyn Values) -> Result<Safe<String
     Ok(Safe(chem_html(&words.to_string())))
 }
 
-const FORMULAS: [(&str, &str); 18] = [
+const FORMULAS: [(&str, &str); 19] = [
     ("CaCO3", "CaCO<sub>3</sub>"),
     ("P2O5", "P<sub>2</sub>O<sub>5</sub>"),
     ("CO2", "CO<sub>2</sub>"),
@@ -104,6 +104,7 @@ const FORMULAS: [(&str, &str); 18] = [
     ("e_p", "e<sub>p</sub>"),
     ("e_u", "e<sub>u</sub>"),
     ("m3", "m³"),
+    ("degC", "°C"),
 ];
 
 /// Words as HTML: escaped, with formulas in their usual form.

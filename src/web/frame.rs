@@ -7,6 +7,8 @@ pub enum Section {
     Pathways,
     /// Compare.
     Compare,
+    /// Calculators.
+    Calculators,
     /// Factors, materials and rule sets.
     Factors,
     /// The API in words.
@@ -83,10 +85,15 @@ impl Frame {
     }
 
     /// The words of the navigation: address, word, whether this page is there.
-    pub fn words(&self) -> [(&'static str, &'static str, bool); 4] {
+    pub fn words(&self) -> [(&'static str, &'static str, bool); 5] {
         [
             ("/", "Pathways", self.section == Section::Pathways),
             ("/compare", "Compare", self.section == Section::Compare),
+            (
+                "/calculators",
+                "Calculators",
+                self.section == Section::Calculators,
+            ),
             ("/factors", "Factors", self.section == Section::Factors),
             ("/api", "API", self.section == Section::Api),
         ]

@@ -4,6 +4,7 @@ pub mod answers;
 pub mod api_page;
 pub mod assets;
 pub mod blocking;
+pub mod calculator;
 pub mod conditional;
 pub mod csv;
 pub mod error_page;
@@ -18,6 +19,7 @@ pub mod paging;
 pub mod patience;
 pub mod problem;
 pub mod router;
+pub mod typed;
 
 pub use problem::Refusal;
 pub use router::{Shell, router};

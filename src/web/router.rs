@@ -79,6 +79,7 @@ pub fn pages_router() -> Router<App> {
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
+        .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
 }
 

@@ -1,5 +1,6 @@
 //! Whole documents: beginning a pathway, bringing one in, putting another in its place, revisions, downloads.
 
+use super::defaults::ShowDefaults;
 use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
 use super::new::{NewPathway, ShowDocument, Start};
 use super::revision::ShowRevision;
@@ -254,7 +255,7 @@ pub(super) async fn download(
     Path((id, name)): Path<(String, String)>,
     Query(which): Query<Which>,
 ) -> Result<Response, Response> {
-    const KNOWN: [&str; 7] = [
+    const KNOWN: [&str; 8] = [
         "document.json",
         "assessment.json",
         "stages.csv",
@@ -262,6 +263,7 @@ pub(super) async fn download(
         "carbon.csv",
         "checks.csv",
         "workings.csv",
+        "defaults.csv",
     ];
     if !KNOWN.contains(&name.as_str()) {
         return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response());
@@ -290,6 +292,9 @@ pub(super) async fn download(
     }
     let table = if name == "workings.csv" {
         ShowWorkings::of(seen.head(), &seen.pathway, found, app.library, false).table()
+    } else if name == "defaults.csv" {
+        let table = super::defaults_handlers::table_of(&app, &seen).await?;
+        ShowDefaults::of(seen.head(), &seen.pathway, &table, app.library).table()
     } else {
         let shown = ShowPathway::of(
             seen.head(),

@@ -51,6 +51,7 @@ impl Entries<'_> {
     pub(super) fn output(&self) -> Entry {
         let share = self.result.map(|result| result.share);
         let mut entry = self.entry(&spec::output(self.ground), "output");
+        entry.at = "/output".to_owned();
         entry.legend = "Main product".to_owned();
         self.figure(
             &mut entry,
@@ -94,6 +95,7 @@ impl Entries<'_> {
             }
         });
         entry.remove = format!("remove:{at}");
+        entry.at.clone_from(&at);
         let posted = self.card.typed.get("expected").is_some();
         for steer in ["was", "as"] {
             let typed = self.card.typed.text(&format!("{at}/{steer}"));
@@ -225,6 +227,7 @@ impl Entries<'_> {
             ),
             factors: factors(kind, &text, self.card.book),
             required: spec.required,
+            findings: Vec::new(),
             kind,
             text,
             name,

@@ -4,8 +4,8 @@ use super::home::{Asked, Home, day_of};
 use super::show::ShowPathway;
 use super::workings::ShowWorkings;
 use super::{
-    Head, Notice, RevisionRow, answers, compare, document_handlers, factor_handlers, links, notices,
-    stage_handlers,
+    Head, Notice, RevisionRow, answers, blend, compare, defaults_handlers, document_handlers,
+    factor_handlers, links, notices, stage_handlers,
 };
 use crate::app::App;
 use crate::core::documents::problem::Problems;
@@ -38,6 +38,10 @@ pub fn routes() -> Router<App> {
         .route("/pathways/{id}/workings", get(workings))
         .route("/pathways/{id}/archive", post(archive))
         .route(
+            "/pathways/{id}/defaults",
+            get(defaults_handlers::show).post(defaults_handlers::choose),
+        )
+        .route(
             "/pathways/{id}/document",
             get(document_handlers::show).post(document_handlers::replace),
         )
@@ -57,6 +61,8 @@ pub fn routes() -> Router<App> {
         )
         .route("/pathways/{id}/{file}", get(document_handlers::download))
         .route("/factors/{edition}/{row}", get(factor_handlers::show))
+        .route("/calculators/blend", get(blend::show_blend))
+        .route("/calculators/blend.csv", get(blend::file))
         .route("/compare", get(compare_page))
         .route("/compare.csv", get(compare_csv))
 }
@@ -143,7 +149,7 @@ fn slug(name: &str) -> String {
 /// Most lines that pages sort and filter.
 const MOST_LINES: usize = 1_000;
 
-async fn lines(app: &App, archived: bool) -> Result<Vec<Line>, PathwayError> {
+pub(super) async fn lines(app: &App, archived: bool) -> Result<Vec<Line>, PathwayError> {
     let mut out = Vec::new();
     let mut question = Question {
         archived,

@@ -1,12 +1,16 @@
 //! Pages of pathways: view models from documents and assessments, templates beside them, handlers that only fetch.
 
 mod answers;
+pub mod blend;
 pub mod carbon;
 pub mod card;
 pub mod compare;
+pub mod defaults;
+mod defaults_handlers;
 mod document_handlers;
 mod entries;
 mod factor_handlers;
+pub mod findings;
 mod handlers;
 pub mod home;
 pub mod ladder;

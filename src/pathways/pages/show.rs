@@ -1,11 +1,12 @@
 //! The page of one pathway: the answer, what weakens it, the ladder, the terms, the crop's carbon, checks, revisions.
 
 use super::carbon::CarbonView;
+use super::findings::FindingRow;
 use super::ladder::LadderView;
 use super::links;
-use super::verdict::{Checks, Verdict, percent_words, rounding_note, severity_class, severity_words};
+use super::verdict::{Checks, Verdict, percent_words, rounding_note};
 use super::{Fact, Fault, Head, Notice, RevisionRow, fault_rows};
-use crate::core::documents::assessment::{Assessment, Finding};
+use crate::core::documents::assessment::Assessment;
 use crate::core::documents::problem::Problem;
 use crate::core::documents::{Pathway, Problems};
 use crate::core::domain::{Book, RuleSet, StageKind, Term};
@@ -95,25 +96,6 @@ pub struct TermRow {
     pub kind: String,
     /// Signed contribution.
     pub g: f64,
-}
-
-/// One finding.
-#[derive(Clone, Debug, PartialEq)]
-pub struct FindingRow {
-    /// Class of its severity.
-    pub class: &'static str,
-    /// Severity in words.
-    pub severity: &'static str,
-    /// Id of the check.
-    pub id: String,
-    /// What is so.
-    pub message: String,
-    /// What to do.
-    pub remedy: String,
-    /// Where it points.
-    pub href: Option<String>,
-    /// The words of the link.
-    pub place: String,
 }
 
 impl ShowPathway {
@@ -256,7 +238,7 @@ impl PathwayResult {
             term_note: rounding_note("The terms", &parts, net, 2),
             memo_e_u: (memo != 0.0).then_some(memo),
             carbon: CarbonView::of(&found.carbon, net),
-            findings: finding_rows(head, pathway, &found.findings),
+            findings: super::findings::rows(head, pathway, &found.findings),
             verdict,
             ladder,
             terms,
@@ -349,37 +331,6 @@ fn term_row(term: Term, pathway: &Pathway, found: &Assessment, rules: Option<&Ru
     }
 }
 
-fn finding_rows(head: &Head, pathway: &Pathway, findings: &[Finding]) -> Vec<FindingRow> {
-    let mut sorted: Vec<&Finding> = findings.iter().collect();
-    sorted.sort_by_key(|finding| finding.severity);
-    sorted
-        .into_iter()
-        .map(|finding| {
-            let stage = pathway.stages.iter().find(|stage| stage.key == finding.stage);
-            let (href, place) = match stage {
-                Some(stage) => {
-                    let anchor = links::field_anchor(&finding.field);
-                    (
-                        Some(format!("{}{anchor}", links::stage(&head.id, &stage.key))),
-                        stage.title().to_owned(),
-                    )
-                }
-                None if finding.field == "carbon" => (Some("#carbon".to_owned()), "Carbon".to_owned()),
-                None => (None, "the whole pathway".to_owned()),
-            };
-            FindingRow {
-                class: severity_class(finding.severity),
-                severity: severity_words(finding.severity),
-                id: finding.id.clone(),
-                message: finding.message.clone(),
-                remedy: finding.remedy.clone(),
-                href,
-                place,
-            }
-        })
-        .collect()
-}
-
 impl PathwayResult {
     /// The table of terms as CSV.
     pub fn terms_table(&self) -> Table {
@@ -403,7 +354,7 @@ impl PathwayResult {
 
     /// The findings as CSV.
     pub fn checks_table(&self) -> Table {
-        let mut table = Table::new(&["check", "severity", "place", "message", "remedy"]);
+        let mut table = Table::new(&["check", "severity", "place", "message", "remedy", "reason"]);
         for row in &self.findings {
             table.rows.push(vec![
                 row.id.clone().into(),
@@ -411,6 +362,7 @@ impl PathwayResult {
                 row.place.clone().into(),
                 row.message.clone().into(),
                 row.remedy.clone().into(),
+                row.reason.clone().into(),
             ]);
         }
         table

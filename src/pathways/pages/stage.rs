@@ -6,6 +6,7 @@ use super::card::search::{self, Found};
 use super::card::spec::{self, Ground};
 use super::card::{Do, Form};
 use super::entries::Entries;
+use super::findings::{self, FindingRow};
 use super::{Fact, Head, Notice, links};
 use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Assessment, StageResult};
@@ -108,6 +109,10 @@ pub struct Entry {
     pub workings: Option<String>,
     /// What is wrong with the whole entry.
     pub wrong: Vec<(String, String)>,
+    /// Where it stands in the stage, such as `/inputs/0`.
+    pub at: String,
+    /// Findings about the whole entry.
+    pub findings: Vec<FindingRow>,
 }
 
 /// One choice of a selection.
@@ -154,6 +159,8 @@ pub struct FieldView {
     pub factors: Vec<(String, String)>,
     /// True if it cannot be left empty.
     pub required: bool,
+    /// Findings about it.
+    pub findings: Vec<FindingRow>,
 }
 
 /// All that a card needs to be shown.
@@ -285,7 +292,22 @@ impl ShowStage {
                 .map(|problem| page.refusal(problem))
                 .collect();
         }
+        page.put_findings(card);
         page
+    }
+
+    /// The findings of the last assessment, each at the figure it questions.
+    fn put_findings(&mut self, card: &Card) {
+        let all = card.found.map_or(&[][..], |found| &found.findings);
+        let mut sorted: Vec<_> = all.iter().filter(|finding| finding.stage == card.key).collect();
+        sorted.sort_by_key(|finding| finding.severity);
+        let lists = [&mut self.intakes, &mut self.inputs, &mut self.co_products];
+        let mut entries: Vec<&mut Entry> = lists.into_iter().flatten().collect();
+        entries.push(&mut self.output);
+        for finding in sorted {
+            let row = FindingRow::of(&card.head, card.pathway, finding);
+            findings::place(finding, row, card.stage, &mut self.about, &mut entries);
+        }
     }
 
     fn every_entry(&self) -> impl Iterator<Item = &Entry> {

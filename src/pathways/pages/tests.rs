@@ -2,7 +2,7 @@
 
 use super::card::Form;
 use super::samples::{self, HOSTILE};
-use super::{Notice, compare, home, new, revision, show, stage, workings};
+use super::{Notice, compare, defaults, home, new, revision, show, stage, workings};
 use crate::core::documents::Problems;
 use askama::Template;
 
@@ -42,6 +42,13 @@ fn pages() -> Vec<(String, String)> {
                 stage::ShowStage::of(&card(&pathway, Some(&found), &one.key, &value, &Form::default()));
             add(&format!("stage_{name}_{}", one.key), page.render());
         }
+    }
+    for (name, pathway) in [("wheat", samples::wheat()), ("hostile", samples::hostile())] {
+        let found = samples::assess(&pathway);
+        let table = crate::core::levers::defaults::table(&pathway, &found, book).expect("a table");
+        let mut page = defaults::ShowDefaults::of(samples::head(), &pathway, &table, book);
+        page.why = HOSTILE.to_owned();
+        add(&format!("defaults_{name}"), page.render());
     }
     add("stage_refused", refused().render());
     more(&mut add);

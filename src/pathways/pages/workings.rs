@@ -1,10 +1,11 @@
 //! The arithmetic behind every figure, foldable and printable, with anchors that can be cited.
 
+use super::findings::{self, FindingRow};
 use super::ladder::stage_name;
 use super::verdict::{Verdict, rounding_note};
 use super::{Head, links};
 use crate::core::documents::Pathway;
-use crate::core::documents::assessment::{Assessment, StageResult, Step};
+use crate::core::documents::assessment::{Assessment, Finding, StageResult, Step};
 use crate::core::domain::{Book, Gas, GasVector, Term};
 use crate::web::csv::{Cell, Table};
 use crate::web::filters;
@@ -83,6 +84,8 @@ pub struct StageWork {
     pub steps: Vec<StepRow>,
     /// The inputs.
     pub inputs: Vec<InputWork>,
+    /// Findings about the stage that are about none of its inputs.
+    pub findings: Vec<FindingRow>,
 }
 
 /// The workings of one input.
@@ -106,6 +109,8 @@ pub struct InputWork {
     pub recipe: Vec<(&'static str, f64)>,
     /// The arithmetic.
     pub steps: Vec<StepRow>,
+    /// Findings about it.
+    pub findings: Vec<FindingRow>,
 }
 
 impl ShowWorkings {
@@ -122,7 +127,7 @@ impl ShowWorkings {
             .stages
             .iter()
             .enumerate()
-            .map(|(index, stage)| StageWork::of(&head, pathway, stage, index + 2))
+            .map(|(index, stage)| StageWork::of(&head, pathway, found, stage, index + 2))
             .collect();
         let sums: Vec<f64> = stages.iter().map(|stage| stage.g).collect();
         ShowWorkings {
@@ -295,8 +300,24 @@ fn recipe(gases: &GasVector) -> Vec<(&'static str, f64)> {
 }
 
 impl StageWork {
-    fn of(head: &Head, pathway: &Pathway, stage: &StageResult, place: usize) -> StageWork {
+    fn of(
+        head: &Head,
+        pathway: &Pathway,
+        found: &Assessment,
+        stage: &StageResult,
+        place: usize,
+    ) -> StageWork {
         use crate::core::units::rounding::significant;
+        let input_keys: Vec<&str> = stage.inputs.iter().map(|input| input.key.as_str()).collect();
+        let said = |key: Option<&str>| -> Vec<FindingRow> {
+            let here = found.findings.iter().filter(|finding| finding.stage == stage.key);
+            let about = |finding: &&Finding| {
+                findings::input_of(finding).filter(|input| input_keys.contains(input)) == key
+            };
+            here.filter(about)
+                .map(|finding| FindingRow::of(head, pathway, finding))
+                .collect()
+        };
         let own = pathway.stages.iter().any(|own| own.key == stage.key);
         let demand = format!(
             "{} {}",
@@ -322,6 +343,7 @@ impl StageWork {
                 })
                 .collect(),
             steps: step_rows(&stage.workings, &format!("{place}.0")),
+            findings: said(None),
             inputs: stage
                 .inputs
                 .iter()
@@ -341,6 +363,7 @@ impl StageWork {
                         replaced: input.replaced.clone(),
                         recipe: recipe(&input.recipe_gases_kg),
                         steps: step_rows(&input.workings, &number),
+                        findings: said(Some(&input.key)),
                         number,
                     }
                 })

@@ -286,13 +286,9 @@ pub fn judged(pathway: &Pathway, rules: &RuleSet, book: &Book) -> Vec<PublishedR
     rows
 }
 
-/// The pathway with other defaults, assessed: the same arithmetic as everywhere. What a default covers is no longer left out.
-fn attempt(
-    pathway: &Pathway,
-    defaults: &BTreeMap<DefaultKey, String>,
-    rules: &RuleSet,
-    book: &Book,
-) -> Result<Assessment, Problems> {
+/// The pathway with these defaults in place of its own. What a default covers is no longer left out.
+#[must_use]
+pub fn with_defaults(pathway: &Pathway, defaults: &BTreeMap<DefaultKey, String>) -> Pathway {
     let mut changed = pathway.clone();
     changed.defaults = defaults.clone();
     let covers = |kind: StageKind| {
@@ -305,6 +301,17 @@ fn attempt(
         term || (kind == StageKind::FuelTransport && defaults.contains_key(&DefaultKey::ETdFinalFuel))
     };
     changed.not_covered.retain(|kind| !covers(*kind));
+    changed
+}
+
+/// The pathway with other defaults, assessed: the same arithmetic as everywhere.
+fn attempt(
+    pathway: &Pathway,
+    defaults: &BTreeMap<DefaultKey, String>,
+    rules: &RuleSet,
+    book: &Book,
+) -> Result<Assessment, Problems> {
+    let changed = with_defaults(pathway, defaults);
     let resolved = resolve(&changed, Some(&rules.id), book, false)?;
     Ok(assess(&resolved, false)?.assessment)
 }

@@ -116,31 +116,15 @@ fn list(typed: &str, between: &[char]) -> Value {
     Value::Array(parts.map(|part| Value::String(part.to_owned())).collect())
 }
 
-/// A figure as a person types it: a point, spaces between groups; a comma is asked about, for it may mean either.
+/// A figure as a person types it; what cannot be read stands at the field.
 fn number(typed: &str, pointer: &str, problems: &mut Problems) -> Option<Value> {
-    let spaced: String = typed
-        .chars()
-        .filter(|c| !matches!(c, ' ' | '\u{2009}' | '\u{a0}' | '\u{202f}'))
-        .map(|c| if c == '\u{2212}' { '-' } else { c })
-        .collect();
-    let figure = spaced
-        .parse::<f64>()
-        .ok()
-        .filter(|figure| figure.is_finite() && !spaced.contains(['n', 'N']));
-    if let Some(number) = figure.and_then(serde_json::Number::from_f64) {
-        return Some(Value::Number(number));
+    match crate::web::typed::figure(typed) {
+        Ok(figure) => serde_json::Number::from_f64(figure).map(Value::Number),
+        Err((detail, remedy)) => {
+            problems.add(pointer, detail, remedy);
+            None
+        }
     }
-    let shown: String = typed.chars().take(40).collect();
-    let remedy = if typed.contains(',') {
-        format!(
-            "Write a point, such as {}.",
-            spaced.replace(',', ".").chars().take(40).collect::<String>()
-        )
-    } else {
-        "Give it in digits, such as 113.2.".to_owned()
-    };
-    problems.add(pointer, format!("\"{shown}\" is not a figure."), remedy);
-    None
 }
 
 fn amount(figure: Value, unit: &str, stood: Option<Value>) -> Option<Value> {

@@ -1,0 +1,87 @@
+//! Pages of the calculators. Their fields have the names of the API, so that an address reads like a document.
+
+mod alcoholometry;
+mod dehydration;
+mod distillation;
+mod index;
+#[cfg(test)]
+mod tests;
+
+pub use index::Index;
+
+use crate::app::App;
+use crate::core::models::refusal::{Figure, Refusal as Untaken};
+use crate::web::calculator::{Asked, Calculator, Wrong};
+use crate::web::extract::Query;
+use crate::web::{Refusal, answers, blocking};
+use axum::Router;
+use axum::response::Response;
+use axum::routing::get;
+
+type Pairs = Query<Vec<(String, String)>>;
+
+/// The routes of this file. The blend stands with the pathways, which it can take its ethanol from.
+pub fn routes() -> Router<App> {
+    Router::new()
+        .route("/calculators", get(|| async { answers::page(&Index::new()) }))
+        .route(
+            "/calculators/alcoholometry",
+            get(|query: Pairs| shown(alcoholometry::page, query)),
+        )
+        .route(
+            "/calculators/alcoholometry.csv",
+            get(|query: Pairs| file("alcoholometry", alcoholometry::page, query)),
+        )
+        .route(
+            "/calculators/distillation",
+            get(|query: Pairs| shown(distillation::page, query)),
+        )
+        .route(
+            "/calculators/distillation.csv",
+            get(|query: Pairs| file("distillation", distillation::page, query)),
+        )
+        .route(
+            "/calculators/dehydration",
+            get(|query: Pairs| shown(dehydration::page, query)),
+        )
+        .route(
+            "/calculators/dehydration.csv",
+            get(|query: Pairs| file("dehydration", dehydration::page, query)),
+        )
+}
+
+/// Works a page out where it holds up nobody: a column takes a search.
+async fn worked(page: fn(&Asked) -> Calculator, Query(pairs): Pairs) -> Result<Calculator, Refusal> {
+    let asked = Asked::of(pairs);
+    blocking::run(move || page(&asked)).await
+}
+
+async fn shown(page: fn(&Asked) -> Calculator, query: Pairs) -> Result<Response, Refusal> {
+    worked(page, query).await?.answer()
+}
+
+async fn file(name: &'static str, page: fn(&Asked) -> Calculator, query: Pairs) -> Result<Response, Refusal> {
+    worked(page, query).await?.file(name)
+}
+
+/// What a calculator does not take, at the fields of their names.
+fn wrong(refusals: Vec<Untaken>) -> Vec<Wrong> {
+    refusals
+        .into_iter()
+        .map(|one| Wrong::new(one.field, one.detail, one.remedy))
+        .collect()
+}
+
+/// The range of a figure in words, and what stands in where it is left empty.
+fn range(figure: &Figure, otherwise: &str) -> String {
+    let unit = match figure.unit {
+        "percent" => "%",
+        unit => unit,
+    };
+    let range = crate::web::filters::capital(&figure.hard.words(unit));
+    if otherwise.is_empty() {
+        format!("{range}.")
+    } else {
+        format!("{range}. Left empty: {otherwise}.")
+    }
+}

@@ -1,0 +1,126 @@
+//! Defaults beside actuals at work: laying the table, and putting a chosen combination into the document.
+
+use super::defaults::ShowDefaults;
+use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
+use super::{Fault, fault_rows, links};
+use crate::app::App;
+use crate::core::documents::Problems;
+use crate::core::levers::defaults::{Answer, DefaultsTable, table, with_defaults};
+use crate::pathways::{self, Expected, PathwayError};
+use crate::web::Refusal;
+use crate::web::answers::{page, see_other, with_status};
+use crate::web::blocking;
+use crate::web::extract::{Form, Path};
+use axum::extract::State;
+use axum::response::{IntoResponse, Response};
+use serde::Deserialize;
+
+async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
+    let uuid = id_of(app, id).await?;
+    match see(app, uuid, revision).await {
+        Ok(seen) => Ok(seen),
+        Err(error) => Err(refused(app, id, error).await),
+    }
+}
+
+/// The table of what was seen; where the pathway cannot be worked out, its own page tells why.
+pub(super) async fn table_of(app: &App, seen: &Seen) -> Result<DefaultsTable, Response> {
+    let page = || see_other(&links::pathway(&seen.stored.id.to_string()));
+    let Some(found) = seen.found().cloned() else {
+        return Err(page());
+    };
+    let (pathway, book) = (seen.pathway.clone(), app.library);
+    // Every combination is an assessment of its own.
+    let made: Result<DefaultsTable, Problems> = blocking::run(move || table(&pathway, &found, book))
+        .await
+        .map_err(IntoResponse::into_response)?;
+    made.map_err(|problems| Refusal::from(PathwayError::Problems(problems)).into_response())
+}
+
+fn shown(app: &App, seen: &Seen, table: &DefaultsTable) -> ShowDefaults {
+    ShowDefaults::of(seen.head(), &seen.pathway, table, app.library)
+}
+
+/// The page.
+pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Response> {
+    let seen = seen(&app, &id, None).await?;
+    let table = table_of(&app, &seen).await?;
+    page(&shown(&app, &seen, &table)).map_err(IntoResponse::into_response)
+}
+
+/// Which combination, chosen on which revision.
+#[derive(Debug, Deserialize)]
+pub(super) struct Chosen {
+    expected: i64,
+    #[serde(default)]
+    combination: String,
+    #[serde(default)]
+    why: String,
+}
+
+/// Puts the defaults of a combination into the document that was on the page, as a new revision. A combination that is not
+/// lawful is refused, and so is one chosen on a revision that is no longer current: then the page shows the current one.
+pub(super) async fn choose(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Form(chosen): Form<Chosen>,
+) -> Result<Response, Response> {
+    let now = seen(&app, &id, None).await?;
+    let table = table_of(&app, &now).await?;
+    let refuse = |faults: Vec<Fault>| -> Response {
+        let mut shown = shown(&app, &now, &table).ticking(&chosen.combination);
+        shown.why.clone_from(&chosen.why);
+        shown.faults = faults;
+        with_status(REFUSED, &shown).unwrap_or_else(IntoResponse::into_response)
+    };
+    let fault = |detail: &str, remedy: &str| {
+        vec![Fault {
+            href: Some("#ways".to_owned()),
+            place: "Put together".to_owned(),
+            detail: detail.to_owned(),
+            remedy: remedy.to_owned(),
+        }]
+    };
+    if chosen.expected != now.stored.revision {
+        let detail = format!(
+            "Revision {} was saved meanwhile, and the table is of that one now.",
+            count(now.stored.revision)
+        );
+        return Ok(refuse(fault(&detail, "Look it over, then choose again.")));
+    }
+    let combination = table.combinations.iter().find(|one| one.id == chosen.combination);
+    let combination = match combination {
+        Some(one) if one.lawful != Answer::No => one,
+        Some(_) => {
+            return Ok(refuse(fault(
+                "This combination is not lawful here.",
+                "Choose one of the list.",
+            )));
+        }
+        None => return Ok(refuse(fault("Nothing is chosen.", "Choose one of the list."))),
+    };
+    let document = with_defaults(&now.pathway, &combination.defaults);
+    let why = match chosen.why.trim() {
+        "" => format!("Default values: {}", combination.words),
+        why => why.to_owned(),
+    };
+    let why = Some(why.chars().take(1_000).collect());
+    let expected = Expected::Number(chosen.expected);
+    match pathways::replace(&app, now.stored.id, document, expected, why).await {
+        Ok(saved) if saved.changed => Ok(see_other(&format!(
+            "{}?saved={}",
+            links::pathway(&id),
+            saved.revision
+        ))),
+        Ok(_) => Ok(see_other(&links::pathway(&id))),
+        Err(PathwayError::Problems(problems)) => Ok(refuse(fault_rows(problems.list(), |pointer| {
+            links::place(&id, &now.pathway, pointer)
+        }))),
+        // Somebody was quicker between reading and writing: the next look shows theirs.
+        Err(PathwayError::Conflict { .. }) => Ok(refuse(fault(
+            "Another revision was saved at the same moment.",
+            "Open this page again, then choose.",
+        ))),
+        Err(error) => Err(refused(&app, &id, error).await),
+    }
+}
