@@ -59,6 +59,14 @@ pub async fn load(app: &App) -> Result<Vec<Saved>, PathwayError> {
     pathways::load_examples(app, documents()?).await
 }
 
+/// Takes the demonstration out again, with what was changed in it; how many pathways went.
+///
+/// # Errors
+/// When the database fails.
+pub async fn remove(app: &App) -> Result<u64, PathwayError> {
+    pathways::remove_examples(app, &documents()?).await
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

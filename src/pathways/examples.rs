@@ -4,6 +4,7 @@ use super::save::{create_prepared, prepare};
 use super::{PathwayError, Saved, sql};
 use crate::app::App;
 use crate::core::documents::{Pathway, Problem};
+use crate::core::engine::assess::hash;
 
 /// Stores demonstration documents; those that are there already are left as they are. All are evaluated before the
 /// first is stored.
@@ -36,16 +37,19 @@ pub async fn load_examples(app: &App, documents: Vec<Pathway>) -> Result<Vec<Sav
     Ok(saved)
 }
 
-/// Removes every demonstration pathway with its revisions, in one step; how many went. One that was once saved
-/// without the mark is a record and stays.
+/// Removes the pathways that began as one of `documents`, with their revisions, in one step; how many went. One that was
+/// once saved without the mark is a record and stays, and so does a copy that somebody brought in.
 ///
 /// # Errors
 /// When the database fails.
-pub async fn remove_examples(app: &App) -> Result<u64, PathwayError> {
+pub async fn remove_examples(app: &App, documents: &[Pathway]) -> Result<u64, PathwayError> {
     let (who, memory) = (app.organisation, app.memory.clone());
+    let hashes: Vec<String> = documents.iter().map(hash).collect::<Result<_, _>>()?;
+    let hashes =
+        serde_json::to_string(&hashes).map_err(|e| PathwayError::defect("wrote a list of hashes", e))?;
     app.store
         .write_then(
-            move |c| Box::pin(async move { Ok(sql::remove_examples(c, who).await?) }),
+            move |c| Box::pin(async move { Ok(sql::remove_examples(c, who, &hashes).await?) }),
             move |_| memory.forget_heads(),
         )
         .await

@@ -43,7 +43,9 @@ const ADD_REVISION: &str = "\
     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9) RETURNING id";
 const REMOVE_EXAMPLES: &str = "\
     DELETE FROM pathway WHERE organisation_id = $1 AND example = 1 AND NOT EXISTS \
-    (SELECT 1 FROM revision r WHERE r.organisation_id = $1 AND r.pathway_id = pathway.id AND r.example = 0)";
+    (SELECT 1 FROM revision r WHERE r.organisation_id = $1 AND r.pathway_id = pathway.id AND r.example = 0) AND EXISTS \
+    (SELECT 1 FROM revision r WHERE r.organisation_id = $1 AND r.pathway_id = pathway.id AND r.number = 1 \
+     AND r.hash IN (SELECT value FROM json_each($2)))";
 const EXAMPLE_BY_HASH: &str = "\
     SELECT p.public_id FROM pathway p \
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
@@ -360,9 +362,10 @@ pub(super) async fn add_reasons(
 }
 
 /// Removes demonstration data whole; how many pathways went.
-pub(super) async fn remove_examples(c: &mut Connection, who: OrganisationId) -> Answer<u64> {
+pub(super) async fn remove_examples(c: &mut Connection, who: OrganisationId, hashes: &str) -> Answer<u64> {
     Ok(sqlx::query(REMOVE_EXAMPLES)
         .bind(who.0)
+        .bind(hashes)
         .execute(c)
         .await?
         .rows_affected())

@@ -91,7 +91,7 @@ async fn load_example(State(app): State<App>) -> Result<Redirect, Refusal> {
 
 /// Takes the demonstration away, in one step.
 async fn remove_example(State(app): State<App>) -> Result<Redirect, Refusal> {
-    pathways::remove_examples(&app).await?;
+    demo::remove(&app).await?;
     Ok(Redirect::to("/?examples=0"))
 }
 

@@ -4,7 +4,7 @@ use super::settings::Settings;
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Assessment, Finding, Severity};
 use crate::core::domain::RuleSet;
-use crate::core::units::rounding::{plain, plain_fixed, round_half_away};
+use crate::core::units::rounding::{decimals_against, plain, plain_fixed, round_half_away};
 
 /// Relative tolerance of sums (own).
 const SUM: f64 = 1e-9;
@@ -122,7 +122,7 @@ pub fn threshold_unrounded(assessment: &Assessment) -> Vec<Finding> {
     let message = format!(
         "{} saves {} %, below the required {} %; rounding does not help.",
         assessment.pathway_name,
-        plain(saving),
+        plain_fixed(saving, decimals_against(saving, threshold.percent, 2)),
         plain(threshold.percent)
     );
     vec![finding(
@@ -131,7 +131,7 @@ pub fn threshold_unrounded(assessment: &Assessment) -> Vec<Finding> {
         "",
         "thresholds",
         message,
-        "See which stage weighs most and change it.",
+        "Look at the stages that weigh most, and at checks that doubt their figures.",
     )]
 }
 

@@ -3,16 +3,15 @@
 use super::carbon::{self, Basis};
 use super::demand::{Demand, demand};
 use super::inventory::{counts, fuel_steps, recipe_gases, totals};
-use super::resolve::flow_words;
 use super::resolved::{Input, Resolved, Stage};
-use super::saving;
+use super::{saving, workings};
 use crate::core::documents::assessment::{
     Assessment, FORMAT, Finding, InputResult, Memo, Net, ProductShare, Severity, StageResult, Step,
 };
 use crate::core::documents::pathway::Pathway;
 use crate::core::documents::problem::{Problem, Problems};
 use crate::core::documents::{assessment, canonical};
-use crate::core::domain::{Gas, GasVector, Term};
+use crate::core::domain::{Gas, GasVector, StageKind, Term};
 use crate::core::models::factors::step;
 use crate::core::units::rounding::plain;
 
@@ -53,6 +52,7 @@ pub fn assess(resolved: &Resolved, workings: bool) -> Result<Assessed, Problems>
     if !reach.left_out.is_empty() {
         findings.push(partial(&reach.left_out));
     }
+    findings.extend(empty_stages(resolved));
     let stages = stages(resolved, &demand, workings);
     let (primary, estimated) = trust(resolved, &stages);
     let assessment = Assessment {
@@ -116,6 +116,29 @@ fn partial(left_out: &[String]) -> Finding {
         remedy: "Enter the missing stages or use a published default for their term.".to_owned(),
         reason: None,
     }
+}
+
+/// K-06 for a stage of growing or making that has no input and whose term no default value covers: its zero is no figure.
+fn empty_stages(resolved: &Resolved) -> Vec<Finding> {
+    let covered = |term: Term| resolved.defaults.iter().any(|default| default.term == term);
+    let works = |stage: &&Stage| {
+        matches!(stage.kind(), StageKind::Cultivation | StageKind::Processing)
+            && stage.inputs.is_empty()
+            && !covered(stage.kind().term())
+    };
+    let finding = |stage: &Stage| Finding {
+        id: "K-06".to_owned(),
+        severity: Severity::Block,
+        stage: stage.document.key.clone(),
+        field: "inputs".to_owned(),
+        message: format!(
+            "{} has no inputs, so it counts as nothing.",
+            stage.document.title()
+        ),
+        remedy: "Enter what it uses, or use a published default for its term.".to_owned(),
+        reason: None,
+    };
+    resolved.stages.iter().filter(works).map(finding).collect()
 }
 
 fn stages(resolved: &Resolved, demand: &Demand, workings: bool) -> Vec<StageResult> {
@@ -189,7 +212,7 @@ fn stage(resolved: &Resolved, demand: &Demand, j: usize, workings: bool) -> Stag
         gases_g_per_mj: gases,
         products: shares(stage),
         workings: if workings {
-            chain(resolved, demand, j)
+            workings::chain(resolved, demand, j)
         } else {
             Vec::new()
         },
@@ -288,74 +311,6 @@ fn input_steps(
             "",
         )),
     }
-    steps
-}
-
-/// Steps from 1 MJ at the wheel to the recipes of a stage.
-fn chain(resolved: &Resolved, demand: &Demand, j: usize) -> Vec<Step> {
-    let stage = &resolved.stages[j];
-    let mut steps = stage.share_steps.clone();
-    if resolved.last == Some(j) {
-        let lhv = &resolved.rules.ethanol_lhv;
-        let pure = stage.products[0].flow.pure_kg.unwrap_or(0.0);
-        let flow = &stage.document.output.flow;
-        let made = flow_words(&stage.products[0].flow, flow.amount, flow.unit.as_deref());
-        let energy = resolved.fuel_mj(j).unwrap_or(0.0);
-        let strength = stage.products[0].flow.strength.unwrap_or(1.0);
-        steps.push(step(
-            format!(
-                "one recipe makes {made}: {} kg pure ethanol x {}",
-                plain(pure),
-                resolved.rules.ethanol_words(strength)
-            ),
-            energy,
-            "MJ",
-            &lhv.source,
-        ));
-        steps.push(step(
-            format!("1 MJ / {} MJ per recipe", plain(energy)),
-            demand.by_product[j][0],
-            "recipes per MJ",
-            "",
-        ));
-    }
-    for (t, taker) in resolved.stages.iter().enumerate() {
-        for intake in taker.intakes.iter().filter(|intake| intake.from == j) {
-            let name = stage.products[intake.product].name;
-            steps.push(step(
-                format!(
-                    "{} takes {} recipes of {name}: x {} recipes of {} per MJ",
-                    taker.document.title(),
-                    plain(intake.recipes),
-                    plain(demand.scale[t]),
-                    taker.document.title(),
-                ),
-                intake.recipes * demand.scale[t],
-                "recipes per MJ",
-                "",
-            ));
-        }
-    }
-    let parts: Vec<String> = stage
-        .products
-        .iter()
-        .zip(&demand.by_product[j])
-        .filter(|(_, recipes)| **recipes != 0.0)
-        .map(|(product, recipes)| format!("{} x share {}", plain(*recipes), plain(product.share)))
-        .collect();
-    steps.push(step(
-        format!(
-            "recipes that the fuel carries: {}",
-            if parts.is_empty() {
-                "none".to_owned()
-            } else {
-                parts.join(" + ")
-            }
-        ),
-        demand.scale[j],
-        "recipes per MJ with shares",
-        "",
-    ));
     steps
 }
 

@@ -16,6 +16,7 @@ mod resolve;
 pub mod resolved;
 mod saving;
 mod substitution;
+mod workings;
 
 pub use assess::{Assessed, assess};
 pub use inventory::{Totals, totals};

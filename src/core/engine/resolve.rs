@@ -16,7 +16,6 @@ use crate::core::domain::rule_set::EthanolWater;
 use crate::core::domain::{Book, RuleSet, StageKind};
 use crate::core::models::Setting;
 use crate::core::models::flow::{ETHANOL, Measured, measure, no_heat};
-use crate::core::units::rounding::plain;
 
 /// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none). Without `workings` the
 /// figures are the same and the steps that lead to them are left out where they cost time.
@@ -541,18 +540,5 @@ fn one_moisture(stage: &StageDocument, from: &str, intake_has: bool) -> Finding 
         ),
         remedy: "Enter the other moisture.".to_owned(),
         reason: None,
-    }
-}
-
-/// The figures of a flow in words, for workings.
-pub fn flow_words(flow: &Measured, amount: Option<f64>, unit: Option<&str>) -> String {
-    match (amount, unit) {
-        (Some(amount), Some(unit)) => {
-            let water = flow
-                .moisture
-                .map_or(String::new(), |m| format!(" at {} % moisture", plain(m * 100.0)));
-            format!("{} {unit}{water}", plain(amount))
-        }
-        _ => format!("{} kg pure ethanol", plain(flow.pure_kg.unwrap_or(0.0))),
     }
 }

@@ -30,6 +30,10 @@ pub fn reach(resolved: &Resolved) -> Reach {
     if !growing && !pathway.not_covered.contains(&StageKind::Cultivation) {
         left_out.push(StageKind::Cultivation.words().to_owned());
     }
+    let entered = resolved.stages.iter().any(|stage| !stage.inputs.is_empty());
+    if !entered && pathway.defaults.is_empty() && !resolved.stages.is_empty() {
+        left_out.push("every input".to_owned());
+    }
     let Some(last) = resolved.last.map(|last| &resolved.stages[last]) else {
         return Reach {
             basis: "to the wheel".to_owned(),
