@@ -118,7 +118,9 @@ fn completed(mut api: OpenApi) -> OpenApi {
                 may_be.push((422, "The document does not hold: `errors` names everything."));
             }
             if compares {
-                may_be.push((409, "The pathway is archived."));
+                if named {
+                    may_be.push((409, "The pathway is archived."));
+                }
                 may_be.push((
                     412,
                     "Somebody saved in between: `ETag` names the present revision.",

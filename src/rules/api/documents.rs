@@ -17,8 +17,10 @@ pub struct RuleSetLine {
     pub title: String,
     /// Version of its data: the newest of one's own.
     pub version: String,
-    /// Whether it may be relied on; `own` for one of one's own.
+    /// Whether it may be relied on.
     pub standing: Standing,
+    /// False for one of one's own.
+    pub built_in: bool,
     /// Id of the set of gas weights.
     pub gwp_set: String,
     /// The fossil baseline, g CO2e/MJ.
@@ -31,12 +33,13 @@ pub struct RuleSetLine {
 
 impl RuleSetLine {
     /// The line of a rule set under the id that documents use.
-    pub fn of(id: &str, rules: &RuleSet) -> RuleSetLine {
+    pub fn of(id: &str, rules: &RuleSet, built_in: bool) -> RuleSetLine {
         RuleSetLine {
             id: id.to_owned(),
             title: rules.title.clone(),
             version: rules.version.clone(),
             standing: rules.standing,
+            built_in,
             gwp_set: rules.gwp_set.clone(),
             comparator_g_co2e_per_mj: rules.comparator.value,
             source: rules.source.clone(),

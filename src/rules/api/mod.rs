@@ -66,7 +66,7 @@ async fn rule_sets(
         .rule_sets
         .iter()
         .filter(|(id, _)| !id.contains('@'))
-        .map(|(id, rules)| RuleSetLine::of(id, rules));
+        .map(|(id, rules)| RuleSetLine::of(id, rules, app.library.rule_sets.contains_key(id)));
     Ok(Page::cut(
         all,
         |line| &line.id,

@@ -2,11 +2,17 @@
 
 mod bad_documents;
 mod batch;
+mod blend;
+mod calculators;
 mod compare;
+mod defaults;
 mod description;
 mod evaluate;
 mod pathways;
 mod published;
+mod reasons;
+mod rule_sets;
+mod settings;
 mod shell;
 mod stages;
 mod wire;

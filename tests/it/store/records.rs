@@ -39,9 +39,18 @@ async fn every_statement_finds_its_rows_by_an_index() {
             .fetch_all(&mut *reader)
             .await
             .unwrap_or_else(|error| panic!("{sql}\n{error}"));
-        let goes_through_all = ["LIMIT $10", "p.example = 1", "example = 1 AND NOT EXISTS"];
+        let goes_through_all = [
+            "LIMIT $10",
+            "p.example = 1",
+            "example = 1 AND NOT EXISTS",
+            // Rule sets and settings are read whole, and seldom; a new version of a rule set drops what was kept under it.
+            "FROM own_rule_set",
+            "FROM check_settings",
+            "DELETE FROM assessment",
+        ];
         for (_, _, _, step) in plan {
-            let whole = step.starts_with("SCAN") && !sql.contains("FROM organisation");
+            let whole =
+                step.starts_with("SCAN") && step != "SCAN CONSTANT ROW" && !sql.contains("FROM organisation");
             let all_of_one = step.ends_with("(organisation_id=?)")
                 && !goes_through_all.iter().any(|text| sql.contains(text));
             assert!(!whole && !all_of_one, "{step}\n{sql}");

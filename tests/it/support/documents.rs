@@ -44,6 +44,26 @@ pub fn chain_with(pointer: &str, value: Value) -> Value {
     document
 }
 
+/// A rule set of one's own: that of the Directive with another comparator and a threshold of one's own.
+pub fn own_rules() -> Value {
+    let directive = &wheelwort::library::book().rule_sets["eu-2018-2001"];
+    let bytes = wheelwort::core::documents::rule_set::canonical_bytes(directive).expect("JSON");
+    let mut rules: Value = serde_json::from_slice(&bytes).expect("JSON");
+    rules["id"] = "own-2027".into();
+    rules["title"] = "Rules of a made-up buyer".into();
+    rules["version"] = "1".into();
+    rules["standing"] = "own".into();
+    rules["comparator"] =
+        json!({ "value": 90, "unit": "g CO2e/MJ", "source": "made-up contract, annex 2", "status": "own" });
+    rules["thresholds"] = json!([{ "percent": 40, "source": "made-up contract, point 5", "status": "own" }]);
+    rules
+}
+
+/// A question about E10 on a stored pathway.
+pub fn e10(id: &str) -> Value {
+    json!({ "blend": "E10", "temperature_c": 15, "heating_values": "emission_arithmetic", "ethanol": id })
+}
+
 /// A document that must be refused.
 pub struct Bad {
     /// What is wrong with it.
