@@ -3,12 +3,14 @@
 mod factor;
 mod list;
 mod published;
+mod rule_sets;
 #[cfg(test)]
 mod tests;
 
 pub use factor::{ShowFactor, UseRow};
 pub use list::{Asked, Factors};
 pub use published::{Memory, Published};
+pub use rule_sets::RuleSets;
 
 use crate::app::App;
 use crate::web::Refusal;
@@ -26,6 +28,8 @@ pub fn routes() -> Router<App> {
         .route("/factors.csv", get(factors_csv))
         .route("/factors/memory", get(memory))
         .route("/materials/{id}", get(material))
+        .route("/rule-sets", get(rule_sets))
+        .route("/rule-sets.csv", get(rule_sets_csv))
         .route("/rule-sets/{id}", get(rule_set))
 }
 
@@ -48,6 +52,17 @@ async fn material(State(app): State<App>, Path(id): Path<String>) -> Result<Resp
         .get(&id)
         .ok_or_else(|| Refusal::not_here("material", &id))?;
     page(&Published::material(material))
+}
+
+async fn rule_sets(State(app): State<App>) -> Result<Response, Refusal> {
+    page(&RuleSets::of(app.library, crate::library::limits_elsewhere()))
+}
+
+async fn rule_sets_csv(State(app): State<App>) -> Response {
+    csv(
+        "limits-elsewhere",
+        &RuleSets::of(app.library, crate::library::limits_elsewhere()).table(),
+    )
 }
 
 async fn rule_set(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {

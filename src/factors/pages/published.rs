@@ -54,6 +54,8 @@ fn cited(name: &str, figure: &Cited, basis: String) -> CitedRow {
 pub struct Published {
     /// Round the page.
     pub frame: Frame,
+    /// The list it stands in: address, words.
+    pub trail: Option<(&'static str, &'static str)>,
     /// Name.
     pub name: String,
     /// What it is, in a sentence.
@@ -88,6 +90,7 @@ impl Published {
                 Section::Factors,
                 format!("GET /api/v1/materials/{}", links::segment(&material.id)),
             ),
+            trail: None,
             name: material.name.clone(),
             lead: format!("Built-in material {}, {}.", material.id, material.kind),
             facts: vec![
@@ -169,6 +172,7 @@ impl Published {
                 Section::Factors,
                 format!("GET /api/v1/rule-sets/{}", links::segment(&rules.id)),
             ),
+            trail: Some(("/rule-sets", "Rule sets")),
             name: rules.title.clone(),
             lead: format!(
                 "Rule set {}, version {}: {}; {}.",

@@ -86,6 +86,15 @@ fn lists_materials_and_rule_sets_render() {
             &Published::material(material).render().expect("renders"),
         );
     }
+    let sets = RuleSets::of(book, crate::library::limits_elsewhere());
+    assert_eq!(sets.rows.first().map(|row| row.class), Some(""), "in force first");
+    assert_eq!(
+        sets.rows.last().map(|row| row.class),
+        Some("blocks"),
+        "repealed last, marked"
+    );
+    assert!(sets.elsewhere.iter().all(|row| !row.why.is_empty()) && !sets.elsewhere.is_empty());
+    sound("rule sets", &sets.render().expect("renders"));
     for rules in book.rule_sets.values() {
         let html = Published::rule_set(rules, book.gwp_sets.get(&rules.gwp_set))
             .render()

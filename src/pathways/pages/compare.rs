@@ -5,7 +5,7 @@ use super::verdict::{Verdict, rounding_note};
 use crate::charts::ladder::{self, Form, Ladder};
 use crate::core::documents::{Assessment, Pathway};
 use crate::core::domain::{Book, StageKind};
-use crate::core::levers::compare::{Comparison, MOST, Subject, compare};
+use crate::core::levers::compare::{Comparison, MOST, StageRow, Subject, compare};
 use crate::core::units::rounding::show;
 use crate::web::csv::{Cell, Table};
 use crate::web::filters::{self, Markup};
@@ -57,6 +57,8 @@ pub struct Column {
     pub example: bool,
     /// True for the first, which the others are compared with.
     pub base: bool,
+    /// Why its figures cannot be compared with those of the first, where they cannot: then no difference is printed.
+    pub apart: Option<String>,
 }
 
 /// One row of a table: figures and differences against the first.
@@ -111,6 +113,12 @@ impl Compare {
             })
             .collect();
         let comparison = compare(&subjects);
+        let base = picked.first().and_then(rules);
+        let apart: Vec<Option<String>> = picked
+            .iter()
+            .map(|one| base?.comparable_with(rules(one)?).err())
+            .collect();
+        let differs = |index: usize| index > 0 && apart.get(index).is_some_and(Option::is_none);
         let names: Vec<&str> = picked.iter().map(|one| one.pathway.name.as_str()).collect();
         let ids: Vec<String> = picked.iter().map(|one| links::segment(one.id)).collect();
         let all = picked.iter().all(|one| one.pathway.example);
@@ -120,7 +128,12 @@ impl Compare {
         } else {
             frame.partly_example(comparison.example)
         };
-        let stages: Vec<Row> = comparison.stages.iter().rev().map(stage_row).collect();
+        let stages: Vec<Row> = comparison
+            .stages
+            .iter()
+            .rev()
+            .map(|row| stage_row(row, &differs))
+            .collect();
         let notes = comparison.pathways.iter().enumerate().filter_map(|(index, one)| {
             let parts: Vec<f64> = stages.iter().filter_map(|row| row.cells.get(index)?.0).collect();
             rounding_note(
@@ -133,13 +146,19 @@ impl Compare {
         Compare {
             frame,
             title: format!("{} pathways", count_words(picked.len())),
-            lead: lead(&comparison),
-            columns: columns(picked, book),
+            lead: match reasons(&apart) {
+                reasons if reasons.is_empty() => lead(&comparison),
+                reasons => format!("{reasons} They stand side by side without differences."),
+            },
+            columns: columns(picked, book, &comparison, &apart),
             notes: notes.collect(),
             terms: comparison
                 .terms
                 .iter()
-                .map(|row| figures(row.term.name(), &row.g_co2e_per_mj, &row.difference_g_co2e_per_mj))
+                .map(|row| {
+                    let (g, change) = (&row.g_co2e_per_mj, &row.difference_g_co2e_per_mj);
+                    figures(row.term.name(), g, change, &differs)
+                })
                 .collect(),
             net: Some(figures(
                 "Net",
@@ -153,6 +172,7 @@ impl Compare {
                     .iter()
                     .map(|one| one.difference_g_co2e_per_mj)
                     .collect::<Vec<_>>(),
+                &differs,
             )),
             unlike: comparison
                 .unlike
@@ -203,7 +223,14 @@ fn count_words(count: usize) -> &'static str {
     }
 }
 
-fn stage_row(row: &crate::core::levers::compare::StageRow) -> Row {
+/// Why some cannot be compared with the first, each reason once.
+fn reasons(apart: &[Option<String>]) -> String {
+    let mut out: Vec<&str> = apart.iter().flatten().map(String::as_str).collect();
+    out.dedup();
+    out.join(" ")
+}
+
+fn stage_row(row: &StageRow, differs: &impl Fn(usize) -> bool) -> Row {
     let mut names: Vec<&str> = row.names.iter().flatten().map(String::as_str).collect();
     names.dedup();
     let name = if names.is_empty() {
@@ -215,17 +242,22 @@ fn stage_row(row: &crate::core::levers::compare::StageRow) -> Row {
     Row {
         name,
         cells: differences
-            .map(|(i, d)| (row.g_co2e_per_mj.get(i).copied().flatten(), (i > 0).then_some(*d)))
+            .map(|(i, d)| {
+                (
+                    row.g_co2e_per_mj.get(i).copied().flatten(),
+                    differs(i).then_some(*d),
+                )
+            })
             .collect(),
     }
 }
 
-fn figures(name: &str, all: &[f64], differences: &[f64]) -> Row {
+fn figures(name: &str, all: &[f64], differences: &[f64], differs: &impl Fn(usize) -> bool) -> Row {
     let cells = all.iter().zip(differences).enumerate();
     Row {
         name: name.to_owned(),
         cells: cells
-            .map(|(i, (g, d))| (Some(*g), (i > 0).then_some(*d)))
+            .map(|(i, (g, d))| (Some(*g), differs(i).then_some(*d)))
             .collect(),
     }
 }
@@ -280,18 +312,24 @@ fn lead(comparison: &Comparison) -> String {
     format!("{difference}{}", makes.unwrap_or_default())
 }
 
-fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
+fn columns(picked: &[Picked], book: &Book, comparison: &Comparison, apart: &[Option<String>]) -> Vec<Column> {
+    // Chains that differ get each other's rungs, empty, so that the same stage stands at the same height.
+    let alike = comparison
+        .stages
+        .iter()
+        .all(|row| row.g_co2e_per_mj.iter().all(Option::is_some));
     let ladders: Vec<Ladder> = picked
         .iter()
         .enumerate()
         .map(|(index, one)| {
             let weights = super::weights(book, &one.found.gwp_set);
-            super::ladder::model(
-                one.found,
-                &weights,
-                book.rule_sets.get(&one.found.rule_set),
-                &format!("c{index}"),
-            )
+            let rules = book.rule_sets.get(&one.found.rule_set);
+            let ladder = super::ladder::model(one.found, &weights, rules, &format!("c{index}"));
+            if alike {
+                ladder
+            } else {
+                super::ladder::aligned(ladder, one.found, &comparison.stages)
+            }
         })
         .collect();
     let scale = ladder::common_scale(&ladders);
@@ -306,6 +344,7 @@ fn columns(picked: &[Picked], book: &Book) -> Vec<Column> {
             ladder: Markup(ladder::draw(&Ladder { scale, ..ladder }, Form::Narrow).unwrap_or_default()),
             example: one.pathway.example,
             base: index == 0,
+            apart: apart.get(index).cloned().flatten(),
         })
         .collect()
 }

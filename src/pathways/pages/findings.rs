@@ -78,8 +78,9 @@ fn pointer(stage: &Value, field: &str) -> String {
     let mut parts = field.split('.');
     let first = parts.next().unwrap_or_default();
     let mut at = format!("/{first}");
-    let list = stage.pointer(&at).and_then(Value::as_array);
-    if let (Some(list), Some(key)) = (list, parts.next()) {
+    if let Some(list) = stage.pointer(&at).and_then(Value::as_array)
+        && let Some(key) = parts.next()
+    {
         let name = if first == "intakes" { "from" } else { "key" };
         let place = list
             .iter()

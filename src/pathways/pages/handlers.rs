@@ -11,6 +11,7 @@ use crate::app::App;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;
 use crate::core::documents::{Assessment, Pathway};
+use crate::core::domain::rule_set::BiogenicCo2;
 use crate::pathways::{self, Expected, Line, PathwayError, Question, Revision, Sort, Stored, What};
 use crate::web::Refusal;
 use crate::web::extract::{Form, Path, Query};
@@ -224,7 +225,14 @@ async fn show(
         Ok(rows) => rows,
         Err(error) => return Err(refused(&app, &id, error).await),
     };
-    let in_line = query.carbon == "in-line";
+    // The rule set says where the crop's carbon stands; the address can ask for the other.
+    let in_line = match query.carbon.as_str() {
+        "in-line" => true,
+        "apart" => false,
+        _ => seen
+            .found()
+            .is_some_and(|found| found.carbon.presentation == BiogenicCo2::InLine),
+    };
     let head = seen.head();
     let rows = revision_rows(&head, &rows);
     let mut shown = ShowPathway::of(

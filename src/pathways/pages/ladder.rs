@@ -3,6 +3,7 @@
 use crate::charts::ladder::{self, Baseline, Counted, Form, Ladder, Rung};
 use crate::core::documents::assessment::{Assessment, StageResult};
 use crate::core::domain::{Gas, GasVector, GwpSet, RuleSet};
+use crate::core::levers::compare::StageRow;
 use crate::web::csv::{Cell, Table};
 use crate::web::filters::Markup;
 
@@ -168,6 +169,30 @@ pub fn model(assessment: &Assessment, weights: &GwpSet, rules: Option<&RuleSet>,
             .collect(),
         scale: None,
     }
+}
+
+/// The same ladder with a rung for every stage of a comparison, field first: those of other pathways are absent.
+pub fn aligned(ladder: Ladder, assessment: &Assessment, rows: &[StageRow]) -> Ladder {
+    // The rungs of the stages stand in the order of the stages; before them the uptake, after them what has no stage.
+    let before = ladder.stages.iter().take_while(|rung| rung.uptake).count();
+    let count = assessment.stages.len();
+    let own = assessment.stages.iter().zip(ladder.stages.iter().skip(before));
+    let mut stages: Vec<Rung> = ladder.stages.iter().take(before).cloned().collect();
+    for row in rows {
+        let mine = own
+            .clone()
+            .find(|(stage, _)| stage.kind == row.kind && stage.key == row.key);
+        stages.push(match mine {
+            Some((_, rung)) => rung.clone(),
+            None => Rung {
+                name: row.names.iter().flatten().next().unwrap_or(&row.key).clone(),
+                absent: true,
+                ..Rung::default()
+            },
+        });
+    }
+    stages.extend(ladder.stages.iter().skip(before + count).cloned());
+    Ladder { stages, ..ladder }
 }
 
 /// One word for the baseline in pictures: the last of the rule set's.

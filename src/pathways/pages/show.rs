@@ -81,6 +81,8 @@ pub struct PathwayResult {
     pub memo_e_u: Option<f64>,
     /// The crop's carbon.
     pub carbon: CarbonView,
+    /// The crop's own CO2 in line, field first: stage, what it is, term, g CO2/MJ; empty where it stands apart.
+    pub crop_rows: Vec<(String, String, &'static str, f64)>,
     /// What checks have to say, worst first.
     pub findings: Vec<FindingRow>,
 }
@@ -96,6 +98,8 @@ pub struct TermRow {
     pub kind: String,
     /// Signed contribution.
     pub g: f64,
+    /// The same with the crop's own CO2 in line.
+    pub in_line: f64,
 }
 
 impl ShowPathway {
@@ -187,6 +191,9 @@ fn facts(
     };
     out.push(match pathway.plant_started {
         Some(day) => Fact::new("Plant started", format!("{}{needs}", short_day(day))),
+        None if rules.is_some_and(|rules| rules.thresholds.is_empty()) => {
+            Fact::new("Plant started", "not given; the rule set asks for no saving")
+        }
         None => Fact::new("Plant started", "not given: the required saving depends on it"),
     });
     if head.revision > 0 {
@@ -238,6 +245,11 @@ impl PathwayResult {
             term_note: rounding_note("The terms", &parts, net, 2),
             memo_e_u: (memo != 0.0).then_some(memo),
             carbon: CarbonView::of(&found.carbon, net),
+            crop_rows: if in_line {
+                crop_rows(pathway, found)
+            } else {
+                Vec::new()
+            },
             findings: super::findings::rows(head, pathway, &found.findings),
             verdict,
             ladder,
@@ -280,6 +292,15 @@ fn ladder_notes(
     out.extend(rounding_note("The stages", &sums, found.net.g_co2e_per_mj, 2));
     out.push("Gas columns can differ from their sum in the last digit: rounding.".to_owned());
     out
+}
+
+fn crop_rows(pathway: &Pathway, found: &Assessment) -> Vec<(String, String, &'static str, f64)> {
+    let rows = found.carbon.rows.iter().map(|row| {
+        let stage = pathway.stages.iter().find(|stage| stage.key == row.stage);
+        let name = stage.map_or_else(|| "\u{2013}".to_owned(), |stage| stage.title().to_owned());
+        (name, capital(&row.what), row.term.name(), row.g_co2_per_mj)
+    });
+    rows.collect()
 }
 
 fn saving_sum(found: &Assessment, verdict: &Verdict) -> String {
@@ -328,6 +349,7 @@ fn term_row(term: Term, pathway: &Pathway, found: &Assessment, rules: Option<&Ru
         words: term.words(),
         kind,
         g,
+        in_line: found.carbon.terms_in_line_g_co2e_per_mj.get(term),
     }
 }
 

@@ -158,6 +158,7 @@ pub(super) async fn save(
     Posted(pairs): Posted<Vec<(String, String)>>,
 ) -> Result<Response, Response> {
     let mut form = Form::of(pairs);
+    form.settle_picks();
     let asked = Do::of(form.get("do").unwrap_or("save"));
     let expected = form
         .text("expected")

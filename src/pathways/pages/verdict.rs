@@ -103,6 +103,15 @@ impl Verdict {
         }
     }
 
+    /// What the fuel is compared with, as a sentence takes it: the comparator, but petrol.
+    pub fn against(&self) -> String {
+        if self.comparator.contains(' ') {
+            format!("the {}", self.comparator)
+        } else {
+            self.comparator.clone()
+        }
+    }
+
     /// The answer as plain text, for titles and lists.
     pub fn text(&self) -> String {
         let mut out = format!("{} g CO2e/MJ", self.net);

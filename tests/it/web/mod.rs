@@ -1,5 +1,7 @@
 //! The pages, asked as a browser without script asks: addresses followed, forms filled in and sent.
 
+mod calculators;
+mod defaults;
 mod form;
 mod pages;
 mod stage;

@@ -26,7 +26,8 @@ async fn every_page_answers_and_every_link_leads_somewhere() {
         format!("{one}/new-stage?kind=preparation&name=Milling&after=1"),
         compare,
         "/factors".to_owned(),
-        "/rule-sets/eu-2018-2001".to_owned(),
+        "/rule-sets".to_owned(),
+        "/calculators".to_owned(),
         "/materials/wheat".to_owned(),
         "/api".to_owned(),
     ];
@@ -198,6 +199,7 @@ async fn tables_download_as_csv_without_formulas() {
         (format!("{one}/checks.csv"), "check,"),
         (format!("{one}/workings.csv"), "stage,input,"),
         ("/pathways.csv".to_owned(), "id,name,"),
+        ("/rule-sets.csv".to_owned(), "jurisdiction,law,"),
         (
             format!("/factors.csv?q={}", encoded("ammonium nitrate")),
             "id,name,",

@@ -55,6 +55,32 @@ impl Form {
             .map_or(0, |last| last + 1)
     }
 
+    /// Where two people met, `pick:` and a pointer says whose figure is to stand. Theirs stands in the revision that the
+    /// form begins from, so what was typed over it is dropped. What was picked is told once.
+    pub fn settle_picks(&mut self) {
+        let picks: Vec<(String, String)> = self
+            .0
+            .range("pick:".to_owned()..)
+            .take_while(|(name, _)| name.starts_with("pick:"))
+            .map(|(name, text)| (name.clone(), text.clone()))
+            .collect();
+        for (name, text) in picks {
+            self.0.remove(&name);
+            let pointer = name.trim_start_matches("pick:");
+            if text != "theirs" || pointer.is_empty() {
+                continue;
+            }
+            self.0.retain(|field, _| {
+                let field = field.strip_suffix("/unit").unwrap_or(field);
+                let inside = |whole: &str, part: &str| {
+                    part.strip_prefix(whole)
+                        .is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
+                };
+                !(field.starts_with('/') && (inside(field, pointer) || inside(pointer, field)))
+            });
+        }
+    }
+
     /// Adds an item to a list, with its steering fields; gives its index.
     pub fn add(&mut self, list: &str, fields: &[(&str, &str)]) -> usize {
         let index = self.count(list);
@@ -164,6 +190,23 @@ mod tests {
         assert_eq!(form.get("/inputs/2/key"), None);
         assert_eq!(form.add("/inputs", &[("as", "factor")]), 2);
         assert_eq!(form.get("/inputs/2/as"), Some("factor"));
+    }
+
+    #[test]
+    fn a_pick_of_theirs_drops_what_was_typed_over_it() {
+        let mut form = form(&[
+            ("/inputs/0/was", "0"),
+            ("/inputs/0/amount", "1"),
+            ("/inputs/0/model/distance", "2"),
+            ("/inputs/0/model/distance/unit", "km"),
+            ("/inputs/1/amount", "3"),
+            ("pick:/inputs/0/model/distance/value", "theirs"),
+            ("pick:/inputs/1/amount", "mine"),
+            ("pick:", "theirs"),
+        ]);
+        form.settle_picks();
+        let left: Vec<&str> = form.0.keys().map(String::as_str).collect();
+        assert_eq!(left, ["/inputs/0/amount", "/inputs/0/was", "/inputs/1/amount"]);
     }
 
     #[test]

@@ -15,18 +15,40 @@ pub struct Met {
     pub mine: String,
     /// True if both changed it, differently: then what was typed stands in the form.
     pub both: bool,
+    /// Where it stands in the joined stage, if both have it there: then either can be taken.
+    pub pointer: Option<String>,
 }
 
 /// Joins two versions of one stage. Where only one changed a field, that change stands; where both did, mine.
 pub fn join(base: &Value, theirs: &Value, mine: &Value) -> (Value, Vec<Met>) {
     let mut met = Vec::new();
-    let joined = one(&mut Vec::new(), Some(base), Some(theirs), Some(mine), &mut met).unwrap_or(Value::Null);
+    let mut path = Path::default();
+    let joined = one(&mut path, Some(base), Some(theirs), Some(mine), &mut met).unwrap_or(Value::Null);
     (joined, met)
 }
 
 type Maybe<'a> = Option<&'a Value>;
 
-fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mut Vec<Met>) -> Option<Value> {
+/// Where the joining is: in words, and as a pointer into the joined stage.
+#[derive(Default)]
+struct Path {
+    words: Vec<String>,
+    pointer: Vec<String>,
+}
+
+impl Path {
+    fn push(&mut self, words: String, pointer: String) {
+        self.words.push(words);
+        self.pointer.push(pointer);
+    }
+
+    fn pop(&mut self) {
+        self.words.pop();
+        self.pointer.pop();
+    }
+}
+
+fn one(path: &mut Path, base: Maybe, theirs: Maybe, mine: Maybe, met: &mut Vec<Met>) -> Option<Value> {
     if theirs == base {
         return mine.cloned();
     }
@@ -36,7 +58,7 @@ fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mu
             let base = base.and_then(Value::as_object).unwrap_or(&empty);
             let mut out = Map::new();
             for name in union(mine.keys(), theirs.keys()) {
-                path.push(name.replace('_', " "));
+                path.push(name.replace('_', " "), name.clone());
                 if let Some(value) = one(path, base.get(&name), theirs.get(&name), mine.get(&name), met) {
                     out.insert(name, value);
                 }
@@ -62,6 +84,7 @@ fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mu
                     m.as_ref()
                         .or(t.as_ref())
                         .map_or_else(|| key.clone(), |item| name_of(item, &key)),
+                    out.len().to_string(),
                 );
                 out.extend(one(path, b.as_ref(), t.as_ref(), m.as_ref(), met));
                 path.pop();
@@ -71,11 +94,13 @@ fn one(path: &mut Vec<String>, base: Maybe, theirs: Maybe, mine: Maybe, met: &mu
         _ => {
             let both = mine != base && mine != theirs;
             met.push(Met {
-                field: path.join(", "),
+                field: path.words.join(", "),
                 base: shown(base),
                 theirs: shown(theirs),
                 mine: shown(mine),
                 both,
+                pointer: (both && mine.is_some() && theirs.is_some())
+                    .then(|| format!("/{}", path.pointer.join("/"))),
             });
             if both { mine.cloned() } else { theirs.cloned() }
         }
@@ -173,6 +198,8 @@ mod tests {
                 ("inputs, Gas, amount", "113.2", "104.6", "113.9", true),
             ]
         );
+        let pointers: Vec<Option<&str>> = met.iter().map(|m| m.pointer.as_deref()).collect();
+        assert_eq!(pointers, [None, Some("/inputs/0/amount")]);
     }
 
     #[test]
