@@ -6,5 +6,6 @@ mod history;
 mod identity;
 mod listing;
 mod records;
+mod rules;
 mod support;
 mod writing;

@@ -111,6 +111,7 @@ pub struct PublishedRow {
 
 /// One term, or a printed part of one.
 #[derive(Clone, Debug, PartialEq, Serialize, ToSchema)]
+#[schema(as = DefaultsTermRow)]
 pub struct TermRow {
     /// `e_ec`, `e_ec_soil_n2o`, `e_p`, `e_td`, `e_td_final_fuel`, `e_l`, ...
     pub term: String,
