@@ -3,6 +3,7 @@
 mod alcoholometry;
 mod dehydration;
 mod distillation;
+mod fermentation;
 mod index;
 #[cfg(test)]
 mod tests;
@@ -39,6 +40,14 @@ pub fn routes() -> Router<App> {
         .route(
             "/calculators/distillation.csv",
             get(|query: Pairs| file("distillation", distillation::page, query)),
+        )
+        .route(
+            "/calculators/fermentation",
+            get(|query: Pairs| shown(fermentation::page, query)),
+        )
+        .route(
+            "/calculators/fermentation.csv",
+            get(|query: Pairs| file("fermentation", fermentation::page, query)),
         )
         .route(
             "/calculators/dehydration",

@@ -20,10 +20,11 @@ fn sent(page: &Calculator) -> Asked {
     )
 }
 
-const PAGES: [(&str, fn(&Asked) -> Calculator); 3] = [
+const PAGES: [(&str, fn(&Asked) -> Calculator); 4] = [
     ("alcoholometry", alcoholometry::page),
     ("distillation", distillation::page),
     ("dehydration", dehydration::page),
+    ("fermentation", fermentation::page),
 ];
 
 #[test]
@@ -88,6 +89,47 @@ fn each_refusal_stands_at_its_field() {
         ("product_strength_percent_mass", "99"),
     ]));
     assert_eq!(page.refused[0].field, "product_strength_percent_mass");
+}
+
+#[test]
+fn a_fermentation_refuses_at_the_fields_of_the_form() {
+    let at = |pairs: &[(&str, &str)]| -> Vec<&'static str> {
+        fermentation::page(&asked(pairs))
+            .refused
+            .iter()
+            .map(|row| row.field)
+            .collect()
+    };
+    assert_eq!(at(&[("efficiency_percent", "90")]), ["starch_kg"]);
+    assert_eq!(
+        at(&[
+            ("starch_kg", "1"),
+            ("efficiency_percent", "90"),
+            ("ethanol_kg", "1")
+        ]),
+        ["ethanol_kg"]
+    );
+    assert_eq!(
+        at(&[
+            ("glucose_kg", "1"),
+            ("xylan_released_percent", "50"),
+            ("efficiency_percent", "90")
+        ]),
+        ["xylan_kg"]
+    );
+    assert_eq!(
+        at(&[
+            ("xylose_kg", "1"),
+            ("xylan_kg", "1"),
+            ("xylan_released_percent", "150"),
+            ("efficiency_percent", "90")
+        ]),
+        ["xylan_released_percent"]
+    );
+    // Two moles of ethanol a mole of glucose: 1 kg gives 0.51143 kg at most.
+    let page = fermentation::page(&asked(&[("glucose_kg", "1"), ("efficiency_percent", "100")]));
+    let most = page.answer.expect("an answer").sheets[0].rows[1].1[0].expect("a figure");
+    assert!((most - 0.51143).abs() < 1e-5, "{most}");
 }
 
 #[test]

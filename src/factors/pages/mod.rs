@@ -13,6 +13,7 @@ pub use published::{Memory, Published};
 pub use rule_sets::RuleSets;
 
 use crate::app::App;
+use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::answers::{csv, page};
 use crate::web::extract::{Path, Query};
@@ -55,7 +56,8 @@ async fn material(State(app): State<App>, Path(id): Path<String>) -> Result<Resp
 }
 
 async fn rule_sets(State(app): State<App>) -> Result<Response, Refusal> {
-    page(&RuleSets::of(app.library, crate::library::limits_elsewhere()))
+    let basis = basis(&app).await?;
+    page(&RuleSets::of(&basis.book, crate::library::limits_elsewhere()))
 }
 
 async fn rule_sets_csv(State(app): State<App>) -> Response {
@@ -66,13 +68,14 @@ async fn rule_sets_csv(State(app): State<App>) -> Response {
 }
 
 async fn rule_set(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {
-    let rules = app
-        .library
+    let basis = basis(&app).await?;
+    let rules = basis
+        .book
         .rule_sets
         .get(&id)
         .ok_or_else(|| Refusal::not_here("rule set", &id))?;
     page(&Published::rule_set(
         rules,
-        app.library.gwp_sets.get(&rules.gwp_set),
+        basis.book.gwp_sets.get(&rules.gwp_set),
     ))
 }

@@ -11,6 +11,7 @@ use crate::core::domain::Book;
 use crate::core::engine::blend::{NAMED, blend};
 use crate::core::engine::per_km::per_km;
 use crate::core::units::rounding::show;
+use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::calculator::{Answer, Asked, Calculator, Field, Group, Sheet, Wrong};
 use crate::web::extract::Query;
@@ -53,6 +54,7 @@ pub fn page(
         groups,
         &filled,
     );
+    page.frame.data = vec!["POST /api/v1/blend".to_owned(), "POST /api/v1/per-km".to_owned()];
     if let Some(Ok(taken)) = &taken {
         page.frame = page.frame.partly_example(taken.pathway.example);
     }
@@ -382,14 +384,15 @@ async fn worked(app: &App, pairs: Vec<(String, String)>) -> Result<Calculator, R
         .filter(|line| line.assessment.is_some())
         .map(|line| (line.id.to_string(), line.name.clone()))
         .collect();
+    let basis = basis(app).await?;
     let id = asked.text("pathway");
     if id.is_empty() {
-        return Ok(page(&asked, &stored, None, app.library));
+        return Ok(page(&asked, &stored, None, &basis.book));
     }
     let nothing = |detail: &str| Wrong::new("pathway", detail, "Choose one of the list, or give a figure.");
     let Ok(uuid) = id.parse::<Uuid>() else {
         let taken = Some(Err(nothing("There is no such pathway.")));
-        return Ok(page(&asked, &stored, taken, app.library));
+        return Ok(page(&asked, &stored, taken, &basis.book));
     };
     let seen = see(app, uuid, None).await.ok();
     let taken = match &seen {
@@ -402,7 +405,7 @@ async fn worked(app: &App, pairs: Vec<(String, String)>) -> Result<Calculator, R
             None => Err(nothing("This pathway cannot be worked out yet.")),
         },
     };
-    Ok(page(&asked, &stored, Some(taken), app.library))
+    Ok(page(&asked, &stored, Some(taken), &basis.book))
 }
 
 /// The page.

@@ -163,7 +163,7 @@ impl ShowDefaults {
         let frame = Frame::new(
             format!("Default values, {}", pathway.name),
             Section::Pathways,
-            links::data_assessment(&head.id, head.revision),
+            format!("GET /api/v1/pathways/{}/defaults", links::segment(&head.id)),
         )
         .example(pathway.example);
         let fitting: Vec<&str> = table

@@ -4,12 +4,9 @@ use super::defaults::ShowDefaults;
 use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
 use super::{Fault, fault_rows, links};
 use crate::app::App;
-use crate::core::documents::Problems;
-use crate::core::levers::defaults::{Answer, DefaultsTable, table, with_defaults};
+use crate::core::levers::defaults::{Answer, DefaultsTable, with_defaults};
 use crate::pathways::{self, Expected, PathwayError};
-use crate::web::Refusal;
 use crate::web::answers::{page, see_other, with_status};
-use crate::web::blocking;
 use crate::web::extract::{Form, Path};
 use axum::extract::State;
 use axum::response::{IntoResponse, Response};
@@ -24,28 +21,27 @@ async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Respon
 }
 
 /// The table of what was seen; where the pathway cannot be worked out, its own page tells why.
-pub(super) async fn table_of(app: &App, seen: &Seen) -> Result<DefaultsTable, Response> {
-    let page = || see_other(&links::pathway(&seen.stored.id.to_string()));
-    let Some(found) = seen.found().cloned() else {
-        return Err(page());
-    };
-    let (pathway, book) = (seen.pathway.clone(), app.library);
-    // Every combination is an assessment of its own.
-    let made: Result<DefaultsTable, Problems> = blocking::run(move || table(&pathway, &found, book))
-        .await
-        .map_err(IntoResponse::into_response)?;
-    made.map_err(|problems| Refusal::from(PathwayError::Problems(problems)).into_response())
+pub(super) async fn table_of(app: &App, id: &str, seen: &Seen) -> Result<DefaultsTable, Response> {
+    if seen.outcome.is_err() {
+        return Err(see_other(&links::pathway(id)));
+    }
+    match pathways::defaults(app, seen.stored.id, None).await {
+        Ok(made) if made.revision == seen.stored.revision => Ok(made.table),
+        // Somebody saved between two readings: the address, asked again, shows theirs.
+        Ok(_) => Err(see_other(&format!("{}/defaults", links::pathway(id)))),
+        Err(error) => Err(refused(app, id, error).await),
+    }
 }
 
-fn shown(app: &App, seen: &Seen, table: &DefaultsTable) -> ShowDefaults {
-    ShowDefaults::of(seen.head(), &seen.pathway, table, app.library)
+fn shown(seen: &Seen, table: &DefaultsTable) -> ShowDefaults {
+    ShowDefaults::of(seen.head(), &seen.pathway, table, &seen.book)
 }
 
 /// The page.
 pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
-    let table = table_of(&app, &seen).await?;
-    page(&shown(&app, &seen, &table)).map_err(IntoResponse::into_response)
+    let table = table_of(&app, &id, &seen).await?;
+    page(&shown(&seen, &table)).map_err(IntoResponse::into_response)
 }
 
 /// Which combination, chosen on which revision.
@@ -66,9 +62,9 @@ pub(super) async fn choose(
     Form(chosen): Form<Chosen>,
 ) -> Result<Response, Response> {
     let now = seen(&app, &id, None).await?;
-    let table = table_of(&app, &now).await?;
+    let table = table_of(&app, &id, &now).await?;
     let refuse = |faults: Vec<Fault>| -> Response {
-        let mut shown = shown(&app, &now, &table).ticking(&chosen.combination);
+        let mut shown = shown(&now, &table).ticking(&chosen.combination);
         shown.why.clone_from(&chosen.why);
         shown.faults = faults;
         with_status(REFUSED, &shown).unwrap_or_else(IntoResponse::into_response)

@@ -11,6 +11,7 @@ use crate::app::App;
 use crate::core::documents::Pathway;
 use crate::core::documents::problem::{Problem, Problems};
 use crate::pathways::{self, Expected, PathwayError, What};
+use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::extract::{Form, Path, Query};
 use crate::web::frame::{Frame, Section};
@@ -21,24 +22,26 @@ use serde::Deserialize;
 
 /// The empty form.
 pub(super) async fn new(State(app): State<App>) -> Result<Response, Refusal> {
+    let basis = basis(&app).await?;
     page(&NewPathway::of(
         Start::default(),
         Vec::new(),
         String::new(),
         Vec::new(),
-        app.library,
+        &basis.book,
     ))
 }
 
 /// A short chain from a few facts.
 pub(super) async fn create(State(app): State<App>, Form(start): Form<Start>) -> Result<Response, Refusal> {
+    let basis = basis(&app).await?;
     let refuse = |start: Start, faults: Vec<Fault>| {
         with_status(
             REFUSED,
-            &NewPathway::of(start, faults, String::new(), Vec::new(), app.library),
+            &NewPathway::of(start, faults, String::new(), Vec::new(), &basis.book),
         )
     };
-    let document = match start.pathway(app.library) {
+    let document = match start.pathway(&basis.book) {
         Ok(document) => document,
         Err(faults) => return refuse(start, faults),
     };
@@ -68,6 +71,7 @@ pub(super) struct Typed {
 
 /// A document becomes a pathway.
 pub(super) async fn bring_in(State(app): State<App>, Form(typed): Form<Typed>) -> Result<Response, Refusal> {
+    let basis = basis(&app).await?;
     let refuse = |document: String, problems: &[Problem]| {
         with_status(
             REFUSED,
@@ -76,7 +80,7 @@ pub(super) async fn bring_in(State(app): State<App>, Form(typed): Form<Typed>) -
                 Vec::new(),
                 document,
                 rows(problems),
-                app.library,
+                &basis.book,
             ),
         )
     };
@@ -205,7 +209,7 @@ pub(super) async fn revision(
         &one.pathway,
         (before.as_ref().and_then(Seen::found), one.found()),
         &changes,
-        app.library,
+        &one.book,
     );
     page(&shown).map_err(IntoResponse::into_response)
 }
@@ -291,16 +295,16 @@ pub(super) async fn download(
         return Ok(file(&format!("{base}-assessment.json"), "application/json", text));
     }
     let table = if name == "workings.csv" {
-        ShowWorkings::of(seen.head(), &seen.pathway, found, app.library, false).table()
+        ShowWorkings::of(seen.head(), &seen.pathway, found, &seen.book, false).table()
     } else if name == "defaults.csv" {
-        let table = super::defaults_handlers::table_of(&app, &seen).await?;
-        ShowDefaults::of(seen.head(), &seen.pathway, &table, app.library).table()
+        let table = super::defaults_handlers::table_of(&app, &id, &seen).await?;
+        ShowDefaults::of(seen.head(), &seen.pathway, &table, &seen.book).table()
     } else {
         let shown = ShowPathway::of(
             seen.head(),
             &seen.pathway,
             Ok(found),
-            app.library,
+            &seen.book,
             Vec::new(),
             false,
         );

@@ -7,12 +7,13 @@ use super::{
     Head, Notice, RevisionRow, answers, blend, compare, defaults_handlers, document_handlers,
     factor_handlers, links, notices, stage_handlers,
 };
-use crate::app::App;
+use crate::app::{App, SharedBook};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;
 use crate::core::documents::{Assessment, Pathway};
 use crate::core::domain::rule_set::BiogenicCo2;
 use crate::pathways::{self, Expected, Line, PathwayError, Question, Revision, Sort, Stored, What};
+use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::extract::{Form, Path, Query};
 use answers::{csv, page, see_other};
@@ -73,6 +74,8 @@ pub(super) struct Seen {
     pub(super) stored: Stored,
     pub(super) pathway: Pathway,
     pub(super) outcome: Result<Assessment, Problems>,
+    /// Published data with the organisation's own rule sets.
+    pub(super) book: SharedBook,
 }
 
 impl Seen {
@@ -102,6 +105,7 @@ pub(super) async fn see(app: &App, id: Uuid, revision: Option<i64>) -> Result<Se
         None => pathways::read(app, id).await?,
     };
     let pathway = Pathway::from_bytes(&stored.document)?;
+    let book = basis(app).await?.book.clone();
     let outcome = match pathways::assessment(app, id, Some(stored.revision), None).await {
         Ok(made) => match serde_json::from_slice(&made.bytes) {
             Ok(assessment) => Ok(assessment),
@@ -114,6 +118,7 @@ pub(super) async fn see(app: &App, id: Uuid, revision: Option<i64>) -> Result<Se
         stored,
         pathway,
         outcome,
+        book,
     })
 }
 
@@ -189,7 +194,8 @@ async fn home_view(app: &App, query: HomeQuery) -> Result<Home, Refusal> {
         state: query.state,
         sort: query.sort,
     };
-    let mut home = Home::of(&all, app.library, asked);
+    let basis = basis(app).await?;
+    let mut home = Home::of(&all, &basis.book, asked);
     home.notice = query.examples.map(notices::examples);
     Ok(home)
 }
@@ -239,7 +245,7 @@ async fn show(
         head,
         &seen.pathway,
         seen.outcome.as_ref(),
-        app.library,
+        &seen.book,
         rows,
         in_line,
     );
@@ -294,7 +300,7 @@ async fn workings(
         Ok(seen) => match &seen.outcome {
             Ok(found) => {
                 let open = query.open == "all";
-                let shown = ShowWorkings::of(seen.head(), &seen.pathway, found, app.library, open);
+                let shown = ShowWorkings::of(seen.head(), &seen.pathway, found, &seen.book, open);
                 page(&shown).map_err(IntoResponse::into_response)
             }
             Err(_) => Ok(see_other(&links::pathway(&id))),
@@ -380,7 +386,10 @@ async fn comparison(app: &App, query: Option<&str>) -> Result<compare::Compare, 
             })
         })
         .collect();
-    Ok(compare::Compare::of(&picked, app.library, choices))
+    let basis = basis(app)
+        .await
+        .map_err(|error| Refusal::from(error).into_response())?;
+    Ok(compare::Compare::of(&picked, &basis.book, choices))
 }
 
 async fn compare_page(State(app): State<App>, RawQuery(query): RawQuery) -> Result<Response, Response> {

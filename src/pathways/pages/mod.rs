@@ -29,6 +29,8 @@ pub use handlers::routes;
 #[cfg(test)]
 pub mod samples;
 #[cfg(test)]
+mod single_tests;
+#[cfg(test)]
 mod tests;
 
 use crate::core::documents::problem::Problem;

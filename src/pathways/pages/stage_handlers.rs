@@ -41,7 +41,7 @@ pub(super) async fn show(
     };
     let (value, typed) = (value_of(stage), Form::default());
     let mut shown = ShowStage::of(&Card {
-        ..card(&app, &seen, &key, &value, &typed)
+        ..card(&seen, &key, &value, &typed)
     });
     shown.notice = saved_notice(&app, &seen, query.saved).await;
     page(&shown).map_err(IntoResponse::into_response)
@@ -59,12 +59,12 @@ fn no_stage() -> Response {
     Refusal::from(PathwayError::NotFound(What::Stage)).into_response()
 }
 
-fn card<'a>(app: &'a App, seen: &'a Seen, key: &'a str, stage: &'a Value, typed: &'a Form) -> Card<'a> {
+fn card<'a>(seen: &'a Seen, key: &'a str, stage: &'a Value, typed: &'a Form) -> Card<'a> {
     Card {
         head: seen.head(),
         pathway: &seen.pathway,
         found: seen.found(),
-        book: app.library,
+        book: &seen.book,
         key,
         stage,
         typed,
@@ -113,7 +113,7 @@ pub(super) async fn begin(
     let typed = Form::default();
     let shown = ShowStage::of(&Card {
         after: after.map(|stage| stage.key.as_str()),
-        ..card(&app, &seen, &key, &value, &typed)
+        ..card(&seen, &key, &value, &typed)
     });
     page(&shown).map_err(IntoResponse::into_response)
 }
@@ -195,7 +195,7 @@ pub(super) async fn save(
                 _ => None,
             },
             after: new.then_some(after.as_str()),
-            ..card(&app, &base, &key, &shaped, &form)
+            ..card(&base, &key, &shaped, &form)
         })
     };
     if !to_save {
@@ -321,7 +321,7 @@ async fn met(
     let theirs = value_of(theirs);
     let (joined, met) = merge::join(base, &theirs, mine);
     let typed = joined_form(&now, &theirs, &joined);
-    let mut shown = ShowStage::of(&card(app, &now, key, &joined, &typed));
+    let mut shown = ShowStage::of(&card(&now, key, &joined, &typed));
     shown.why = form.text("why").to_owned();
     if met.is_empty() {
         shown.notice = Some(super::Notice {
@@ -413,7 +413,7 @@ pub(super) async fn remove(
             let shown = ShowStage::of(&Card {
                 problems: own.list(),
                 refused: true,
-                ..card(&app, &base, &key, &value, &typed)
+                ..card(&base, &key, &value, &typed)
             });
             with_status(REFUSED, &shown).map_err(IntoResponse::into_response)
         }

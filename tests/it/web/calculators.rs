@@ -58,7 +58,7 @@ async fn a_blend_takes_a_stored_pathway() {
     assert!(html.contains(&format!("href=\"{path}\"")), "{html}");
     let html = page(&app, &path).await;
     assert!(
-        html.contains("g CO<sub>2</sub>e/MJ of E10") && html.contains("net of &#34;"),
+        html.contains("g CO<sub>2</sub>e/MJ of E10") && html.contains("net of &quot;"),
         "{html}"
     );
     let gone = app
