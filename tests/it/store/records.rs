@@ -49,8 +49,9 @@ async fn every_statement_finds_its_rows_by_an_index() {
             "DELETE FROM assessment",
         ];
         for (_, _, _, step) in plan {
-            let whole =
-                step.starts_with("SCAN") && step != "SCAN CONSTANT ROW" && !sql.contains("FROM organisation");
+            // A row of constants and a list that came as a parameter are no tables.
+            let no_table = step == "SCAN CONSTANT ROW" || step.starts_with("SCAN json_each");
+            let whole = step.starts_with("SCAN") && !no_table && !sql.contains("FROM organisation");
             let all_of_one = step.ends_with("(organisation_id=?)")
                 && !goes_through_all.iter().any(|text| sql.contains(text));
             assert!(!whole && !all_of_one, "{step}\n{sql}");
