@@ -150,6 +150,12 @@ impl Browser<'_> {
             .await
     }
 
+    /// Asks with a script that answers later: it calls its last argument.
+    pub async fn ask_later(&self, script: &str) -> Value {
+        self.send("execute/async", json!({ "script": script, "args": [] }))
+            .await
+    }
+
     /// Waits until a script gives true: a form that is sent takes its time.
     pub async fn until(&self, script: &str) {
         for _ in 0..100 {

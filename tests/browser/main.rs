@@ -85,7 +85,16 @@ impl Site {
             "/factors?q=nitrate".to_owned(),
             "/factors/eu-2022-996/fert_n_an".to_owned(),
             "/materials/wheat".to_owned(),
+            "/rule-sets".to_owned(),
             "/rule-sets/eu-2018-2001".to_owned(),
+            format!("{}/defaults", self.one),
+            "/calculators".to_owned(),
+            "/calculators/alcoholometry?strength=96&strength_is=percent_vol&quantity=1000&quantity_is=litres".to_owned(),
+            "/calculators/distillation?wash_strength_percent_vol=12&product_strength_percent_mass=94&coupling_factor=0.5"
+                .to_owned(),
+            "/calculators/dehydration?feed_strength_percent_mass=80&product_strength_percent_mass=1,5".to_owned(),
+            "/calculators/fermentation?starch_kg=600&efficiency_percent=92&feedstock_kg=1000".to_owned(),
+            format!("/calculators/blend?pathway={}", self.one.rsplit('/').next().unwrap_or_default()),
             "/api".to_owned(),
             "/nowhere".to_owned(),
         ]
@@ -130,6 +139,45 @@ async fn nothing_overflows_in_light_and_dark() {
         grounds.iter().all(|(dark, ground)| *dark != (ground == light)),
         "dark is dark, light is light"
     );
+}
+
+/// What the rules of WCAG 2.2 at level AA find against a page: rule and the elements, each with its reason.
+const RULES: &str = "
+    const done = arguments[arguments.length - 1];
+    axe.run(document, { runOnly: ['wcag2a', 'wcag2aa', 'wcag21a', 'wcag21aa', 'wcag22aa'], resultTypes: ['violations'] })
+        .then(found => done(found.violations.map(v => v.id + ': ' + v.nodes.slice(0, 3)
+            .map(n => n.target.join(' ') + ' (' + n.failureSummary.replace(/\\s+/g, ' ') + ')').join('; '))),
+            error => done([String(error)]));";
+
+#[tokio::test(flavor = "multi_thread", worker_threads = 2)]
+async fn nothing_is_found_against_wcag() {
+    let file = std::env::var("AXE_CORE").expect(
+        "AXE_CORE names axe.min.js: bash tests/all browser installs it, or npm install axe-core anywhere",
+    );
+    let axe = std::fs::read_to_string(file).expect("axe-core");
+    let (site, driver) = (Site::open().await, Driver::start().await);
+    let mut found = Vec::new();
+    for (dark, width) in [(false, 1280), (true, 1280), (false, 390)] {
+        let browser = driver.open(Setup { width, dark, ..SETUP }).await;
+        // First, that something would be found: a picture without words.
+        site.goto(&browser, "/").await;
+        browser.ask(&axe).await;
+        browser
+            .ask("document.querySelector('main').append(document.createElement('img'))")
+            .await;
+        let planted = browser.ask_later(RULES).await;
+        assert!(planted.to_string().contains("image-alt"), "{planted}");
+        for path in site.pages() {
+            site.goto(&browser, &path).await;
+            browser.ask(&axe).await;
+            let broken = browser.ask_later(RULES).await;
+            for one in broken.as_array().expect("a list") {
+                found.push(format!("{path} at {width}, dark {dark}: {one}"));
+            }
+        }
+        browser.close().await;
+    }
+    assert!(found.is_empty(), "{}", found.join("\n"));
 }
 
 /// The focus, by name of the field or text of the link or button.
