@@ -20,7 +20,9 @@ fn sent(page: &Calculator) -> Asked {
     )
 }
 
-const PAGES: [(&str, fn(&Asked) -> Calculator); 4] = [
+type MakePage = fn(&Asked) -> Calculator;
+
+const PAGES: [(&str, MakePage); 4] = [
     ("alcoholometry", alcoholometry::page),
     ("distillation", distillation::page),
     ("dehydration", dehydration::page),
