@@ -84,6 +84,13 @@ impl Asked {
         self.figure(name, wrong)
     }
 
+    /// The same with a text where nothing is said.
+    #[must_use]
+    pub fn or(mut self, name: &str, text: &str) -> Asked {
+        self.0.entry(name.to_owned()).or_insert_with(|| text.to_owned());
+        self
+    }
+
     /// The same with what a form begins with, where nothing is said.
     #[must_use]
     pub fn filled(mut self, groups: &[Group]) -> Asked {
@@ -338,7 +345,9 @@ impl Calculator {
         asked: &Asked,
     ) -> Calculator {
         for field in groups.iter_mut().flat_map(|group| &mut group.fields) {
-            if !asked.is_empty() {
+            // A choice that the address does not name is the one the form begins with.
+            let unsaid = !field.choices.is_empty() && !asked.has(field.name);
+            if !asked.is_empty() && !unsaid {
                 asked.text(field.name).clone_into(&mut field.text);
             }
             // A word that the list does not know is shown as such: nothing else is chosen silently.

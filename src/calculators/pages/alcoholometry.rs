@@ -53,12 +53,12 @@ fn answer(asked: &Asked) -> Result<Answer, Vec<Wrong>> {
     let celsius = asked.figure("temperature_c", &mut wrong);
     let strength = strength.and_then(|figure| match asked.text("strength_is") {
         "percent_mass" => Some(Strength::PercentMass(figure)),
-        "percent_vol" => Some(Strength::PercentVol(figure)),
+        "" | "percent_vol" => Some(Strength::PercentVol(figure)),
         other => unknown("strength_is", other, &mut wrong),
     });
     let much = quantity.and_then(|figure| match asked.text("quantity_is") {
         "kg" => Some(Much::Kg(figure)),
-        "litres" => Some(Much::Litres(figure)),
+        "" | "litres" => Some(Much::Litres(figure)),
         "pure_kg" => Some(Much::PureKg(figure)),
         "pure_litres_at_20" => Some(Much::PureLitres(figure)),
         other => unknown("quantity_is", other, &mut wrong),

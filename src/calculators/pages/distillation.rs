@@ -1,7 +1,7 @@
 //! The heat of a distillation, on a page: both methods side by side.
 
 use super::{range, wrong};
-use crate::core::models::still::{Activity, FeedHeat, Pinch, Request, design, ranges};
+use crate::core::models::still::{Activity, FeedHeat, Pinch, Request, STEAM_MJ_PER_KG, design, ranges};
 use crate::core::units::rounding::{show, show_all};
 use crate::web::calculator::{Answer, Asked, Calculator, Field, Group, Sheet, Wrong};
 
@@ -109,7 +109,7 @@ fn answer(asked: &Asked) -> Result<Answer, Vec<Wrong>> {
     let found = design(&request).map_err(wrong)?;
     let column = &found.column;
     let kg_per_l = found.reboiler_mj_per_l / found.reboiler_mj_per_kg;
-    let steam = |mj_per_kg: f64| mj_per_kg * kg_per_l / crate::core::models::still::STEAM_MJ_PER_KG;
+    let steam = |mj_per_kg: f64| mj_per_kg * kg_per_l / STEAM_MJ_PER_KG;
     let enthalpy = found.enthalpy_mj_per_kg;
     let coupling = request.coupling_factor;
     let two = |name: &str, counted: f64, beside: f64, unit: &'static str| {
@@ -155,6 +155,12 @@ fn answer(asked: &Asked) -> Result<Answer, Vec<Wrong>> {
             enthalpy * coupling * kg_per_l,
             "MJ/L pure ethanol at 20 degC",
         ));
+        duties.push(two(
+            "the same as steam of 3.5 bar absolute",
+            found.external_mj_per_l / STEAM_MJ_PER_KG,
+            steam(enthalpy) * coupling,
+            "kg/L pure ethanol at 20 degC",
+        ));
     }
     let ruling = match column.minimum.ruling {
         Pinch::Feed => "The feed pinch rules the minimum reflux.",
@@ -173,10 +179,7 @@ fn answer(asked: &Asked) -> Result<Answer, Vec<Wrong>> {
                 "MJ/L of heat from outside".to_owned(),
             ),
             (
-                show(
-                    found.external_mj_per_l / crate::core::models::still::STEAM_MJ_PER_KG,
-                    2,
-                ),
+                show(found.external_mj_per_l / STEAM_MJ_PER_KG, 2),
                 "kg of steam per litre of pure ethanol".to_owned(),
             ),
         ],

@@ -41,12 +41,14 @@ pub fn page(
     book: &Book,
 ) -> Calculator {
     let groups = groups(stored, book);
-    // An address that names a pathway alone asks with everything else as the form begins.
-    let filled = if !asked.is_empty() && !asked.has("temperature_c") {
-        asked.clone().filled(&groups)
-    } else {
-        asked.clone()
-    };
+    // An address that names a pathway alone asks with everything else as the form begins; a share stands for itself.
+    let mut filled = asked.clone();
+    if !asked.is_empty() {
+        if !asked.text("ethanol_percent_vol").is_empty() {
+            filled = filled.or("blend", "");
+        }
+        filled = filled.filled(&groups);
+    }
     let mut page = Calculator::of(
         "Blend and kilometre",
         "Ethanol and petrol mix by energy: what a blend emits per MJ and per litre, and per kilometre driven on it.",

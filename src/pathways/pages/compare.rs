@@ -61,6 +61,21 @@ pub struct Column {
     pub apart: Option<String>,
 }
 
+impl Column {
+    /// What is to be said below the answer beside the required savings, in one line.
+    pub fn words(&self) -> String {
+        let mut out: Vec<String> = Vec::new();
+        out.extend(self.verdict.basis.clone());
+        if self.base {
+            out.push("base of the comparison".to_owned());
+        }
+        if self.example {
+            out.push("example".to_owned());
+        }
+        out.join("; ")
+    }
+}
+
 /// One row of a table: figures and differences against the first.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Row {
@@ -179,7 +194,7 @@ impl Compare {
                 .iter()
                 .map(|one| {
                     (
-                        super::card::spec::named(&one.setting),
+                        setting_words(&one.setting),
                         one.meaning.clone(),
                         one.values.clone(),
                     )
@@ -213,6 +228,17 @@ impl Compare {
     }
 }
 
+/// A setting as a page names it.
+fn setting_words(setting: &str) -> String {
+    match setting {
+        "gwp_set" => "Gas weights".to_owned(),
+        "comparator_g_co2e_per_mj" => "Baseline, g CO2e/MJ".to_owned(),
+        "ethanol_lhv" => "Heating value of ethanol".to_owned(),
+        "not_covered" => "Left out".to_owned(),
+        other => super::card::spec::named(other),
+    }
+}
+
 fn count_words(count: usize) -> &'static str {
     match count {
         2 => "Two",
@@ -231,8 +257,12 @@ fn reasons(apart: &[Option<String>]) -> String {
 }
 
 fn stage_row(row: &StageRow, differs: &impl Fn(usize) -> bool) -> Row {
-    let mut names: Vec<&str> = row.names.iter().flatten().map(String::as_str).collect();
-    names.dedup();
+    let mut names: Vec<&str> = Vec::new();
+    for name in row.names.iter().flatten() {
+        if !names.contains(&name.as_str()) {
+            names.push(name);
+        }
+    }
     let name = if names.is_empty() {
         row.key.clone()
     } else {
