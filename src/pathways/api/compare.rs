@@ -180,5 +180,31 @@ fn side_by_side(
             rules,
         });
     }
+    unlike(&subjects, rule_set.is_some())?;
     Ok(compare(&subjects))
+}
+
+/// Refuses figures that may not be set against each other: other gas weights, or another heating value of the fuel.
+fn unlike(subjects: &[Subject<'_>], asked: bool) -> Result<(), Refusal> {
+    let Some((first, others)) = subjects.split_first() else {
+        return Ok(());
+    };
+    let mut problems = Problems::default();
+    for (index, other) in others.iter().enumerate().filter(|_| !asked) {
+        if let Err(why) = first.rules.comparable_with(other.rules) {
+            problems.add(
+                format!("/pathways/{}", index + 1),
+                format!(
+                    "{} and {} cannot be compared: {why}.",
+                    first.rules.id, other.rules.id
+                ),
+                "Name one rule set for all in \"rule_set\", or compare pathways under one.",
+            );
+        }
+    }
+    if problems.is_empty() {
+        Ok(())
+    } else {
+        Err(Refusal::invalid(problems))
+    }
 }

@@ -92,3 +92,17 @@ async fn a_wrong_question_is_refused_with_pointers() {
     let nobody = "00000000-0000-7000-8000-000000000000";
     ask(json!({ "pathways": [nobody, chain()] }), 404).await;
 }
+
+#[tokio::test]
+async fn figures_of_unlike_gases_or_heating_values_are_not_compared() {
+    let app = TestApp::new().await;
+    let other = chain_with("/rule_set", "inventory-ar6".into());
+    let question = json!({ "pathways": [chain(), other] });
+    let refused = app.post("/api/v1/compare", &question).await.refused(422);
+    assert_eq!(pointers(&refused), ["/pathways/1"]);
+    let text = refused.to_string();
+    assert!(text.contains("gases weigh differently") && text.contains("heating value"), "{text}");
+    let mut under_one = question;
+    under_one["rule_set"] = json!("inventory-ar6");
+    assert_eq!(app.post("/api/v1/compare", &under_one).await.status, 200);
+}
