@@ -64,7 +64,12 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
         .await
         .with_context(|| format!("cannot listen on {}", config.listen))?;
     let address = listener.local_addr().context("the address is not known")?;
-    if !address.ip().is_loopback() {
+    if address.ip().is_loopback() {
+        say(
+            "Listening on this machine alone: there is no sign-in yet, so whoever uses this machine can read and change \
+             everything.",
+        );
+    } else {
         say(&format!(
             "Caution: {address} can be reached from other machines, and there is no sign-in yet: whoever reaches it \
              can read and change everything."

@@ -7,6 +7,8 @@ use super::openapi::Document;
 use super::problem::Refusal;
 use askama::Template;
 use axum::extract::Extension;
+use axum::http::HeaderMap;
+use axum::http::header::HOST;
 use axum::response::Response;
 use serde_json::Value;
 use std::collections::BTreeMap;
@@ -76,7 +78,8 @@ fn text(value: &Value, name: &str) -> String {
 
 impl ApiPage {
     /// The page of a description (OpenAPI 3.1 as JSON).
-    pub fn of(description: &Value) -> ApiPage {
+    pub fn of(description: &Value, host: Option<&str>) -> ApiPage {
+        let host = host.filter(|host| is_host(host)).unwrap_or("HOST:PORT");
         let mut groups: BTreeMap<String, Vec<Route>> = BTreeMap::new();
         let paths = description.get("paths").and_then(Value::as_object);
         for (path, item) in paths.into_iter().flatten() {
@@ -92,7 +95,7 @@ impl ApiPage {
                 groups
                     .entry(tag.to_owned())
                     .or_default()
-                    .push(route(path, method, operation));
+                    .push(route(path, method, operation, host));
             }
         }
         let frame = Frame::new("API", Section::Api, "GET /api/v1/openapi.json");
@@ -118,7 +121,7 @@ impl ApiPage {
     }
 }
 
-fn route(path: &str, method: &str, operation: &Value) -> Route {
+fn route(path: &str, method: &str, operation: &Value, host: &str) -> Route {
     let list = |name: &str| {
         operation
             .get(name)
@@ -142,7 +145,7 @@ fn route(path: &str, method: &str, operation: &Value) -> Route {
         .flatten();
     let method = method.to_uppercase();
     Route {
-        example: example(&method, path, operation, &parameters),
+        example: example(&method, path, operation, &parameters, host),
         path: path.to_owned(),
         summary: text(operation, "summary"),
         description: text(operation, "description"),
@@ -154,8 +157,8 @@ fn route(path: &str, method: &str, operation: &Value) -> Route {
     }
 }
 
-fn example(method: &str, path: &str, operation: &Value, parameters: &[Parameter]) -> String {
-    let address = format!("http://localhost:8080{}", path.replace('{', "$").replace('}', ""));
+fn example(method: &str, path: &str, operation: &Value, parameters: &[Parameter], host: &str) -> String {
+    let address = format!("http://{host}{}", path.replace('{', "$").replace('}', ""));
     let mut out = String::from("curl");
     if method != "GET" {
         out.push_str(&format!(" -X {method}"));
@@ -170,20 +173,46 @@ fn example(method: &str, path: &str, operation: &Value, parameters: &[Parameter]
         .pointer("/requestBody/content")
         .and_then(Value::as_object);
     if let Some(kind) = body.and_then(|kinds| kinds.keys().next()) {
-        let file = if kind.contains("ndjson") {
-            "pathways.ndjson"
-        } else {
-            "pathway.json"
-        };
-        out.push_str(&format!(" -H \"Content-Type: {kind}\" --data-binary @{file}"));
+        out.push_str(&format!(
+            " -H \"Content-Type: {kind}\" --data-binary {}",
+            body_of(path, kind)
+        ));
     }
     format!("{out} \"{address}\"")
 }
 
+/// The body of a sample: the shape that the route takes, with the files of the reader named in it.
+fn body_of(path: &str, kind: &str) -> &'static str {
+    if kind.contains("ndjson") {
+        "@pathways.ndjson"
+    } else if path.ends_with("/compare") {
+        "\"{\\\"pathways\\\":[$(cat one.json),$(cat other.json)]}\""
+    } else if path.contains("/rule-sets") {
+        "@rule-set.json"
+    } else if path.contains("/stages/") {
+        "@stage.json"
+    } else if path.contains("/calculators/") || path.ends_with("/blend") || path.ends_with("/per-km") {
+        "@question.json"
+    } else if path.ends_with("/reasons") {
+        "@reasons.json"
+    } else if path.ends_with("/settings") {
+        "@settings.json"
+    } else {
+        "@pathway.json"
+    }
+}
+
+/// True for a host with or without a port: nothing a shell or a page could take for more than an address.
+fn is_host(host: &str) -> bool {
+    let fits = |c: char| c.is_ascii_alphanumeric() || matches!(c, '.' | '-' | ':' | '[' | ']');
+    !host.is_empty() && host.len() <= 255 && host.chars().all(fits)
+}
+
 /// `GET /api`.
-pub async fn show(Extension(document): Extension<Document>) -> Result<Response, Refusal> {
+pub async fn show(Extension(document): Extension<Document>, headers: HeaderMap) -> Result<Response, Refusal> {
     let description: Value = serde_json::from_slice(document.bytes()).unwrap_or_default();
-    page(&ApiPage::of(&description))
+    let host = headers.get(HOST).and_then(|host| host.to_str().ok());
+    page(&ApiPage::of(&description, host))
 }
 
 #[cfg(test)]
@@ -194,7 +223,7 @@ mod tests {
     fn every_route_of_the_description_is_told() {
         let description: Value =
             serde_json::from_slice(crate::web::router::description().bytes()).expect("json");
-        let page = ApiPage::of(&description);
+        let page = ApiPage::of(&description, Some("127.0.0.1:8123"));
         let told: usize = page.groups.iter().map(|group| group.routes.len()).sum();
         let paths = description["paths"].as_object().expect("paths");
         let there: usize = paths
@@ -213,6 +242,18 @@ mod tests {
             "{}",
             put.example
         );
+        let compare = page
+            .groups
+            .iter()
+            .flat_map(|group| &group.routes)
+            .find(|route| route.path.ends_with("/compare"))
+            .expect("a comparison");
+        assert!(
+            compare.example.contains("pathways") && compare.example.contains("http://127.0.0.1:8123/api"),
+            "{}",
+            compare.example
+        );
+        assert!(!is_host("a b") && !is_host("\"; rm") && is_host("[::1]:80"));
         assert!(page.render().expect("renders").contains("openapi.json"));
     }
 }

@@ -228,6 +228,13 @@ pub struct StepRow {
     pub href: Option<String>,
 }
 
+impl StepRow {
+    /// What is done, as HTML.
+    pub fn shown(&self) -> filters::Markup {
+        filters::Markup(filters::chem_html(&self.text))
+    }
+}
+
 /// A table of results.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Sheet {

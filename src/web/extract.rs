@@ -233,8 +233,20 @@ pub async fn next_piece(
 }
 
 fn refused_size(limits: &Limits) -> Refusal {
-    Refusal::of(StatusCode::PAYLOAD_TOO_LARGE).detail(format!(
-        "The body is larger than the {} bytes this service takes.",
-        limits.body_bytes
-    ))
+    let most = megabytes(limits.body_bytes);
+    Refusal::too_large(
+        format!("The body is larger than the {most} this service takes."),
+        format!("Send less at once: at most {most} ({} bytes).", limits.body_bytes),
+    )
+}
+
+/// A size in words: MB of 1 000 000 bytes, to one decimal.
+fn megabytes(bytes: usize) -> String {
+    // Whole tenths, so that no figure is rounded up beyond the limit.
+    let tenths = bytes / 100_000;
+    match (tenths / 10, tenths % 10) {
+        (0, 0) => format!("{bytes} bytes"),
+        (whole, 0) => format!("{whole} MB"),
+        (whole, part) => format!("{whole}.{part} MB"),
+    }
 }

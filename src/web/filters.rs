@@ -51,13 +51,44 @@ pub fn worked(x: &f64, _: &dyn Values) -> Result<String> {
     Ok(worked_text(*x))
 }
 
-/// A step of the workings as text: four decimals from one on, five significant figures below.
+/// A step of the workings as text: four decimals from one on, five significant figures below, and a power of ten where
+/// the zeros could no longer be counted.
 pub fn worked_text(x: f64) -> String {
+    if x != 0.0 && x.abs() < 1e-6 {
+        let (mut head, mut power) = (x, 0_u32);
+        // What rounds to 10.000 is 1.0000 of the next power.
+        while head.abs() < 0.999_95 {
+            head *= 10.0;
+            power += 1;
+        }
+        return format!(
+            "{} × 10\u{207b}{}",
+            rounding::significant(head, 4, 3),
+            raised(power)
+        );
+    }
     if x == 0.0 || x.abs() >= 1.0 {
         rounding::show(x, 4)
     } else {
         rounding::significant(x, 5, 12)
     }
+}
+
+/// A whole number in raised digits.
+fn raised(number: u32) -> String {
+    let raise = |digit: char| match digit {
+        '0' => '⁰',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        '4' => '⁴',
+        '5' => '⁵',
+        '6' => '⁶',
+        '7' => '⁷',
+        '8' => '⁸',
+        _ => '⁹',
+    };
+    number.to_string().chars().map(raise).collect()
 }
 
 /// 12 Jul 2027.
@@ -173,5 +204,7 @@ mod tests {
         assert_eq!(worked_text(31.413_44), "31.4134");
         assert_eq!(worked_text(0.000_012_345_67), "0.000012346");
         assert_eq!(worked_text(-0.0), "0.0000");
+        assert_eq!(worked_text(5.966_852_764_774_28e-10), "5.967 × 10⁻¹⁰");
+        assert_eq!(worked_text(-9.999_9e-8), "\u{2212}1.000 × 10⁻⁷");
     }
 }

@@ -85,6 +85,21 @@ impl Refusal {
         self.header(ETAG, etag)
     }
 
+    /// The body is too large: 413, with what to do about it.
+    pub fn too_large(detail: impl Into<String>, remedy: impl Into<String>) -> Refusal {
+        let detail = detail.into();
+        let problem = Problem {
+            pointer: String::new(),
+            detail: detail.clone(),
+            remedy: remedy.into(),
+        };
+        Refusal {
+            errors: vec![problem],
+            ..Refusal::of(StatusCode::PAYLOAD_TOO_LARGE)
+        }
+        .detail(detail)
+    }
+
     /// The bytes are not JSON at all: 400.
     pub fn not_json(problems: Problems) -> Refusal {
         let detail = match problems.list() {

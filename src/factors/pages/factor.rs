@@ -57,11 +57,16 @@ impl ShowFactor {
     /// The page of a row, by its full id; none where there is no such row.
     pub fn of(book: &Book, id: &str, uses: Vec<UseRow>) -> Option<ShowFactor> {
         let (edition, row) = id.split_once('/')?;
-        let data = format!(
-            "GET /api/v1/editions/{}/factors/{}",
-            links::segment(edition),
-            links::segment(row)
-        );
+        // A published pathway is no factor: as data it stands in its edition.
+        let data = if book.factor(id).is_some() {
+            format!(
+                "GET /api/v1/factors/{}/{}",
+                links::segment(edition),
+                links::segment(row)
+            )
+        } else {
+            format!("GET /api/v1/editions/{}", links::segment(edition))
+        };
         let mut shown = match (book.factor(id), book.pathway_default(id)) {
             (Some(factor), _) => ShowFactor::of_factor(factor, weights(book), data),
             (None, Some(default)) => ShowFactor {

@@ -4,7 +4,7 @@ use super::links;
 use super::verdict::{Verdict, rounding_note};
 use crate::charts::ladder::{self, Form, Ladder};
 use crate::core::documents::{Assessment, Pathway};
-use crate::core::domain::{Book, StageKind};
+use crate::core::domain::Book;
 use crate::core::levers::compare::{Comparison, MOST, StageRow, Subject, compare};
 use crate::core::units::rounding::show;
 use crate::web::csv::{Cell, Table};
@@ -83,6 +83,13 @@ pub struct Row {
     pub name: String,
     /// Figures with the difference; the first has none.
     pub cells: Vec<(Option<f64>, Option<f64>)>,
+}
+
+impl Row {
+    /// True where neither the first pathway nor this one has such a stage: there is no difference to tell.
+    pub fn nowhere(&self, figure: &Option<f64>) -> bool {
+        figure.is_none() && self.cells.first().is_none_or(|(first, _)| first.is_none())
+    }
 }
 
 /// A pathway that is to be compared.
@@ -326,20 +333,33 @@ fn lead(comparison: &Comparison) -> String {
             ),
         )
     };
-    let makes = one.largest.as_ref().map(|largest| {
-        let kind = StageKind::from_name(&largest.kind).map_or("published default values", StageKind::words);
-        let side = if largest.difference_g_co2e_per_mj < 0.0 {
-            "less"
-        } else {
-            "more"
-        };
-        format!(
-            " {} makes most of it: {} g {side}.",
-            filters::capital(kind),
-            show(largest.difference_g_co2e_per_mj.abs(), 1)
-        )
-    });
+    let place = comparison.pathways.iter().position(|other| other == one);
+    let makes = place.and_then(|place| cause(comparison, place, one.difference_g_co2e_per_mj));
     format!("{difference}{}", makes.unwrap_or_default())
+}
+
+/// The term that makes most of a difference, in words. Terms and not stages: every pathway has every term, while a stage
+/// that stands on one side only would be told as a cause.
+fn cause(comparison: &Comparison, place: usize, difference: f64) -> Option<String> {
+    let parts = comparison
+        .terms
+        .iter()
+        .filter_map(|row| Some((row.term, *row.difference_g_co2e_per_mj.get(place)?)));
+    let (term, part) = parts
+        .filter(|(_, part)| part * difference > 0.0)
+        .max_by(|(_, a), (_, b)| a.abs().total_cmp(&b.abs()))?;
+    Some(format!(
+        " {} ({}) makes {} of it: {} g {}.",
+        filters::capital(term.words()),
+        term.name(),
+        if part.abs() * 2.0 > difference.abs() {
+            "most"
+        } else {
+            "the largest part"
+        },
+        show(part.abs(), 1),
+        if part < 0.0 { "less" } else { "more" }
+    ))
 }
 
 fn columns(picked: &[Picked], book: &Book, comparison: &Comparison, apart: &[Option<String>]) -> Vec<Column> {

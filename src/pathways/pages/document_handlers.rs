@@ -50,7 +50,9 @@ pub(super) async fn create(State(app): State<App>, Form(start): Form<Start>) -> 
             "{}?saved=1",
             links::pathway(&saved.id.to_string())
         ))),
-        Err(PathwayError::Problems(problems)) => refuse(start, rows(problems.list())),
+        Err(PathwayError::Problems(problems)) => {
+            refuse(start, fault_rows(problems.list(), super::new::field))
+        }
         Err(error) => Err(error.into()),
     }
 }

@@ -3,7 +3,7 @@
 use super::Fault;
 use crate::core::documents::pathway::{Flow, Intake, Output, Period, Stage};
 use crate::core::documents::{Pathway, pathway};
-use crate::core::domain::{Book, StageKind};
+use crate::core::domain::{Book, Material, StageKind};
 use crate::web::filters;
 use crate::web::frame::{Frame, Section};
 use askama::Template;
@@ -77,11 +77,7 @@ impl NewPathway {
         document_faults: Vec<Fault>,
         book: &Book,
     ) -> NewPathway {
-        let crops = book.materials.values().filter(|material| {
-            let kind = material.kind.as_str();
-            !matches!(material.id.as_str(), "ethanol" | "heat" | "power")
-                && (kind.contains("crop") || kind.contains("residue") || kind.contains("feedstock"))
-        });
+        let crops = book.materials.values().filter(|material| makes_ethanol(material));
         NewPathway {
             frame: Frame::new("New pathway", Section::Pathways, "POST /api/v1/pathways"),
             feedstocks: crops
@@ -98,6 +94,46 @@ impl NewPathway {
             document_faults,
         }
     }
+
+    /// What is wrong with a field of the short form.
+    pub fn wrong(&self, id: &str) -> Vec<&Fault> {
+        let about =
+            |fault: &&Fault| fault.href.as_deref().and_then(|href| href.strip_prefix('#')) == Some(id);
+        self.faults.iter().filter(about).collect()
+    }
+}
+
+/// True for what ethanol can be made of: crops, residues, intermediates and wood whose carbon, starch or sugar is
+/// known. What a works leaves behind is none, even where its carbon is known.
+fn makes_ethanol(material: &Material) -> bool {
+    matches!(
+        material.kind.as_str(),
+        "crop" | "residue" | "intermediate" | "wood"
+    ) && !matches!(
+        material.id.as_str(),
+        "thin_stillage" | "digestate" | "filter_cake" | "manure" | "animal_fat_tallow" | "waste_cooking_oil"
+    ) && [
+        "carbon_percent_dry",
+        "carbon_percent_ash_free",
+        "starch_percent_dry",
+        "sugar_percent_dry",
+    ]
+    .iter()
+    .any(|name| material.properties.contains_key(*name))
+}
+
+/// The field of the short form that a pointer into the document is about: its address and its name.
+pub fn field(pointer: &str) -> (Option<String>, String) {
+    let (id, name) = match pointer {
+        "/name" => ("name", "Name"),
+        "/feedstock" => ("feedstock", "Feedstock"),
+        "/rule_set" => ("rule_set", "Rule set"),
+        "/period" | "/period/from" => ("from", "First day"),
+        "/period/to" => ("to", "Last day"),
+        "/plant_started" => ("plant_started", "Plant started"),
+        other => return (None, other.trim_start_matches('/').to_owned()),
+    };
+    (Some(format!("#{id}")), name.to_owned())
 }
 
 impl Start {

@@ -6,7 +6,7 @@ use super::ladder::LadderView;
 use super::links;
 use super::verdict::{Checks, Verdict, percent_words, rounding_note};
 use super::{Fact, Fault, Head, Notice, RevisionRow, fault_rows};
-use crate::core::documents::assessment::Assessment;
+use crate::core::documents::assessment::{Assessment, StageResult};
 use crate::core::documents::problem::Problem;
 use crate::core::documents::{Pathway, Problems};
 use crate::core::domain::{Book, RuleSet, StageKind, Term};
@@ -67,6 +67,8 @@ pub struct PathwayResult {
     pub primary_percent: f64,
     /// The main picture.
     pub ladder: LadderView,
+    /// How many steps of the workings rest on a source that was recalled and not read.
+    pub recalled: usize,
     /// Sentences under the ladder.
     pub ladder_notes: Vec<String>,
     /// Terms of the rule.
@@ -189,8 +191,17 @@ fn facts(
         Some([one]) => format!(", so {} % is needed", percent_words(one.percent)),
         _ => String::new(),
     };
+    let stated = pathway
+        .stages
+        .iter()
+        .find_map(|stage| stage.stated.as_ref()?.plant_started);
     out.push(match pathway.plant_started {
         Some(day) => Fact::new("Plant started", format!("{}{needs}", short_day(day))),
+        // Where fuel is bought, the works of its proof decide.
+        None if let Some(day) = stated => Fact::new(
+            "Plant started",
+            format!("{}, the stated works{needs}", short_day(day)),
+        ),
         None if rules.is_some_and(|rules| rules.thresholds.is_empty()) => {
             Fact::new("Plant started", "not given; the rule set asks for no saving")
         }
@@ -240,6 +251,7 @@ impl PathwayResult {
             checks: Checks::of(found),
             estimated_percent: found.estimated_percent,
             primary_percent: found.primary_data_percent,
+            recalled: recalled(found),
             ladder_notes: ladder_notes(found, &ladder, rules, &weights),
             saving_sum: saving_sum(found, &verdict),
             term_note: rounding_note("The terms", &parts, net, 2),
@@ -294,6 +306,18 @@ fn ladder_notes(
     out
 }
 
+/// How many steps of the workings say that their source was recalled and not read.
+fn recalled(found: &Assessment) -> usize {
+    let of_stage = |stage: &StageResult| {
+        let inputs = stage.inputs.iter().flat_map(|input| &input.workings);
+        let steps = stage.workings.iter().chain(inputs);
+        steps
+            .filter(|step| step.source.contains("recalled, not read"))
+            .count()
+    };
+    found.stages.iter().map(of_stage).sum()
+}
+
 fn crop_rows(pathway: &Pathway, found: &Assessment) -> Vec<(String, String, &'static str, f64)> {
     let rows = found.carbon.rows.iter().map(|row| {
         let stage = pathway.stages.iter().find(|stage| stage.key == row.stage);
@@ -331,12 +355,29 @@ fn term_row(term: Term, pathway: &Pathway, found: &Assessment, rules: Option<&Ru
         .iter()
         .flat_map(|stage| &stage.inputs)
         .any(|input| input.term == term);
+    let is_stated = |key: &str| {
+        let of_document = pathway.stages.iter().find(|stage| stage.key == key);
+        of_document.is_some_and(|stage| stage.stated.is_some())
+    };
+    let feeds = |stated: bool| {
+        let of_kind = found
+            .stages
+            .iter()
+            .filter(|stage| is_stated(&stage.key) == stated);
+        of_kind
+            .flat_map(|stage| &stage.inputs)
+            .any(|input| input.term == term)
+    };
     let kind = if rules.is_some_and(|rules| rules.leaves_out(term)) {
         "zero by the rule".to_owned()
     } else if let Some((_, row)) = default {
         format!("default value {row}")
     } else if let Some((_, row)) = part {
         format!("own figures, and default value {row} for a part")
+    } else if used && feeds(true) && feeds(false) {
+        "own figures, and a part stated by the supplier".to_owned()
+    } else if used && feeds(true) {
+        "stated by the supplier".to_owned()
     } else if used {
         "own figures".to_owned()
     } else if deducts {

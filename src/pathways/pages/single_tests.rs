@@ -244,3 +244,40 @@ fn unlike_chains_share_their_rungs_and_unlike_rules_print_no_difference() {
     );
     assert!(!page.render().expect("renders").contains(">Difference<"));
 }
+
+#[test]
+fn a_difference_is_told_by_its_term_and_not_by_a_stage_of_one_side() {
+    let book = samples::book();
+    let wheat = samples::wheat();
+    let mut other = samples::wheat();
+    for stage in &mut other.stages {
+        // The same works under other keys: every stage stands on one side only.
+        stage.key.push_str("-b");
+        for intake in &mut stage.intakes {
+            intake.from.push_str("-b");
+        }
+        if stage.kind == crate::core::domain::StageKind::Cultivation {
+            stage.inputs.clear();
+        }
+    }
+    let (one, two) = (samples::assess(&wheat), samples::assess(&other));
+    let picked = [("1", &wheat, &one), ("2", &other, &two)].map(|(id, pathway, found)| compare::Picked {
+        id,
+        pathway,
+        found,
+    });
+    let page = compare::Compare::of(&picked, book, Vec::new());
+    assert!(page.lead.contains("(e_ec) makes most of it"), "{}", page.lead);
+}
+
+#[test]
+fn steps_lead_to_the_factors_they_name() {
+    let pathway = samples::wheat();
+    let found = samples::assess(&pathway);
+    let page = workings::ShowWorkings::of(samples::head(), &pathway, &found, samples::book(), true);
+    let html = page.render().expect("renders");
+    assert!(
+        html.contains("<a href=\"/factors/eu-2022-996/"),
+        "no link to a factor"
+    );
+}

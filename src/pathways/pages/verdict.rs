@@ -175,8 +175,11 @@ impl Checks {
         match (self.blocks, self.warns) {
             (0, 0) => "clear".to_owned(),
             (0, w) => format!("{w} to explain"),
-            (b, 0) => format!("{b} {}", if b == 1 { "blocks" } else { "block" }),
-            (b, w) => format!("{b} {}, {w} to explain", if b == 1 { "blocks" } else { "block" }),
+            (b, 0) => format!("{b} {}", if b == 1 { "check blocks" } else { "checks block" }),
+            (b, w) => format!(
+                "{b} {}, {w} to explain",
+                if b == 1 { "check blocks" } else { "checks block" }
+            ),
         }
     }
 }

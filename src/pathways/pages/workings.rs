@@ -8,7 +8,7 @@ use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Assessment, Finding, StageResult, Step};
 use crate::core::domain::{Book, Gas, GasVector, Term};
 use crate::web::csv::{Cell, Table};
-use crate::web::filters;
+use crate::web::filters::{self, Markup};
 use crate::web::frame::{Frame, Section};
 use askama::Template;
 
@@ -47,6 +47,8 @@ pub struct StepRow {
     pub number: String,
     /// What is done.
     pub text: String,
+    /// The same for the page: every factor that it names leads to its page.
+    pub shown: Markup,
     /// The result; none where the step is a question.
     pub value: Option<f64>,
     /// Unit of the result.
@@ -55,6 +57,13 @@ pub struct StepRow {
     pub source: String,
     /// Where the figure is worked out, on this page.
     pub href: Option<String>,
+}
+
+impl StepRow {
+    /// What is done, as HTML with links.
+    pub fn shown(&self) -> &Markup {
+        &self.shown
+    }
 }
 
 /// The workings of one stage.
@@ -127,7 +136,7 @@ impl ShowWorkings {
             .stages
             .iter()
             .enumerate()
-            .map(|(index, stage)| StageWork::of(&head, pathway, found, stage, index + 2))
+            .map(|(index, stage)| StageWork::of(&head, pathway, found, stage, index + 2, book))
             .collect();
         let sums: Vec<f64> = stages.iter().map(|stage| stage.g).collect();
         ShowWorkings {
@@ -232,6 +241,7 @@ fn net_steps(
         .map(|stage| StepRow {
             number: String::new(),
             text: stage.name.clone(),
+            shown: Markup(filters::chem_html(&stage.name)),
             value: Some(stage.g),
             unit: unit.clone(),
             source: String::new(),
@@ -240,6 +250,7 @@ fn net_steps(
         .collect();
     let plain = |text: String, value: Option<f64>, unit: &str, source: &str| StepRow {
         number: String::new(),
+        shown: Markup(filters::chem_html(&text)),
         text,
         value,
         unit: unit.to_owned(),
@@ -275,12 +286,37 @@ fn number(steps: &mut [StepRow], prefix: &str) {
     }
 }
 
-fn step_rows(steps: &[Step], prefix: &str) -> Vec<StepRow> {
+/// A text as HTML in which every factor of the book that it names is a link.
+fn linked(text: &str, book: &Book) -> Markup {
+    let mut out = String::new();
+    let mut plain = String::new();
+    for word in text.split_inclusive(char::is_whitespace) {
+        let id = word.trim_matches(|c: char| !c.is_ascii_alphanumeric());
+        let known = id.contains('/') && (book.factor(id).is_some() || book.pathway_default(id).is_some());
+        match word.split_once(id).filter(|_| known) {
+            Some((before, after)) => {
+                plain.push_str(before);
+                out.push_str(&filters::chem_html(&std::mem::replace(
+                    &mut plain,
+                    after.to_owned(),
+                )));
+                let (href, words) = (filters::chem_html(&links::factor(id)), filters::chem_html(id));
+                out.push_str(&format!("<a href=\"{href}\">{words}</a>"));
+            }
+            None => plain.push_str(word),
+        }
+    }
+    out.push_str(&filters::chem_html(&plain));
+    Markup(out)
+}
+
+fn step_rows(steps: &[Step], prefix: &str, book: &Book) -> Vec<StepRow> {
     let mut out: Vec<StepRow> = steps
         .iter()
         .map(|step| StepRow {
             number: String::new(),
             text: step.text.clone(),
+            shown: linked(&step.text, book),
             value: Some(step.value),
             unit: step.unit.clone(),
             source: step.source.clone(),
@@ -306,6 +342,7 @@ impl StageWork {
         found: &Assessment,
         stage: &StageResult,
         place: usize,
+        book: &Book,
     ) -> StageWork {
         use crate::core::units::rounding::significant;
         let input_keys: Vec<&str> = stage.inputs.iter().map(|input| input.key.as_str()).collect();
@@ -342,7 +379,7 @@ impl StageWork {
                     (product.name.clone(), measure, product.share * 100.0)
                 })
                 .collect(),
-            steps: step_rows(&stage.workings, &format!("{place}.0")),
+            steps: step_rows(&stage.workings, &format!("{place}.0"), book),
             findings: said(None),
             inputs: stage
                 .inputs
@@ -362,7 +399,7 @@ impl StageWork {
                         g: input.g_co2e_per_mj,
                         replaced: input.replaced.clone(),
                         recipe: recipe(&input.recipe_gases_kg),
-                        steps: step_rows(&input.workings, &number),
+                        steps: step_rows(&input.workings, &number, book),
                         findings: said(Some(&input.key)),
                         number,
                     }
