@@ -25,6 +25,13 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
         let app = open(&folder).await?;
+        // The demonstration says what it is in words of its own; a folder of one's own data deserves this line.
+        if config.listen.ip().is_loopback() {
+            say(
+                "Only this machine can reach it: there is no sign-in yet, so whoever uses this machine can read and \
+                 change everything.",
+            );
+        }
         serve(app, config).await
     })
 }
@@ -64,12 +71,7 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
         .await
         .with_context(|| format!("cannot listen on {}", config.listen))?;
     let address = listener.local_addr().context("the address is not known")?;
-    if address.ip().is_loopback() {
-        say(
-            "Listening on this machine alone: there is no sign-in yet, so whoever uses this machine can read and change \
-             everything.",
-        );
-    } else {
+    if !address.ip().is_loopback() {
         say(&format!(
             "Caution: {address} can be reached from other machines, and there is no sign-in yet: whoever reaches it \
              can read and change everything."

@@ -96,6 +96,7 @@ async fn serve_keeps_its_data_over_a_stop() {
         .unwrap();
     let (code, rest, log) = running.stop("-TERM");
     assert_eq!((code, rest.as_str()), (Some(0), ""), "{log}");
+    assert!(log.contains("there is no sign-in yet"), "{log}");
     assert!(
         !data.join("wheelwort.db-wal").exists(),
         "an orderly end leaves one file"

@@ -106,11 +106,22 @@ async fn a_pathway_begins_with_a_short_form_or_with_a_document() {
     let answer = send(&app, &short).await;
     assert_eq!(answer.status, 422);
     assert!(answer.text().contains("The last day is no day of the calendar."));
+    assert!(answer.text().contains("id=\"to-err\""), "said at its field too");
+    assert!(
+        answer.text().contains("There is no such feedstock."),
+        "no feedstock is chosen for anybody"
+    );
     let mut short = Form::find(&answer.text(), "/pathways");
     assert_eq!(
         (short.get("name"), short.get("to")),
         ("Own <wheat>", "no day"),
         "kept as typed"
+    );
+    short.set("feedstock", "wheat").set("to", "2020-06-30");
+    let backwards = send(&app, &short).await.text();
+    assert!(
+        backwards.contains("<a href=\"#to\">Last day</a>") && !backwards.contains("/period/to"),
+        "{backwards}"
     );
     short.set("to", "2027-06-30");
     let html = follow(&app, &short).await;
