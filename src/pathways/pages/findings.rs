@@ -4,7 +4,7 @@ use super::stage::{Entry, FieldView};
 use super::verdict::{severity_class, severity_words};
 use super::{Head, links};
 use crate::core::documents::Pathway;
-use crate::core::documents::assessment::Finding;
+use crate::core::documents::assessment::{Finding, Severity};
 use serde_json::Value;
 
 /// One finding.
@@ -26,6 +26,12 @@ pub struct FindingRow {
     pub href: Option<String>,
     /// The words of the link.
     pub place: String,
+    /// Key of the stage; empty for the whole pathway.
+    pub stage: String,
+    /// Field of the finding.
+    pub field: String,
+    /// True if a written reason answers it.
+    pub takes_reason: bool,
 }
 
 impl FindingRow {
@@ -52,6 +58,9 @@ impl FindingRow {
             reason: finding.reason.clone().unwrap_or_default(),
             href,
             place,
+            stage: finding.stage.clone(),
+            field: finding.field.clone(),
+            takes_reason: finding.severity == Severity::Warn && head.revision > 0,
         }
     }
 }

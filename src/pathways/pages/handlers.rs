@@ -8,11 +8,14 @@ use super::{
     factor_handlers, links, notices, stage_handlers,
 };
 use crate::app::{App, SharedBook};
+use crate::core::checks::reasons::Reason;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;
 use crate::core::documents::{Assessment, Pathway};
 use crate::core::domain::rule_set::BiogenicCo2;
-use crate::pathways::{self, Expected, Line, PathwayError, Question, Revision, Sort, Stored, What};
+use crate::pathways::{
+    self, Expected, Line, PathwayError, Question, ReasonsDocument, Revision, Sort, Stored, What,
+};
 use crate::rules::basis;
 use crate::web::Refusal;
 use crate::web::extract::{Form, Path, Query};
@@ -39,6 +42,7 @@ pub fn routes() -> Router<App> {
         .route("/pathways/{id}", get(show))
         .route("/pathways/{id}/workings", get(workings))
         .route("/pathways/{id}/archive", post(archive))
+        .route("/pathways/{id}/reasons", post(reason))
         .route(
             "/pathways/{id}/defaults",
             get(defaults_handlers::show).post(defaults_handlers::choose),
@@ -330,6 +334,49 @@ async fn archive(
     };
     match done {
         Ok(()) => Ok(see_other(&links::pathway(&id))),
+        Err(error) => Err(refused(&app, &id, error).await),
+    }
+}
+
+#[derive(Deserialize)]
+struct ReasonForm {
+    id: String,
+    #[serde(default)]
+    stage: String,
+    #[serde(default)]
+    field: String,
+    #[serde(default)]
+    text: String,
+}
+
+/// Keeps the written reason for one warning, in place of an earlier one; an empty text takes it out.
+async fn reason(
+    State(app): State<App>,
+    Path(id): Path<String>,
+    Form(form): Form<ReasonForm>,
+) -> Result<Response, Response> {
+    let uuid = id_of(&app, &id).await?;
+    let kept = match pathways::reasons(&app, uuid).await {
+        Ok(kept) => kept,
+        Err(error) => return Err(refused(&app, &id, error).await),
+    };
+    let same =
+        |reason: &Reason| reason.id == form.id && reason.stage == form.stage && reason.field == form.field;
+    let mut list: Vec<Reason> = kept.reasons.into_iter().filter(|reason| !same(reason)).collect();
+    let text = form.text.trim();
+    if !text.is_empty() {
+        list.push(Reason {
+            id: form.id.clone(),
+            stage: form.stage.clone(),
+            field: form.field.clone(),
+            text: text.to_owned(),
+            who: None,
+            when: None,
+        });
+    }
+    let document = ReasonsDocument { reasons: list };
+    match pathways::put_reasons(&app, uuid, document, Expected::Hash(kept.hash)).await {
+        Ok(_) => Ok(see_other(&format!("{}#checks", links::pathway(&id)))),
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }

@@ -101,7 +101,10 @@ async fn figures_of_unlike_gases_or_heating_values_are_not_compared() {
     let refused = app.post("/api/v1/compare", &question).await.refused(422);
     assert_eq!(pointers(&refused), ["/pathways/1"]);
     let text = refused.to_string();
-    assert!(text.contains("gases weigh differently") && text.contains("heating value"), "{text}");
+    assert!(
+        text.contains("gases weigh differently") && text.contains("heating value"),
+        "{text}"
+    );
     let mut under_one = question;
     under_one["rule_set"] = json!("inventory-ar6");
     assert_eq!(app.post("/api/v1/compare", &under_one).await.status, 200);

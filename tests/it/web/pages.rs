@@ -157,6 +157,25 @@ async fn archived_pathways_leave_the_list_and_come_back() {
 }
 
 #[tokio::test]
+async fn a_warning_takes_a_written_reason() {
+    let app = TestApp::new().await;
+    let (one, _) = app.stores_chain().await;
+    let one = of_pages(&one);
+    let html = page(&app, &one).await;
+    let mut form = Form::find(&html, "/reasons");
+    form.set("text", "Asked the supplier <b>twice</b>; kept.");
+    let html = follow(&app, &form).await;
+    assert!(
+        html.contains("Reason given: Asked the supplier &#60;b&#62;twice&#60;/b&#62;; kept."),
+        "{html}"
+    );
+    let mut form = Form::find(&html, "/reasons");
+    form.set("text", " ");
+    let html = follow(&app, &form).await;
+    assert!(!html.contains("Reason given"), "{html}");
+}
+
+#[tokio::test]
 async fn an_earlier_revision_can_be_brought_back() {
     let app = TestApp::new().await;
     let (one, etag) = app.stores_chain().await;
