@@ -59,7 +59,7 @@ pub fn assess(resolved: &Resolved, workings: bool) -> Result<Assessed, Problems>
         format: FORMAT.to_owned(),
         rule_set: resolved.rules.id.clone(),
         gwp_set: resolved.gwp.id.clone(),
-        pathway_hash: hash(resolved.pathway)?,
+        pathway_hash: resolved.hash.clone(),
         pathway_name: resolved.pathway.name.clone(),
         program: PROGRAM.to_owned(),
         basis: reach.basis,

@@ -1,6 +1,7 @@
 //! From a document to a plan of numbers: units, factors, models, shares. All problems at once, each with its pointer.
 
 use super::allocation::{self, Ground, Shared};
+use super::assess::hash;
 use super::defaults;
 use super::graph::{Graph, Source, graph};
 use super::inputs;
@@ -110,6 +111,7 @@ pub fn resolve<'p>(
     }
     let mut resolved = Resolved {
         pathway,
+        hash: hash(pathway)?,
         rules,
         gwp,
         stages,

@@ -13,6 +13,8 @@ use crate::core::models::flow::Measured;
 pub struct Resolved<'p> {
     /// The document.
     pub pathway: &'p Pathway,
+    /// SHA-256 of its canonical bytes.
+    pub hash: String,
     /// The rule set in force.
     pub rules: &'p RuleSet,
     /// The gas weights in force.
