@@ -1,6 +1,7 @@
 //! Wheelwort: well-to-wheel greenhouse-gas accounting of fuel ethanol.
 
 pub mod app;
+pub mod audit_trail;
 pub mod calculators;
 pub mod charts;
 pub mod cli;
@@ -20,6 +21,7 @@ pub mod web;
 pub fn all_statements() -> Vec<&'static str> {
     [
         store::STATEMENTS.to_vec(),
+        audit_trail::statements(),
         pathways::statements(),
         rules::statements(),
     ]

@@ -6,10 +6,10 @@ use super::{
 };
 use crate::app::App;
 use crate::core::documents::Problems;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{JsonBody, NoQuery};
 use crate::web::{Refusal, blocking};
 use axum::Json;
-use axum::extract::State;
 use serde_json::Value;
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
@@ -38,7 +38,11 @@ async fn answered<T: Send + 'static>(
 #[utoipa::path(post, path = "/calculators/alcoholometry", tag = "calculators",
     request_body(content = AlcoholometryRequest, content_type = "application/json"),
     responses((status = 200, description = "The mixture.", body = AlcoholometryAnswer)))]
-async fn alcoholometry(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<AlcoholometryAnswer>, Refusal> {
+async fn alcoholometry(
+    _: Actor<CanRead>,
+    _: NoQuery,
+    JsonBody(body): JsonBody,
+) -> Result<Json<AlcoholometryAnswer>, Refusal> {
     answered(body, super::alcoholometry).await
 }
 
@@ -49,7 +53,11 @@ async fn alcoholometry(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<Alco
 #[utoipa::path(post, path = "/calculators/distillation", tag = "calculators",
     request_body(content = DistillationRequest, content_type = "application/json"),
     responses((status = 200, description = "The column.", body = DistillationAnswer)))]
-async fn distillation(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<DistillationAnswer>, Refusal> {
+async fn distillation(
+    _: Actor<CanRead>,
+    _: NoQuery,
+    JsonBody(body): JsonBody,
+) -> Result<Json<DistillationAnswer>, Refusal> {
     answered(body, super::distillation).await
 }
 
@@ -60,7 +68,11 @@ async fn distillation(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<Disti
 #[utoipa::path(post, path = "/calculators/dehydration", tag = "calculators",
     request_body(content = DehydrationRequest, content_type = "application/json"),
     responses((status = 200, description = "The sieve.", body = DehydrationAnswer)))]
-async fn dehydration(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<DehydrationAnswer>, Refusal> {
+async fn dehydration(
+    _: Actor<CanRead>,
+    _: NoQuery,
+    JsonBody(body): JsonBody,
+) -> Result<Json<DehydrationAnswer>, Refusal> {
     answered(body, super::dehydration).await
 }
 
@@ -72,7 +84,7 @@ async fn dehydration(_: NoQuery, JsonBody(body): JsonBody) -> Result<Json<Dehydr
     request_body(content = FermentationRequest, content_type = "application/json"),
     responses((status = 200, description = "The fermentation.", body = FermentationAnswer)))]
 async fn fermentation(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     _: NoQuery,
     JsonBody(body): JsonBody,
 ) -> Result<Json<FermentationAnswer>, Refusal> {

@@ -8,10 +8,11 @@ use super::{EditionDocument, EditionLine, FactorDocument, ModelDocument, models,
 use crate::app::App;
 use crate::core::domain::{Factor, GwpSet, Material};
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
 use axum::Json;
-use axum::extract::{OriginalUri, State};
+use axum::extract::OriginalUri;
 use axum::response::Response;
 use serde::Deserialize;
 use utoipa::IntoParams;
@@ -68,7 +69,7 @@ struct PageQuestion {
     responses((status = 200, description = "Editions in order of id.", body = Page<EditionLine>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn editions(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
@@ -88,7 +89,7 @@ async fn editions(
 #[utoipa::path(get, path = "/editions/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the edition.")),
     responses((status = 200, description = "The edition.", body = EditionDocument)))]
 async fn edition(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
 ) -> Result<Json<EditionDocument>, Refusal> {
@@ -106,7 +107,7 @@ async fn edition(
     responses((status = 200, description = "Factors in order of id.", body = Page<FactorDocument>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn edition_factors(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<FactorQuestion>,
@@ -122,7 +123,7 @@ async fn edition_factors(
     responses((status = 200, description = "Factors in order of id.", body = Page<FactorDocument>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn factors(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<FactorQuestion>,
 ) -> Result<Response, Refusal> {
@@ -152,7 +153,7 @@ fn found(
     params(("edition" = String, Path, description = "Id of the edition."), ("row" = String, Path, description = "Id of the row.")),
     responses((status = 200, description = "The factor.", body = FactorDocument)))]
 async fn factor(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((edition, row)): Path<(String, String)>,
     _: NoQuery,
 ) -> Result<Json<FactorDocument>, Refusal> {
@@ -175,7 +176,7 @@ async fn factor(
     responses((status = 200, description = "Materials in order of id.", body = Page<Material>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn materials(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
@@ -193,7 +194,7 @@ async fn materials(
 #[utoipa::path(get, path = "/materials/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the material.")),
     responses((status = 200, description = "The material.", body = Material)))]
 async fn material(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
 ) -> Result<Json<Material>, Refusal> {
@@ -212,6 +213,7 @@ async fn material(
     responses((status = 200, description = "Models in order of kind.", body = Page<ModelDocument>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn model_list(
+    _: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
@@ -231,7 +233,7 @@ async fn model_list(
     responses((status = 200, description = "Sets in order of id.", body = Page<GwpSet>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn gwp_sets(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
@@ -249,7 +251,7 @@ async fn gwp_sets(
 #[utoipa::path(get, path = "/gwp-sets/{id}", tag = "published data", params(("id" = String, Path, description = "Id of the set.")),
     responses((status = 200, description = "The set.", body = GwpSet)))]
 async fn gwp_set(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
 ) -> Result<Json<GwpSet>, Refusal> {

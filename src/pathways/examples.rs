@@ -3,8 +3,10 @@
 use super::save::{create_prepared, prepare};
 use super::{PathwayError, Saved, sql};
 use crate::app::App;
+use crate::audit_trail::{self, Deed};
 use crate::core::documents::{Pathway, Problem};
 use crate::core::engine::assess::hash;
+use serde_json::json;
 
 /// Stores demonstration documents; those that are there already are left as they are. All are evaluated before the
 /// first is stored.
@@ -44,12 +46,22 @@ pub async fn load_examples(app: &App, documents: Vec<Pathway>) -> Result<Vec<Sav
 /// When the database fails.
 pub async fn remove_examples(app: &App, documents: &[Pathway]) -> Result<u64, PathwayError> {
     let (who, memory) = (app.organisation, app.memory.clone());
+    let (by, now) = (app.who.clone(), app.clock.millis());
     let hashes: Vec<String> = documents.iter().map(hash).collect::<Result<_, _>>()?;
     let hashes =
         serde_json::to_string(&hashes).map_err(|e| PathwayError::defect("wrote a list of hashes", e))?;
     app.store
         .write_then(
-            move |c| Box::pin(async move { Ok(sql::remove_examples(c, who, &hashes).await?) }),
+            move |c| {
+                Box::pin(async move {
+                    let gone = sql::remove_examples(c, who, &hashes).await?;
+                    if gone > 0 {
+                        let deed = Deed::new("removed", "example", "", json!({ "pathways": gone }));
+                        audit_trail::add(c, who, &by, now, deed).await?;
+                    }
+                    Ok(gone)
+                })
+            },
             move |_| memory.forget_heads(),
         )
         .await

@@ -4,6 +4,7 @@
 use super::assess::{bare, compute};
 use super::{Expected, PathwayError, What, sql};
 use crate::app::App;
+use crate::audit_trail::{self, Deed};
 use crate::core::checks::reasons::{Applied, Reason, Stale, apply, check, wanting};
 use crate::core::documents::assessment::Finding;
 use crate::core::documents::{Assessment, Problems, canonical};
@@ -12,6 +13,7 @@ use crate::store::StoreError;
 use crate::store::memory::{Head, Kept};
 use jiff::Timestamp;
 use serde::{Deserialize, Serialize};
+use serde_json::json;
 use std::sync::Arc;
 use utoipa::ToSchema;
 use uuid::Uuid;
@@ -85,6 +87,7 @@ pub async fn put_reasons(
 ) -> Result<Reasons, PathwayError> {
     checked(&document.reasons)?;
     let (who, now, memory) = (app.organisation, app.clock.millis(), app.memory.clone());
+    let by = app.who.clone();
     let given_at = super::time(now, "reasons", "saved_at", 0)?;
     let none = written(&ReasonsDocument::default())?.1;
     let job = app.store.write_then(
@@ -115,6 +118,9 @@ pub async fn put_reasons(
                 let (text, new) = written(&document)?;
                 if new != hash {
                     sql::add_reasons(c, who, head.id, &text, &new, now).await?;
+                    let what = json!({ "revision": head.number, "hash": new, "reasons": document.reasons });
+                    audit_trail::add(c, who, &by, now, Deed::new("gave reasons", "pathway", id, what))
+                        .await?;
                 }
                 let head = Head {
                     revision: head.number,

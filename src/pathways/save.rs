@@ -4,10 +4,12 @@ use super::assess::{Made, compute, document, key, lines, make};
 use super::rows::{RowTexts, Rows};
 use super::{Expected, PathwayError, Saved, Summary, What, sql, time};
 use crate::app::App;
+use crate::audit_trail::{self, Deed};
 use crate::core::documents::pathway::Stage;
 use crate::core::documents::{Pathway, Problem, canonical};
 use crate::rules::basis;
 use crate::store::memory::{Head, Memory};
+use serde_json::json;
 use std::sync::Arc;
 use uuid::Uuid;
 
@@ -66,6 +68,17 @@ impl Prepared {
         })
     }
 
+    /// What the audit trail says of it.
+    fn deed(&self, did: &'static str, id: Uuid, revision: i64) -> Deed {
+        let what = json!({
+            "name": self.document.name,
+            "revision": revision,
+            "hash": self.hash,
+            "net_g_co2e_per_mj": self.assessment.summary.net_g_co2e_per_mj,
+        });
+        Deed::new(did, "pathway", id, what)
+    }
+
     fn head(&self, revision: i64, reasons: String) -> Head {
         Head {
             revision,
@@ -98,6 +111,7 @@ pub(super) async fn create_prepared(
     reason: Option<String>,
 ) -> Result<Saved, PathwayError> {
     let (who, id, now) = (app.organisation, app.clock.id(), app.clock.millis());
+    let by = app.who.clone();
     let saved = made.saved(id, 1, now, true)?;
     let (memory, kept) = (app.memory.clone(), made.clone());
     app.store
@@ -106,6 +120,8 @@ pub(super) async fn create_prepared(
                 Box::pin(async move {
                     let pathway = sql::add_pathway(c, who, id, &made, now).await?;
                     sql::add_revision(c, who, pathway, 1, &made, reason.as_deref(), now).await?;
+                    let deed = made.deed("created", id, 1).because(reason);
+                    audit_trail::add(c, who, &by, now, deed).await?;
                     Ok::<_, PathwayError>(())
                 })
             },
@@ -131,7 +147,7 @@ pub async fn replace(
     reason: Option<String>,
 ) -> Result<Saved, PathwayError> {
     let made = prepare(app, document).await?;
-    let (who, now) = (app.organisation, app.clock.millis());
+    let (who, now, by) = (app.organisation, app.clock.millis(), app.who.clone());
     let (memory, job, after) = (app.memory.clone(), made.clone(), made.clone());
     let (revision, at, changed, _) = app
         .store
@@ -151,6 +167,8 @@ pub async fn replace(
                     let number = head.number + 1;
                     sql::add_revision(c, who, head.id, number, &job, reason.as_deref(), now).await?;
                     sql::move_on(c, who, head.id, number, &job, now).await?;
+                    let deed = job.deed("saved", id, number).because(reason);
+                    audit_trail::add(c, who, &by, now, deed).await?;
                     Ok((number, now, true, head.reasons))
                 })
             },
@@ -180,7 +198,7 @@ pub async fn restore(app: &App, id: Uuid, expected: Expected) -> Result<(), Path
 }
 
 async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -> Result<(), PathwayError> {
-    let (who, now) = (app.organisation, app.clock.millis());
+    let (who, now, by) = (app.organisation, app.clock.millis(), app.who.clone());
     let job = app.store.write(move |c| {
         Box::pin(async move {
             let head = sql::head(c, who, id)
@@ -189,6 +207,9 @@ async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -
             expected.check(head.number, &head.hash)?;
             if head.archived_at.is_some() != archived {
                 sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
+                let did = if archived { "archived" } else { "restored" };
+                let deed = Deed::new(did, "pathway", id, json!({ "revision": head.number }));
+                audit_trail::add(c, who, &by, now, deed).await?;
             }
             Ok(())
         })

@@ -2,12 +2,13 @@
 
 use super::{basis, sql};
 use crate::app::App;
+use crate::audit_trail::{self, Deed};
 use crate::core::documents::{Problem, Problems, canonical, rule_set};
 use crate::core::domain::RuleSet;
 use crate::store::StoreError;
 use jiff::Timestamp;
 use serde::Serialize;
-use serde_json::Value;
+use serde_json::{Value, json};
 use thiserror::Error;
 use utoipa::ToSchema;
 
@@ -84,6 +85,7 @@ pub async fn add_version(app: &App, id: &str, document: &Value) -> Result<OwnVer
     let hash = canonical::hash(&bytes);
     let text = String::from_utf8(bytes).map_err(unwritable)?;
     let (who, now, memory) = (app.organisation, app.clock.millis(), app.memory.clone());
+    let by = app.who.clone();
     let (name, version, hash_too) = (rules.id.clone(), rules.version.clone(), hash.clone());
     let job = app.store.write_then(
         move |c| {
@@ -97,6 +99,8 @@ pub async fn add_version(app: &App, id: &str, document: &Value) -> Result<OwnVer
                     return Err(RuleError::TooMany);
                 }
                 sql::add_rule_set(c, who, &name, &version, &text, &hash_too, now).await?;
+                let what = json!({ "version": version, "hash": hash_too });
+                audit_trail::add(c, who, &by, now, Deed::new("added", "rule_set", &name, what)).await?;
                 // Assessments under the name rest on the version before.
                 sql::drop_assessments(c, who, &name).await?;
                 Ok((now, true))

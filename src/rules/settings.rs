@@ -2,6 +2,7 @@
 
 use super::{RuleError, basis, sql};
 use crate::app::App;
+use crate::audit_trail::{self, Deed};
 use crate::core::checks::settings::Settings;
 use crate::core::documents::reader::{Fields, Place, nearest, number_of, shape};
 use crate::core::documents::{Problem, Problems, canonical};
@@ -53,7 +54,7 @@ pub async fn put_settings(
     let standard = canonical::bytes(Settings::standard()).map_err(unwritable)?;
     let standard = canonical::hash(&standard);
     let (who, now, memory) = (app.organisation, app.clock.millis(), app.memory.clone());
-    let new = hash.clone();
+    let (new, by) = (hash.clone(), app.who.clone());
     let job = app.store.write_then(
         move |c| {
             Box::pin(async move {
@@ -63,6 +64,9 @@ pub async fn put_settings(
                 }
                 if present != new {
                     sql::add_settings(c, who, &text, &new, now).await?;
+                    let what = serde_json::json!({ "before": present, "hash": new });
+                    let deed = Deed::new("changed", "check_settings", "", what);
+                    audit_trail::add(c, who, &by, now, deed).await?;
                 }
                 Ok(())
             })

@@ -1,5 +1,6 @@
 //! HTTP in common: router, layers, refusals, conditional requests, paging, the API's description, assets, health.
 
+pub mod actor;
 pub mod answers;
 pub mod api_page;
 pub mod assets;

@@ -137,6 +137,16 @@ impl Refusal {
         Refusal::of(StatusCode::NOT_FOUND).detail(format!("There is no {what} \"{}\" here.", shown(name)))
     }
 
+    /// Whoever asks has not the right: 403.
+    pub fn not_allowed(detail: impl Into<String>) -> Refusal {
+        Refusal {
+            kind: "not-allowed",
+            title: "Not allowed",
+            ..Refusal::of(StatusCode::FORBIDDEN)
+        }
+        .detail(detail)
+    }
+
     /// The same refusal of a document that stands inside another, at this pointer.
     pub fn under(mut self, pointer: &str) -> Refusal {
         for error in &mut self.errors {
@@ -216,6 +226,11 @@ fn words(status: StatusCode) -> (&'static str, &'static str, &'static str) {
             "bad-request",
             "Bad request",
             "The request could not be understood.",
+        ),
+        StatusCode::UNAUTHORIZED => (
+            "sign-in-needed",
+            "Sign in",
+            "This needs somebody who is known here. Sign in, or send a token as `Authorization: Bearer ...`.",
         ),
         StatusCode::FORBIDDEN => (
             "refused-origin",

@@ -1,6 +1,7 @@
 //! Lays the routes of everything together: the API, its description, health, assets and the pages; answers what is
 //! nowhere; and puts the layers around it all.
 
+use super::actor::{Actor, CanWrite};
 use super::extract::Limits;
 use super::openapi::{self, Document};
 use super::problem::{Refusal, RefusalPage};
@@ -9,7 +10,7 @@ use super::{assets, health, layers};
 use crate::app::App;
 use crate::{calculators, demo, factors, pathways, rules};
 use axum::Router;
-use axum::extract::{Extension, State};
+use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
 use axum::response::Redirect;
 use axum::routing::{get, post};
@@ -84,13 +85,13 @@ pub fn pages_router() -> Router<App> {
 }
 
 /// Puts the demonstration in, marked as such.
-async fn load_example(State(app): State<App>) -> Result<Redirect, Refusal> {
+async fn load_example(Actor { app, .. }: Actor<CanWrite>) -> Result<Redirect, Refusal> {
     let saved = demo::load(&app).await?;
     Ok(Redirect::to(&format!("/?examples={}", saved.len())))
 }
 
 /// Takes the demonstration away, in one step.
-async fn remove_example(State(app): State<App>) -> Result<Redirect, Refusal> {
+async fn remove_example(Actor { app, .. }: Actor<CanWrite>) -> Result<Redirect, Refusal> {
     demo::remove(&app).await?;
     Ok(Redirect::to("/?examples=0"))
 }

@@ -12,6 +12,7 @@ pub use index::Index;
 
 use crate::app::App;
 use crate::core::models::refusal::{Figure, Refusal as Untaken};
+use crate::web::actor::{Actor, CanRead};
 use crate::web::calculator::{Asked, Calculator, Wrong};
 use crate::web::extract::Query;
 use crate::web::{Refusal, answers, blocking};
@@ -24,38 +25,41 @@ type Pairs = Query<Vec<(String, String)>>;
 /// The routes of this file. The blend stands with the pathways, which it can take its ethanol from.
 pub fn routes() -> Router<App> {
     Router::new()
-        .route("/calculators", get(|| async { answers::page(&Index::new()) }))
+        .route(
+            "/calculators",
+            get(|_: Actor<CanRead>| async { answers::page(&Index::new()) }),
+        )
         .route(
             "/calculators/alcoholometry",
-            get(|query: Pairs| shown(alcoholometry::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| shown(alcoholometry::page, query)),
         )
         .route(
             "/calculators/alcoholometry.csv",
-            get(|query: Pairs| file("alcoholometry", alcoholometry::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| file("alcoholometry", alcoholometry::page, query)),
         )
         .route(
             "/calculators/distillation",
-            get(|query: Pairs| shown(distillation::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| shown(distillation::page, query)),
         )
         .route(
             "/calculators/distillation.csv",
-            get(|query: Pairs| file("distillation", distillation::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| file("distillation", distillation::page, query)),
         )
         .route(
             "/calculators/fermentation",
-            get(|query: Pairs| shown(fermentation::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| shown(fermentation::page, query)),
         )
         .route(
             "/calculators/fermentation.csv",
-            get(|query: Pairs| file("fermentation", fermentation::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| file("fermentation", fermentation::page, query)),
         )
         .route(
             "/calculators/dehydration",
-            get(|query: Pairs| shown(dehydration::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| shown(dehydration::page, query)),
         )
         .route(
             "/calculators/dehydration.csv",
-            get(|query: Pairs| file("dehydration", dehydration::page, query)),
+            get(|_: Actor<CanRead>, query: Pairs| file("dehydration", dehydration::page, query)),
         )
 }
 

@@ -15,10 +15,10 @@ pub use rule_sets::RuleSets;
 use crate::app::App;
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::answers::{csv, page};
 use crate::web::extract::{Path, Query};
 use axum::Router;
-use axum::extract::State;
 use axum::response::Response;
 use axum::routing::get;
 
@@ -34,19 +34,19 @@ pub fn routes() -> Router<App> {
         .route("/rule-sets/{id}", get(rule_set))
 }
 
-async fn factors(State(app): State<App>, Query(asked): Query<Asked>) -> Result<Response, Refusal> {
+async fn factors(Actor { app, .. }: Actor<CanRead>, Query(asked): Query<Asked>) -> Result<Response, Refusal> {
     page(&Factors::of(app.library, asked))
 }
 
-async fn factors_csv(State(app): State<App>, Query(asked): Query<Asked>) -> Response {
+async fn factors_csv(Actor { app, .. }: Actor<CanRead>, Query(asked): Query<Asked>) -> Response {
     csv("factors", &Factors::table(app.library, &asked))
 }
 
-async fn memory() -> Result<Response, Refusal> {
+async fn memory(_: Actor<CanRead>) -> Result<Response, Refusal> {
     page(&Memory::of(crate::library::figures_from_memory()))
 }
 
-async fn material(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {
+async fn material(Actor { app, .. }: Actor<CanRead>, Path(id): Path<String>) -> Result<Response, Refusal> {
     let material = app
         .library
         .materials
@@ -55,19 +55,19 @@ async fn material(State(app): State<App>, Path(id): Path<String>) -> Result<Resp
     page(&Published::material(material))
 }
 
-async fn rule_sets(State(app): State<App>) -> Result<Response, Refusal> {
+async fn rule_sets(Actor { app, .. }: Actor<CanRead>) -> Result<Response, Refusal> {
     let basis = basis(&app).await?;
     page(&RuleSets::of(&basis.book, crate::library::limits_elsewhere()))
 }
 
-async fn rule_sets_csv(State(app): State<App>) -> Response {
+async fn rule_sets_csv(Actor { app, .. }: Actor<CanRead>) -> Response {
     csv(
         "limits-elsewhere",
         &RuleSets::of(app.library, crate::library::limits_elsewhere()).table(),
     )
 }
 
-async fn rule_set(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Refusal> {
+async fn rule_set(Actor { app, .. }: Actor<CanRead>, Path(id): Path<String>) -> Result<Response, Refusal> {
     let basis = basis(&app).await?;
     let rules = basis
         .book

@@ -10,11 +10,12 @@ use super::stored::known_rule_set;
 use crate::app::{App, Basis};
 use crate::core::documents::{Assessment, json};
 use crate::rules::basis;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{Limits, Query, is_of_type, next_piece};
 use crate::web::problem::ProblemDocument;
 use crate::web::{Refusal, blocking};
 use axum::body::{Body, BodyDataStream, Bytes};
-use axum::extract::{Request, State};
+use axum::extract::Request;
 use axum::http::StatusCode;
 use axum::http::header::CONTENT_TYPE;
 use axum::response::{IntoResponse, Response};
@@ -66,7 +67,7 @@ struct BatchLine {
     request_body(content = String, content_type = "application/x-ndjson", description = "A pathway document on each line."),
     responses((status = 200, description = "A `BatchLine` on each line.", body = String, content_type = "application/x-ndjson")))]
 async fn evaluate_batch(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Query(ask): Query<RuleSetQuestion>,
     request: Request,
 ) -> Result<Response, Refusal> {

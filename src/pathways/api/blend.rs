@@ -9,10 +9,10 @@ use crate::core::documents::blend::{
 };
 use crate::core::documents::reader::{Place, text_of};
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{JsonBody, NoQuery};
 use crate::web::problem::ProblemDocument;
 use axum::Json;
-use axum::extract::State;
 use serde::Serialize;
 use serde_json::{Map, Value, json};
 use utoipa::ToSchema;
@@ -99,7 +99,7 @@ struct PerKmAnswer {
     responses((status = 200, description = "The blend.", body = Blend),
         (status = 404, description = "The pathway is not there.", body = ProblemDocument, content_type = "application/problem+json")))]
 async fn blend_fuels(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     _: NoQuery,
     JsonBody(body): JsonBody,
 ) -> Result<Json<Blend>, Refusal> {
@@ -115,7 +115,7 @@ async fn blend_fuels(
     responses((status = 200, description = "The kilometre.", body = PerKmAnswer),
         (status = 404, description = "The pathway is not there.", body = ProblemDocument, content_type = "application/problem+json")))]
 async fn per_kilometre(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     _: NoQuery,
     JsonBody(body): JsonBody,
 ) -> Result<Json<PerKmAnswer>, Refusal> {

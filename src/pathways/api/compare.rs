@@ -9,10 +9,10 @@ use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::evaluate::Options;
 use crate::core::levers::compare::{Comparison, LEAST, MOST, Subject, compare};
 use crate::rules::basis;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{JsonBody, NoQuery};
 use crate::web::{Refusal, blocking};
 use axum::Json;
-use axum::extract::State;
 use axum::http::StatusCode;
 use serde::Serialize;
 use serde_json::Value;
@@ -62,7 +62,7 @@ enum Chosen {
         (status = 404, description = "A pathway is not there.", body = crate::web::problem::ProblemDocument,
             content_type = "application/problem+json")))]
 async fn compare_pathways(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     _: NoQuery,
     JsonBody(body): JsonBody,
 ) -> Result<Json<Comparison>, Refusal> {

@@ -12,9 +12,9 @@ use crate::app::App;
 use crate::core::levers::defaults::DefaultsTable;
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{Path, Query};
 use axum::Json;
-use axum::extract::State;
 use axum::response::{IntoResponse, Response};
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
@@ -35,7 +35,7 @@ pub(super) fn routes() -> OpenApiRouter<App> {
         (status = 422, description = "The document does not hold under that rule set, or not without its defaults: `errors` names everything.",
             body = crate::web::problem::ProblemDocument, content_type = "application/problem+json")))]
 async fn read_defaults(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     Query(ask): Query<RuleSetQuestion>,
 ) -> Result<Response, Refusal> {

@@ -8,9 +8,9 @@ use super::stored::known_rule_set;
 use crate::app::{App, Basis};
 use crate::core::documents::{Assessment, Pathway, canonical};
 use crate::rules::basis;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{JsonBody, Query};
 use crate::web::{Refusal, blocking};
-use axum::extract::State;
 use axum::http::StatusCode;
 use axum::http::header::CONTENT_TYPE;
 use axum::response::{IntoResponse, Response};
@@ -41,7 +41,7 @@ pub(super) struct RuleSetQuestion {
     request_body(content = Pathway, content_type = "application/json"),
     responses((status = 200, description = "The assessment.", body = Assessment)))]
 async fn evaluate(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Query(ask): Query<RuleSetQuestion>,
     JsonBody(body): JsonBody,
 ) -> Result<Response, Refusal> {

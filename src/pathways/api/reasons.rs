@@ -11,10 +11,10 @@ use crate::core::checks::reasons::Reason;
 use crate::core::documents::Problems;
 use crate::core::documents::reader::{Place, object, whole};
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfMatch, etag};
 use crate::web::extract::{JsonBody, NoQuery, Path};
 use axum::Json;
-use axum::extract::State;
 use axum::http::header::ETAG;
 use axum::response::{IntoResponse, Response};
 use serde_json::Value;
@@ -34,7 +34,7 @@ pub(super) fn routes() -> OpenApiRouter<App> {
     responses((status = 200, description = "The reasons.", body = Reasons,
         headers(("ETag" = String, description = "The list of reasons.")))))]
 async fn read_reasons(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
 ) -> Result<Response, Refusal> {
@@ -51,7 +51,7 @@ async fn read_reasons(
     request_body(content = ReasonsDocument, content_type = "application/json"),
     responses((status = 200, description = "Saved.", body = Reasons, headers(("ETag" = String, description = "The list of reasons.")))))]
 async fn replace_reasons(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     _: NoQuery,
     if_match: IfMatch,

@@ -10,11 +10,12 @@ use super::{id_of, number_of};
 use crate::app::App;
 use crate::core::documents::pathway::Pathway;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::conditional::IfNoneMatch;
 use crate::web::extract::{NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
 use axum::Json;
-use axum::extract::{OriginalUri, State};
+use axum::extract::OriginalUri;
 use axum::response::Response;
 use serde::Serialize;
 use utoipa::ToSchema;
@@ -48,7 +49,7 @@ struct Changes {
     responses((status = 200, description = "A page of revisions.", body = Page<Revision>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn list_revisions(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
@@ -83,7 +84,7 @@ async fn list_revisions(
             headers(("ETag" = String, description = "The revision."), ("Wheelwort-Revision" = i64, description = "Its number."))),
         (status = 304, description = "You have it.")))]
 async fn read_revision(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, number)): Path<(String, String)>,
     _: NoQuery,
     seen: IfNoneMatch,
@@ -103,7 +104,7 @@ async fn read_revision(
         ("number" = i64, Path, minimum = 1, description = "Number of the revision.")),
     responses((status = 200, description = "Every difference.", body = Changes)))]
 async fn read_changes(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, number)): Path<(String, String)>,
     _: NoQuery,
 ) -> Result<Json<Changes>, Refusal> {

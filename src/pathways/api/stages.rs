@@ -10,9 +10,9 @@ use crate::app::App;
 use crate::core::documents::canonical;
 use crate::core::documents::pathway::Stage;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfMatch, IfNoneMatch};
 use crate::web::extract::{JsonBody, NoQuery, Path, Query};
-use axum::extract::State;
 use axum::http::StatusCode;
 use axum::response::Response;
 use utoipa_axum::router::OpenApiRouter;
@@ -35,7 +35,7 @@ pub(super) fn routes() -> OpenApiRouter<App> {
     responses((status = 200, description = "The stage.", body = Stage, headers(("ETag" = String, description = "The revision."))),
         (status = 304, description = "You have it.")))]
 async fn read_stage(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, key)): Path<(String, String)>,
     _: NoQuery,
     seen: IfNoneMatch,
@@ -57,7 +57,7 @@ async fn read_stage(
     request_body(content = Stage, content_type = "application/json"),
     responses((status = 200, description = "Saved.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn put_one(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
     Query(reason): Query<Reason>,
     if_match: IfMatch,
@@ -81,7 +81,7 @@ async fn put_one(
         ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`."), Reason),
     responses((status = 200, description = "Saved without it.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn delete_one(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
     Query(reason): Query<Reason>,
     if_match: IfMatch,

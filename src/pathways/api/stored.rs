@@ -14,10 +14,11 @@ use crate::core::documents::pathway::Pathway;
 use crate::core::domain::Book;
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfMatch, IfNoneMatch};
 use crate::web::extract::{JsonBody, NoQuery, Path, Query};
 use crate::web::paging::{self, Page};
-use axum::extract::{OriginalUri, State};
+use axum::extract::OriginalUri;
 use axum::http::{HeaderValue, StatusCode};
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
@@ -72,7 +73,7 @@ struct ListQuestion {
     responses((status = 200, description = "A page of pathways.", body = Page<Line>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn list_pathways(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<ListQuestion>,
 ) -> Result<Response, Refusal> {
@@ -122,7 +123,7 @@ async fn list_pathways(
     responses((status = 201, description = "Stored.", body = Saved,
         headers(("Location" = String, description = "Address of the pathway."), ("ETag" = String, description = "Its revision.")))))]
 async fn create_pathway(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Query(reason): Query<Reason>,
     JsonBody(body): JsonBody,
 ) -> Result<Response, Refusal> {
@@ -143,7 +144,7 @@ async fn create_pathway(
             headers(("ETag" = String, description = "The revision."), ("Wheelwort-Revision" = i64, description = "Its number."))),
         (status = 304, description = "You have it.")))]
 async fn read_pathway(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
     seen: IfNoneMatch,
@@ -171,7 +172,7 @@ pub(super) fn numbered(mut response: Response, revision: i64) -> Response {
     request_body(content = Pathway, content_type = "application/json"),
     responses((status = 200, description = "Saved.", body = Saved, headers(("ETag" = String, description = "The revision.")))))]
 async fn replace_pathway(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Query(reason): Query<Reason>,
     if_match: IfMatch,
@@ -195,7 +196,7 @@ async fn replace_pathway(
         ("If-Match" = String, Header, pattern = r#"^(\*|"[0-9a-f]{64}")$"#, description = "The `ETag` of the revision you read, or `*`.")),
     responses((status = 204, description = "Archived.")))]
 async fn archive_pathway(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     _: NoQuery,
     if_match: IfMatch,
@@ -245,7 +246,7 @@ pub(super) fn known_rule_set(book: &Book, asked: Option<&str>) -> Result<(), Ref
         (status = 422, description = "The document does not hold under that rule set: `errors` names everything.",
             body = crate::web::problem::ProblemDocument, content_type = "application/problem+json")))]
 async fn read_assessment(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     Query(ask): Query<AssessmentQuestion>,
     seen: IfNoneMatch,
@@ -278,7 +279,7 @@ pub(super) struct PageQuestion {
     responses((status = 200, description = "The places, by name of the pathway.", body = Page<FactorUse>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn factor_uses(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((edition, row)): Path<(String, String)>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,

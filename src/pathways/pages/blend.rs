@@ -13,9 +13,9 @@ use crate::core::engine::per_km::per_km;
 use crate::core::units::rounding::show;
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::calculator::{Answer, Asked, Calculator, Field, Group, Sheet, Wrong};
 use crate::web::extract::Query;
-use axum::extract::State;
 use axum::response::Response;
 use uuid::Uuid;
 
@@ -412,7 +412,7 @@ async fn worked(app: &App, pairs: Vec<(String, String)>) -> Result<Calculator, R
 
 /// The page.
 pub(super) async fn show_blend(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Query(pairs): Query<Vec<(String, String)>>,
 ) -> Result<Response, Refusal> {
     worked(&app, pairs).await?.answer()
@@ -420,7 +420,7 @@ pub(super) async fn show_blend(
 
 /// The results as CSV.
 pub(super) async fn file(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Query(pairs): Query<Vec<(String, String)>>,
 ) -> Result<Response, Refusal> {
     worked(&app, pairs).await?.file("blend")

@@ -6,9 +6,9 @@ use super::{Fault, fault_rows, links};
 use crate::app::App;
 use crate::core::levers::defaults::{Answer, DefaultsTable, with_defaults};
 use crate::pathways::{self, Expected, PathwayError};
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::answers::{page, see_other, with_status};
 use crate::web::extract::{Form, Path};
-use axum::extract::State;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
 
@@ -38,7 +38,10 @@ fn shown(seen: &Seen, table: &DefaultsTable) -> ShowDefaults {
 }
 
 /// The page.
-pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Response> {
+pub(super) async fn show(
+    Actor { app, .. }: Actor<CanRead>,
+    Path(id): Path<String>,
+) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
     let table = table_of(&app, &id, &seen).await?;
     page(&shown(&seen, &table)).map_err(IntoResponse::into_response)
@@ -57,7 +60,7 @@ pub(super) struct Chosen {
 /// Puts the defaults of a combination into the document that was on the page, as a new revision. A combination that is not
 /// lawful is refused, and so is one chosen on a revision that is no longer current: then the page shows the current one.
 pub(super) async fn choose(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Form(chosen): Form<Chosen>,
 ) -> Result<Response, Response> {

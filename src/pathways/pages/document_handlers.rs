@@ -13,15 +13,15 @@ use crate::core::documents::problem::{Problem, Problems};
 use crate::pathways::{self, Expected, PathwayError, What};
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::extract::{Form, Path, Query};
 use crate::web::frame::{Frame, Section};
 use answers::{csv, file, page, see_other, with_status};
-use axum::extract::State;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
 
 /// The empty form.
-pub(super) async fn new(State(app): State<App>) -> Result<Response, Refusal> {
+pub(super) async fn new(Actor { app, .. }: Actor<CanWrite>) -> Result<Response, Refusal> {
     let basis = basis(&app).await?;
     page(&NewPathway::of(
         Start::default(),
@@ -33,7 +33,10 @@ pub(super) async fn new(State(app): State<App>) -> Result<Response, Refusal> {
 }
 
 /// A short chain from a few facts.
-pub(super) async fn create(State(app): State<App>, Form(start): Form<Start>) -> Result<Response, Refusal> {
+pub(super) async fn create(
+    Actor { app, .. }: Actor<CanWrite>,
+    Form(start): Form<Start>,
+) -> Result<Response, Refusal> {
     let basis = basis(&app).await?;
     let refuse = |start: Start, faults: Vec<Fault>| {
         with_status(
@@ -72,7 +75,10 @@ pub(super) struct Typed {
 }
 
 /// A document becomes a pathway.
-pub(super) async fn bring_in(State(app): State<App>, Form(typed): Form<Typed>) -> Result<Response, Refusal> {
+pub(super) async fn bring_in(
+    Actor { app, .. }: Actor<CanWrite>,
+    Form(typed): Form<Typed>,
+) -> Result<Response, Refusal> {
     let basis = basis(&app).await?;
     let refuse = |document: String, problems: &[Problem]| {
         with_status(
@@ -137,7 +143,10 @@ fn pretty(pathway: &Pathway) -> String {
 }
 
 /// The document as stored.
-pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Result<Response, Response> {
+pub(super) async fn show(
+    Actor { app, .. }: Actor<CanRead>,
+    Path(id): Path<String>,
+) -> Result<Response, Response> {
     let seen = seen(&app, &id, None).await?;
     page(&document_page(
         &seen,
@@ -151,7 +160,7 @@ pub(super) async fn show(State(app): State<App>, Path(id): Path<String>) -> Resu
 
 /// Another document in its place.
 pub(super) async fn replace(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Form(typed): Form<Typed>,
 ) -> Result<Response, Response> {
@@ -189,7 +198,7 @@ pub(super) async fn replace(
 
 /// What a revision changed.
 pub(super) async fn revision(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, number)): Path<(String, i64)>,
 ) -> Result<Response, Response> {
     let one = seen(&app, &id, Some(number)).await?;
@@ -224,7 +233,7 @@ pub(super) struct Restore {
 
 /// The document of an earlier revision becomes the next one.
 pub(super) async fn restore(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path((id, number)): Path<(String, i64)>,
     Form(form): Form<Restore>,
 ) -> Result<Response, Response> {
@@ -257,7 +266,7 @@ pub(super) struct Which {
 
 /// Documents and tables as files.
 pub(super) async fn download(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, name)): Path<(String, String)>,
     Query(which): Query<Which>,
 ) -> Result<Response, Response> {

@@ -1,17 +1,16 @@
 //! The page of one factor with the pathways that use it. It stands here because factors know nothing of pathways.
 
 use super::{answers, links};
-use crate::app::App;
 use crate::factors::{ShowFactor, UseRow};
 use crate::pathways;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::Path;
-use axum::extract::State;
 use axum::response::Response;
 
 /// One row of an edition.
 pub(super) async fn show(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((edition, row)): Path<(String, String)>,
 ) -> Result<Response, Refusal> {
     let id = format!("{edition}/{row}");

@@ -18,10 +18,11 @@ use crate::pathways::{
 };
 use crate::rules::basis;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::extract::{Form, Path, Query};
 use answers::{csv, page, see_other};
 use axum::Router;
-use axum::extract::{RawQuery, State};
+use axum::extract::RawQuery;
 use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use axum::routing::{get, post};
@@ -204,11 +205,17 @@ async fn home_view(app: &App, query: HomeQuery) -> Result<Home, Refusal> {
     Ok(home)
 }
 
-async fn home(State(app): State<App>, Query(query): Query<HomeQuery>) -> Result<Response, Refusal> {
+async fn home(
+    Actor { app, .. }: Actor<CanRead>,
+    Query(query): Query<HomeQuery>,
+) -> Result<Response, Refusal> {
     page(&home_view(&app, query).await?)
 }
 
-async fn home_csv(State(app): State<App>, Query(query): Query<HomeQuery>) -> Result<Response, Refusal> {
+async fn home_csv(
+    Actor { app, .. }: Actor<CanRead>,
+    Query(query): Query<HomeQuery>,
+) -> Result<Response, Refusal> {
     Ok(csv("pathways", &home_view(&app, query).await?.table()))
 }
 
@@ -222,7 +229,7 @@ pub(super) struct ShowQuery {
 }
 
 async fn show(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
@@ -295,7 +302,7 @@ fn revision_rows(head: &Head, rows: &[Revision]) -> Vec<RevisionRow> {
 }
 
 async fn workings(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
@@ -321,7 +328,7 @@ struct Archive {
 }
 
 async fn archive(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Form(form): Form<Archive>,
 ) -> Result<Response, Response> {
@@ -351,7 +358,7 @@ struct ReasonForm {
 
 /// Keeps the written reason for one warning, in place of an earlier one; an empty text takes it out.
 async fn reason(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Form(form): Form<ReasonForm>,
 ) -> Result<Response, Response> {
@@ -439,11 +446,17 @@ async fn comparison(app: &App, query: Option<&str>) -> Result<compare::Compare, 
     Ok(compare::Compare::of(&picked, &basis.book, choices))
 }
 
-async fn compare_page(State(app): State<App>, RawQuery(query): RawQuery) -> Result<Response, Response> {
+async fn compare_page(
+    Actor { app, .. }: Actor<CanRead>,
+    RawQuery(query): RawQuery,
+) -> Result<Response, Response> {
     page(&comparison(&app, query.as_deref()).await?).map_err(IntoResponse::into_response)
 }
 
-async fn compare_csv(State(app): State<App>, RawQuery(query): RawQuery) -> Result<Response, Response> {
+async fn compare_csv(
+    Actor { app, .. }: Actor<CanRead>,
+    RawQuery(query): RawQuery,
+) -> Result<Response, Response> {
     let found = comparison(&app, query.as_deref()).await?;
     if found.columns.is_empty() {
         return Err(Refusal::bad_request("Name two to six pathways: /compare.csv?ids=a,b").into_response());

@@ -12,9 +12,9 @@ use crate::core::documents::problem::{Problem, Problems};
 use crate::core::domain::StageKind;
 use crate::pathways::{self, Expected, PathwayError, Saved, What};
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::extract::{Form as Posted, Path, Query};
 use answers::{page, see_other, with_status};
-use axum::extract::State;
 use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
@@ -31,7 +31,7 @@ fn stage_of<'p>(pathway: &'p Pathway, key: &str) -> Option<&'p Stage> {
 
 /// The card as stored.
 pub(super) async fn show(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path((id, key)): Path<(String, String)>,
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
@@ -86,7 +86,7 @@ pub(super) struct NewStage {
 
 /// The card of a stage that is not stored yet.
 pub(super) async fn begin(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     Query(query): Query<NewStage>,
 ) -> Result<Response, Response> {
@@ -153,7 +153,7 @@ fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value
 
 /// A posted card: a button changed it, or it is to be saved.
 pub(super) async fn save(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
     Posted(pairs): Posted<Vec<(String, String)>>,
 ) -> Result<Response, Response> {
@@ -373,7 +373,7 @@ pub(super) struct Remove {
 
 /// Takes a stage out; those that took its product take what it took.
 pub(super) async fn remove(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
     Posted(form): Posted<Remove>,
 ) -> Result<Response, Response> {

@@ -14,12 +14,13 @@ use super::{OwnVersion, RuleSetVersion, add_version, basis, unpinned, versions};
 use crate::app::App;
 use crate::core::documents::{canonical, rule_set};
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfNoneMatch, etag};
 use crate::web::extract::{JsonBody, NoQuery, Path, Query};
 use crate::web::links::segment;
 use crate::web::paging::{self, Page};
 use axum::Json;
-use axum::extract::{OriginalUri, State};
+use axum::extract::OriginalUri;
 use axum::http::header::{ETAG, LOCATION};
 use axum::http::{HeaderValue, StatusCode};
 use axum::response::{IntoResponse, Response};
@@ -56,7 +57,7 @@ struct PageQuestion {
     responses((status = 200, description = "Rule sets in order of id.", body = Page<RuleSetLine>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn rule_sets(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,
 ) -> Result<Response, Refusal> {
@@ -86,7 +87,7 @@ async fn rule_sets(
             headers(("ETag" = String, description = "Hash of the bytes."))),
         (status = 304, description = "You have it.")))]
 async fn read_rule_set(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     _: NoQuery,
     seen: IfNoneMatch,
@@ -112,7 +113,7 @@ async fn read_rule_set(
         (status = 409, description = "That version is there and says something else.", body = crate::web::problem::ProblemDocument,
             content_type = "application/problem+json")))]
 async fn put_rule_set(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     _: NoQuery,
     JsonBody(body): JsonBody,
@@ -142,7 +143,7 @@ async fn put_rule_set(
     responses((status = 200, description = "A page of versions.", body = Page<RuleSetVersion>,
         headers(("Link" = String, description = "`rel=\"next\"`: the next page, if there is one.")))))]
 async fn rule_set_versions(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
     OriginalUri(uri): OriginalUri,
     Query(ask): Query<PageQuestion>,

@@ -4,9 +4,9 @@ use super::super::{InForce, put_settings, settings};
 use crate::app::App;
 use crate::core::checks::settings::Settings;
 use crate::web::Refusal;
+use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfMatch, IfNoneMatch, etag};
 use crate::web::extract::{JsonBody, NoQuery};
-use axum::extract::State;
 use axum::http::HeaderValue;
 use axum::http::header::{CONTENT_TYPE, ETAG};
 use axum::response::{IntoResponse, Response};
@@ -26,7 +26,11 @@ pub(super) fn routes() -> OpenApiRouter<App> {
     responses((status = 200, description = "The settings in force.", body = Settings,
             headers(("ETag" = String, description = "The settings."))),
         (status = 304, description = "You have them.")))]
-async fn read_settings(State(app): State<App>, _: NoQuery, seen: IfNoneMatch) -> Result<Response, Refusal> {
+async fn read_settings(
+    Actor { app, .. }: Actor<CanRead>,
+    _: NoQuery,
+    seen: IfNoneMatch,
+) -> Result<Response, Refusal> {
     let InForce { hash, bytes, .. } = settings(&app).await?;
     Ok(seen.json(&hash, bytes))
 }
@@ -39,7 +43,7 @@ async fn read_settings(State(app): State<App>, _: NoQuery, seen: IfNoneMatch) ->
     request_body(content = Settings, content_type = "application/json"),
     responses((status = 200, description = "In force.", body = Settings, headers(("ETag" = String, description = "The settings.")))))]
 async fn replace_settings(
-    State(app): State<App>,
+    Actor { app, .. }: Actor<CanWrite>,
     _: NoQuery,
     if_match: IfMatch,
     JsonBody(body): JsonBody,

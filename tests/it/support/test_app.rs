@@ -6,11 +6,14 @@ use axum::body::{Body, to_bytes};
 use axum::http::{HeaderMap, Method, Request, StatusCode};
 use serde_json::Value;
 use std::net::SocketAddr;
+use std::sync::Arc;
 use tempfile::TempDir;
 use tower::ServiceExt;
 use wheelwort::app::App;
+use wheelwort::app::who::{Right, Via, Who};
 use wheelwort::clock::Clock;
 use wheelwort::library;
+use wheelwort::web::actor::Asking;
 use wheelwort::web::{Shell, router};
 
 /// The service under test.
@@ -39,7 +42,11 @@ impl TestApp {
         let app = App::open(&folder.path().join("wheelwort.db"), clock, library::book())
             .await
             .expect("opens");
-        let router = router(app.clone(), shell);
+        let asking = Asking {
+            organisation: app.organisation,
+            who: Arc::new(preparer()),
+        };
+        let router = router(app.clone(), shell).layer(axum::Extension(asking));
         TestApp {
             app,
             router,
@@ -119,6 +126,19 @@ impl TestApp {
             std::future::pending(),
         ));
         address
+    }
+}
+
+/// Somebody signed in who may enter data, approve it and name members.
+pub fn preparer() -> Who {
+    Who {
+        person: Some(uuid::Uuid::from_u128(7)),
+        name: "I. Marsh".into(),
+        sign_in_name: "marsh".into(),
+        organisation_name: "Own organisation".into(),
+        via: Via::Session("test".into()),
+        rights: [Right::Read, Right::Write, Right::Approve, Right::Administer].into(),
+        ..Who::stranger()
     }
 }
 

@@ -1,5 +1,7 @@
 //! What every use case gets: the store, the clock, the published data, and on whose behalf records are kept.
 
+pub mod who;
+
 use crate::clock::Clock;
 use crate::core::checks::settings::Settings as CheckSettings;
 use crate::core::documents::{Assessment, Pathway, Problems};
@@ -10,6 +12,7 @@ use crate::store::{OrganisationId, Settings, Store, StoreError};
 use std::ops::Deref;
 use std::path::Path;
 use std::sync::Arc;
+use who::Who;
 
 pub use crate::core::engine::assess::PROGRAM;
 
@@ -74,8 +77,10 @@ pub struct App {
     pub clock: Clock,
     /// Published data.
     pub library: &'static Book,
-    /// Whose records these are, until people sign in.
+    /// Whose records are meant.
     pub organisation: OrganisationId,
+    /// Who asks.
+    pub who: Arc<Who>,
     /// The accounting.
     pub evaluate: Evaluate,
     /// Immutable bytes at hand.
@@ -118,6 +123,7 @@ impl App {
             clock,
             library,
             organisation,
+            who: Arc::new(Who::command()),
             evaluate,
             memory: Arc::new(Memory::default()),
         })
@@ -127,6 +133,15 @@ impl App {
     pub fn on_behalf_of(&self, organisation: OrganisationId) -> App {
         App {
             organisation,
+            ..self.clone()
+        }
+    }
+
+    /// The same program, asked by somebody on behalf of their organisation.
+    pub fn asked_by(&self, organisation: OrganisationId, who: Arc<Who>) -> App {
+        App {
+            organisation,
+            who,
             ..self.clone()
         }
     }
