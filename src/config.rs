@@ -7,11 +7,19 @@ use std::path::{Path, PathBuf};
 use std::time::Duration;
 use thiserror::Error;
 
-/// Where the program listens unless told otherwise: this machine alone, for there is no sign-in yet.
+/// Where the program listens unless told otherwise: this machine alone.
 pub const USUAL_ADDRESS: &str = "127.0.0.1:8080";
 
 /// Prefix of the names in the environment: `WHEELWORT_LISTEN` and so on.
 const PREFIX: &str = "WHEELWORT_";
+
+/// Names in the environment that make the first administrator, where nobody is there yet: who, and their password or the
+/// file that holds it. No settings: they are used once, and a password is never shown.
+pub const FIRST_ADMINISTRATOR: [&str; 3] = [
+    "WHEELWORT_ADMINISTRATOR",
+    "WHEELWORT_ADMINISTRATOR_PASSWORD_FILE",
+    "WHEELWORT_ADMINISTRATOR_PASSWORD",
+];
 
 /// Checked settings.
 #[derive(Clone, Debug, PartialEq)]
@@ -137,6 +145,8 @@ impl Given {
                         _ => return Err(wrong(&variable, &value, "give text or json")),
                     });
                 }
+                // Of the first administrator: see `cli::people`.
+                _ if FIRST_ADMINISTRATOR.contains(&variable.as_str()) => {}
                 _ => return Err(wrong(&variable, &value, "there is no such setting")),
             }
         }

@@ -12,6 +12,7 @@ pub mod demo;
 pub mod factors;
 pub mod library;
 pub mod pathways;
+pub mod people;
 pub mod rules;
 pub mod store;
 pub mod telemetry;
@@ -23,6 +24,7 @@ pub fn all_statements() -> Vec<&'static str> {
         store::STATEMENTS.to_vec(),
         audit_trail::statements(),
         pathways::statements(),
+        people::statements(),
         rules::statements(),
     ]
     .concat()

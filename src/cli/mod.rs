@@ -3,6 +3,7 @@
 
 mod demo;
 mod evaluate;
+mod people;
 mod serve;
 
 use crate::config::{ConfigError, Given};
@@ -21,6 +22,7 @@ const EXAMPLES: &str = "\
 Examples:
   wheelwort demo                            look around in invented data; nothing is kept
   wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
+  wheelwort people --help                   make accounts, reset passwords, print tokens
   wheelwort evaluate wheat.json             print the assessment of a pathway file
   wheelwort evaluate - < wheat.json         the same from standard input
 
@@ -80,6 +82,9 @@ enum Command {
     /// Print the assessment of pathway files.
     #[command(after_help = EVALUATE_EXAMPLES)]
     Evaluate(evaluate::Evaluate),
+    /// Make, list and change accounts, on the machine that holds the data.
+    #[command(after_help = people::EXAMPLES)]
+    People(people::People),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -135,6 +140,7 @@ pub fn main() -> ExitCode {
         Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
+        Command::People(command) => people::run(&command),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

@@ -3,13 +3,14 @@
 
 use super::extract::Limits;
 use super::problem::{Refusal, RefusalPage, shape};
+use super::visitor;
 use axum::Router;
 use axum::extract::{DefaultBodyLimit, Extension, Request, State};
 use axum::http::header::{
     CACHE_CONTROL, CONTENT_SECURITY_POLICY, HeaderName, REFERRER_POLICY, X_CONTENT_TYPE_OPTIONS,
 };
 use axum::http::{HeaderValue, StatusCode};
-use axum::middleware::{Next, from_fn_with_state, map_request, map_response};
+use axum::middleware::{Next, from_fn, from_fn_with_state, map_request, map_response};
 use axum::response::{IntoResponse, Response};
 use std::any::Any;
 use std::sync::Arc;
@@ -90,6 +91,7 @@ pub fn around_all<S: Clone + Send + Sync + 'static>(
             )
             .layer(CompressionLayer::new().compress_when(compressible))
             .layer(map_response(secured))
+            .layer(from_fn(visitor::fill))
             .layer(from_fn_with_state(page, shape))
             .layer(CatchPanicLayer::custom(panicked))
             .layer(CsrfLayer::new())
