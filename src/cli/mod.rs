@@ -41,6 +41,15 @@ Prints its address on standard output once it answers. Stops on SIGINT or SIGTER
 requests, finishes those that run, and closes its data.
 Exit codes: 0 stopped when asked; 1 it could not start; 2 a setting is wrong.";
 
+const SETTINGS_EXAMPLES: &str = "\
+Examples:
+  wheelwort settings                        every setting: value, who gave it, what it may be, what it means
+  wheelwort settings --config wheelwort.toml --set connections=200
+                                            the same with a file and one more word
+
+Takes what serve takes and checks it as serve does; secrets are hidden.
+Exit codes: 0 the settings hold; 2 one is wrong.";
+
 const DEMO_EXAMPLES: &str = "\
 Examples:
   wheelwort demo                            on http://127.0.0.1:8080
@@ -80,6 +89,9 @@ enum Command {
     /// Print the assessment of pathway files.
     #[command(after_help = EVALUATE_EXAMPLES)]
     Evaluate(evaluate::Evaluate),
+    /// Print the settings that `serve` would run with, and who gave each.
+    #[command(after_help = SETTINGS_EXAMPLES)]
+    Settings(Serve),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -107,10 +119,13 @@ struct Common {
     /// File of settings, in TOML.
     #[arg(long, value_name = "FILE")]
     config: Option<PathBuf>,
+    /// Any other setting by its name; may be given several times. `wheelwort settings` lists them.
+    #[arg(long, value_name = "NAME=VALUE", value_parser = name_and_value)]
+    set: Vec<(String, String)>,
 }
 
-/// The settings of a command, from all sources.
-fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Config, ConfigError> {
+/// What all sources say of the settings of a command.
+fn given(data: Option<PathBuf>, common: Common) -> Result<Given, ConfigError> {
     let file = common
         .config
         .as_deref()
@@ -120,12 +135,32 @@ fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Conf
     let variables = std::env::vars_os()
         .filter_map(|(name, value)| Some((name.into_string().ok()?, value.into_string().ok()?)));
     let environment = Given::from_environment(variables)?;
-    let line = Given {
-        data,
-        listen: common.listen,
-        ..Given::default()
-    };
-    file.overlaid(environment).overlaid(line).checked()
+    let data = data.map(|data| ("data".to_owned(), data.display().to_string()));
+    let listen = common.listen.map(|listen| ("listen".to_owned(), listen));
+    let line = Given::from_line(common.set.into_iter().chain(data).chain(listen))?;
+    Ok(file.overlaid(environment).overlaid(line))
+}
+
+/// The settings of a command, checked.
+fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Config, ConfigError> {
+    given(data, common)?.checked()
+}
+
+/// Prints what is in force and who said so, if it holds.
+fn print_settings(Serve { data, common }: Serve) -> u8 {
+    match given(data, common).and_then(|given| given.checked().map(|_| given.table())) {
+        Ok(table) => print(table.as_bytes()),
+        Err(error) => {
+            say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
+            WRONG
+        }
+    }
+}
+
+/// Reads `NAME=VALUE`.
+fn name_and_value(text: &str) -> Result<(String, String), String> {
+    let (name, value) = text.split_once('=').ok_or("give NAME=VALUE")?;
+    Ok((name.into(), value.into()))
 }
 
 /// Runs the command of the command line.
@@ -135,6 +170,7 @@ pub fn main() -> ExitCode {
         Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
+        Command::Settings(command) => print_settings(command),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

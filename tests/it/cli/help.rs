@@ -8,6 +8,7 @@ fn help_shows_examples_and_exit_codes() {
         &["--help"][..],
         &["serve", "--help"],
         &["demo", "--help"],
+        &["settings", "--help"],
         &["evaluate", "--help"],
     ] {
         let output = run(command, b"");
