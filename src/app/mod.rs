@@ -130,6 +130,20 @@ impl App {
         })
     }
 
+    /// Does the accounting of a document.
+    ///
+    /// # Errors
+    /// Every problem of the document.
+    pub fn evaluates(
+        &self,
+        pathway: &Pathway,
+        book: &Book,
+        options: Options<'_>,
+    ) -> Result<Assessment, Problems> {
+        metrics::counter!("wheelwort_evaluations_total").increment(1);
+        (self.evaluate)(pathway, book, options)
+    }
+
     /// The same program on behalf of another organisation.
     pub fn on_behalf_of(&self, organisation: OrganisationId) -> App {
         App {

@@ -3,6 +3,7 @@
 
 mod demo;
 mod evaluate;
+mod health;
 mod serve;
 
 use crate::config::{ConfigError, Given};
@@ -50,6 +51,14 @@ Examples:
 Takes what serve takes and checks it as serve does; secrets are hidden.
 Exit codes: 0 the settings hold; 2 one is wrong.";
 
+const HEALTH_EXAMPLES: &str = "\
+Examples:
+  wheelwort health                          the service that the settings of this machine describe
+  wheelwort health --url http://127.0.0.1:8080/health/ready
+
+For containers and whatever else watches a service; needs no other program.
+Exit codes: 0 it can; 1 it cannot, or does not answer in 5 seconds; 2 the address or a setting is wrong.";
+
 const DEMO_EXAMPLES: &str = "\
 Examples:
   wheelwort demo                            on http://127.0.0.1:8080
@@ -92,6 +101,9 @@ enum Command {
     /// Print the settings that `serve` would run with, and who gave each.
     #[command(after_help = SETTINGS_EXAMPLES)]
     Settings(Serve),
+    /// Ask a running service whether it can do its work.
+    #[command(after_help = HEALTH_EXAMPLES)]
+    Health(health::Health),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -171,6 +183,7 @@ pub fn main() -> ExitCode {
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
         Command::Settings(command) => print_settings(command),
+        Command::Health(command) => health::run(command),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

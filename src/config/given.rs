@@ -63,7 +63,11 @@ impl Given {
         Given::from_toml(&text, file)
     }
 
-    fn from_toml(text: &str, file: &Path) -> Result<Given, ConfigError> {
+    /// The settings of a TOML text; `file` is what errors call it.
+    ///
+    /// # Errors
+    /// When it says something unknown.
+    pub fn from_toml(text: &str, file: &Path) -> Result<Given, ConfigError> {
         // The message of the reader may quote a line, and a line may hold a secret: only the place is told.
         let table: toml::Table = toml::from_str(text).map_err(|error| {
             let before = error.span().and_then(|span| text.get(..span.start));

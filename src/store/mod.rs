@@ -50,6 +50,15 @@ impl Default for Settings {
     }
 }
 
+/// How busy a store is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Load {
+    /// Writes in the queue of the one that writes.
+    pub writes_waiting: usize,
+    /// Reading connections that nobody uses.
+    pub readers_idle: usize,
+}
+
 /// An open database. Cheap to clone; clones share it.
 #[derive(Clone)]
 pub struct Store(Arc<Inner>);
@@ -101,7 +110,19 @@ impl Store {
     /// # Errors
     /// `Busy` when none comes free in five seconds, `Closed` after [`Store::close`].
     pub async fn reader(&self) -> Result<Reader, StoreError> {
+        if let Some(reader) = self.0.readers.try_acquire() {
+            return Ok(reader);
+        }
+        metrics::counter!("wheelwort_reader_waits_total").increment(1);
         Ok(self.0.readers.acquire().await?)
+    }
+
+    /// How busy it is.
+    pub fn load(&self) -> Load {
+        Load {
+            writes_waiting: self.0.jobs.max_capacity() - self.0.jobs.capacity(),
+            readers_idle: self.0.readers.num_idle(),
+        }
     }
 
     /// Runs a job in a transaction and answers after it is durable. The job runs to its end even if the caller goes
@@ -132,7 +153,10 @@ impl Store {
     {
         let (job, answer) = writer::Waiting::new(job, after);
         self.0.jobs.try_send(Box::new(job)).map_err(|error| match error {
-            mpsc::error::TrySendError::Full(_) => StoreError::Busy,
+            mpsc::error::TrySendError::Full(_) => {
+                metrics::counter!("wheelwort_writes_refused_total").increment(1);
+                StoreError::Busy
+            }
             mpsc::error::TrySendError::Closed(_) => StoreError::Closed,
         })?;
         answer.await.unwrap_or_else(|_| Err(StoreError::Stopped.into()))

@@ -9,6 +9,7 @@ fn help_shows_examples_and_exit_codes() {
         &["serve", "--help"],
         &["demo", "--help"],
         &["settings", "--help"],
+        &["health", "--help"],
         &["evaluate", "--help"],
     ] {
         let output = run(command, b"");
