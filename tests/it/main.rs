@@ -10,6 +10,7 @@
 mod api;
 mod cli;
 mod engine;
+mod faults;
 mod levers;
 mod store;
 mod support;

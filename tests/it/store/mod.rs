@@ -7,5 +7,5 @@ mod identity;
 mod listing;
 mod records;
 mod rules;
-mod support;
+pub mod support;
 mod writing;
