@@ -12,6 +12,7 @@ mod cli;
 mod engine;
 mod faults;
 mod levers;
+mod statements;
 mod store;
 mod support;
 mod tidy;
