@@ -1,6 +1,7 @@
 //! Reads a JSON object field by field and notes everything that is wrong, each with its pointer.
 
 use super::problem::Problems;
+use crate::core::units::rounding::plain;
 use jiff::civil::Date;
 use serde_json::{Map, Value};
 use std::collections::BTreeSet;
@@ -56,6 +57,9 @@ impl fmt::Display for Place<'_> {
         }
     }
 }
+
+/// No amount of a pathway is larger, in whatever unit: the grain harvest of the world is 3e15 g. Our own judgement.
+const LARGEST: f64 = 1e18;
 
 /// The fields of one object while they are being read.
 pub struct Fields<'v> {
@@ -134,6 +138,17 @@ impl<'v> Fields<'v> {
     pub fn number(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
         let value = self.take(name)?;
         number_of(value, &at.field(name), problems)
+    }
+
+    /// An optional amount of something: a number that somebody can have measured.
+    pub fn amount(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
+        let figure = self.number(name, at, problems)?;
+        if figure.abs() > LARGEST {
+            let detail = format!("{} is more than there is of anything.", plain(figure));
+            problems.add(at.field(name), detail, "Check the figure and its unit.");
+            return None;
+        }
+        Some(figure)
     }
 
     /// An optional share in %.

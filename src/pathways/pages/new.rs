@@ -226,6 +226,7 @@ impl Start {
             materials: Vec::new(),
             defaults: BTreeMap::new(),
             not_covered: Vec::new(),
+            audits: Vec::new(),
             stages: starter(&self.feedstock),
         })
     }
@@ -265,6 +266,8 @@ fn starter(feedstock: &str) -> Vec<Stage> {
                 co_products: Vec::new(),
                 allocation: None,
                 stated: None,
+                meters: Vec::new(),
+                earlier_periods: Vec::new(),
             }
         };
     vec![
