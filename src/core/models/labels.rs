@@ -112,15 +112,21 @@ pub fn words(name: &str) -> Option<&'static str> {
     })
 }
 
-/// Parameters of the still and of combustion that stand in tables of their own.
+/// Parameters of distillation and dehydration, many of which stand in a table of their own.
 fn still(name: &str) -> Option<&'static str> {
     Some(match name {
-        "feed_percent_mass" => "Strength of the feed",
-        "feed_temperature_c" => "Temperature of the feed",
-        "product_percent_mass" => "Strength of the product",
-        "bottoms_percent_mass" => "Ethanol left in the bottoms",
-        "reflux" => "Reflux over its minimum",
-        "coupling" => "Thermal coupling",
+        "coupling_factor" => "Thermal coupling, part of the duty still needed",
+        "feed_approach_k" => "Feed below its boiling point",
+        "feed_is_vapour" => "The feed comes as vapour",
+        "feed_strength_percent_mass" => "Strength of the feed",
+        "product_strength_percent_mass" => "Strength of the product",
+        "purge_percent" => "Product used to purge the beds",
+        "purge_strength_percent_mass" => "Strength of the purge",
+        "reflux_multiple" => "Reflux over its minimum",
+        "steam_per_kg" => "Heat of a kilogram of steam",
+        "stillage_strength_percent_mass" => "Ethanol left in the stillage",
+        "superheat_k" => "Superheat of the vapour",
+        "wash_strength_percent_vol" => "Strength of the wash",
         _ => return None,
     })
 }

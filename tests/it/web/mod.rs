@@ -4,6 +4,7 @@ mod calculators;
 mod defaults;
 mod form;
 mod pages;
+mod rules;
 mod stage;
 
 use crate::support::test_app::{Answer, TestApp};
