@@ -82,6 +82,7 @@ pub fn pages_router() -> Router<App> {
         .merge(pathways::pages::routes())
         .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
+        .merge(rules::pages::routes())
 }
 
 /// Puts the demonstration in, marked as such.

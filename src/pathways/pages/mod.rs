@@ -23,6 +23,7 @@ pub mod revision;
 pub mod show;
 pub mod stage;
 mod stage_handlers;
+mod tried;
 pub mod verdict;
 pub mod workings;
 

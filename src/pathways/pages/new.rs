@@ -192,6 +192,7 @@ impl Start {
             materials: Vec::new(),
             defaults: BTreeMap::new(),
             not_covered: Vec::new(),
+            audits: Vec::new(),
         })
     }
 
@@ -314,6 +315,8 @@ fn starter(feedstock: &str) -> Vec<Stage> {
                 co_products: Vec::new(),
                 allocation: None,
                 stated: None,
+                meters: Vec::new(),
+                earlier_periods: Vec::new(),
             }
         };
     vec![

@@ -4,6 +4,7 @@ use super::card::form::LISTS;
 use super::card::{Do, Form, build, merge};
 use super::handlers::{REFUSED, Seen, ShowQuery, count, id_of, refused, saved_notice, see};
 use super::stage::{Card, ShowStage, sources, steer};
+use super::tried::work_out;
 use super::{answers, links};
 use crate::app::App;
 use crate::core::documents::Pathway;
@@ -64,6 +65,7 @@ fn card<'a>(seen: &'a Seen, key: &'a str, stage: &'a Value, typed: &'a Form) -> 
         head: seen.head(),
         pathway: &seen.pathway,
         found: seen.found(),
+        tried: None,
         book: &seen.book,
         key,
         stage,
@@ -148,6 +150,8 @@ fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value
         co_products: Vec::new(),
         allocation: None,
         stated: None,
+        meters: Vec::new(),
+        earlier_periods: Vec::new(),
     })
 }
 
@@ -187,7 +191,7 @@ pub(super) async fn save(
     let to_save = steer(&mut form, &asked);
     let shaped = build::shaped(&stood, &form);
     let shown = |problems: &[Problem], refused: bool| {
-        ShowStage::of(&Card {
+        let mut page = ShowStage::of(&Card {
             problems,
             refused,
             search: match &asked {
@@ -196,7 +200,11 @@ pub(super) async fn save(
             },
             after: new.then_some(after.as_str()),
             ..card(&base, &key, &shaped, &form)
-        })
+        });
+        if asked == Do::Try {
+            page.refused_words = "Not worked out";
+        }
+        page
     };
     if !to_save {
         return page(&shown(&[], false)).map_err(IntoResponse::into_response);
@@ -221,6 +229,21 @@ pub(super) async fn save(
         .filter(|why| !why.is_empty())
         .map(|why| why.chars().take(1_000).collect::<String>());
     let (document, place) = with_stage(&base.pathway, stage, new.then_some(after.as_str()));
+    if asked == Do::Try {
+        let worked = work_out(&app, document.clone()).await;
+        return match worked.map_err(IntoResponse::into_response)? {
+            Ok(assessment) => page(&ShowStage::of(&Card {
+                tried: Some(&assessment),
+                after: new.then_some(after.as_str()),
+                ..card(&base, &key, &built, &form)
+            })),
+            Err(problems) => {
+                let own = of_stage(&document, place, problems.into_list());
+                with_status(REFUSED, &shown(own.list(), true))
+            }
+        }
+        .map_err(IntoResponse::into_response);
+    }
     match pathways::replace(
         &app,
         base.stored.id,

@@ -151,6 +151,7 @@ pub(super) fn card<'a>(
         head: samples::head(),
         pathway,
         found,
+        tried: None,
         book: samples::book(),
         key,
         stage,

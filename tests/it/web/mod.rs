@@ -5,6 +5,7 @@ mod defaults;
 mod facts;
 mod form;
 mod pages;
+mod rules;
 mod stage;
 
 use crate::support::test_app::{Answer, TestApp};

@@ -130,6 +130,8 @@ fn index_below(list: &str, name: &str) -> Option<usize> {
 pub enum Do {
     /// Save and work out.
     Save,
+    /// Work out and save nothing.
+    Try,
     /// Add an item to a list.
     Add(&'static str),
     /// Take an item out of a list.
@@ -146,6 +148,7 @@ impl Do {
     pub fn of(text: &str) -> Do {
         let list = |name: &str| LISTS.into_iter().find(|list| *list == name);
         match text.split_once(':') {
+            None if text == "try" => Do::Try,
             None => Do::Save,
             Some(("add", name)) => list(name).map_or(Do::Search(String::new()), Do::Add),
             Some(("remove", rest)) => rest
