@@ -23,12 +23,11 @@ pub struct Change {
 }
 
 /// Models whose gases stand as values and rest on amounts of their stage: About says that these do not follow.
-const VALUES: [&str; 5] = [
+const VALUES: [&str; 4] = [
     "distillation",
     "dehydration",
     "land_use_change",
     "soil_n2o",
-    "soil_carbon",
 ];
 
 fn rests_on_values(stage: &Stage) -> bool {
@@ -41,6 +40,10 @@ pub fn changes(pathway: &Pathway, bytes: &[u8]) -> Vec<Change> {
     let mut out = Vec::new();
     let (inputs, chain) = (file::sheet(bytes, "Inputs"), file::sheet(bytes, "Chain"));
     for (j, stage) in pathway.stages.iter().enumerate() {
+        // Rows are found by title: of two stages of one name it is not known which is which.
+        if pathway.stages.iter().filter(|other| other.title() == stage.title()).count() > 1 {
+            continue;
+        }
         out.extend(input(pathway, j, &inputs));
         let rows = stage_rows(&chain, stage.title());
         for k in 0..stage.intakes.len() {

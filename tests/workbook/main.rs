@@ -83,6 +83,8 @@ fn every_formula_comes_to_the_figure_of_the_engine() {
                 let at = ours.start().map_or((0, 0), |(r, c)| (row + r, column + c));
                 let other = theirs.get_value(at).cloned().unwrap_or(Data::Empty);
                 let same = match (value, &other) {
+                    // What a crop takes up it gives back: figures of some hundred grams that add to nothing.
+                    (Data::Float(ours), Data::Float(theirs)) if sheet == "Carbon" => (theirs - ours).abs() < 1e-10,
                     (Data::Float(ours), Data::Float(theirs)) => near(*theirs, *ours),
                     (Data::String(ours), Data::String(theirs)) => ours.replace('\r', "") == theirs.replace('\r', ""),
                     (Data::String(ours), Data::Empty) => ours.is_empty(),
