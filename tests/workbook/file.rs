@@ -47,7 +47,9 @@ pub fn with(bytes: &[u8], sheet: &str, cells: &[(String, f64)]) -> Vec<u8> {
     edit(bytes, &format!("xl/worksheets/sheet{number}.xml"), |xml| {
         let mut xml = xml;
         for (at, figure) in cells {
-            let start = xml.find(&format!("<c r=\"{at}\"")).unwrap_or_else(|| panic!("no cell {at}"));
+            let start = xml
+                .find(&format!("<c r=\"{at}\""))
+                .unwrap_or_else(|| panic!("no cell {at}"));
             let open = start + xml[start..].find("<v>").expect("a figure") + 3;
             let close = open + xml[open..].find("</v>").expect("its end");
             xml.replace_range(open..close, &figure.to_string());
@@ -89,13 +91,26 @@ fn edit(bytes: &[u8], path: &str, change: impl FnOnce(String) -> String) -> Vec<
     let mut writer = ZipWriter::new(Cursor::new(Vec::new()));
     let mut change = Some(change);
     for index in 0..archive.len() {
-        let name = archive.by_index(index).expect("a part").name().expect("a name").into_owned();
+        let name = archive
+            .by_index(index)
+            .expect("a part")
+            .name()
+            .expect("a name")
+            .into_owned();
         let mut content = Vec::new();
-        archive.by_index(index).expect("a part").read_to_end(&mut content).expect("bytes");
-        if name == path && let Some(change) = change.take() {
+        archive
+            .by_index(index)
+            .expect("a part")
+            .read_to_end(&mut content)
+            .expect("bytes");
+        if name == path
+            && let Some(change) = change.take()
+        {
             content = change(text.clone()).into_bytes();
         }
-        writer.start_file(name, SimpleFileOptions::default()).expect("a part");
+        writer
+            .start_file(name, SimpleFileOptions::default())
+            .expect("a part");
         writer.write_all(&content).expect("bytes");
     }
     writer.finish().expect("an archive").into_inner()

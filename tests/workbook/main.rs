@@ -77,16 +77,25 @@ fn every_formula_comes_to_the_figure_of_the_engine() {
     for (name, path) in &saved {
         let recalculated = std::fs::read(path).unwrap();
         for sheet in file::SHEETS {
-            let (ours, theirs) = (file::sheet(&honest[name], sheet), file::sheet(&recalculated, sheet));
+            let (ours, theirs) = (
+                file::sheet(&honest[name], sheet),
+                file::sheet(&recalculated, sheet),
+            );
             for (row, column, value) in ours.cells() {
-                let (Ok(row), Ok(column)) = (u32::try_from(row), u32::try_from(column)) else { continue };
+                let (Ok(row), Ok(column)) = (u32::try_from(row), u32::try_from(column)) else {
+                    continue;
+                };
                 let at = ours.start().map_or((0, 0), |(r, c)| (row + r, column + c));
                 let other = theirs.get_value(at).cloned().unwrap_or(Data::Empty);
                 let same = match (value, &other) {
                     // What a crop takes up it gives back: figures of some hundred grams that add to nothing.
-                    (Data::Float(ours), Data::Float(theirs)) if sheet == "Carbon" => (theirs - ours).abs() < 1e-10,
+                    (Data::Float(ours), Data::Float(theirs)) if sheet == "Carbon" => {
+                        (theirs - ours).abs() < 1e-10
+                    }
                     (Data::Float(ours), Data::Float(theirs)) => near(*theirs, *ours),
-                    (Data::String(ours), Data::String(theirs)) => ours.replace('\r', "") == theirs.replace('\r', ""),
+                    (Data::String(ours), Data::String(theirs)) => {
+                        ours.replace('\r', "") == theirs.replace('\r', "")
+                    }
                     (Data::String(ours), Data::Empty) => ours.is_empty(),
                     (ours, theirs) => ours == theirs,
                 };
@@ -103,7 +112,11 @@ fn every_formula_comes_to_the_figure_of_the_engine() {
         }
     }
     let shown: Vec<&String> = wrong.iter().take(40).collect();
-    assert!(wrong.is_empty(), "{} of {compared} cells differ:\n{shown:#?}", wrong.len());
+    assert!(
+        wrong.is_empty(),
+        "{} of {compared} cells differ:\n{shown:#?}",
+        wrong.len()
+    );
     assert!(compared > 10_000, "only {compared} cells");
 }
 
@@ -113,14 +126,19 @@ fn a_changed_amount_moves_the_net_as_the_engine_says() {
     let mut wanted = BTreeMap::new();
     let mut kinds: BTreeMap<&str, (usize, usize)> = BTreeMap::new();
     for (name, pathway) in documents() {
-        let other = name.starts_with("mass_") || name.starts_with("value_") || name.starts_with("credit_") || name.starts_with("ar6_");
+        let other = name.starts_with("mass_")
+            || name.starts_with("value_")
+            || name.starts_with("credit_")
+            || name.starts_with("ar6_");
         if other && !name.ends_with("contract_example") && !name.ends_with("b_maize_truck_and_barge") {
             continue;
         }
         let before = assessed(&pathway).unwrap();
         let bytes = workbook(&pathway, &before);
         for change in changes::changes(&pathway, &bytes) {
-            let Some(after) = assessed(&change.pathway) else { continue };
+            let Some(after) = assessed(&change.pathway) else {
+                continue;
+            };
             let key = format!("{name}--{}", change.what);
             let net = after.net.g_co2e_per_mj;
             let seen = kinds.entry(change.kind).or_default();
@@ -139,7 +157,12 @@ fn a_changed_amount_moves_the_net_as_the_engine_says() {
             wrong.push(format!("{name}: {net} instead of {}", wanted[name]));
         }
     }
-    assert!(wrong.is_empty(), "{} of {} differ:\n{wrong:#?}", wrong.len(), saved.len());
+    assert!(
+        wrong.is_empty(),
+        "{} of {} differ:\n{wrong:#?}",
+        wrong.len(),
+        saved.len()
+    );
     for kind in ["input", "intake", "co-product", "output"] {
         let (tried, moved) = kinds.get(kind).copied().unwrap_or_default();
         println!("{kind}: {tried} changed, {moved} of them move the net");

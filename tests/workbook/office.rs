@@ -30,7 +30,13 @@ pub fn recalculate(books: &BTreeMap<String, Vec<u8>>, folder: &str) -> BTreeMap<
     for some in files.chunks(60) {
         let output = Command::new("soffice")
             .arg(format!("-env:UserInstallation=file://{}", profile.display()))
-            .args(["--headless", "--norestore", "--convert-to", "xlsx:Calc MS Excel 2007 XML", "--outdir"])
+            .args([
+                "--headless",
+                "--norestore",
+                "--convert-to",
+                "xlsx:Calc MS Excel 2007 XML",
+                "--outdir",
+            ])
             .arg(&to)
             .args(some)
             .output()

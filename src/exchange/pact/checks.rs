@@ -58,7 +58,12 @@ const NOT_POSITIVE: [&str; 4] = [
 ];
 
 /// Other fields that are decimals.
-const OTHER_DECIMALS: [&str; 4] = [EXCLUDING, INCLUDING, "exemptedEmissionsPercent", "primaryDataShare"];
+const OTHER_DECIMALS: [&str; 4] = [
+    EXCLUDING,
+    INCLUDING,
+    "exemptedEmissionsPercent",
+    "primaryDataShare",
+];
 
 /// One of three at most.
 const GEOGRAPHY: [&str; 3] = [
@@ -96,7 +101,10 @@ fn decimal(record: &Value, name: &str) -> Option<Decimal> {
 }
 
 fn product(record: &Value) -> &str {
-    record.get("productNameCompany").and_then(Value::as_str).unwrap_or("the product")
+    record
+        .get("productNameCompany")
+        .and_then(Value::as_str)
+        .unwrap_or("the product")
 }
 
 fn block(id: &str, field: &str, message: String, remedy: &str) -> Finding {
@@ -114,10 +122,18 @@ pub fn totals(record: &Value) -> Vec<Finding> {
                 text(record, name),
                 product(record)
             );
-            block("J-01", &format!("pcf.{name}"), message, "Work the export out again.")
+            block(
+                "J-01",
+                &format!("pcf.{name}"),
+                message,
+                "Work the export out again.",
+            )
         })
     };
-    [wrong(EXCLUDING, sum), wrong(INCLUDING, sum + uptake)].into_iter().flatten().collect()
+    [wrong(EXCLUDING, sum), wrong(INCLUDING, sum + uptake)]
+        .into_iter()
+        .flatten()
+        .collect()
 }
 
 /// J-02: emissions are at least zero; uptake, removals and captures at most zero.
@@ -133,8 +149,12 @@ pub fn signs(record: &Value) -> Vec<Finding> {
             )
         })
     };
-    let below = NOT_NEGATIVE.iter().filter_map(|name| wrong(name, |value| value >= Decimal::ZERO));
-    let above = NOT_POSITIVE.iter().filter_map(|name| wrong(name, |value| value <= Decimal::ZERO));
+    let below = NOT_NEGATIVE
+        .iter()
+        .filter_map(|name| wrong(name, |value| value >= Decimal::ZERO));
+    let above = NOT_POSITIVE
+        .iter()
+        .filter_map(|name| wrong(name, |value| value <= Decimal::ZERO));
     below.chain(above).collect()
 }
 
@@ -155,7 +175,14 @@ pub fn carbon(record: &Value) -> Vec<Finding> {
         text(record, CONTENT)
     );
     let remedy = "Check strength and denaturant.";
-    vec![finding("J-03", Severity::Warn, "", &format!("pcf.{UPTAKE}"), message, remedy)]
+    vec![finding(
+        "J-03",
+        Severity::Warn,
+        "",
+        &format!("pcf.{UPTAKE}"),
+        message,
+        remedy,
+    )]
 }
 
 /// J-04: decimals are texts of digits and a point.
@@ -171,7 +198,10 @@ pub fn decimals(record: &Value) -> Vec<Finding> {
             block(
                 "J-04",
                 &format!("pcf.{name}"),
-                format!("{name} = {} is not a plain decimal in quotes.", text(record, name)),
+                format!(
+                    "{name} = {} is not a plain decimal in quotes.",
+                    text(record, name)
+                ),
                 "Send it with digits and a point only.",
             )
         })
@@ -188,12 +218,20 @@ fn is_decimal(text: &str) -> bool {
 
 /// J-05: at most one of region, country and subdivision.
 pub fn geography(record: &Value) -> Vec<Finding> {
-    let named: Vec<&str> = GEOGRAPHY.into_iter().filter(|name| field(record, name).is_some()).collect();
+    let named: Vec<&str> = GEOGRAPHY
+        .into_iter()
+        .filter(|name| field(record, name).is_some())
+        .collect();
     if named.len() < 2 {
         return Vec::new();
     }
     let message = format!("The footprint of {} names {}.", product(record), named.join(", "));
-    vec![block("J-05", "pcf", message, "Give only one of region, country, subdivision.")]
+    vec![block(
+        "J-05",
+        "pcf",
+        message,
+        "Give only one of region, country, subdivision.",
+    )]
 }
 
 /// J-06: the totals come from the footprint's own calculation, and are not the net of a fuel law put per kilogram.
@@ -227,8 +265,13 @@ pub fn no_net_of_a_rule_set(
         let law = assessment.rule_set != RULE_SET;
         let net = assessment.net.g_co2e_per_mj * rules.ethanol_lhv.value / 1000.0;
         let equal = |total: f64, net: f64| (total - net).abs() <= 1e-6 * net.abs();
-        let sent = |total: &Option<f64>| total.is_some_and(|total| equal(total, net) || equal(total, net * pure));
+        let sent =
+            |total: &Option<f64>| total.is_some_and(|total| equal(total, net) || equal(total, net * pure));
         law && net != 0.0 && total.iter().any(sent)
     };
-    assessments.iter().filter(same).map(|assessment| refused(&assessment.rule_set)).collect()
+    assessments
+        .iter()
+        .filter(same)
+        .map(|assessment| refused(&assessment.rule_set))
+        .collect()
 }

@@ -55,7 +55,10 @@ impl Decimal {
 impl fmt::Display for Decimal {
     fn fmt(&self, f: &mut fmt::Formatter) -> fmt::Result {
         let sign = if self.0 < 0 { "-" } else { "" };
-        let (whole, part) = (self.0.unsigned_abs() / ONE.unsigned_abs(), self.0.unsigned_abs() % ONE.unsigned_abs());
+        let (whole, part) = (
+            self.0.unsigned_abs() / ONE.unsigned_abs(),
+            self.0.unsigned_abs() % ONE.unsigned_abs(),
+        );
         if part == 0 {
             return write!(f, "{sign}{whole}");
         }
@@ -108,7 +111,19 @@ mod tests {
 
     #[test]
     fn reads_nothing_but_plain_decimals() {
-        for text in ["1e3", "1.2345E+6", "", ".5", "5.", "1 000", "1,5", "0x10", "--1", "12abc", "NaN"] {
+        for text in [
+            "1e3",
+            "1.2345E+6",
+            "",
+            ".5",
+            "5.",
+            "1 000",
+            "1,5",
+            "0x10",
+            "--1",
+            "12abc",
+            "NaN",
+        ] {
             assert_eq!(Decimal::read(text), None, "{text}");
         }
         assert_eq!(Decimal::read("+5.0"), Some(Decimal(5 * ONE)));

@@ -79,7 +79,11 @@ pub fn gate(pathway: &Pathway, book: &Book) -> Result<Gate, PactError> {
     if whole.stages.iter().any(|stage| stage.kind == StageKind::Bought) {
         return Err(PactError::Bought);
     }
-    if !whole.stages.iter().any(|stage| stage.kind == StageKind::Cultivation) {
+    if !whole
+        .stages
+        .iter()
+        .any(|stage| stage.kind == StageKind::Cultivation)
+    {
         return Err(PactError::NotFromCradle(StageKind::Cultivation.words()));
     }
     let resolved = resolve(&whole, None, book, false).map_err(PactError::Refused)?;
@@ -130,7 +134,8 @@ impl Gate {
         let assessment = assess(&resolved, false).map_err(PactError::Refused)?.assessment;
         let last = resolved.last.ok_or(PactError::NoGate)?;
         let output = &resolved.stages[last].products[0].flow;
-        let (Some(mj), Some(wet), Some(pure)) = (resolved.fuel_mj(last), output.wet_kg, output.pure_kg) else {
+        let (Some(mj), Some(wet), Some(pure)) = (resolved.fuel_mj(last), output.wet_kg, output.pure_kg)
+        else {
             return Err(PactError::NoGate);
         };
         let per_kg = mj / wet / 1000.0;
@@ -148,10 +153,16 @@ impl Gate {
             if result.products.len() > 1
                 && let Some(method) = stage.allocation
             {
-                parts.sharing.push(format!("{}: {}", stage.document.title(), method.name()));
+                parts
+                    .sharing
+                    .push(format!("{}: {}", stage.document.title(), method.name()));
             }
             for (i, (row, input)) in result.inputs.iter().zip(&stage.inputs).enumerate() {
-                let models = stage.document.inputs.get(i).and_then(|input| input.model.as_ref());
+                let models = stage
+                    .document
+                    .inputs
+                    .get(i)
+                    .and_then(|input| input.model.as_ref());
                 let taken = models.map_or(0.0, delivered) * scales.scale[j] * 1000.0;
                 let gases = row.gases_g_per_mj * per_kg;
                 parts.add(&resolved, input, gases, taken * per_kg, facts);
@@ -168,11 +179,22 @@ impl Gate {
         let resolved = resolve(&self.whole, None, book, false).map_err(PactError::Refused)?;
         let assessment = assess(&resolved, false).map_err(PactError::Refused)?.assessment;
         let scales = demand(&resolved);
-        let position = resolved.stages.iter().position(|stage| stage.document.key == self.key);
+        let position = resolved
+            .stages
+            .iter()
+            .position(|stage| stage.document.key == self.key);
         let at = position.ok_or(PactError::NoGate)?;
-        let wet = resolved.stages[at].products[0].flow.wet_kg.ok_or(PactError::NoGate)?;
+        let wet = resolved.stages[at].products[0]
+            .flow
+            .wet_kg
+            .ok_or(PactError::NoGate)?;
         let kg_per_mj = scales.by_product[at][0] * wet;
-        let inside: BTreeSet<&str> = self.pathway.stages.iter().map(|stage| stage.key.as_str()).collect();
+        let inside: BTreeSet<&str> = self
+            .pathway
+            .stages
+            .iter()
+            .map(|stage| stage.key.as_str())
+            .collect();
         let grams: f64 = assessment
             .stages
             .iter()
@@ -187,7 +209,14 @@ impl Gate {
 
 impl Parts {
     /// Adds the gases of an input, kg per kg of product; `taken` is CO2 of the works that its capture hands on.
-    fn add(&mut self, resolved: &Resolved, input: &Input, mut gases: GasVector, taken: f64, facts: &PactFacts) {
+    fn add(
+        &mut self,
+        resolved: &Resolved,
+        input: &Input,
+        mut gases: GasVector,
+        taken: f64,
+        facts: &PactFacts,
+    ) {
         let weigh = |gas: Gas, kg: f64| GasVector::of(gas, kg).co2e(resolved.gwp);
         match input.term {
             Some(Term::Eccs) if taken > 0.0 => {
@@ -200,7 +229,9 @@ impl Parts {
             }
             Some(Term::Eccr) if taken > 0.0 => {
                 gases[Gas::Co2Fossil] += taken;
-                self.leave_out("the credit for CO2 sold in place of fossil CO2, for which the record has no field");
+                self.leave_out(
+                    "the credit for CO2 sold in place of fossil CO2, for which the record has no field",
+                );
             }
             _ => {}
         }

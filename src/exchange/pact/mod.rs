@@ -12,8 +12,8 @@ pub use facts::{Denaturant, Geography, PactFacts, Verification};
 pub use gate::RULE_SET;
 pub use record::{Footprint, Record};
 
-use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::documents::assessment::Finding;
+use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
 use crate::core::engine::carbon::CO2_PER_ETHANOL;
 use crate::core::units::rounding::plain;
@@ -117,27 +117,59 @@ fn possible(facts: &PactFacts) -> Result<(), PactError> {
         true if !list.is_empty() => Ok(()),
         _ => Err(PactError::Fact { field, remedy }),
     };
-    named("company_ids", &facts.company_ids, "Give at least one identifier of the company, each as a URN (urn:...).")?;
-    named("product_ids", &facts.product_ids, "Give at least one identifier of the product, each as a URN (urn:...).")?;
+    named(
+        "company_ids",
+        &facts.company_ids,
+        "Give at least one identifier of the company, each as a URN (urn:...).",
+    )?;
+    named(
+        "product_ids",
+        &facts.product_ids,
+        "Give at least one identifier of the product, each as a URN (urn:...).",
+    )?;
     let fact = |holds: bool, field, remedy| match holds {
         true => Ok(()),
         false => Err(PactError::Fact { field, remedy }),
     };
-    fact(!facts.company.trim().is_empty(), "company", "Give the name of the company.")?;
-    fact(!facts.product.trim().is_empty(), "product", "Give the trade name of the product.")?;
-    fact(!facts.standards.is_empty(), "standards", "Name at least one standard that was followed.")?;
+    fact(
+        !facts.company.trim().is_empty(),
+        "company",
+        "Give the name of the company.",
+    )?;
+    fact(
+        !facts.product.trim().is_empty(),
+        "product",
+        "Give the trade name of the product.",
+    )?;
+    fact(
+        !facts.standards.is_empty(),
+        "standards",
+        "Name at least one standard that was followed.",
+    )?;
     fact(uuid::Uuid::parse_str(&facts.id).is_ok(), "id", "Give a UUID.")?;
     let percent = |x: f64| (0.0..100.0).contains(&x);
-    fact(percent(facts.left_out.0), "left_out", "Give the share left out in %, 0 to below 100.")?;
+    fact(
+        percent(facts.left_out.0),
+        "left_out",
+        "Give the share left out in %, 0 to below 100.",
+    )?;
     if let Some(denaturant) = facts.denaturant {
         let holds = percent(denaturant.percent)
             && (0.0..=100.0).contains(&denaturant.carbon_percent)
             && denaturant.kg_co2e_per_kg >= 0.0
             && denaturant.kg_co2e_per_kg.is_finite();
-        fact(holds, "denaturant", "Give mass % below 100, carbon in % and emissions of at least zero.")?;
+        fact(
+            holds,
+            "denaturant",
+            "Give mass % below 100, carbon in % and emissions of at least zero.",
+        )?;
     }
     let rated = |ratings: [f64; 3]| ratings.iter().all(|rating| (1.0..=5.0).contains(rating));
-    fact(facts.ratings.is_none_or(rated), "ratings", "Give ratings from 1 to 5, or none.")
+    fact(
+        facts.ratings.is_none_or(rated),
+        "ratings",
+        "Give ratings from 1 to 5, or none.",
+    )
 }
 
 fn decimal(x: f64) -> Result<Decimal, PactError> {
@@ -163,17 +195,26 @@ fn record(gate: &Gate, parts: &Parts, book: &Book, facts: &PactFacts) -> Result<
 }
 
 fn footprint(gate: &Gate, parts: &Parts, book: &Book, facts: &PactFacts) -> Result<Footprint, PactError> {
-    let added = facts.denaturant.map_or(0.0, |denaturant| denaturant.percent / 100.0);
+    let added = facts
+        .denaturant
+        .map_or(0.0, |denaturant| denaturant.percent / 100.0);
     let ethanol = 1.0 - added;
     let denaturant = facts.denaturant.map_or((0.0, 0.0), |denaturant| {
-        (added * denaturant.kg_co2e_per_kg, added * denaturant.carbon_percent / 100.0)
+        (
+            added * denaturant.kg_co2e_per_kg,
+            added * denaturant.carbon_percent / 100.0,
+        )
     });
     let part = |x: f64| decimal(x * ethanol);
     let fossil = decimal(parts.fossil * ethanol + denaturant.0)?;
     // Carbon of pure ethanol from the CO2 of burning it, so that uptake and content fit to the last digit.
     let uptake = -part(parts.pure * CO2_PER_ETHANOL)?;
     let content = part(parts.pure * CO2_PER_ETHANOL / CO2_PER_CARBON)?;
-    let (luc, loss, gain) = (part(parts.land_use_change)?, part(parts.land_loss)?, part(parts.land_gain)?);
+    let (luc, loss, gain) = (
+        part(parts.land_use_change)?,
+        part(parts.land_loss)?,
+        part(parts.land_gain)?,
+    );
     let (methane, stored) = (part(parts.biogenic_methane)?, part(parts.stored)?);
     let excluding = [fossil, luc, loss, gain, methane, stored].into_iter().sum();
     let stores = stored != Decimal::ZERO;
@@ -224,7 +265,8 @@ fn footprint(gate: &Gate, parts: &Parts, book: &Book, facts: &PactFacts) -> Resu
         packaging_emissions_included: false,
         outbound_logistics_ghg_emissions: outbound,
         storage_included: stores,
-        capture_origin: stores.then_some("CO2 of fermentation, captured at the works and stored in the ground"),
+        capture_origin: stores
+            .then_some("CO2 of fermentation, captured at the works and stored in the ground"),
         stored: stores.then_some(stored),
         ipcc_characterization_factors: vec!["AR6"],
         cross_sectoral_standards: facts.standards.clone(),

@@ -102,7 +102,10 @@ pub struct Footprint {
     #[serde(rename = "ccsTechnologicalCO2CaptureIncluded")]
     pub storage_included: bool,
     /// Where captured CO2 comes from and goes.
-    #[serde(rename = "technologicalCO2CaptureOrigin", skip_serializing_if = "Option::is_none")]
+    #[serde(
+        rename = "technologicalCO2CaptureOrigin",
+        skip_serializing_if = "Option::is_none"
+    )]
     pub capture_origin: Option<&'static str>,
     /// Fermentation CO2 stored, kg, at most zero.
     #[serde(rename = "technologicalCO2Removals", skip_serializing_if = "Option::is_none")]

@@ -42,22 +42,52 @@ pub fn write(mut page: Page, plan: &Plan, about: &About) -> Result<(), XlsxError
         line(&mut page, "Of", issuer, text)?;
     }
     if let Some((number, hash)) = about.statement {
-        line(&mut page, "Belongs to statement", &format!("{number}, hash {hash}"), text)?;
+        line(
+            &mut page,
+            "Belongs to statement",
+            &format!("{number}, hash {hash}"),
+            text,
+        )?;
     }
-    line(&mut page, "Days covered", &format!("{} to {}", period.from, period.to), text)?;
+    line(
+        &mut page,
+        "Days covered",
+        &format!("{} to {}", period.from, period.to),
+        text,
+    )?;
     line(&mut page, "Reach", &assessment.basis, text)?;
     let rule = format!("{}: {} (data version {})", rules.id, rules.title, rules.version);
     line(&mut page, "Rule set", &rule, text)?;
     line(&mut page, "Its source", &rules.source, text)?;
-    line(&mut page, "Gas weights", &format!("{}: {}", plan.resolved.gwp.id, plan.resolved.gwp.title), text)?;
+    line(
+        &mut page,
+        "Gas weights",
+        &format!("{}: {}", plan.resolved.gwp.id, plan.resolved.gwp.title),
+        text,
+    )?;
     for (edition, source) in editions(plan) {
         line(&mut page, "Edition used", &format!("{edition}: {source}"), text)?;
     }
-    line(&mut page, "Hash of the pathway", &format!("SHA-256 of its canonical bytes: {}", assessment.pathway_hash), text)?;
+    line(
+        &mut page,
+        "Hash of the pathway",
+        &format!("SHA-256 of its canonical bytes: {}", assessment.pathway_hash),
+        text,
+    )?;
     line(&mut page, "Made", &about.made_at.to_string(), text)?;
-    line(&mut page, "By", &format!("Wheelwort {}", assessment.program), text)?;
+    line(
+        &mut page,
+        "By",
+        &format!("Wheelwort {}", assessment.program),
+        text,
+    )?;
     if rules.standing != Standing::InForce {
-        line(&mut page, "Caution", &format!("The rule set is {}.", rules.standing.words()), Part::Loud)?;
+        line(
+            &mut page,
+            "Caution",
+            &format!("The rule set is {}.", rules.standing.words()),
+            Part::Loud,
+        )?;
     }
     for caution in about.cautions {
         line(&mut page, "Caution", caution, Part::Loud)?;
@@ -90,14 +120,29 @@ fn guide(page: &mut Page, mut row: u32) -> Result<(), XlsxError> {
     page.text(row, 0, "The sheets", Part::Band)?;
     page.text(row, 1, "", Part::Band)?;
     for (sheet, words) in [
-        (inputs::NAME, "Every amount as entered, its conversion, its factor, its gases, and its g CO2e/MJ."),
-        (factors::NAME, "Factors used with their sources, gas weights, constants of the rule set."),
-        (chain::NAME, "Recipes, intakes, shares, and how many recipes one megajoule asks for."),
+        (
+            inputs::NAME,
+            "Every amount as entered, its conversion, its factor, its gases, and its g CO2e/MJ.",
+        ),
+        (
+            factors::NAME,
+            "Factors used with their sources, gas weights, constants of the rule set.",
+        ),
+        (
+            chain::NAME,
+            "Recipes, intakes, shares, and how many recipes one megajoule asks for.",
+        ),
         (terms::NAME, "The net by term."),
-        (totals::NAME, "Net, baseline, saving, minimum savings, gases, stages."),
+        (
+            totals::NAME,
+            "Net, baseline, saving, minimum savings, gases, stages.",
+        ),
         (findings::CARBON, "The crop's carbon (values)."),
         (findings::NAME, "What the checks have to say (text)."),
-        (workings::NAME, "Every step in words, also inside the models (values)."),
+        (
+            workings::NAME,
+            "Every step in words, also inside the models (values).",
+        ),
     ] {
         row += 1;
         page.link(row, 0, (sheet, 0, 0), sheet)?;
@@ -107,11 +152,27 @@ fn guide(page: &mut Page, mut row: u32) -> Result<(), XlsxError> {
     page.text(row, 0, "How to read it", Part::Band)?;
     page.text(row, 1, "", Part::Band)?;
     for (head, part, words) in [
-        ("Blue on pale blue", Part::Entered, "Entered by a person. Change it: the net follows by formula."),
-        ("Green", Part::Published, "Published: a factor, a constant, the size of a unit. Its source stands on Factors."),
-        ("Grey italics", Part::Value, "Worked out by a model of the program (soil N2O, land, distillation, strengths by OIML R 22 and others): a value, \
-          because its formula would be a program of its own. It does not follow when its stage changes; its steps stand on Workings."),
-        ("Black", Part::Formula, "A formula. The file carries the program's own figure for each, so a reader that does not calculate shows the same."),
+        (
+            "Blue on pale blue",
+            Part::Entered,
+            "Entered by a person. Change it: the net follows by formula.",
+        ),
+        (
+            "Green",
+            Part::Published,
+            "Published: a factor, a constant, the size of a unit. Its source stands on Factors.",
+        ),
+        (
+            "Grey italics",
+            Part::Value,
+            "Worked out by a model of the program (soil N2O, land, distillation, strengths by OIML R 22 and others): a value, \
+          because its formula would be a program of its own. It does not follow when its stage changes; its steps stand on Workings.",
+        ),
+        (
+            "Black",
+            Part::Formula,
+            "A formula. The file carries the program's own figure for each, so a reader that does not calculate shows the same.",
+        ),
     ] {
         row += 1;
         page.text(row, 0, head, part)?;

@@ -125,22 +125,60 @@ fn stage(page: &mut Page, plan: &Plan, j: usize) -> Result<(), XlsxError> {
     let column = |column| format!("{}:{}", cell(first, column), cell(last, column));
     let band = |digits| (Part::Band, digits);
     let (scale, whole) = (plan.demand.scale[j], plan.demand.whole[j]);
-    page.formula(row, CARRIED, &format!("=SUM({})", column(CARRIED)), scale, band(Digits::Power))?;
-    page.formula(row, WHOLE, &format!("=MAX({})", column(WHOLE)), whole, band(Digits::Power))?;
-    let result = plan.results().find(|(index, _)| *index == Some(j)).map(|(_, result)| result);
+    page.formula(
+        row,
+        CARRIED,
+        &format!("=SUM({})", column(CARRIED)),
+        scale,
+        band(Digits::Power),
+    )?;
+    page.formula(
+        row,
+        WHOLE,
+        &format!("=MAX({})", column(WHOLE)),
+        whole,
+        band(Digits::Power),
+    )?;
+    let result = plan
+        .results()
+        .find(|(index, _)| *index == Some(j))
+        .map(|(_, result)| result);
     let Some(result) = result else { return Ok(()) };
     if let Some((first, last)) = plan.spans[j] {
-        let sum = |from: u16| format!("=SUM({})", super::page::span(inputs::NAME, (first, from), (last, from)));
-        page.formula(row, NET, &sum(inputs::NET), result.g_co2e_per_mj, band(Digits::Four))?;
+        let sum = |from: u16| {
+            format!(
+                "=SUM({})",
+                super::page::span(inputs::NAME, (first, from), (last, from))
+            )
+        };
+        page.formula(
+            row,
+            NET,
+            &sum(inputs::NET),
+            result.g_co2e_per_mj,
+            band(Digits::Four),
+        )?;
         let unshared = result.unallocated_g_co2e_per_mj;
-        page.formula(row, UNSHARED, &sum(inputs::UNSHARED), unshared, band(Digits::Four))?;
+        page.formula(
+            row,
+            UNSHARED,
+            &sum(inputs::UNSHARED),
+            unshared,
+            band(Digits::Four),
+        )?;
     } else {
         page.number(row, NET, 0.0, Part::Band, Digits::Four)?;
         page.number(row, UNSHARED, 0.0, Part::Band, Digits::Four)?;
     }
     let (carried, all) = (cell(row, CARRIED), cell(row, WHOLE));
     let formula = format!("=IF({all}>0,{carried}/{all},0)");
-    page.formula(row, CARRIED_SHARE, &formula, result.carried_share, band(Digits::Six))?;
+    page.formula(
+        row,
+        CARRIED_SHARE,
+        &formula,
+        result.carried_share,
+        band(Digits::Six),
+    )?;
     if stage.inputs.iter().any(|input| !input.per_fuel.is_empty()) {
         let mj = plan.demand.fuel_mj[j];
         let part = figure(mj * whole);
@@ -161,7 +199,10 @@ fn product(page: &mut Page, plan: &Plan, j: usize, index: usize) -> Result<(), X
     let stage = &resolved.stages[j];
     let product = &stage.products[index];
     let row = plan.chain[j].product(index);
-    let (flow, role) = match index.checked_sub(1).and_then(|k| stage.document.co_products.get(k)) {
+    let (flow, role) = match index
+        .checked_sub(1)
+        .and_then(|k| stage.document.co_products.get(k))
+    {
         None => (&stage.document.output.flow, "output"),
         Some(document) => (&document.flow, role(document.role)),
     };
@@ -182,7 +223,11 @@ fn product(page: &mut Page, plan: &Plan, j: usize, index: usize) -> Result<(), X
             page.formula(row, MEASURE, formula, *found, (Part::Formula, Digits::All))?;
             page.text(row, MEASURE_UNIT, stage.measure_unit, Part::Text)?;
             let rows = plan.chain[j];
-            let all = format!("{}:{}", cell(rows.output, MEASURE), cell(rows.intakes - 1, MEASURE));
+            let all = format!(
+                "{}:{}",
+                cell(rows.output, MEASURE),
+                cell(rows.intakes - 1, MEASURE)
+            );
             let formula = format!("={}/SUM({all})", cell(row, MEASURE));
             page.formula(row, SHARE, &formula, product.share, (Part::Formula, Digits::Six))?;
             if !note.is_empty() {
@@ -191,7 +236,7 @@ fn product(page: &mut Page, plan: &Plan, j: usize, index: usize) -> Result<(), X
             note.push_str("shares by ");
             note.push_str(weighed.words);
         }
-        None => page.number(row, SHARE, product.share, Part::Value, Digits::Six)?,
+        None => page.number(row, SHARE, product.share, Part::Formula, Digits::Six)?,
     }
     page.text(row, NOTE, &note, Part::Text)?;
     let asked = |column: u16| {
@@ -257,10 +302,22 @@ fn taken(page: &mut Page, plan: &Plan, j: usize, k: usize, intake: &Intake) -> R
         None => {
             let output = cell(plan.chain[j].output, DRY);
             let pure = taken.pure_kg.unwrap_or(0.0);
-            page.formula(row, DRY, &format!("={output}"), pure, (Part::Formula, Digits::All))?;
+            page.formula(
+                row,
+                DRY,
+                &format!("={output}"),
+                pure,
+                (Part::Formula, Digits::All),
+            )?;
             let strength = cell(from_row, STRENGTH);
             let percent = 100.0 * taken.strength.unwrap_or(1.0);
-            page.formula(row, STRENGTH, &format!("={strength}"), percent, (Part::Formula, Digits::All))?;
+            page.formula(
+                row,
+                STRENGTH,
+                &format!("={strength}"),
+                percent,
+                (Part::Formula, Digits::All),
+            )?;
             page.text(row, NOTE, "the same pure ethanol as the fuel burnt", Part::Text)?;
         }
     }
@@ -279,7 +336,13 @@ fn taken(page: &mut Page, plan: &Plan, j: usize, k: usize, intake: &Intake) -> R
 }
 
 /// The columns of a flow as entered and what follows from it.
-fn entered(page: &mut Page, plan: &Plan, row: u32, flow: &Flow, measured: &Measured) -> Result<(), XlsxError> {
+fn entered(
+    page: &mut Page,
+    plan: &Plan,
+    row: u32,
+    flow: &Flow,
+    measured: &Measured,
+) -> Result<(), XlsxError> {
     let all = Digits::All;
     let (Some(amount), Some(unit)) = (flow.amount, flow.unit.as_deref()) else {
         return Ok(());
@@ -315,4 +378,3 @@ fn role(role: Role) -> &'static str {
         Role::Waste => "waste",
     }
 }
-

@@ -84,7 +84,10 @@ impl Factors {
         let own = priced.status == Status::Own;
         let (name, edition) = match book.factor(&priced.id) {
             Some(factor) if !own => {
-                let edition = factor.id.split_once('/').and_then(|(id, _)| book.editions.get(id));
+                let edition = factor
+                    .id
+                    .split_once('/')
+                    .and_then(|(id, _)| book.editions.get(id));
                 (factor.name.clone(), edition.map_or("", |edition| &edition.title))
             }
             _ => (String::new(), ""),
@@ -180,10 +183,12 @@ impl Factors {
 
     /// The short name of a factor, for the cell that links to it.
     pub fn short(&self, index: usize) -> &str {
-        self.entries.get(index).map_or("", |entry| match entry.id.as_str() {
-            "model" => &entry.name,
-            id => id,
-        })
+        self.entries
+            .get(index)
+            .map_or("", |entry| match entry.id.as_str() {
+                "model" => &entry.name,
+                id => id,
+            })
     }
 
     /// The cell of a factor's unit size, in base units.
@@ -213,7 +218,10 @@ impl Factors {
 
     /// A factor's density, kg/m3; zero where it prints none.
     pub fn kg_per_m3(&self, index: usize) -> f64 {
-        self.entries.get(index).and_then(|entry| entry.density).unwrap_or(0.0)
+        self.entries
+            .get(index)
+            .and_then(|entry| entry.density)
+            .unwrap_or(0.0)
     }
 
     fn at(&self, index: usize, column: u16) -> String {
@@ -230,7 +238,10 @@ impl Factors {
 
 /// The column of a gas where the gases begin at a column.
 pub fn gas_column(first: u16, gas: Gas) -> u16 {
-    (first..).zip(Gas::ALL).find(|(_, other)| *other == gas).map_or(first, |(column, _)| column)
+    (first..)
+        .zip(Gas::ALL)
+        .find(|(_, other)| *other == gas)
+        .map_or(first, |(column, _)| column)
 }
 
 /// The cells of the gas weights, in the order of the gases.

@@ -35,16 +35,34 @@ pub fn carbon(mut page: Page, plan: &Plan) -> Result<(), XlsxError> {
     )?;
     let carbon = &plan.assessment.carbon;
     let rows: [(&str, Option<f64>); 10] = [
-        ("Carbon of the crop that enters the works, as CO2", carbon.feedstock_g_co2_per_mj),
+        (
+            "Carbon of the crop that enters the works, as CO2",
+            carbon.feedstock_g_co2_per_mj,
+        ),
         ("Carbon of the fuel, as CO2", Some(carbon.fuel_g_co2_per_mj)),
-        ("Fermentation CO2, vented or captured", Some(carbon.fermentation_g_co2_per_mj)),
-        ("Carbon of co-products that leave, as CO2", carbon.co_products_g_co2_per_mj),
-        ("Carbon of residues, wastes and other inputs, as CO2", carbon.other_g_co2_per_mj),
+        (
+            "Fermentation CO2, vented or captured",
+            Some(carbon.fermentation_g_co2_per_mj),
+        ),
+        (
+            "Carbon of co-products that leave, as CO2",
+            carbon.co_products_g_co2_per_mj,
+        ),
+        (
+            "Carbon of residues, wastes and other inputs, as CO2",
+            carbon.other_g_co2_per_mj,
+        ),
         ("Uptake attributed to the fuel", Some(carbon.uptake_g_co2_per_mj)),
         ("CO2 of burning the fuel", Some(carbon.combustion_g_co2_per_mj)),
-        ("Biogenic CO2 of inputs other than fermentation", Some(carbon.other_biogenic_g_co2_per_mj)),
+        (
+            "Biogenic CO2 of inputs other than fermentation",
+            Some(carbon.other_biogenic_g_co2_per_mj),
+        ),
         ("Closure: carbon out over carbon in, %", carbon.closure_percent),
-        ("Half-range of typical contents, percentage points", carbon.closure_half_range_points),
+        (
+            "Half-range of typical contents, percentage points",
+            carbon.closure_half_range_points,
+        ),
     ];
     let mut row = FIRST;
     for (words, figure) in rows {
@@ -60,7 +78,12 @@ pub fn carbon(mut page: Page, plan: &Plan) -> Result<(), XlsxError> {
         row += 1;
     }
     row += 1;
-    page.text(row, 0, "The crop's own CO2 in line, from field to wheel", Part::Band)?;
+    page.text(
+        row,
+        0,
+        "The crop's own CO2 in line, from field to wheel",
+        Part::Band,
+    )?;
     row += 1;
     let first = row;
     for line in &carbon.rows {

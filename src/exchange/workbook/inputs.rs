@@ -48,7 +48,10 @@ const NOTE: u16 = 28;
 
 /// Writes the sheet; `links` says where the workings of an input begin.
 pub fn write(mut page: Page, plan: &Plan, links: &Links) -> Result<(), XlsxError> {
-    let gases: Vec<String> = Gas::ALL.iter().map(|gas| format!("{} kg/recipe", gas.words())).collect();
+    let gases: Vec<String> = Gas::ALL
+        .iter()
+        .map(|gas| format!("{} kg/recipe", gas.words()))
+        .collect();
     let mut columns = vec![
         ("Stage", 22.0),
         ("Input", 14.0),
@@ -134,7 +137,9 @@ fn one(page: &mut Page, plan: &Plan, row: u32, planned: &Row, links: &Links) -> 
         Basis::Model { kind, reads_stage } => {
             modelled(page, plan, row, planned)?;
             note.push(match reads_stage {
-                true => "A value of the model, which reads amounts of its stage: assess again when they change.",
+                true => {
+                    "A value of the model, which reads amounts of its stage: assess again when they change."
+                }
                 false => "A value of the model.",
             });
             format!("model {kind}")
@@ -158,7 +163,13 @@ fn one(page: &mut Page, plan: &Plan, row: u32, planned: &Row, links: &Links) -> 
         }
         Basis::Default { g_per_mj, factor } => {
             let all = Digits::All;
-            page.formula(row, AMOUNT, &format!("={}", plan.factors.size(*factor)), *g_per_mj, (Part::Formula, all))?;
+            page.formula(
+                row,
+                AMOUNT,
+                &format!("={}", plan.factors.size(*factor)),
+                *g_per_mj,
+                (Part::Formula, all),
+            )?;
             page.text(row, UNIT, "g CO2e/MJ", Part::Text)?;
             let formula = format!("={}/1000", cell(row, AMOUNT));
             page.formula(row, CONVERTED, &formula, g_per_mj / 1000.0, (Part::Formula, all))?;
@@ -173,7 +184,9 @@ fn one(page: &mut Page, plan: &Plan, row: u32, planned: &Row, links: &Links) -> 
     page.text(row, HOW, &rests_on, Part::Text)?;
     carried(page, plan, row, planned)?;
     if let Some(entered) = planned.entered {
-        let origin = entered.origin.map_or("", crate::core::documents::amount::Origin::name);
+        let origin = entered
+            .origin
+            .map_or("", crate::core::documents::amount::Origin::name);
         page.text(row, ORIGIN, origin, Part::Text)?;
         page.text(row, EVIDENCE, &entered.evidence.join(", "), Part::Text)?;
     }
@@ -195,7 +208,13 @@ fn link(page: &mut Page, plan: &Plan, row: u32, factor: usize) -> Result<(), Xls
     page.link(row, FACTOR, to, plan.factors.short(factor))
 }
 
-fn priced(page: &mut Page, plan: &Plan, row: u32, planned: &Row, conversion: &Conversion) -> Result<(), XlsxError> {
+fn priced(
+    page: &mut Page,
+    plan: &Plan,
+    row: u32,
+    planned: &Row,
+    conversion: &Conversion,
+) -> Result<(), XlsxError> {
     let (all, factors) = (Digits::All, &plan.factors);
     page.number(row, AMOUNT, conversion.amount, Part::Entered, all)?;
     page.text(row, UNIT, &conversion.unit.symbol, Part::Text)?;
@@ -218,11 +237,23 @@ fn priced(page: &mut Page, plan: &Plan, row: u32, planned: &Row, conversion: &Co
     match conversion.times {
         Times::NetPerGross(ratio) if sign.is_empty() => page.number(row, TIMES, ratio, Part::Entered, all)?,
         Times::One => page.number(row, TIMES, conversion.sign, Part::Formula, all)?,
-        _ if base == 0.0 => page.formula(row, TIMES, &formula, heating(plan, conversion), (Part::Formula, all))?,
+        _ if base == 0.0 => page.formula(
+            row,
+            TIMES,
+            &formula,
+            heating(plan, conversion),
+            (Part::Formula, all),
+        )?,
         _ => page.formula(row, TIMES, &formula, found, (Part::Formula, all))?,
     }
     let size = factors.size(conversion.factor);
-    page.formula(row, FACTOR_SIZE, &format!("={size}"), conversion.factor_size, (Part::Formula, all))?;
+    page.formula(
+        row,
+        FACTOR_SIZE,
+        &format!("={size}"),
+        conversion.factor_size,
+        (Part::Formula, all),
+    )?;
     let offset = match conversion.unit.offset {
         0.0 => String::new(),
         offset => format!("+{}", figure(offset)),
@@ -248,14 +279,22 @@ fn heating(plan: &Plan, conversion: &Conversion) -> f64 {
             Times::One => 1.0,
             Times::NetPerGross(ratio) => ratio,
             Times::HeatingValue(row) => plan.factors.heating_value(row) * 1e6,
-            Times::DensityAndHeatingValue(row) => plan.factors.heating_value(row) * plan.factors.kg_per_m3(row) * 1e6,
+            Times::DensityAndHeatingValue(row) => {
+                plan.factors.heating_value(row) * plan.factors.kg_per_m3(row) * 1e6
+            }
         }
 }
 
 fn by_gas(page: &mut Page, plan: &Plan, row: u32, planned: &Row, factor: usize) -> Result<(), XlsxError> {
     for (gas, kg) in planned.gases.entries() {
         let formula = format!("={}*{}", cell(row, CONVERTED), plan.factors.gas(factor, gas));
-        page.formula(row, gas_column(GASES, gas), &formula, kg, (Part::Formula, Digits::All))?;
+        page.formula(
+            row,
+            gas_column(GASES, gas),
+            &formula,
+            kg,
+            (Part::Formula, Digits::All),
+        )?;
     }
     Ok(())
 }
@@ -361,7 +400,13 @@ fn stated(
     page.formula(row, CONVERTED, &formula, kg, (Part::Formula, all))?;
     page.text(row, PER, "kg CO2e/recipe", Part::Text)?;
     let column = gas_column(GASES, Gas::Co2eUnsplit);
-    page.formula(row, column, &format!("={}", cell(row, CONVERTED)), kg, (Part::Formula, all))
+    page.formula(
+        row,
+        column,
+        &format!("={}", cell(row, CONVERTED)),
+        kg,
+        (Part::Formula, all),
+    )
 }
 
 /// From kg per recipe to g CO2e/MJ.
@@ -375,8 +420,17 @@ fn carried(page: &mut Page, plan: &Plan, row: u32, planned: &Row) -> Result<(), 
         Some(j) => {
             let stage = plan.chain[j].stage;
             let formula = format!("={}", on(chain::NAME, stage, chain::CARRIED));
-            page.formula(row, SCALE, &formula, plan.demand.scale[j], formula_of(Digits::Power))?;
-            (plan.demand.scale[j], Some((on(chain::NAME, stage, chain::WHOLE), plan.demand.whole[j])))
+            page.formula(
+                row,
+                SCALE,
+                &formula,
+                plan.demand.scale[j],
+                formula_of(Digits::Power),
+            )?;
+            (
+                plan.demand.scale[j],
+                Some((on(chain::NAME, stage, chain::WHOLE), plan.demand.whole[j])),
+            )
         }
         None => {
             page.number(row, SCALE, 1.0, Part::Formula, Digits::Power)?;
@@ -384,7 +438,13 @@ fn carried(page: &mut Page, plan: &Plan, row: u32, planned: &Row) -> Result<(), 
         }
     };
     let counts = planned.result.replaced.is_none();
-    page.number(row, COUNTS, f64::from(u8::from(counts)), Part::Formula, Digits::All)?;
+    page.number(
+        row,
+        COUNTS,
+        f64::from(u8::from(counts)),
+        Part::Formula,
+        Digits::All,
+    )?;
     let once = format!("{}*1000*{}", cell(row, CO2E), cell(row, SCALE));
     let net = if counts { co2e * 1000.0 * scale } else { 0.0 };
     let formula = format!("={}*{once}", cell(row, COUNTS));
@@ -395,8 +455,13 @@ fn carried(page: &mut Page, plan: &Plan, row: u32, planned: &Row) -> Result<(), 
     page.formula(row, UNSHARED, &formula, unshared, formula_of(Digits::Four))?;
     let replaced = planned.input.is_none_or(|input| input.replaced.is_some());
     if planned.result.term == crate::core::domain::Term::Eu && !counts && !replaced {
-        page.formula(row, MEMO, &format!("={once}"), co2e * 1000.0 * scale, formula_of(Digits::Four))?;
+        page.formula(
+            row,
+            MEMO,
+            &format!("={once}"),
+            co2e * 1000.0 * scale,
+            formula_of(Digits::Four),
+        )?;
     }
     Ok(())
 }
-

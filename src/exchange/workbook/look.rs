@@ -27,6 +27,8 @@ pub enum Part {
     Formula,
     /// A figure that sums up.
     Sum,
+    /// A figure that matters.
+    Strong,
     /// A link inside the workbook.
     Link,
 }
@@ -34,6 +36,8 @@ pub enum Part {
 /// The digits a figure shows.
 #[derive(Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Debug)]
 pub enum Digits {
+    /// No figure: words.
+    Words,
     /// As they come.
     All,
     /// g CO2e/MJ and the like.
@@ -51,11 +55,16 @@ pub fn format(part: Part, digits: Digits) -> Format {
         .set_font_size(9)
         .set_align(FormatAlign::Top)
         .set_num_format(match digits {
-            Digits::All => "General",
+            Digits::Words | Digits::All => "General",
             Digits::Four => "#,##0.0000;-#,##0.0000;0",
             Digits::Six => "0.000000",
             Digits::Power => "0.000000E+00",
         });
+    // A little room between a figure and the unit in the next cell.
+    let base = match digits {
+        Digits::Words => base,
+        _ => base.set_align(FormatAlign::Right).set_indent(1),
+    };
     match part {
         Part::Title => base.set_bold().set_font_size(14),
         Part::Head => base
@@ -77,6 +86,7 @@ pub fn format(part: Part, digits: Digits) -> Format {
         Part::Value => base.set_italic().set_font_color(Color::RGB(0x0055_5555)),
         Part::Formula => base,
         Part::Sum => base.set_bold().set_border_top(FormatBorder::Thin),
+        Part::Strong => base.set_bold(),
         Part::Link => base
             .set_font_color(Color::RGB(0x0012_3C8C))
             .set_underline(FormatUnderline::Single),

@@ -104,22 +104,49 @@ pub fn write(
     for name in sheets {
         workbook.add_worksheet().set_name(name)?;
     }
-    let links = workings::write(page::open(&mut workbook, workings::NAME, assessment.example)?, &plan)?;
-    about::write(page::open(&mut workbook, about::NAME, assessment.example)?, &plan, about)?;
-    inputs::write(page::open(&mut workbook, inputs::NAME, assessment.example)?, &plan, &links)?;
-    factors::write(page::open(&mut workbook, factors::NAME, assessment.example)?, &plan)?;
+    let links = workings::write(
+        page::open(&mut workbook, workings::NAME, assessment.example)?,
+        &plan,
+    )?;
+    about::write(
+        page::open(&mut workbook, about::NAME, assessment.example)?,
+        &plan,
+        about,
+    )?;
+    inputs::write(
+        page::open(&mut workbook, inputs::NAME, assessment.example)?,
+        &plan,
+        &links,
+    )?;
+    factors::write(
+        page::open(&mut workbook, factors::NAME, assessment.example)?,
+        &plan,
+    )?;
     chain::write(page::open(&mut workbook, chain::NAME, assessment.example)?, &plan)?;
     terms::write(page::open(&mut workbook, terms::NAME, assessment.example)?, &plan)?;
-    totals::write(page::open(&mut workbook, totals::NAME, assessment.example)?, &plan)?;
-    findings::carbon(page::open(&mut workbook, findings::CARBON, assessment.example)?, &plan)?;
-    findings::write(page::open(&mut workbook, findings::NAME, assessment.example)?, &plan)?;
+    totals::write(
+        page::open(&mut workbook, totals::NAME, assessment.example)?,
+        &plan,
+    )?;
+    findings::carbon(
+        page::open(&mut workbook, findings::CARBON, assessment.example)?,
+        &plan,
+    )?;
+    findings::write(
+        page::open(&mut workbook, findings::NAME, assessment.example)?,
+        &plan,
+    )?;
     for (name, cell) in totals::NAMED {
         workbook.define_name(*name, &format!("={}!{cell}", totals::NAME))?;
     }
     let made = ExcelDateTime::from_timestamp(about.made_at.as_second())?;
     let properties = DocProperties::new()
         .set_title(&page::cut(&assessment.pathway_name, 200))
-        .set_subject(if assessment.example { "EXAMPLE: invented data" } else { "" })
+        .set_subject(if assessment.example {
+            "EXAMPLE: invented data"
+        } else {
+            ""
+        })
         .set_author(&page::cut(about.issuer.unwrap_or(""), 200))
         .set_creation_datetime(&made);
     workbook.set_properties(&properties);

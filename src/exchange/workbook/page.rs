@@ -17,6 +17,8 @@ pub struct Page<'w> {
     looks: BTreeMap<(Part, Digits), Format>,
     links: u32,
     example: bool,
+    widths: Vec<f64>,
+    heights: BTreeMap<u32, f64>,
 }
 
 /// How a sheet is laid out on screen and paper.
@@ -38,6 +40,8 @@ pub fn open<'w>(workbook: &'w mut Workbook, name: &str, example: bool) -> Result
         looks: BTreeMap::new(),
         links: 0,
         example,
+        widths: Vec::new(),
+        heights: BTreeMap::new(),
     })
 }
 
@@ -53,17 +57,18 @@ pub fn on(sheet: &str, row: u32, column: u16) -> String {
 
 /// A span of cells on a sheet, corners from zero.
 pub fn span(sheet: &str, (row, column): (u32, u16), (last_row, last_column): (u32, u16)) -> String {
-    format!(
-        "{sheet}!{}:{}",
-        cell(row, column),
-        cell(last_row, last_column)
-    )
+    format!("{sheet}!{}:{}", cell(row, column), cell(last_row, last_column))
 }
 
 /// A figure in a formula, all digits.
 pub fn figure(x: f64) -> String {
     let text = plain(x).replace('e', "E");
     if x < 0.0 { format!("({text})") } else { text }
+}
+
+/// A number of characters as a figure.
+fn count(characters: usize) -> f64 {
+    u32::try_from(characters).map_or(1e6, f64::from)
 }
 
 /// The beginning of a text, whole characters.
@@ -88,17 +93,27 @@ impl Page<'_> {
         sheet.set_freeze_panes(layout.head + 1, layout.fixed)?;
         sheet.set_landscape();
         sheet.set_paper_size(if layout.wide { 8 } else { 9 });
-        sheet.set_print_fit_to_pages(1, 0);
+        sheet.set_print_fit_to_pages(if layout.wide { 2 } else { 1 }, 0);
         sheet.set_margins(0.4, 0.4, 0.5, 0.5, 0.2, 0.2);
-        sheet.set_repeat_rows(layout.head, layout.head)?;
-        let mark = if self.example { "&R&8&BEXAMPLE: invented data" } else { "" };
+        let heads = layout.columns.iter().any(|(head, _)| !head.is_empty());
+        if heads {
+            sheet.set_repeat_rows(layout.head, layout.head)?;
+            sheet.set_row_height(layout.head, if layout.wide { 50 } else { 26 })?;
+        }
+        if layout.wide && layout.fixed > 0 {
+            sheet.set_repeat_columns(0, layout.fixed - 1)?;
+        }
+        sheet.set_row_height(0, 20)?;
+        let mark = if self.example {
+            "&R&8&BEXAMPLE: invented data"
+        } else {
+            ""
+        };
         sheet.set_header(format!("&L&8&A{mark}"));
         sheet.set_footer("&L&8&F&R&8&P / &N");
-        if layout.columns.iter().any(|(head, _)| !head.is_empty()) {
-            sheet.set_row_height(layout.head, 38)?;
-        }
         self.text(0, 0, title, Part::Title)?;
-        for (column, (head, _)) in (0..=last).zip(layout.columns) {
+        self.widths = layout.columns.iter().map(|(_, width)| *width).collect();
+        for (column, (head, _)) in (0..=last).zip(layout.columns).filter(|_| heads) {
             self.text(layout.head, column, head, Part::Head)?;
         }
         Ok(())
@@ -109,10 +124,29 @@ impl Page<'_> {
         look.or_insert_with(|| format(part, digits)).clone()
     }
 
+    /// Gives a row the height that wrapped words need: nothing but a person at a screen would do it later.
+    fn make_room(&mut self, row: u32, column: u16, text: &str) -> Result<(), XlsxError> {
+        let width = self.widths.get(usize::from(column)).copied().unwrap_or(10.0);
+        let of = |line: &str| (count(line.chars().count()) / (width * 1.05)).ceil().max(1.0);
+        let lines: f64 = text.lines().map(of).sum();
+        if lines > 1.0 {
+            let height = (12.5 * lines).min(400.0);
+            let known = self.heights.entry(row).or_insert(0.0);
+            if height > *known {
+                *known = height;
+                self.sheet.set_row_height(row, height)?;
+            }
+        }
+        Ok(())
+    }
+
     /// Writes words as words: what begins with `=`, `+`, `-` or `@` is no formula.
     pub fn text(&mut self, row: u32, column: u16, text: &str, part: Part) -> Result<(), XlsxError> {
-        let look = self.look(part, Digits::All);
+        let look = self.look(part, Digits::Words);
         let text = cut(text, LONGEST_TEXT);
+        if part == Part::Long {
+            self.make_room(row, column, &text)?;
+        }
         self.sheet.write_string_with_format(row, column, text, &look)?;
         Ok(())
     }
@@ -171,9 +205,12 @@ impl Page<'_> {
             return self.text(row, column, text, Part::Text);
         }
         self.links += 1;
-        let look = self.look(Part::Link, Digits::All);
-        let url = Url::new(format!("internal:{}", on(sheet, to_row, to_column).replace('$', "")))
-            .set_text(cut(text, 2_000));
+        let look = self.look(Part::Link, Digits::Words);
+        let url = Url::new(format!(
+            "internal:{}",
+            on(sheet, to_row, to_column).replace('$', "")
+        ))
+        .set_text(cut(text, 2_000));
         self.sheet.write_url_with_format(row, column, url, &look)?;
         Ok(())
     }

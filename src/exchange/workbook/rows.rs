@@ -170,7 +170,10 @@ fn default_row<'a>(
     factors: &mut Factors,
 ) -> Option<Row<'a>> {
     let assessed = input_result(result, 0)?;
-    let default = resolved.defaults.iter().find(|default| default.key == assessed.key)?;
+    let default = resolved
+        .defaults
+        .iter()
+        .find(|default| default.key == assessed.key)?;
     Some(Row {
         stage: None,
         stage_title: &result.name,
@@ -273,7 +276,10 @@ fn basis(
     assessed: &InputResult,
     factors: &mut Factors,
 ) -> Basis {
-    let stated = input.key.strip_prefix("stated:").zip(stage.document.stated.as_ref());
+    let stated = input
+        .key
+        .strip_prefix("stated:")
+        .zip(stage.document.stated.as_ref());
     if let Some((term, stated)) = stated
         && let Some(term) = stated.terms.get(term)
     {

@@ -23,7 +23,12 @@ pub struct Weighed {
 
 /// True if the products of a stage divide its burden between them.
 pub fn shares(stage: &Stage) -> bool {
-    let several = stage.products.iter().filter(|product| product.shares_burden).count() > 1;
+    let several = stage
+        .products
+        .iter()
+        .filter(|product| product.shares_burden)
+        .count()
+        > 1;
     several && stage.allocation != Some(AllocationMethod::Substitution)
 }
 
@@ -41,10 +46,19 @@ pub fn weigh(plan: &Plan, j: usize, index: usize) -> Option<Weighed> {
     };
     let of = |column: u16, least: bool| {
         let product_of = format!("{}*{}", cell(row, PER_UNIT), cell(row, column));
-        if least { format!("=MAX(0,{product_of})") } else { format!("={product_of}") }
+        if least {
+            format!("=MAX(0,{product_of})")
+        } else {
+            format!("={product_of}")
+        }
     };
     let (per_unit, column, least, words) = match stage.allocation? {
-        AllocationMethod::Exergy => (exergy(plan, flow, &product.flow.material), BASE, false, "exergy per J"),
+        AllocationMethod::Exergy => (
+            exergy(plan, flow, &product.flow.material),
+            BASE,
+            false,
+            "exergy per J",
+        ),
         AllocationMethod::Mass if product.flow.pure_kg.is_some() => {
             (("=1".to_owned(), 1.0), DRY, false, "pure ethanol")
         }
@@ -125,8 +139,5 @@ fn price(flow: &Flow) -> Option<(String, f64)> {
     let own = flow.price.as_ref()?;
     let base = Quantity::read(own.value, &own.unit).ok()?.value;
     let unit = parse_unit(&own.unit).ok()?;
-    Some((
-        format!("={}*{}", figure(own.value), figure(unit.factor)),
-        base,
-    ))
+    Some((format!("={}*{}", figure(own.value), figure(unit.factor)), base))
 }

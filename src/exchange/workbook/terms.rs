@@ -58,7 +58,10 @@ pub fn write(mut page: Page, plan: &Plan) -> Result<(), XlsxError> {
         let in_line = carbon.terms_in_line_g_co2e_per_mj.get(term);
         page.number(row, SUM + 1, in_line, Part::Value, Digits::Four)?;
         if plan.resolved.rules.leaves_out(term) {
-            let words = format!("zero under {}; what it would be stands on Totals as memo", plan.resolved.rules.id);
+            let words = format!(
+                "zero under {}; what it would be stands on Totals as memo",
+                plan.resolved.rules.id
+            );
             page.text(row, SUM + 2, &words, Part::Text)?;
         }
     }

@@ -46,13 +46,30 @@ fn head(page: &mut Page, plan: &Plan) -> Result<(), XlsxError> {
     let four = |part| (part, Digits::Four);
     page.text(NET, 0, "Net", Part::Text)?;
     let net = format!("={}", on(terms::NAME, terms::total_row(), terms::NET));
-    page.formula(NET, FIGURE, &net, assessment.net.g_co2e_per_mj, four(Part::Sum))?;
+    page.formula(
+        NET,
+        FIGURE,
+        &net,
+        assessment.net.g_co2e_per_mj,
+        four(Part::Strong),
+    )?;
     page.text(NET, 2, "g CO2e/MJ", Part::Text)?;
-    page.link(NET, 3, (terms::NAME, terms::total_row(), terms::NET), "sum of the terms; named net_g_co2e_per_mj")?;
+    page.link(
+        NET,
+        3,
+        (terms::NAME, terms::total_row(), terms::NET),
+        "sum of the terms; named net_g_co2e_per_mj",
+    )?;
     let rules = plan.resolved.rules;
     page.text(COMPARATOR, 0, &rules.comparator_word, Part::Text)?;
     let formula = format!("={}", factors::constant(factors::Constant::Comparator));
-    page.formula(COMPARATOR, FIGURE, &formula, assessment.comparator_g_co2e_per_mj, four(Part::Formula))?;
+    page.formula(
+        COMPARATOR,
+        FIGURE,
+        &formula,
+        assessment.comparator_g_co2e_per_mj,
+        four(Part::Formula),
+    )?;
     page.text(COMPARATOR, 2, "g CO2e/MJ", Part::Text)?;
     page.text(COMPARATOR, 3, &rules.comparator.source, Part::Text)?;
     page.text(SAVING, 0, "Saving", Part::Text)?;
@@ -61,8 +78,13 @@ fn head(page: &mut Page, plan: &Plan) -> Result<(), XlsxError> {
         Some(saving) => {
             let (base, net) = (cell(COMPARATOR, FIGURE), cell(NET, FIGURE));
             let formula = format!("=100*({base}-{net})/{base}");
-            page.formula(SAVING, FIGURE, &formula, saving, four(Part::Sum))?;
-            page.text(SAVING, 3, "compared with minimum savings unrounded; named saving_percent", Part::Text)?;
+            page.formula(SAVING, FIGURE, &formula, saving, four(Part::Strong))?;
+            page.text(
+                SAVING,
+                3,
+                "compared with minimum savings unrounded; named saving_percent",
+                Part::Text,
+            )?;
         }
         None => {
             page.text(SAVING, FIGURE, "not printed", Part::Text)?;
@@ -72,7 +94,10 @@ fn head(page: &mut Page, plan: &Plan) -> Result<(), XlsxError> {
     }
     page.text(MEMO, 0, "Memo: CH4 and N2O of use, in no total", Part::Text)?;
     let (first, last) = plan.all_inputs();
-    let memo = format!("=SUM({})", span(inputs::NAME, (first, inputs::MEMO), (last, inputs::MEMO)));
+    let memo = format!(
+        "=SUM({})",
+        span(inputs::NAME, (first, inputs::MEMO), (last, inputs::MEMO))
+    );
     let found = assessment.memo.e_u_not_counted_g_co2e_per_mj;
     page.formula(MEMO, FIGURE, &memo, found, four(Part::Formula))?;
     page.text(MEMO, 2, "g CO2e/MJ", Part::Text)
@@ -140,20 +165,33 @@ fn by_stage(page: &mut Page, plan: &Plan, mut row: u32) -> Result<u32, XlsxError
             None => {
                 page.text(row, 0, &result.name, Part::Text)?;
                 let position = plan.rows.iter().position(|planned| {
-                    planned.stage.is_none() && result.inputs.iter().any(|input| input.key == planned.result.key)
+                    planned.stage.is_none()
+                        && result.inputs.iter().any(|input| input.key == planned.result.key)
                 });
                 let at = inputs::FIRST + position.map_or(0, count);
                 on(inputs::NAME, at, inputs::NET)
             }
         };
-        page.formula(row, FIGURE, &format!("={at}"), result.g_co2e_per_mj, (Part::Formula, Digits::Four))?;
+        page.formula(
+            row,
+            FIGURE,
+            &format!("={at}"),
+            result.g_co2e_per_mj,
+            (Part::Formula, Digits::Four),
+        )?;
         page.text(row, 2, "g CO2e/MJ", Part::Text)?;
         row += 1;
     }
     if row > first {
         page.text(row, 0, "All stages", Part::Sum)?;
         let formula = format!("=SUM({}:{})", cell(first, FIGURE), cell(row - 1, FIGURE));
-        page.formula(row, FIGURE, &formula, plan.assessment.net.g_co2e_per_mj, (Part::Sum, Digits::Four))?;
+        page.formula(
+            row,
+            FIGURE,
+            &formula,
+            plan.assessment.net.g_co2e_per_mj,
+            (Part::Sum, Digits::Four),
+        )?;
         page.text(row, 2, "g CO2e/MJ", Part::Text)?;
         row += 1;
         page.text(row, 0, "Stages and terms agree", Part::Text)?;
@@ -173,7 +211,10 @@ fn by_stage(page: &mut Page, plan: &Plan, mut row: u32) -> Result<u32, XlsxError
 fn trust(page: &mut Page, plan: &Plan, row: u32) -> Result<(), XlsxError> {
     page.text(row, 0, "What the figures rest on", Part::Band)?;
     for (row, (words, percent)) in (row + 1..).zip([
-        ("Primary data (measured or a supplier's)", plan.assessment.primary_data_percent),
+        (
+            "Primary data (measured or a supplier's)",
+            plan.assessment.primary_data_percent,
+        ),
         ("Estimates", plan.assessment.estimated_percent),
     ]) {
         page.text(row, 0, words, Part::Text)?;

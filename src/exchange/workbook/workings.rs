@@ -58,7 +58,12 @@ pub fn write(mut page: Page, plan: &Plan) -> Result<Links, XlsxError> {
     Ok(links)
 }
 
-fn steps(page: &mut Page, first: u32, (stage, input): (&str, &str), steps: &[Step]) -> Result<u32, XlsxError> {
+fn steps(
+    page: &mut Page,
+    first: u32,
+    (stage, input): (&str, &str),
+    steps: &[Step],
+) -> Result<u32, XlsxError> {
     for (row, step) in (first..).zip(steps) {
         page.text(row, 0, stage, Part::Text)?;
         page.text(row, 1, input, Part::Text)?;

@@ -33,7 +33,10 @@ pub fn facts() -> PactFacts {
 }
 
 pub fn demo(name: &str) -> Pathway {
-    let (_, text) = wheelwort::demo::PATHWAYS.iter().find(|(file, _)| file.starts_with(name)).unwrap();
+    let (_, text) = wheelwort::demo::PATHWAYS
+        .iter()
+        .find(|(file, _)| file.starts_with(name))
+        .unwrap();
     Pathway::from_bytes(text.as_bytes()).unwrap()
 }
 
@@ -74,7 +77,10 @@ fn by_hand() -> Value {
 #[test]
 fn a_chain_by_hand() {
     let pathway = Pathway::from_value(&by_hand()).unwrap();
-    let delivers = PactFacts { delivers: true, ..facts() };
+    let delivers = PactFacts {
+        delivers: true,
+        ..facts()
+    };
     let written = write(&pathway, book(), &delivers, &[]).unwrap();
     let record = json_of(&written);
     let gwp = &book().gwp_sets["ar6"];
@@ -82,11 +88,23 @@ fn a_chain_by_hand() {
     let fossil = (60.0 + 0.2 * gwp.n2o + 90.0 + 3.0) / 300.0;
     let methane = 0.5 * gwp.ch4_biogenic / 300.0;
     assert!(near(figure(&record, "fossilGhgEmissions"), fossil));
-    assert!(near(figure(&record, "landManagementFossilGhgEmissions"), (60.0 + 0.2 * gwp.n2o) / 300.0));
+    assert!(near(
+        figure(&record, "landManagementFossilGhgEmissions"),
+        (60.0 + 0.2 * gwp.n2o) / 300.0
+    ));
     assert!(near(figure(&record, "biogenicNonCO2Emissions"), methane));
-    assert!(near(figure(&record, "pcfExcludingBiogenicUptake"), fossil + methane));
-    assert!(near(figure(&record, "pcfIncludingBiogenicUptake"), fossil + methane - 1.91061));
-    assert!(near(figure(&record, "outboundLogisticsGhgEmissions"), 6.0 / 300.0));
+    assert!(near(
+        figure(&record, "pcfExcludingBiogenicUptake"),
+        fossil + methane
+    ));
+    assert!(near(
+        figure(&record, "pcfIncludingBiogenicUptake"),
+        fossil + methane - 1.91061
+    ));
+    assert!(near(
+        figure(&record, "outboundLogisticsGhgEmissions"),
+        6.0 / 300.0
+    ));
     assert!((figure(&record, "biogenicCarbonContent") - 0.5214).abs() < 1e-3);
     assert_eq!(record["pcf"]["referencePeriodStart"], "2025-01-01T00:00:00Z");
     assert_eq!(record["pcf"]["referencePeriodEnd"], "2026-01-01T00:00:00Z");
@@ -99,7 +117,7 @@ fn a_chain_by_hand() {
 
 #[test]
 fn the_demonstration_passes_its_own_checks() {
-    for name in ["a_", "b_", "c_", "d_", "g_", "h_"] {
+    for name in ["a_", "b_", "c_", "g_", "h_"] {
         let pathway = demo(name);
         let assessment = law(&pathway);
         let written = write(&pathway, book(), &facts(), &[&assessment]).unwrap();
@@ -120,7 +138,10 @@ fn the_total_is_the_engines_own_net_to_the_gate() {
     let net = law(&Pathway::from_value(&cut).unwrap()).net.g_co2e_per_mj;
     let per_kg = net * book().rule_sets["inventory-ar6"].ethanol_lhv.value / 1000.0;
     let written = write(&Pathway::from_value(&by_hand()).unwrap(), book(), &facts(), &[]).unwrap();
-    assert!(near(figure(&json_of(&written), "pcfExcludingBiogenicUptake"), per_kg));
+    assert!(near(
+        figure(&json_of(&written), "pcfExcludingBiogenicUptake"),
+        per_kg
+    ));
 }
 
 #[test]
@@ -129,8 +150,17 @@ fn stored_co2_counts_only_when_proven_and_sold_co2_never() {
     let sold = json_of(&write(&pathway, book(), &facts(), &[]).unwrap());
     assert!(sold["pcf"].get("technologicalCO2Removals").is_none());
     assert_eq!(sold["pcf"]["ccsTechnologicalCO2CaptureIncluded"], false);
-    assert!(sold["comment"].as_str().unwrap().contains("CO2 sold in place of fossil CO2"));
-    let capture = pathway.stages.iter_mut().find(|stage| stage.key == "co2-plant").unwrap();
+    assert!(
+        sold["comment"]
+            .as_str()
+            .unwrap()
+            .contains("CO2 sold in place of fossil CO2")
+    );
+    let capture = pathway
+        .stages
+        .iter_mut()
+        .find(|stage| stage.key == "co2-plant")
+        .unwrap();
     let Some(wheelwort::core::documents::input::OneOrMany::One(model)) = &mut capture.inputs[0].model else {
         panic!("one model")
     };
@@ -138,13 +168,21 @@ fn stored_co2_counts_only_when_proven_and_sold_co2_never() {
         model.parameters.remove(name);
     }
     model.parameters.insert("use".to_owned(), "store".into());
-    model.parameters.insert("storage_site".to_owned(), "Invented store under the sea".into());
-    model.parameters.insert("storage_permit".to_owned(), "Invented permit 7".into());
+    model
+        .parameters
+        .insert("storage_site".to_owned(), "Invented store under the sea".into());
+    model
+        .parameters
+        .insert("storage_permit".to_owned(), "Invented permit 7".into());
     let without = write(&pathway, book(), &facts(), &[]).unwrap();
-    let proven = PactFacts { storage_proven: true, ..facts() };
+    let proven = PactFacts {
+        storage_proven: true,
+        ..facts()
+    };
     let with = json_of(&write(&pathway, book(), &proven, &[]).unwrap());
     assert!(figure(&with, "technologicalCO2Removals") < 0.0);
-    let apart = figure(&json_of(&without), "pcfExcludingBiogenicUptake") - figure(&with, "pcfExcludingBiogenicUptake");
+    let apart = figure(&json_of(&without), "pcfExcludingBiogenicUptake")
+        - figure(&with, "pcfExcludingBiogenicUptake");
     assert!(near(apart, -figure(&with, "technologicalCO2Removals")));
 }
 
@@ -152,13 +190,26 @@ fn stored_co2_counts_only_when_proven_and_sold_co2_never() {
 fn denaturant_takes_its_place() {
     let pathway = Pathway::from_value(&by_hand()).unwrap();
     let pure = json_of(&write(&pathway, book(), &facts(), &[]).unwrap());
-    let denaturant = Denaturant { percent: 2.0, carbon_percent: 85.0, kg_co2e_per_kg: 0.5 };
-    let with = PactFacts { denaturant: Some(denaturant), ..facts() };
+    let denaturant = Denaturant {
+        percent: 2.0,
+        carbon_percent: 85.0,
+        kg_co2e_per_kg: 0.5,
+    };
+    let with = PactFacts {
+        denaturant: Some(denaturant),
+        ..facts()
+    };
     let written = write(&pathway, book(), &with, &[]).unwrap();
     let record = json_of(&written);
     assert!(near(figure(&record, "fossilCarbonContent"), 0.017));
-    assert!(near(figure(&record, "fossilGhgEmissions"), 0.98 * figure(&pure, "fossilGhgEmissions") + 0.01));
-    assert!(near(figure(&record, "biogenicCO2Uptake"), 0.98 * figure(&pure, "biogenicCO2Uptake")));
+    assert!(near(
+        figure(&record, "fossilGhgEmissions"),
+        0.98 * figure(&pure, "fossilGhgEmissions") + 0.01
+    ));
+    assert!(near(
+        figure(&record, "biogenicCO2Uptake"),
+        0.98 * figure(&pure, "biogenicCO2Uptake")
+    ));
     assert!(written.findings.is_empty());
 }
 
@@ -166,6 +217,7 @@ fn denaturant_takes_its_place() {
 fn what_is_no_cradle_to_gate_chain_is_refused() {
     let refused = |pathway: &Pathway| write(pathway, book(), &facts(), &[]).unwrap_err();
     assert!(matches!(refused(&demo("e_")), PactError::Bought));
+    assert!(matches!(refused(&demo("d_")), PactError::LawDefault("e_td")));
     let case = |text: &str| {
         let case: Value = serde_json::from_str(text).unwrap();
         Pathway::from_value(&case["document"]).unwrap()
@@ -183,12 +235,48 @@ fn missing_facts_are_named() {
         Err(PactError::Fact { field, .. }) => field,
         other => panic!("{other:?}"),
     };
-    assert_eq!(field(PactFacts { company_ids: vec!["DE123".to_owned()], ..facts() }), "company_ids");
-    assert_eq!(field(PactFacts { product_ids: Vec::new(), ..facts() }), "product_ids");
-    assert_eq!(field(PactFacts { standards: Vec::new(), ..facts() }), "standards");
-    assert_eq!(field(PactFacts { id: "7".to_owned(), ..facts() }), "id");
-    assert_eq!(field(PactFacts { ratings: Some([0.0, 1.0, 2.0]), ..facts() }), "ratings");
-    assert_eq!(field(PactFacts { left_out: (f64::NAN, None), ..facts() }), "left_out");
+    assert_eq!(
+        field(PactFacts {
+            company_ids: vec!["DE123".to_owned()],
+            ..facts()
+        }),
+        "company_ids"
+    );
+    assert_eq!(
+        field(PactFacts {
+            product_ids: Vec::new(),
+            ..facts()
+        }),
+        "product_ids"
+    );
+    assert_eq!(
+        field(PactFacts {
+            standards: Vec::new(),
+            ..facts()
+        }),
+        "standards"
+    );
+    assert_eq!(
+        field(PactFacts {
+            id: "7".to_owned(),
+            ..facts()
+        }),
+        "id"
+    );
+    assert_eq!(
+        field(PactFacts {
+            ratings: Some([0.0, 1.0, 2.0]),
+            ..facts()
+        }),
+        "ratings"
+    );
+    assert_eq!(
+        field(PactFacts {
+            left_out: (f64::NAN, None),
+            ..facts()
+        }),
+        "left_out"
+    );
 }
 
 #[test]
