@@ -11,6 +11,7 @@ mod api;
 mod cli;
 mod engine;
 mod faults;
+mod exchange;
 mod levers;
 mod statements;
 mod store;
