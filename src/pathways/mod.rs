@@ -14,6 +14,7 @@ mod read;
 mod reasons;
 pub mod rows;
 mod save;
+mod sound;
 mod sql;
 
 pub use assess::{AssessmentBytes, Reassessed, assessment, reassess_all};
@@ -26,6 +27,7 @@ pub use read::{
     FactorUse, Revision, Stored, changes, read, revision, revisions, rows_differ, stage, uses_of_factor,
 };
 pub use reasons::{MOST_REASONS, Reasons, ReasonsDocument, put_reasons, reasons};
+pub use sound::{Damage, damaged};
 pub use save::{archive, create, delete_stage, put_stage, replace, restore};
 
 use crate::core::documents::assessment::ThresholdResult;

@@ -3,6 +3,7 @@
 mod calculators;
 mod defaults;
 mod form;
+mod meeting;
 mod pages;
 mod stage;
 
