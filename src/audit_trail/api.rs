@@ -104,7 +104,7 @@ fn span(text: &str) -> Option<(Timestamp, Timestamp)> {
     if let Ok(day) = text.parse::<Date>()
         && text.len() == 10
     {
-        let begin = |day: Date| Some(day.to_zoned(TimeZone::UTC).ok()?.timestamp());
+        let begin = |day: Date| Some(day.to_zoned_datetime(TimeZone::UTC).ok()?.timestamp());
         return Some((begin(day)?, begin(day.tomorrow().ok()?)?));
     }
     let moment = text.parse::<Timestamp>().ok()?;
@@ -223,7 +223,9 @@ async fn export_csv(
     Query(filter): Query<Filter>,
 ) -> Result<Response, Refusal> {
     let export = Export::begin(&app, filter.question().map_err(wrong)?).await?;
-    let body = sent(export, Table::new(&COLUMNS).csv(), |lines| table(&lines).csv_rows());
+    let body = sent(export, Table::new(&COLUMNS).csv(), |lines| {
+        table(&lines).csv_rows()
+    });
     Ok(file("audit-trail.csv", "text/csv; charset=utf-8", body))
 }
 

@@ -228,7 +228,9 @@ fn row(entry: &Entry) -> Row {
     let what = |name: &str| line.what.get(name).and_then(Value::as_str);
     let thing = line.thing.replace('_', " ");
     let short: String = line.id.chars().take(8).collect();
-    let name = what("name").or_else(|| what("title")).map_or(short, str::to_owned);
+    let name = what("name")
+        .or_else(|| what("title"))
+        .map_or(short, str::to_owned);
     Row {
         number: line.number,
         day: line.at.strftime("%-d %b %Y").to_string(),
@@ -290,8 +292,17 @@ fn particulars(what: &Value) -> String {
             }
             (name, Value::String(text)) => out.push(format!("{}: {text}", name.replace('_', " "))),
             (name, Value::Number(number)) => {
-                let shown = number.as_f64().map_or_else(|| number.to_string(), rounding::show_all);
+                let shown = number
+                    .as_f64()
+                    .map_or_else(|| number.to_string(), rounding::show_all);
                 out.push(format!("{}: {shown}", name.replace('_', " ")));
+            }
+            (name, Value::Array(items)) => {
+                let texts: Vec<String> = items
+                    .iter()
+                    .map(|item| item.as_str().map_or_else(|| item.to_string(), str::to_owned))
+                    .collect();
+                out.push(format!("{}: {}", name.replace('_', " "), texts.join(", ")));
             }
             (name, other) => out.push(format!("{}: {other}", name.replace('_', " "))),
         }

@@ -35,8 +35,18 @@ fn full() -> ShowTrail {
     let page = Page {
         entries: vec![
             entry(3, "pathway", saved, "T. Hale"),
-            entry(2, "person", json!({ "roles": ["viewer"], "name": "S. Lund" }), "I. Marsh"),
-            entry(1, "check_settings", json!({ "before": "x", "hash": "y" }), HOSTILE),
+            entry(
+                2,
+                "person",
+                json!({ "roles": ["viewer"], "name": "S. Lund" }),
+                "I. Marsh",
+            ),
+            entry(
+                1,
+                "check_settings",
+                json!({ "before": "x", "hash": "y" }),
+                HOSTILE,
+            ),
         ],
         next: Some(1),
     };
@@ -50,7 +60,12 @@ fn full() -> ShowTrail {
         after: "9".into(),
         ..Asked::default()
     };
-    ShowTrail::of(&asked, Ok(page), &people, (12, format!("sha256:{}", "b2".repeat(32))))
+    ShowTrail::of(
+        &asked,
+        Ok(page),
+        &people,
+        (12, format!("sha256:{}", "b2".repeat(32))),
+    )
 }
 
 fn words(html: &str) -> String {
@@ -67,8 +82,13 @@ fn words(html: &str) -> String {
             _ => {}
         }
     }
-    let lines = out.lines().map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
-    lines.filter(|line| !line.is_empty()).collect::<Vec<_>>().join("\n")
+    let lines = out
+        .lines()
+        .map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
+    lines
+        .filter(|line| !line.is_empty())
+        .collect::<Vec<_>>()
+        .join("\n")
 }
 
 #[test]
@@ -95,8 +115,13 @@ fn every_sample_renders_safely() {
         ShowTrail::of(&asked, Ok(nothing), &[], (1, "sha256:00".into())),
         ShowTrail::of(&asked, Err(wrong), &[], (1, "sha256:00".into())),
     ];
-    for page in samples {
+    let folder = std::env::var_os("WHEELWORT_PAGES");
+    for (number, page) in samples.into_iter().enumerate() {
         let html = page.render().expect("renders");
+        if let Some(folder) = &folder {
+            let file = std::path::Path::new(folder).join(format!("audit_trail_{number}.html"));
+            std::fs::write(file, &html).expect("a folder to write to");
+        }
         for banned in ["<script>alert", "<b>bold", " style=\""] {
             assert!(!html.contains(banned), "{banned}: {html}");
         }
@@ -110,6 +135,9 @@ fn a_query_keeps_what_was_asked_for() {
         to: "2027-01-31".into(),
         ..Asked::default()
     };
-    assert_eq!(asked.query("after=3"), "?did=gave%20reasons&to=2027-01-31&after=3");
+    assert_eq!(
+        asked.query("after=3"),
+        "?did=gave%20reasons&to=2027-01-31&after=3"
+    );
     assert_eq!(Asked::default().query(""), "");
 }

@@ -1,7 +1,7 @@
 //! Reading the trail: filtered, a page at a time, from the end or from the beginning.
 
-use super::sql::{self, Kept};
 use super::Line;
+use super::sql::{self, Kept};
 use crate::app::App;
 use crate::app::who::Sight;
 use crate::store::StoreError;

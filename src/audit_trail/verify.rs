@@ -120,7 +120,9 @@ fn link(row: &Row, number: i64, previous: &str) -> Result<(), String> {
         ("did", line.did == row.did),
     ];
     match columns.iter().find(|(_, holds)| !holds) {
-        Some((column, _)) => Err(format!("Its column \"{column}\" says something else than its text.")),
+        Some((column, _)) => Err(format!(
+            "Its column \"{column}\" says something else than its text."
+        )),
         None => Ok(()),
     }
 }

@@ -17,7 +17,10 @@ struct Report {
 impl Report {
     fn finding(&mut self, text: &str) {
         self.findings += 1;
-        let plain: String = text.chars().map(|c| if c.is_control() { ' ' } else { c }).collect();
+        let plain: String = text
+            .chars()
+            .map(|c| if c.is_control() { ' ' } else { c })
+            .collect();
         print(plain.as_bytes());
     }
 }

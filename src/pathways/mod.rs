@@ -27,8 +27,8 @@ pub use read::{
     FactorUse, Revision, Stored, changes, read, revision, revisions, rows_differ, stage, uses_of_factor,
 };
 pub use reasons::{MOST_REASONS, Reasons, ReasonsDocument, put_reasons, reasons};
-pub use sound::{Damage, damaged};
 pub use save::{archive, create, delete_stage, put_stage, replace, restore};
+pub use sound::{Damage, damaged};
 
 use crate::core::documents::assessment::ThresholdResult;
 use crate::store::StoreError;

@@ -49,7 +49,8 @@ pub async fn damaged(app: &App) -> Result<Vec<Damage>, PathwayError> {
             found.push(Damage {
                 pathway,
                 revision: None,
-                what: "The rows written from its current document say something else than it does.".to_owned(),
+                what: "The rows written from its current document say something else than it does."
+                    .to_owned(),
             });
         }
     }

@@ -55,7 +55,7 @@ const CURRENT_AFTER: &str = "\
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.id > $2 ORDER BY p.id LIMIT $3";
 const EVERY_REVISION: &str = "\
-    SELECT p.id, p.public_id, r.id AS revision_id, r.number, r.document, r.hash, r.rule_set, r.example \
+    SELECT p.id, p.public_id, r.number, r.document, r.hash, r.rule_set, r.example \
     FROM pathway p JOIN revision r ON r.pathway_id = p.id AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.id >= $2 AND (p.id > $2 OR r.number > $3) ORDER BY p.id, r.number LIMIT $4";
 
@@ -413,7 +413,6 @@ pub(super) fn fold(name: &str) -> String {
 pub(super) struct KeptRevision {
     pub(super) id: i64,
     pub(super) public_id: String,
-    pub(super) revision_id: i64,
     pub(super) number: i64,
     pub(super) document: String,
     pub(super) hash: String,

@@ -107,7 +107,9 @@ fn own_path(path: &str) -> Option<PathBuf> {
             .is_some_and(|rest| rest.starts_with('/') && rest.len() > 1)
     });
     let plain = !path.contains('\\')
-        && Path::new(path).components().all(|part| matches!(part, Component::Normal(_)))
+        && Path::new(path)
+            .components()
+            .all(|part| matches!(part, Component::Normal(_)))
         && path.split('/').all(|part| !part.is_empty() && part != ".");
     (below && plain).then(|| path.into())
 }
@@ -158,7 +160,9 @@ impl Temporary {
     /// A name beside a path.
     fn beside(path: &Path, ending: &str) -> Temporary {
         let id = crate::clock::Clock::system().id();
-        let name = path.file_name().map_or_else(String::new, |name| name.to_string_lossy().into_owned());
+        let name = path
+            .file_name()
+            .map_or_else(String::new, |name| name.to_string_lossy().into_owned());
         Temporary(parent(path).join(format!(".{name}.{id}.{ending}")))
     }
 }

@@ -138,7 +138,11 @@ async fn claim(
     running: &InFlight,
 ) -> Result<Result<i64, Claimed>, StoreError> {
     let old = now.saturating_sub(KEPT_HOURS * 3_600_000);
-    sqlx::query(DROP_OLD).bind(request.organisation.0).bind(old).execute(&mut *c).await?;
+    sqlx::query(DROP_OLD)
+        .bind(request.organisation.0)
+        .bind(old)
+        .execute(&mut *c)
+        .await?;
     let found: Option<Found> = sqlx::query_as(FIND)
         .bind(request.organisation.0)
         .bind(&request.person)
@@ -167,7 +171,11 @@ async fn claim(
             return Ok(Err(Claimed::AnswerLost));
         }
         // Left by a program that was killed before it changed anything.
-        sqlx::query(LET_GO).bind(request.organisation.0).bind(found.id).execute(&mut *c).await?;
+        sqlx::query(LET_GO)
+            .bind(request.organisation.0)
+            .bind(found.id)
+            .execute(&mut *c)
+            .await?;
     }
     let id: i64 = sqlx::query_scalar(CLAIM)
         .bind(request.organisation.0)
@@ -184,7 +192,11 @@ async fn claim(
 
 /// Notes that the change of a claim is made, in its transaction.
 pub(super) async fn mark_made(c: &mut Connection, claim: Mark) -> Result<(), StoreError> {
-    sqlx::query(MARK_MADE).bind(claim.organisation.0).bind(claim.id).execute(c).await?;
+    sqlx::query(MARK_MADE)
+        .bind(claim.organisation.0)
+        .bind(claim.id)
+        .execute(c)
+        .await?;
     Ok(())
 }
 
@@ -224,7 +236,11 @@ impl Claim {
         let mark = self.mark;
         let write = self.store.0.write(move |c| {
             Box::pin(async move {
-                sqlx::query(LET_GO).bind(mark.organisation.0).bind(mark.id).execute(c).await?;
+                sqlx::query(LET_GO)
+                    .bind(mark.organisation.0)
+                    .bind(mark.id)
+                    .execute(c)
+                    .await?;
                 Ok::<_, StoreError>(())
             })
         });

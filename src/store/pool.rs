@@ -90,7 +90,10 @@ async fn current(pool: &SqlitePool) -> Result<(), StoreError> {
             Some(_) => {}
         }
     }
-    match known.iter().find(|(version, _)| !applied.iter().any(|(done, _)| done == version)) {
+    match known
+        .iter()
+        .find(|(version, _)| !applied.iter().any(|(done, _)| done == version))
+    {
         Some(_) => Err(StoreError::Older),
         None => Ok(()),
     }

@@ -97,11 +97,7 @@ impl Frame {
                 self.section == Section::Calculators,
             ),
             ("/factors", "Factors", self.section == Section::Factors),
-            (
-                "/audit-trail",
-                "Audit trail",
-                self.section == Section::AuditTrail,
-            ),
+            ("/audit-trail", "Audit trail", self.section == Section::AuditTrail),
             ("/api", "API", self.section == Section::Api),
         ]
     }

@@ -27,7 +27,7 @@ const LONGEST: usize = 255;
 /// Longest body of an answer that is kept.
 const LONGEST_BODY: usize = 1 << 20;
 /// Headers of an answer that are repeated.
-const REPEATED: [HeaderName; 4] = [
+static REPEATED: [HeaderName; 4] = [
     CONTENT_TYPE,
     ETAG,
     LOCATION,
@@ -211,7 +211,9 @@ fn repeated(answer: KeptAnswer) -> Result<Response, Refusal> {
             response.headers_mut().insert(name, value);
         }
     }
-    response.headers_mut().insert(REPLAYED, HeaderValue::from_static("true"));
+    response
+        .headers_mut()
+        .insert(REPLAYED, HeaderValue::from_static("true"));
     Ok(response)
 }
 

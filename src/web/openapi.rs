@@ -162,10 +162,16 @@ fn takes_a_key(post: &mut Operation) {
         ))
         .schema(Some(Schema::Object(text)))
         .build();
-    post.parameters.get_or_insert_default().push(key);
+    post.parameters.get_or_insert_default().push(RefOr::T(key));
     for (status, words) in [
-        (409, "The same request is being worked on, or was done and its answer was lost."),
-        (422, "The document does not hold, or the Idempotency-Key was used for another request."),
+        (
+            409,
+            "The same request is being worked on, or was done and its answer was lost.",
+        ),
+        (
+            422,
+            "The document does not hold, or the Idempotency-Key was used for another request.",
+        ),
     ] {
         post.responses
             .responses

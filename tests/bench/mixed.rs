@@ -24,7 +24,10 @@ const READERS: u64 = 32;
 fn say(name: &str, mut rates: Vec<f64>) {
     rates.sort_by(f64::total_cmp);
     let (least, median, most) = (rates[0], rates[rates.len() / 2], rates[rates.len() - 1]);
-    println!("{}", json!({ "name": name, "median": median, "least": least, "most": most }));
+    println!(
+        "{}",
+        json!({ "name": name, "median": median, "least": least, "most": most })
+    );
 }
 
 async fn ours(file: &Path) -> App {
@@ -155,7 +158,12 @@ async fn mixed(app: &App, pool: &SqlitePool) {
         rates[2].push(reads);
         rates[3].push(writes);
     }
-    let names = ["mixed_reads", "mixed_writes", "plain_mixed_reads", "plain_mixed_writes"];
+    let names = [
+        "mixed_reads",
+        "mixed_writes",
+        "plain_mixed_reads",
+        "plain_mixed_writes",
+    ];
     for (name, rates) in names.into_iter().zip(rates) {
         say(&format!("{name}_per_second"), rates);
     }

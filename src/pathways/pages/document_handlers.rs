@@ -116,12 +116,7 @@ async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Respon
     }
 }
 
-fn document_page(
-    seen: &Seen,
-    document: String,
-    why: String,
-    faults: Vec<Fault>,
-) -> ShowDocument {
+fn document_page(seen: &Seen, document: String, why: String, faults: Vec<Fault>) -> ShowDocument {
     let head = seen.head();
     let frame = Frame::new(
         format!("Document of {}", seen.pathway.name),
@@ -193,7 +188,13 @@ pub(super) async fn replace(
     let why = Some(text("why").trim())
         .filter(|why| !why.is_empty())
         .map(|why| why.chars().take(1_000).collect());
-    let saved = pathways::replace(&app, now.stored.id, document.clone(), Expected::Number(expected), why);
+    let saved = pathways::replace(
+        &app,
+        now.stored.id,
+        document.clone(),
+        Expected::Number(expected),
+        why,
+    );
     match saved.await {
         Ok(saved) => Ok(see_other(&format!(
             "{}?saved={}",

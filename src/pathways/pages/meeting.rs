@@ -23,7 +23,10 @@ pub struct Meeting {
 /// Who saved a revision while somebody typed on top of another.
 pub(super) async fn meeting(app: &App, pathway: Uuid, started: i64, revision: i64) -> Meeting {
     // Who it was is a courtesy: without it the page still says everything else.
-    let line = audit_trail::of_revision(app, pathway, revision).await.ok().flatten();
+    let line = audit_trail::of_revision(app, pathway, revision)
+        .await
+        .ok()
+        .flatten();
     let started = format!("You started from, {started}");
     let Some(line) = line else {
         return Meeting {
@@ -81,7 +84,8 @@ pub(super) fn choose(document: &mut Value, fields: &BTreeMap<String, String>) ->
         if !done {
             let problem = Problem {
                 pointer: pointer.to_owned(),
-                detail: "This field was changed in the document as well, so the choice for it was not taken.".into(),
+                detail: "This field was changed in the document as well, so the choice for it was not taken."
+                    .into(),
                 remedy: "Set it in the document below, then save.".into(),
             };
             problems.add(&problem.pointer, problem.detail, problem.remedy);
@@ -120,7 +124,9 @@ fn put(document: &mut Value, pointer: &str, stands: Option<&Value>, other: Optio
             true
         }
         (Some(Value::Array(items)), stands, other) => {
-            let Ok(place) = name.parse::<usize>() else { return false };
+            let Ok(place) = name.parse::<usize>() else {
+                return false;
+            };
             match (stands, other) {
                 (Some(stands), Some(other)) if items.get(place) == Some(stands) => {
                     items.splice(place..=place, [other]);
@@ -164,8 +170,13 @@ mod tests {
     #[test]
     fn what_was_changed_by_hand_since_is_left_and_told() {
         let fields = BTreeMap::from(
-            [("pick:/a", "other"), ("stands:/a", "1"), ("other:/a", "2"), ("pick:/b", "stands")]
-                .map(|(name, text)| (name.to_owned(), text.to_owned())),
+            [
+                ("pick:/a", "other"),
+                ("stands:/a", "1"),
+                ("other:/a", "2"),
+                ("pick:/b", "stands"),
+            ]
+            .map(|(name, text)| (name.to_owned(), text.to_owned())),
         );
         let mut document = json!({ "a": 1, "b": 1 });
         assert!(choose(&mut document, &fields).is_empty());

@@ -15,6 +15,7 @@ mod handlers;
 pub mod home;
 pub mod ladder;
 pub mod links;
+pub mod meeting;
 pub mod new;
 mod notices;
 pub mod revision;

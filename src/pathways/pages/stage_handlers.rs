@@ -2,7 +2,7 @@
 
 use super::card::form::LISTS;
 use super::card::{Do, Form, build, merge};
-use super::handlers::{REFUSED, Seen, ShowQuery, count, id_of, refused, saved_notice, see};
+use super::handlers::{REFUSED, Seen, ShowQuery, id_of, refused, saved_notice, see};
 use super::meeting::{differ, meeting};
 use super::stage::{Card, ShowStage, sources, steer};
 use super::{answers, links};
@@ -340,7 +340,9 @@ async fn met(app: &App, id: &str, key: &str, mine: Typed<'_>) -> Result<Response
     shown.why = mine.form.text("why").to_owned();
     if met.is_empty() {
         let then = match (theirs.is_null(), mine.stood.is_null()) {
-            (true, false) => "The stage was taken out. Yours stands here as a new one: save to bring it back.",
+            (true, false) => {
+                "The stage was taken out. Yours stands here as a new one: save to bring it back."
+            }
             (true, true) => "Your new stage is not saved yet: look it over, then save.",
             (false, _) => "It changed nothing of this stage: look it over, then save.",
         };
@@ -359,7 +361,12 @@ async fn met(app: &App, id: &str, key: &str, mine: Typed<'_>) -> Result<Response
 /// The stage that a new one is to follow: the one asked for, or the last before it that is still there.
 fn before(base: &Pathway, now: &Pathway, key: &str, after: &str) -> String {
     let place = base.stages.iter().position(|stage| stage.key == key);
-    let earlier = base.stages.iter().take(place.unwrap_or(0)).rev().map(|stage| stage.key.as_str());
+    let earlier = base
+        .stages
+        .iter()
+        .take(place.unwrap_or(0))
+        .rev()
+        .map(|stage| stage.key.as_str());
     [after]
         .into_iter()
         .chain(earlier)

@@ -1,7 +1,9 @@
 //! Making a backup: a copy of the database at one moment, then the files beside it, then the manifest; under its name only
 //! when all of it is on the disk.
 
-use super::{BackupError, FOLDERS, FORMAT, Held, MANIFEST, Manifest, Temporary, at, measured, parent, sync_folder};
+use super::{
+    BackupError, FOLDERS, FORMAT, Held, MANIFEST, Manifest, Temporary, at, measured, parent, sync_folder,
+};
 use crate::clock::Clock;
 use crate::store::{FILE, StoreError, pool, sound};
 use sqlx::{ConnectOptions, Connection};
@@ -41,7 +43,10 @@ pub async fn back_up(folder: &Path, file: &Path, clock: &Clock) -> Result<Manife
 async fn copy_database(data: &Path, copy: &Path) -> Result<(), BackupError> {
     let mut connection = pool::for_copy(data).connect().await.map_err(StoreError::from)?;
     let name = copy.to_string_lossy().into_owned();
-    let copied = sqlx::query("VACUUM INTO $1").bind(name).execute(&mut connection).await;
+    let copied = sqlx::query("VACUUM INTO $1")
+        .bind(name)
+        .execute(&mut connection)
+        .await;
     let closed = connection.close().await;
     copied.map_err(StoreError::from)?;
     closed.map_err(StoreError::from)?;

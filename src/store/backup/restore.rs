@@ -1,7 +1,9 @@
 //! Bringing a backup back: every file is held against the manifest before anything is written, and again while it is; the
 //! folder gets its name only when all of it is on the disk and the database is sound.
 
-use super::{BackupError, FORMAT, Held, MANIFEST, Manifest, Temporary, at, measured, own_path, parent, sync_folder};
+use super::{
+    BackupError, FORMAT, Held, MANIFEST, Manifest, Temporary, at, measured, own_path, parent, sync_folder,
+};
 use crate::store::{FILE, StoreError, pool, sound};
 use sqlx::{ConnectOptions, Connection};
 use std::collections::BTreeSet;
@@ -25,7 +27,13 @@ pub async fn restore(file: &Path, folder: &Path) -> Result<Manifest, BackupError
         let mut archive = open(&from)?;
         let manifest = manifest(&from, &mut archive)?;
         for held in &manifest.files {
-            unpack(&from, &mut archive, held, &mut std::io::sink(), Path::new(&held.path))?;
+            unpack(
+                &from,
+                &mut archive,
+                held,
+                &mut std::io::sink(),
+                Path::new(&held.path),
+            )?;
         }
         fs::create_dir_all(parent(&to)).map_err(at("Cannot make", parent(&to)))?;
         let whole = Temporary::beside(&to, "restoring");
@@ -85,7 +93,10 @@ fn manifest(file: &Path, archive: &mut ZipArchive<File>) -> Result<Manifest, Bac
     let manifest: Manifest =
         serde_json::from_slice(&text).map_err(|_| unusable(file, "its manifest cannot be read"))?;
     if manifest.format != FORMAT {
-        let what = format!("its format is \"{}\", and this program reads \"{FORMAT}\"", manifest.format);
+        let what = format!(
+            "its format is \"{}\", and this program reads \"{FORMAT}\"",
+            manifest.format
+        );
         return Err(unusable(file, what));
     }
     let mut listed: BTreeSet<&str> = [MANIFEST].into();
@@ -97,8 +108,12 @@ fn manifest(file: &Path, archive: &mut ZipArchive<File>) -> Result<Manifest, Bac
     if !listed.contains(FILE) {
         return Err(unusable(file, format!("it holds no {FILE}")));
     }
-    if let Some(other) = archive.file_names().find(|name| !listed.contains(name)) {
-        return Err(unusable(file, format!("it holds \"{other}\", which its manifest does not name")));
+    for name in archive.file_names() {
+        let name = name.map_err(|_| unusable(file, "a name in it cannot be read"))?;
+        if !listed.contains(name.as_ref()) {
+            let what = format!("it holds \"{name}\", which its manifest does not name");
+            return Err(unusable(file, what));
+        }
     }
     Ok(manifest)
 }
@@ -122,7 +137,10 @@ fn unpack(
     }
     match measured {
         Ok((bytes, sha256)) if bytes == held.bytes && sha256 == held.sha256 => Ok(()),
-        Ok(_) => Err(unusable(file, format!("\"{}\" is not what its manifest says", held.path))),
+        Ok(_) => Err(unusable(
+            file,
+            format!("\"{}\" is not what its manifest says", held.path),
+        )),
         Err(_) => Err(unusable(file, format!("\"{}\" cannot be read", held.path))),
     }
 }

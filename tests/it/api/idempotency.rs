@@ -26,7 +26,10 @@ fn named(name: &str) -> Value {
 async fn a_repeat_is_given_the_first_answer() {
     let app = TestApp::new().await;
     let first = post(&app.router, "a key", &chain()).await;
-    assert_eq!((first.status.as_u16(), first.header("idempotency-replayed")), (201, ""));
+    assert_eq!(
+        (first.status.as_u16(), first.header("idempotency-replayed")),
+        (201, "")
+    );
     let again = post(&app.router, "a key", &chain()).await;
     assert_eq!(again.status, 201, "{}", again.text());
     assert_eq!(again.header("idempotency-replayed"), "true");
@@ -50,7 +53,9 @@ async fn a_key_stands_for_one_request_of_one_person() {
     assert!(words.contains("used for another request"), "{words}");
     let headers = [("content-type", "application/json"), ("idempotency-key", "k")];
     let with_reason = format!("{ADDRESS}?reason=x");
-    app.ask("POST", &with_reason, &headers, chain().to_string()).await.refused(422);
+    app.ask("POST", &with_reason, &headers, chain().to_string())
+        .await
+        .refused(422);
     let neighbour = app.asked_by(Who {
         person: Some(uuid::Uuid::from_u128(8)),
         ..preparer()
@@ -70,7 +75,12 @@ async fn a_refusal_is_repeated_too_and_a_wrong_key_is_told() {
     assert_eq!(again.json()["errors"], first.json()["errors"]);
     for wrong in ["", &"x".repeat(256)] {
         let answer = post(&app.router, wrong, &chain()).await;
-        assert!(answer.refused(400)["detail"].as_str().unwrap().contains("Idempotency-Key"));
+        assert!(
+            answer.refused(400)["detail"]
+                .as_str()
+                .unwrap()
+                .contains("Idempotency-Key")
+        );
     }
     assert_eq!(app.stored().await, 0);
 }
@@ -82,8 +92,13 @@ async fn strangers_and_pure_questions_leave_nothing() {
     post(&stranger, "k", &chain()).await.refused(401);
     let headers = [("content-type", "application/json"), ("idempotency-key", "k")];
     for _ in 0..2 {
-        let answer = app.ask("POST", "/api/v1/evaluate", &headers, chain().to_string()).await;
-        assert_eq!((answer.status.as_u16(), answer.header("idempotency-replayed")), (200, ""));
+        let answer = app
+            .ask("POST", "/api/v1/evaluate", &headers, chain().to_string())
+            .await;
+        assert_eq!(
+            (answer.status.as_u16(), answer.header("idempotency-replayed")),
+            (200, "")
+        );
     }
     assert_eq!(kept(&app.app).await, 0);
 }
@@ -98,10 +113,16 @@ async fn it_outlives_a_restart_and_is_forgotten_after_a_day() {
     let first = post(&app.router, "k", &chain()).await;
     let app = app.restarted().await;
     let again = post(&app.router, "k", &chain()).await;
-    assert_eq!((again.header("idempotency-replayed"), &again.bytes), ("true", &first.bytes));
+    assert_eq!(
+        (again.header("idempotency-replayed"), &again.bytes),
+        ("true", &first.bytes)
+    );
     app.app.clock.advance(Duration::from_secs(24 * 3_600 + 1));
     let later = post(&app.router, "k", &chain()).await;
-    assert_eq!((later.status.as_u16(), later.header("idempotency-replayed")), (201, ""));
+    assert_eq!(
+        (later.status.as_u16(), later.header("idempotency-replayed")),
+        (201, "")
+    );
     assert_ne!(later.header("location"), first.header("location"));
     assert_eq!(kept(&app.app).await, 1);
 }
@@ -112,7 +133,9 @@ async fn what_a_killed_program_leaves_is_told_or_done() {
     let app = TestApp::new().await;
     post(&app.router, "made", &chain()).await;
     let gone = "UPDATE idempotency SET status = NULL, headers = NULL, body = NULL";
-    crate::store::support::force(&app.app.store, gone).await.expect("as a kill leaves it");
+    crate::store::support::force(&app.app.store, gone)
+        .await
+        .expect("as a kill leaves it");
     assert_eq!(
         crate::store::support::number(&app.app.store, "SELECT made FROM idempotency").await,
         1,
@@ -122,10 +145,17 @@ async fn what_a_killed_program_leaves_is_told_or_done() {
     // The test's clock gives the same ids again at the same time.
     app.app.clock.advance(Duration::from_secs(1));
     let again = post(&app.router, "made", &chain()).await;
-    assert!(again.refused(409)["detail"].as_str().unwrap().contains("answer was kept"));
+    assert!(
+        again.refused(409)["detail"]
+            .as_str()
+            .unwrap()
+            .contains("answer was kept")
+    );
     assert_eq!(app.stored().await, 1);
     let unmade = "UPDATE idempotency SET made = 0";
-    crate::store::support::force(&app.app.store, unmade).await.expect("as an earlier kill leaves it");
+    crate::store::support::force(&app.app.store, unmade)
+        .await
+        .expect("as an earlier kill leaves it");
     assert_eq!(post(&app.router, "made", &chain()).await.status, 201);
     assert_eq!(app.stored().await, 2);
 }
@@ -157,7 +187,8 @@ async fn a_client_that_hangs_up_finds_its_answer() {
     let app = TestApp::new().await;
     for wait in [0, 1, 3, 10, 30] {
         let key = format!("k{wait}");
-        let asked = post(&app.router, &key, &chain());
+        let document = chain();
+        let asked = post(&app.router, &key, &document);
         let _ = tokio::time::timeout(Duration::from_millis(wait), asked).await;
         let mut turns = 0;
         loop {

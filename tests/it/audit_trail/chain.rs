@@ -16,14 +16,25 @@ const LINES: i64 = 6;
 async fn six() -> Bench {
     let bench = Bench::new().await;
     let app = &bench.app;
-    let one = pathways::create(app, pathway("one"), Some("begun".into())).await.expect("saved").id;
+    let one = pathways::create(app, pathway("one"), Some("begun".into()))
+        .await
+        .expect("saved")
+        .id;
     pathways::create(app, pathway("two"), None).await.expect("saved");
     for (number, amount) in [(1, 170.0), (2, 175.0), (3, 180.0)] {
-        pathways::replace(app, one, fertilised("one", amount), Expected::Number(number), None)
-            .await
-            .expect("saved");
+        pathways::replace(
+            app,
+            one,
+            fertilised("one", amount),
+            Expected::Number(number),
+            None,
+        )
+        .await
+        .expect("saved");
     }
-    pathways::archive(app, one, Expected::Any).await.expect("archived");
+    pathways::archive(app, one, Expected::Any)
+        .await
+        .expect("archived");
     bench
 }
 
@@ -54,7 +65,9 @@ async fn tampered(statements: &[&'static str]) -> (i64, String) {
     for sql in statements {
         bench.force(sql).await.expect("tampered");
     }
-    let found = broken(&bench).await.unwrap_or_else(|| panic!("not seen: {statements:?}"));
+    let found = broken(&bench)
+        .await
+        .unwrap_or_else(|| panic!("not seen: {statements:?}"));
     bench.app.close().await;
     (found.number, found.what)
 }
@@ -66,18 +79,29 @@ async fn ordinary_work_leaves_a_whole_chain() {
     assert_eq!((chains[0].number, chains[0].hash.len()), (LINES, 71));
     assert_eq!(chains[0].broken, None);
     let bench = bench.restarted().await;
-    pathways::create(&bench.app, pathway("three"), None).await.expect("saved");
+    pathways::create(&bench.app, pathway("three"), None)
+        .await
+        .expect("saved");
     assert_eq!(broken(&bench).await, None);
     bench.app.close().await;
 }
 
 #[tokio::test]
 async fn the_first_broken_link_is_named() {
-    let changed = "UPDATE audit_line SET document = replace(document, '\"begun\"', '\"began\"') WHERE number = 1";
+    let changed =
+        "UPDATE audit_line SET document = replace(document, '\"begun\"', '\"began\"') WHERE number = 1";
     let cases: [(&[&'static str], i64, &str); 9] = [
         (&[changed], 1, "text was changed"),
-        (&["DELETE FROM audit_line WHERE number = 3"], 3, "Line 3 is missing"),
-        (&["DELETE FROM audit_line WHERE number = 1"], 1, "Line 1 is missing"),
+        (
+            &["DELETE FROM audit_line WHERE number = 3"],
+            3,
+            "Line 3 is missing",
+        ),
+        (
+            &["DELETE FROM audit_line WHERE number = 1"],
+            1,
+            "Line 1 is missing",
+        ),
         (
             &["DELETE FROM audit_line WHERE number = 6"],
             6,
@@ -88,7 +112,11 @@ async fn the_first_broken_link_is_named() {
             4,
             "\"thing_id\"",
         ),
-        (&["UPDATE audit_line SET at = at + 1 WHERE number = 4"], 4, "\"at\""),
+        (
+            &["UPDATE audit_line SET at = at + 1 WHERE number = 4"],
+            4,
+            "\"at\"",
+        ),
         (
             &[
                 "UPDATE audit_line SET number = 99 WHERE number = 2",
@@ -170,7 +198,10 @@ async fn the_guards_refuse_what_no_program_of_ours_does() {
     let insert = "INSERT INTO audit_line (organisation_id, number, at, thing, thing_id, did, document, hash) \
                   SELECT organisation_id, number + 2, at, thing, thing_id, did, document, hash FROM audit_line WHERE number = 6";
     for (sql, words) in [
-        ("UPDATE audit_line SET did = 'x' WHERE number = 1", "never changes"),
+        (
+            "UPDATE audit_line SET did = 'x' WHERE number = 1",
+            "never changes",
+        ),
         ("DELETE FROM audit_line WHERE number = 6", "never deleted"),
         ("UPDATE audit_head SET number = 2", "only goes forward"),
         ("DELETE FROM audit_head", "never deleted"),

@@ -8,7 +8,10 @@ use sha2::{Digest, Sha256};
 use wheelwort::app::who::Who;
 
 fn sha256(text: &str) -> String {
-    let digits: String = Sha256::digest(text).iter().map(|byte| format!("{byte:02x}")).collect();
+    let digits: String = Sha256::digest(text)
+        .iter()
+        .map(|byte| format!("{byte:02x}"))
+        .collect();
     format!("sha256:{digits}")
 }
 
@@ -45,17 +48,30 @@ async fn an_outsider_verifies_the_export_with_the_file_alone() {
         document["name"] = json!(format!("Pathway {number}"));
         // More lines than are read at once; settings are the cheapest change.
         let answer = app
-            .put("/api/v1/settings", "*", &json!({ "capacity_percent": 101 + number % 90 }))
+            .put(
+                "/api/v1/settings",
+                "*",
+                &json!({ "capacity_percent": 101 + number % 90 }),
+            )
             .await;
         assert_eq!(answer.status, 200, "{}", answer.text());
     }
     app.stores_chain().await;
     let answer = app.get("/api/v1/audit-trail.ndjson").await;
     assert_eq!(answer.header("content-type"), "application/x-ndjson");
-    assert!(answer.header("content-disposition").contains("audit-trail.ndjson"));
+    assert!(
+        answer
+            .header("content-disposition")
+            .contains("audit-trail.ndjson")
+    );
     let file = answer.text();
     assert_eq!(verified(&file), Ok(1_204));
-    let without: Vec<&str> = file.lines().enumerate().filter(|(n, _)| *n != 600).map(|(_, l)| l).collect();
+    let without: Vec<&str> = file
+        .lines()
+        .enumerate()
+        .filter(|(n, _)| *n != 600)
+        .map(|(_, l)| l)
+        .collect();
     assert_eq!(verified(&without.join("\n")), Err("line 601".into()));
     let cut: Vec<&str> = file.lines().take(1_000).collect();
     assert_eq!(verified(&cut.join("\n")), Err("the file broke off".into()));
@@ -86,5 +102,8 @@ async fn formulas_in_the_table_are_made_harmless() {
     let lines: Vec<&str> = table.lines().collect();
     assert_eq!(lines.len(), 2);
     assert!(lines[0].starts_with("number,at,by,"), "{table}");
-    assert!(lines[1].contains("\"'=cmd|' /C calc'!A0\"") && lines[1].contains("\"'@SUM(1)\""), "{table}");
+    assert!(
+        lines[1].contains("\"'=cmd|' /C calc'!A0\"") && lines[1].contains("\"'@SUM(1)\""),
+        "{table}"
+    );
 }

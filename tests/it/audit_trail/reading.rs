@@ -9,7 +9,10 @@ use wheelwort::app::who::{Right, Sight, Who};
 
 fn numbers(page: &Value) -> Vec<i64> {
     let items = page["items"].as_array().expect("items");
-    items.iter().map(|item| item["number"].as_i64().expect("a number")).collect()
+    items
+        .iter()
+        .map(|item| item["number"].as_i64().expect("a number"))
+        .collect()
 }
 
 /// Three pathways and a setting: lines 1 to 3 and 4; the ids of the pathways.
@@ -21,7 +24,8 @@ async fn four(app: &TestApp) -> Vec<String> {
         let (address, _) = app.stores(&document).await;
         ids.push(address.rsplit('/').next().expect("an id").to_owned());
     }
-    app.put("/api/v1/settings", "*", &json!({ "capacity_percent": 120 })).await;
+    app.put("/api/v1/settings", "*", &json!({ "capacity_percent": 120 }))
+        .await;
     ids
 }
 
@@ -44,18 +48,32 @@ async fn filters_find_their_lines() {
         ("?from=2026-12-01&to=2026-12-01".into(), vec![4, 3, 2, 1]),
         ("?from=2026-12-02".into(), vec![]),
         ("?to=2026-11-30".into(), vec![]),
-        ("?from=2026-12-01T12:00:00Z&to=2026-12-01T12:00:00Z".into(), vec![4, 3, 2, 1]),
+        (
+            "?from=2026-12-01T12:00:00Z&to=2026-12-01T12:00:00Z".into(),
+            vec![4, 3, 2, 1],
+        ),
         ("?from=2026-12-01T12:00:00.001Z".into(), vec![]),
     ] {
         let page = app.get(&format!("{all}{query}")).await.json();
         assert_eq!(numbers(&page), expected, "{query}");
     }
-    for wrong in ["from=yesterday", "to=2026-13-01", "person=me", "after=x", "after=0", "limit=0", "when=now"] {
+    for wrong in [
+        "from=yesterday",
+        "to=2026-13-01",
+        "person=me",
+        "after=x",
+        "after=0",
+        "limit=0",
+        "when=now",
+    ] {
         app.get(&format!("{all}?{wrong}")).await.refused(400);
     }
     let line = &app.get(&format!("{all}?limit=1&did=created")).await.json()["items"][0];
     assert_eq!(line["what"]["name"], "three");
-    assert_eq!((line["by"]["name"].as_str(), line["by"]["via"].as_str()), (Some("I. Marsh"), Some("session")));
+    assert_eq!(
+        (line["by"]["name"].as_str(), line["by"]["via"].as_str()),
+        (Some("I. Marsh"), Some("session"))
+    );
     assert!(line["hash"].as_str().is_some_and(|hash| hash.len() == 71));
 }
 
@@ -93,7 +111,10 @@ async fn an_auditor_from_outside_sees_the_lines_of_what_she_was_invited_to() {
     });
     let get = async |path: &str| answer_of(&auditor, request("GET", path, &[], "")).await;
     assert_eq!(numbers(&get("/api/v1/audit-trail").await.json()), [2]);
-    assert_eq!(numbers(&get(&format!("/api/v1/audit-trail?id={}", ids[0])).await.json()), [0; 0]);
+    assert_eq!(
+        numbers(&get(&format!("/api/v1/audit-trail?id={}", ids[0])).await.json()),
+        [0; 0]
+    );
     let file = get("/api/v1/audit-trail.ndjson").await.text();
     assert_eq!(file.lines().count(), 2, "her line and the closing line: {file}");
     let page = get("/audit-trail").await.text();
@@ -104,7 +125,12 @@ async fn an_auditor_from_outside_sees_the_lines_of_what_she_was_invited_to() {
 #[tokio::test]
 async fn the_page_tells_who_did_what() {
     let app = TestApp::new().await;
-    assert!(app.get("/audit-trail").await.text().contains("Nothing has been recorded yet."));
+    assert!(
+        app.get("/audit-trail")
+            .await
+            .text()
+            .contains("Nothing has been recorded yet.")
+    );
     let ids = four(&app).await;
     let page = app.get("/audit-trail").await.text();
     for words in [
@@ -116,7 +142,10 @@ async fn the_page_tells_who_did_what() {
     ] {
         assert!(page.contains(words), "{words}: {page}");
     }
-    let one = app.get(&format!("/audit-trail?thing=pathway&id={}", ids[0])).await.text();
+    let one = app
+        .get(&format!("/audit-trail?thing=pathway&id={}", ids[0]))
+        .await
+        .text();
     assert!(one.contains("one") && !one.contains(">two<"), "{one}");
     let wrong = app.get("/audit-trail?from=soon").await;
     assert_eq!(wrong.status, 422);

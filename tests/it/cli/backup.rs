@@ -22,12 +22,20 @@ fn told(output: &Output) -> (Option<i32>, String, String) {
 }
 
 fn check(data: &Path) -> (Option<i32>, String, String) {
-    told(&run(&["check".as_ref(), "--data".as_ref(), data.as_os_str()], b""))
+    told(&run(
+        &["check".as_ref(), "--data".as_ref(), data.as_os_str()],
+        b"",
+    ))
 }
 
 fn copy(command: &str, data: &Path, file: &Path) -> (Option<i32>, String, String) {
     told(&run(
-        &[command.as_ref(), "--data".as_ref(), data.as_os_str(), file.as_os_str()],
+        &[
+            command.as_ref(),
+            "--data".as_ref(),
+            data.as_os_str(),
+            file.as_os_str(),
+        ],
         b"",
     ))
 }
@@ -42,8 +50,13 @@ async fn filled(data: &Path) -> (uuid::Uuid, Vec<u8>) {
     .await
     .expect("opens");
     let document = wheelwort::core::documents::Pathway::from_value(&chain()).expect("a pathway");
-    let id = wheelwort::pathways::create(&app, document, None).await.expect("saved").id;
-    let assessment = wheelwort::pathways::assessment(&app, id, None, None).await.expect("assessed");
+    let id = wheelwort::pathways::create(&app, document, None)
+        .await
+        .expect("saved")
+        .id;
+    let assessment = wheelwort::pathways::assessment(&app, id, None, None)
+        .await
+        .expect("assessed");
     app.close().await;
     (id, assessment.bytes.to_vec())
 }
@@ -57,7 +70,10 @@ async fn a_restored_copy_passes_the_check_and_answers_the_same() {
     let running = serve(&data);
     let (code, out, errors) = check(&data);
     assert_eq!(code, Some(0), "{out}{errors}");
-    assert!(out.starts_with("Sound: ") && out.contains("ends at line 1 with sha256:"), "{out}");
+    assert!(
+        out.starts_with("Sound: ") && out.contains("ends at line 1 with sha256:"),
+        "{out}"
+    );
     let file = folder.path().join("today.zip");
     let (code, out, errors) = copy("backup", &data, &file);
     assert_eq!(code, Some(0), "{errors}");
@@ -82,7 +98,9 @@ async fn a_restored_copy_passes_the_check_and_answers_the_same() {
     )
     .await
     .unwrap();
-    let after = wheelwort::pathways::assessment(&app, id, None, None).await.unwrap();
+    let after = wheelwort::pathways::assessment(&app, id, None, None)
+        .await
+        .unwrap();
     assert_eq!(after.bytes.to_vec(), before);
     app.close().await;
 }
@@ -94,12 +112,18 @@ async fn what_was_changed_behind_its_back_is_found() {
             "DROP TRIGGER revision_never_changes; UPDATE revision SET document = replace(document, '165', '166')",
             "Its document was changed",
         ),
-        ("UPDATE input SET amount = amount + 1 WHERE amount IS NOT NULL", "rows written from"),
+        (
+            "UPDATE input SET amount = amount + 1 WHERE amount IS NOT NULL",
+            "rows written from",
+        ),
         (
             "DROP TRIGGER audit_line_never_changes; UPDATE audit_line SET did = 'read'",
             "audit trail of Own organisation",
         ),
-        ("UPDATE pathway SET organisation_id = 99", "organisation that is not there"),
+        (
+            "UPDATE pathway SET organisation_id = 99",
+            "organisation that is not there",
+        ),
     ] {
         let folder = tempfile::tempdir().unwrap();
         filled(folder.path()).await;
@@ -108,7 +132,10 @@ async fn what_was_changed_behind_its_back_is_found() {
             .foreign_keys(false);
         let pool = sqlx::SqlitePool::connect_with(options).await.unwrap();
         if sql.contains("organisation_id = 99") {
-            sqlx::query("DROP TRIGGER pathway_keeps_its_identity").execute(&pool).await.unwrap();
+            sqlx::query("DROP TRIGGER pathway_keeps_its_identity")
+                .execute(&pool)
+                .await
+                .unwrap();
         }
         sqlx::raw_sql(sql).execute(&pool).await.unwrap();
         pool.close().await;
@@ -125,7 +152,11 @@ fn a_folder_without_data_and_a_broken_file_are_told() {
     let (code, out, _) = check(folder.path());
     assert_eq!(code, Some(1));
     assert!(out.contains("there is no wheelwort.db in it"), "{out}");
-    assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 0, "nothing was made");
+    assert_eq!(
+        std::fs::read_dir(folder.path()).unwrap().count(),
+        0,
+        "nothing was made"
+    );
     std::fs::write(folder.path().join("wheelwort.db"), "not a database ".repeat(600)).unwrap();
     let (code, out, _) = check(folder.path());
     assert_eq!(code, Some(1));
@@ -149,7 +180,10 @@ async fn a_folder_is_served_once() {
     let (code, out, errors) = told(&second);
     assert_eq!((code, out.as_str()), (Some(1), ""));
     let named = folder.path().display().to_string();
-    assert!(errors.contains("Another wheelwort serves") && errors.contains(&named), "{errors}");
+    assert!(
+        errors.contains("Another wheelwort serves") && errors.contains(&named),
+        "{errors}"
+    );
     assert_eq!(running.stop("-TERM").0, Some(0));
     assert_eq!(serve(folder.path()).stop("-TERM").0, Some(0), "free again");
 }

@@ -34,7 +34,9 @@ async fn opened(folder: &Path) -> App {
 async fn a_backup_under_load_is_whole_and_answers_the_same() {
     let bench = Bench::new().await;
     let app = &bench.app;
-    let first = pathways::create(app, pathway("first"), None).await.expect("saved");
+    let first = pathways::create(app, pathway("first"), None)
+        .await
+        .expect("saved");
     let evidence = folder_of(&bench).join("evidence/ab");
     fs::create_dir_all(&evidence).expect("made");
     fs::write(evidence.join("abcd"), b"a meter reading").expect("written");
@@ -55,7 +57,9 @@ async fn a_backup_under_load_is_whole_and_answers_the_same() {
     tokio::time::sleep(Duration::from_millis(100)).await;
     let out = tempfile::tempdir().expect("a folder");
     let file = out.path().join("today.zip");
-    let manifest = back_up(&folder_of(&bench), &file, &app.clock).await.expect("backed up");
+    let manifest = back_up(&folder_of(&bench), &file, &app.clock)
+        .await
+        .expect("backed up");
     writing.abort();
     let paths: Vec<&str> = manifest.files.iter().map(|held| held.path.as_str()).collect();
     assert_eq!(paths, ["wheelwort.db", "evidence/ab/abcd"]);
@@ -65,7 +69,10 @@ async fn a_backup_under_load_is_whole_and_answers_the_same() {
     let read = restore(&file, &back).await.expect("restored");
     assert_eq!(read, manifest);
     assert_eq!(names(out.path()), ["deep", "today.zip"]);
-    assert_eq!(fs::read(back.join("evidence/ab/abcd")).expect("read"), b"a meter reading");
+    assert_eq!(
+        fs::read(back.join("evidence/ab/abcd")).expect("read"),
+        b"a meter reading"
+    );
     let copy = opened(&back).await;
     assert!(copy.store.unsound().await.expect("looked").is_empty());
     let chains = audit_trail::verify(&copy.store).await.expect("walked");
@@ -74,8 +81,12 @@ async fn a_backup_under_load_is_whole_and_answers_the_same() {
     // The same revision gives the same assessment, byte for byte.
     let there = pathways::read(&copy, first.id).await.expect("there");
     let number = Some(there.revision);
-    let one = pathways::assessment(&copy, first.id, number, None).await.expect("assessed");
-    let other = pathways::assessment(app, first.id, number, None).await.expect("assessed");
+    let one = pathways::assessment(&copy, first.id, number, None)
+        .await
+        .expect("assessed");
+    let other = pathways::assessment(app, first.id, number, None)
+        .await
+        .expect("assessed");
     assert_eq!(one.bytes, other.bytes);
     copy.close().await;
     bench.app.close().await;
@@ -94,7 +105,9 @@ async fn what_is_there_is_left_alone() {
     let empty = back_up(out.path(), &out.path().join("x.zip"), &bench.app.clock).await;
     assert!(matches!(empty, Err(BackupError::NoData(_))));
     fs::remove_file(&file).expect("gone");
-    back_up(&folder, &file, &bench.app.clock).await.expect("backed up");
+    back_up(&folder, &file, &bench.app.clock)
+        .await
+        .expect("backed up");
     let full = restore(&file, &folder).await;
     assert!(matches!(full, Err(BackupError::NotEmpty(_))));
     let a_file = restore(&file, &file).await;
@@ -110,10 +123,14 @@ async fn what_is_there_is_left_alone() {
 #[tokio::test]
 async fn a_damaged_backup_is_refused_with_nothing_written() {
     let bench = Bench::new().await;
-    pathways::create(&bench.app, pathway("first"), None).await.expect("saved");
+    pathways::create(&bench.app, pathway("first"), None)
+        .await
+        .expect("saved");
     let out = tempfile::tempdir().expect("a folder");
     let file = out.path().join("whole.zip");
-    back_up(&folder_of(&bench), &file, &bench.app.clock).await.expect("backed up");
+    back_up(&folder_of(&bench), &file, &bench.app.clock)
+        .await
+        .expect("backed up");
     let whole = fs::read(&file).expect("read");
     let bad = out.path().join("bad.zip");
     let to = out.path().join("data");
@@ -129,7 +146,10 @@ async fn a_damaged_backup_is_refused_with_nothing_written() {
     for part in [0, 1, 3, 5, 7, 9] {
         let cut = whole.len() * part / 10;
         let words = refused(&whole[..cut]).await;
-        assert!(words.contains("bad.zip") && words.contains("Nothing was brought back"), "{words}");
+        assert!(
+            words.contains("bad.zip") && words.contains("Nothing was brought back"),
+            "{words}"
+        );
     }
     refused(&whole[..whole.len() - 1]).await;
     let mut changed = whole.clone();
@@ -148,12 +168,17 @@ async fn an_archive_that_reaches_out_is_refused() {
     let hash = "sha256:e3b0c44298fc1c149afbf4c8996fb92427ae41e4649b934ca495991b7852b855";
     let held = |path: &str| format!("{{\"path\":\"{path}\",\"bytes\":0,\"sha256\":\"{hash}\"}}");
     let manifest = |files: &str| {
-        format!("{{\"format\":\"wheelwort.backup/1\",\"program\":\"0\",\"made_at\":\"\",\"files\":[{files}]}}")
+        format!(
+            "{{\"format\":\"wheelwort.backup/1\",\"program\":\"0\",\"made_at\":\"\",\"files\":[{files}]}}"
+        )
     };
     let both = |path: &str| format!("{},{}", held("wheelwort.db"), held(path));
     for (files, names) in [
         (both("../out"), vec!["wheelwort.db", "../out"]),
-        (both("evidence/../../out"), vec!["wheelwort.db", "evidence/../../out"]),
+        (
+            both("evidence/../../out"),
+            vec!["wheelwort.db", "evidence/../../out"],
+        ),
         (both("wheelwort.db"), vec!["wheelwort.db"]),
         (held("wheelwort.db"), vec!["wheelwort.db", "evidence/more"]),
         (held("evidence/x"), vec!["evidence/x"]),
@@ -170,7 +195,10 @@ async fn an_archive_that_reaches_out_is_refused() {
         archive.write_all(manifest(&files).as_bytes()).expect("written");
         archive.finish().expect("finished");
         let refused = restore(&file, &out.path().join("data")).await;
-        assert!(matches!(refused, Err(BackupError::Unusable { .. })), "{files}: {refused:?}");
+        assert!(
+            matches!(refused, Err(BackupError::Unusable { .. })),
+            "{files}: {refused:?}"
+        );
         assert_eq!(self::names(out.path()), ["bad.zip"], "{files}");
     }
 }

@@ -42,7 +42,9 @@ async fn a_card_names_who_saved_and_takes_either_figure() {
         let (_, mut theirs, mut mine, amount) = cards(&app).await;
         theirs.set(&amount, "77").set("do", "save");
         hale_sends(&app, &theirs).await;
-        mine.set(&amount, "88").set("why", "June reading").set("do", "save");
+        mine.set(&amount, "88")
+            .set("why", "June reading")
+            .set("do", "save");
         let answer = send(&app, &mine).await;
         assert_eq!(answer.status, 412);
         let html = answer.text();
@@ -81,13 +83,19 @@ async fn what_only_the_other_changed_can_be_put_back() {
     let html = send(&app, &mine).await.text();
     let mut again = Form::find(&html, "/stages/works");
     assert_eq!((again.get(&amount), again.get("/name")), ("77", "Mine"));
-    assert!(html.contains(&format!("name=\"mine:{amount}\" value=\"{was}\"")), "{html}");
+    assert!(
+        html.contains(&format!("name=\"mine:{amount}\" value=\"{was}\"")),
+        "{html}"
+    );
     again
         .set(&format!("pick:{amount}"), "mine")
         .set(&format!("mine:{amount}"), &was)
         .set("do", "save");
     let html = follow(&app, &again).await;
-    assert!(html.contains("Saved as revision 3.") && html.contains(&format!("value=\"{was}\"")), "{html}");
+    assert!(
+        html.contains("Saved as revision 3.") && html.contains(&format!("value=\"{was}\"")),
+        "{html}"
+    );
 }
 
 #[tokio::test]
@@ -115,7 +123,10 @@ async fn a_card_whose_stage_was_taken_out_is_kept() {
     let answer = send(&app, &mine).await;
     assert_eq!(answer.status, 412, "{}", answer.text());
     let html = answer.text();
-    assert!(html.contains("The stage was taken out. Yours stands here as a new one"), "{html}");
+    assert!(
+        html.contains("The stage was taken out. Yours stands here as a new one"),
+        "{html}"
+    );
     let again = Form::find(&html, "/stages/works");
     assert_eq!((again.get(&amount), again.get("/name")), ("88", "My works"));
     assert_eq!((again.get("expected"), again.get("new")), ("2", "yes"));
@@ -161,7 +172,10 @@ async fn a_whole_document_meets_another_and_each_field_is_chosen() {
     assert_eq!(joined["stages"][0]["name"], "My field");
     // Theirs for the name, and mine (nothing) for the note.
     let mut chosen = again.clone();
-    for (pointer, stands, other) in [("/name", "\"My name\"", "\"Hale's name\""), ("/note", "\"Hale's note\"", "")] {
+    for (pointer, stands, other) in [
+        ("/name", "\"My name\"", "\"Hale's name\""),
+        ("/note", "\"Hale's note\"", ""),
+    ] {
         for (name, text) in [("pick", "other"), ("stands", stands), ("other", other)] {
             chosen.set(&format!("{name}:{pointer}"), text);
         }
@@ -176,13 +190,25 @@ async fn a_whole_document_meets_another_and_each_field_is_chosen() {
     let (mut form, mut document) = whole(&app, &path).await;
     document["name"] = json!("By hand");
     form.set("document", &document.to_string());
-    for (name, text) in [("pick", "other"), ("stands", "\"My name\""), ("other", "\"Hale's name\"")] {
+    for (name, text) in [
+        ("pick", "other"),
+        ("stands", "\"My name\""),
+        ("other", "\"Hale's name\""),
+    ] {
         form.set(&format!("{name}:/name"), text);
     }
     let told = send(&app, &form).await;
     assert_eq!(told.status, 422);
-    assert!(told.text().contains("was changed in the document as well"), "{}", told.text());
-    assert!(Form::find(&told.text(), "/document").get("document").contains("By hand"));
+    assert!(
+        told.text().contains("was changed in the document as well"),
+        "{}",
+        told.text()
+    );
+    assert!(
+        Form::find(&told.text(), "/document")
+            .get("document")
+            .contains("By hand")
+    );
 }
 
 /// A document that cannot be read is shown again on top of the revision it began from: the other save is still met.

@@ -144,7 +144,10 @@ async fn two_people_meet_and_nothing_of_either_is_lost() {
         html.contains("Not saved: you saved revision 2 elsewhere while this page was open"),
         "{html}"
     );
-    assert!(html.contains("3 fields differ.") || html.contains("2 fields differ."), "{html}");
+    assert!(
+        html.contains("3 fields differ.") || html.contains("2 fields differ."),
+        "{html}"
+    );
     let mut joined = Form::find(&html, "/stages/works");
     assert_eq!(joined.get("expected"), "2");
     assert_eq!(
