@@ -17,7 +17,7 @@ mod save;
 mod sound;
 mod sql;
 
-pub use assess::{AssessmentBytes, Reassessed, assessment, reassess_all};
+pub use assess::{AssessmentBytes, Reassessed, assessment, face, reassess_all};
 pub use changes::{Change, Kind};
 pub use defaults::{Defaults, defaults};
 pub use error::{PathwayError, What};
