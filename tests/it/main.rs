@@ -8,6 +8,7 @@
 )]
 
 mod api;
+mod audit_trail;
 mod cli;
 mod engine;
 mod faults;
