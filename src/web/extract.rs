@@ -181,14 +181,15 @@ impl<S: Send + Sync> FromRequest<S> for JsonOrToml {
 
     async fn from_request(request: Request, state: &S) -> Result<JsonOrToml, Refusal> {
         if !is_of_type(request.headers(), |kind| kind == "application/toml") {
-            let JsonBody(value) = JsonBody::from_request(request, state).await.map_err(|refusal| {
-                match refusal.status() {
-                    StatusCode::UNSUPPORTED_MEDIA_TYPE => {
-                        refusal.detail("Send the body as application/json or application/toml.")
-                    }
-                    _ => refusal,
-                }
-            })?;
+            let JsonBody(value) =
+                JsonBody::from_request(request, state)
+                    .await
+                    .map_err(|refusal| match refusal.status() {
+                        StatusCode::UNSUPPORTED_MEDIA_TYPE => {
+                            refusal.detail("Send the body as application/json or application/toml.")
+                        }
+                        _ => refusal,
+                    })?;
             return Ok(JsonOrToml::Json(value));
         }
         let limits = Limits::of(request.extensions());

@@ -190,7 +190,14 @@ pub fn same_harvest(stage: &Stage, given: f64, counted: f64, settings: &Settings
         plain(settings.harvest_percent)
     );
     let remedy = "Give area, yield, moisture and output of the same harvest, or give the reason.";
-    Some(finding("K-01", Severity::Warn, &stage.key, "output", message, remedy))
+    Some(finding(
+        "K-01",
+        Severity::Warn,
+        &stage.key,
+        "output",
+        message,
+        remedy,
+    ))
 }
 
 /// C-17: the nitrogen given is no more than usual, and the harvest holds no more than it can have taken from it.
@@ -344,6 +351,10 @@ mod tests {
         assert_eq!(same_harvest(&stage, 7_800.0, 8_200.0, &settings), None);
         let found = same_harvest(&stage, 6_000.0, 8_200.0, &settings).unwrap();
         assert_eq!((found.id.as_str(), found.field.as_str()), ("K-01", "output"));
-        assert!(found.message.contains("6.00 t") && found.message.contains("8.20 t"), "{}", found.message);
+        assert!(
+            found.message.contains("6.00 t") && found.message.contains("8.20 t"),
+            "{}",
+            found.message
+        );
     }
 }

@@ -29,7 +29,11 @@ pub fn audited(pathway: &Pathway, issued_on: Date) -> Vec<Finding> {
     });
     let without: Vec<&str> = sites
         .clone()
-        .filter(|stage| !passed.iter().any(|audit| audit.stage.as_deref() == Some(stage.key.as_str())))
+        .filter(|stage| {
+            !passed
+                .iter()
+                .any(|audit| audit.stage.as_deref() == Some(stage.key.as_str()))
+        })
         .map(|stage| stage.key.as_str())
         .collect();
     // Sections of one works stand under one audit: it is enough where any of them names it.
@@ -110,8 +114,12 @@ mod tests {
     fn actual_values_come_after_an_audit() {
         let issued = date(2027, 10, 15);
         let check = |audits| audited(&pathway(audits), issued);
-        assert_eq!(check(json!([])).first().map(|found| found.id.as_str()), Some("E-02"));
-        let audit = |scope: &str, passed: &str| json!({ "stage": "works", "scope": scope, "passed_on": passed });
+        assert_eq!(
+            check(json!([])).first().map(|found| found.id.as_str()),
+            Some("E-02")
+        );
+        let audit =
+            |scope: &str, passed: &str| json!({ "stage": "works", "scope": scope, "passed_on": passed });
         assert!(check(json!([audit("actual_values", "2026-11-03")])).is_empty());
         assert!(check(json!([{ "scope": "actual_values", "passed_on": "2026-11-03" }])).is_empty());
         assert_eq!(check(json!([audit("mass_balance", "2026-11-03")])).len(), 1);

@@ -47,7 +47,14 @@ pub fn forwards(stage: &str, meter: &Meter) -> Option<Finding> {
                 span.to
             );
             let remedy = "Record a reset or correct the reading.";
-            return Some(finding("C-13", Severity::Block, stage, &field(meter), message, remedy));
+            return Some(finding(
+                "C-13",
+                Severity::Block,
+                stage,
+                &field(meter),
+                message,
+                remedy,
+            ));
         }
         before = Some(last);
     }
@@ -65,7 +72,14 @@ pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
     let mut say = |what: &str, from: Date, to: Date| {
         let message = format!("Meter {} {what} from {from} to {to}.", meter.id);
         let remedy = "Correct the days, or enter an estimate with a note.";
-        found.push(finding("C-14", Severity::Block, stage, &field(meter), message, remedy));
+        found.push(finding(
+            "C-14",
+            Severity::Block,
+            stage,
+            &field(meter),
+            message,
+            remedy,
+        ));
     };
     let mut next = period.from;
     for (k, span) in spans.iter().enumerate() {
@@ -73,15 +87,27 @@ pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
             say("has a gap", next, span.from.yesterday().unwrap_or(span.from));
         } else if span.from < next {
             match k {
-                0 => say("was not read as the period began: one span runs", span.from, span.to),
-                _ => say("counts twice", span.from, next.yesterday().unwrap_or(next).min(span.to)),
+                0 => say(
+                    "was not read as the period began: one span runs",
+                    span.from,
+                    span.to,
+                ),
+                _ => say(
+                    "counts twice",
+                    span.from,
+                    next.yesterday().unwrap_or(next).min(span.to),
+                ),
             }
         }
         next = next.max(span.to.tomorrow().unwrap_or(span.to));
     }
     match spans.last() {
         Some(last) if last.to > period.to => {
-            say("was not read as the period ended: one span runs", last.from, last.to);
+            say(
+                "was not read as the period ended: one span runs",
+                last.from,
+                last.to,
+            );
         }
         _ if next <= period.to => say("has a gap", next, period.to),
         _ => {}
@@ -103,7 +129,14 @@ pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
                 plain(first)
             );
             let remedy = "Correct the readings, or record a reset.";
-            found.push(finding("C-14", Severity::Block, stage, &field(meter), message, remedy));
+            found.push(finding(
+                "C-14",
+                Severity::Block,
+                stage,
+                &field(meter),
+                message,
+                remedy,
+            ));
         }
     }
     found
@@ -114,7 +147,14 @@ pub fn calibrated(stage: &str, meter: &Meter, period: &Period) -> Option<Finding
     let due = meter.calibration_due.filter(|due| *due < period.to)?;
     let message = format!("Calibration of {} ran out on {due}.", meter.id);
     let remedy = "Attach the new certificate or give the reason.";
-    Some(finding("C-15", Severity::Warn, stage, &field(meter), message, remedy))
+    Some(finding(
+        "C-15",
+        Severity::Warn,
+        stage,
+        &field(meter),
+        message,
+        remedy,
+    ))
 }
 
 #[cfg(test)]
@@ -147,7 +187,10 @@ mod tests {
     #[test]
     fn a_dial_runs_forwards() {
         let (start, end) = (date(2027, 2, 28), date(2027, 3, 31));
-        assert_eq!(forwards("works", &meter(&[(start, 5.0, false), (end, 5.0, false)])), None);
+        assert_eq!(
+            forwards("works", &meter(&[(start, 5.0, false), (end, 5.0, false)])),
+            None
+        );
         let back = forwards("works", &meter(&[(start, 5.0, false), (end, 4.0, false)])).unwrap();
         assert_eq!((back.id.as_str(), back.field.as_str()), ("C-13", "meters.gas-3"));
         assert!(back.message.contains("shows 4 after 5"), "{}", back.message);
@@ -155,7 +198,12 @@ mod tests {
         assert_eq!(forwards("works", &meter(&new)), None);
         let mut periods = meter(&[]);
         periods.periods = vec![span(1, 15, (10.0, 20.0)), span(16, 31, (19.0, 30.0))];
-        assert!(forwards("works", &periods).unwrap().message.contains("shows 19 after 20"));
+        assert!(
+            forwards("works", &periods)
+                .unwrap()
+                .message
+                .contains("shows 19 after 20")
+        );
         periods.periods[1].reset = true;
         assert_eq!(forwards("works", &periods), None);
     }
@@ -169,18 +217,39 @@ mod tests {
         ];
         assert!(no_gaps("works", &meter(&whole), &period()).is_empty());
         let late = no_gaps("works", &meter(&whole[1..]), &period());
-        assert!(late[0].message.contains("has a gap from 2027-03-01 to 2027-03-12"), "{late:?}");
+        assert!(
+            late[0]
+                .message
+                .contains("has a gap from 2027-03-01 to 2027-03-12"),
+            "{late:?}"
+        );
         let early = no_gaps("works", &meter(&whole[..2]), &period());
-        assert!(early[0].message.contains("from 2027-03-13 to 2027-03-31"), "{early:?}");
+        assert!(
+            early[0].message.contains("from 2027-03-13 to 2027-03-31"),
+            "{early:?}"
+        );
         let beyond = [(date(2027, 2, 10), 5.0, false), (date(2027, 3, 31), 9.0, false)];
-        assert!(no_gaps("works", &meter(&beyond), &period())[0].message.contains("as the period began"));
+        assert!(
+            no_gaps("works", &meter(&beyond), &period())[0]
+                .message
+                .contains("as the period began")
+        );
         assert_eq!(no_gaps("works", &meter(&[]), &period()).len(), 1);
         let mut periods = meter(&[]);
         periods.periods = vec![span(1, 15, (10.0, 20.0)), span(15, 31, (20.0, 30.0))];
         let twice = no_gaps("works", &periods, &period());
-        assert!(twice[0].message.contains("counts twice from 2027-03-15 to 2027-03-15"), "{twice:?}");
+        assert!(
+            twice[0]
+                .message
+                .contains("counts twice from 2027-03-15 to 2027-03-15"),
+            "{twice:?}"
+        );
         periods.periods[1] = span(16, 31, (21.0, 30.0));
-        assert!(no_gaps("works", &periods, &period())[0].message.contains("in no span"));
+        assert!(
+            no_gaps("works", &periods, &period())[0]
+                .message
+                .contains("in no span")
+        );
     }
 
     #[test]

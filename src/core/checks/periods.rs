@@ -61,7 +61,9 @@ pub fn stable_yield(stage: &Stage, settings: &Settings) -> Option<Finding> {
     }
     let unit = &last.last()?.r#yield.unit;
     let shown = |figure: f64| {
-        let figure = parse_unit(unit).and_then(|unit| unit.from_base(figure)).unwrap_or(figure);
+        let figure = parse_unit(unit)
+            .and_then(|unit| unit.from_base(figure))
+            .unwrap_or(figure);
         significant(figure, 4, 6)
     };
     let message = format!(
@@ -71,7 +73,14 @@ pub fn stable_yield(stage: &Stage, settings: &Settings) -> Option<Finding> {
         shown(now)
     );
     let remedy = "Check both periods and give the reason.";
-    Some(finding("C-08", Severity::Warn, &stage.key, "output", message, remedy))
+    Some(finding(
+        "C-08",
+        Severity::Warn,
+        &stage.key,
+        "output",
+        message,
+        remedy,
+    ))
 }
 
 /// Output per intake in base units, as entered; intakes that count something else than the first are left out.
@@ -201,14 +210,24 @@ mod tests {
             note: None,
         };
         // The first one is the fifth back and does not count.
-        works.earlier_periods = [(2021, 100.0), (2022, 370.0), (2025, 390.0), (2023, 375.0), (2024, 380.0)]
-            .map(|(y, figure)| year(y, figure))
-            .to_vec();
+        works.earlier_periods = [
+            (2021, 100.0),
+            (2022, 370.0),
+            (2025, 390.0),
+            (2023, 375.0),
+            (2024, 380.0),
+        ]
+        .map(|(y, figure)| year(y, figure))
+        .to_vec();
         assert_eq!(stable_yield(&works, &settings), None);
         works.output.flow.amount = Some(340.0);
         let found = stable_yield(&works, &settings).unwrap();
         assert_eq!(found.id, "C-08");
-        assert!(found.message.contains("from 377.5 to 340.0 L/t"), "{}", found.message);
+        assert!(
+            found.message.contains("from 377.5 to 340.0 L/t"),
+            "{}",
+            found.message
+        );
     }
 
     #[test]
@@ -231,12 +250,22 @@ mod tests {
         };
         assert_eq!(in_force(&edition, &period()), None);
         edition.valid_from = Some(date(2027, 10, 1));
-        assert!(in_force(&edition, &period()).unwrap().message.contains("starts on 2027-10-01"));
+        assert!(
+            in_force(&edition, &period())
+                .unwrap()
+                .message
+                .contains("starts on 2027-10-01")
+        );
         edition.valid_from = None;
         edition.valid_to = Some(date(2026, 10, 1));
         assert_eq!(in_force(&edition, &period()), None);
         edition.valid_to = Some(date(2026, 9, 30));
-        assert!(in_force(&edition, &period()).unwrap().message.contains("ended on 2026-09-30"));
+        assert!(
+            in_force(&edition, &period())
+                .unwrap()
+                .message
+                .contains("ended on 2026-09-30")
+        );
     }
 
     #[test]

@@ -53,7 +53,10 @@ fn input_agrees(pathway: &Pathway, stage: &Stage, input: &Input, at: &Place, pro
     let mut done: Vec<&str> = Vec::new();
     for meter in &meters {
         let Some(parameter) = meter.parameter.as_deref() else {
-            let detail = format!("Meter {} does not say which parameter of the model it gives.", meter.id);
+            let detail = format!(
+                "Meter {} does not say which parameter of the model it gives.",
+                meter.id
+            );
             problems.add(at.field("meter"), detail, "Add \"parameter\" to the meter.");
             continue;
         };
@@ -64,7 +67,10 @@ fn input_agrees(pathway: &Pathway, stage: &Stage, input: &Input, at: &Place, pro
         let place = at.field("model");
         let place = place.field(parameter);
         let Some((amount, unit)) = figure(model, parameter) else {
-            let detail = format!("Meter {} gives \"{parameter}\", which is no amount here.", meter.id);
+            let detail = format!(
+                "Meter {} gives \"{parameter}\", which is no amount here.",
+                meter.id
+            );
             problems.add(place, detail, "Enter the amount, or name another parameter.");
             continue;
         };
@@ -98,7 +104,9 @@ fn compare(
     problems: &mut Problems,
 ) {
     let period = &pathway.period;
-    let Ok(entered) = Quantity::read(amount, unit) else { return };
+    let Ok(entered) = Quantity::read(amount, unit) else {
+        return;
+    };
     let mut given = 0.0;
     let mut words = Vec::new();
     for meter in meters {
@@ -120,7 +128,8 @@ fn compare(
                 meter.id,
                 read.dimension.describe()
             );
-            let remedy = "Say with \"per_unit\" of the meter what one unit of its dial is, such as 35.9 MJ a m3.";
+            let remedy =
+                "Say with \"per_unit\" of the meter what one unit of its dial is, such as 35.9 MJ a m3.";
             problems.add(at, detail, remedy);
             return;
         }
@@ -160,6 +169,7 @@ fn alike(a: Dimension, b: Dimension) -> bool {
         Dimension::ENERGY_NET => Dimension::ENERGY,
         other => other,
     };
-    net(a) == net(b) || (a == Dimension::ENERGY && b.is_energy() && b != Dimension::ENERGY_GROSS)
+    net(a) == net(b)
+        || (a == Dimension::ENERGY && b.is_energy() && b != Dimension::ENERGY_GROSS)
         || (b == Dimension::ENERGY && a.is_energy() && a != Dimension::ENERGY_GROSS)
 }

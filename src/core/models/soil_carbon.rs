@@ -168,10 +168,7 @@ fn conditions(given: &mut Given) {
         return;
     };
     let setting = given.setting;
-    let limit = |symbol: &str| {
-        setting.rules.limit(symbol)
-            .map(|figure| figure.value)
-    };
+    let limit = |symbol: &str| setting.rules.limit(symbol).map(|figure| figure.value);
     // Whole years of a small published figure.
     #[allow(clippy::cast_possible_truncation, reason = "a published count of years")]
     let after = |years: f64| since.saturating_add((years as i64).years());

@@ -154,7 +154,11 @@ impl Published {
             });
         }
         for (symbol, figure) in &rules.limits {
-            rows.push(cited(limit_words(symbol), figure, "limit of a deduction".to_owned()));
+            rows.push(cited(
+                limit_words(symbol),
+                figure,
+                "limit of a deduction".to_owned(),
+            ));
         }
         if let Some(weights) = weights {
             let gases = [

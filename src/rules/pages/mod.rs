@@ -130,15 +130,20 @@ async fn save_version(
         .to_owned();
     match add_version(&app, &named, &document).await {
         Ok(saved) => {
-            let list = format!("{}/versions?saved={}", links::rule_set(&saved.id), links::segment(&saved.version));
+            let list = format!(
+                "{}/versions?saved={}",
+                links::rule_set(&saved.id),
+                links::segment(&saved.version)
+            );
             Ok(see_other(&list))
         }
         Err(RuleError::Problems(problems)) => {
             refused(StatusCode::UNPROCESSABLE_ENTITY, own::faults(&text, &problems))
         }
-        Err(error @ (RuleError::Taken { .. } | RuleError::TooMany)) => {
-            refused(StatusCode::CONFLICT, vec![own::said("version", &error.to_string())])
-        }
+        Err(error @ (RuleError::Taken { .. } | RuleError::TooMany)) => refused(
+            StatusCode::CONFLICT,
+            vec![own::said("version", &error.to_string())],
+        ),
         Err(error) => Err(error.into()),
     }
 }

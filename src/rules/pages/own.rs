@@ -211,9 +211,13 @@ fn line_of(text: &str, pointer: &str) -> Option<usize> {
         }
         let names = |line: &str| {
             let line = line.trim_start().trim_start_matches(['[', '"', '{', ' ']);
-            line.strip_prefix(part)
-                .is_some_and(|rest| rest.trim_start_matches(['"', ' ']).starts_with(['=', ':', ']', '.']))
-                || line.split(']').next().is_some_and(|head| head.ends_with(&format!(".{part}")))
+            line.strip_prefix(part).is_some_and(|rest| {
+                rest.trim_start_matches(['"', ' '])
+                    .starts_with(['=', ':', ']', '.'])
+            }) || line
+                .split(']')
+                .next()
+                .is_some_and(|head| head.ends_with(&format!(".{part}")))
         };
         match lines.iter().enumerate().skip(from).find(|(_, line)| names(line)) {
             Some((found, _)) => {

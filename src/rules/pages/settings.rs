@@ -97,7 +97,9 @@ impl SettingsPage {
             let escaped = crop.replace('~', "~0").replace('/', "~1");
             for (end, word) in [("low", "least"), ("high", "most")] {
                 let of = |range: Range| if end == "low" { range.low } else { range.high };
-                let Some(figure) = now.or(standard).map(of) else { continue };
+                let Some(figure) = now.or(standard).map(of) else {
+                    continue;
+                };
                 let mut made = row(
                     format!("{HARVESTS}/{escaped}/{end}"),
                     format!("h-{k}-{end}"),
@@ -206,7 +208,8 @@ impl SettingsPage {
 
     fn count(&mut self) {
         let all = self.rows.iter().chain(&self.harvests);
-        self.refused = all.filter(|row| !row.wrong.is_empty()).count() + usize::from(!self.crop_wrong.is_empty());
+        self.refused =
+            all.filter(|row| !row.wrong.is_empty()).count() + usize::from(!self.crop_wrong.is_empty());
     }
 }
 

@@ -38,11 +38,24 @@ fn settings_take_what_was_typed_and_keep_it() {
         ]))
         .expect("a document");
     let settings: Settings = serde_json::from_value(document).unwrap();
-    assert_eq!((settings.capacity_percent, settings.steam_works_mj_per_l), (105.0, Range { low: 3.0, high: 9.5 }));
-    assert_eq!(settings.usual_yield_t_per_ha["hemp"], Range { low: 2.0, high: 9.0 });
-    assert_eq!(settings.usual_yield_t_per_ha.len(), standard.usual_yield_t_per_ha.len() + 1);
+    assert_eq!(
+        (settings.capacity_percent, settings.steam_works_mj_per_l),
+        (105.0, Range { low: 3.0, high: 9.5 })
+    );
+    assert_eq!(
+        settings.usual_yield_t_per_ha["hemp"],
+        Range { low: 2.0, high: 9.0 }
+    );
+    assert_eq!(
+        settings.usual_yield_t_per_ha.len(),
+        standard.usual_yield_t_per_ha.len() + 1
+    );
     let mut page = SettingsPage::of(&settings, "abc", true);
-    let wrong = typed(&[("capacity_percent", HOSTILE), ("usual_yield_t_per_ha/hemp/low", ""), ("usual_yield_t_per_ha/hemp/high", "")]);
+    let wrong = typed(&[
+        ("capacity_percent", HOSTILE),
+        ("usual_yield_t_per_ha/hemp/low", ""),
+        ("usual_yield_t_per_ha/hemp/high", ""),
+    ]);
     assert_eq!(page.take(&wrong), None);
     assert_eq!(page.refused, 1);
     let html = page.render().unwrap();
@@ -58,7 +71,11 @@ fn problems_stand_at_their_fields() {
         detail: HOSTILE.to_owned(),
         remedy: "Mend it.".to_owned(),
     };
-    page.refuse(&[problem("/typical_low"), problem("/steam_works_mj_per_l"), problem("")]);
+    page.refuse(&[
+        problem("/typical_low"),
+        problem("/steam_works_mj_per_l"),
+        problem(""),
+    ]);
     assert_eq!((page.refused, page.faults.len()), (2, 1));
     sound("refused", &page.render().unwrap());
     let mut other = Settings::default();
@@ -75,8 +92,12 @@ fn every_rule_set_begins_one_of_ones_own_that_holds() {
         let page = NewVersion::begin(rules, true);
         let html = page.render().unwrap();
         sound(&rules.id, &html);
-        let read = from_toml(&page.text, book).unwrap_or_else(|problems| panic!("{}: {problems:?}", rules.id));
-        assert_eq!((read.id.as_str(), read.standing), (format!("own-{}", rules.id).as_str(), Standing::Own));
+        let read =
+            from_toml(&page.text, book).unwrap_or_else(|problems| panic!("{}: {problems:?}", rules.id));
+        assert_eq!(
+            (read.id.as_str(), read.standing),
+            (format!("own-{}", rules.id).as_str(), Standing::Own)
+        );
         assert_eq!(read.limits, rules.limits, "{}", rules.id);
         assert_eq!(from_toml(&toml_of(&read).unwrap(), book).unwrap(), read);
         let all = [super::super::RuleSetVersion {
@@ -84,7 +105,12 @@ fn every_rule_set_begins_one_of_ones_own_that_holds() {
             hash: "sha256:0".to_owned(),
             saved_at: None,
         }];
-        sound("versions", &Versions::of(&read, &all, false, true, Some(HOSTILE.to_owned())).render().unwrap());
+        sound(
+            "versions",
+            &Versions::of(&read, &all, false, true, Some(HOSTILE.to_owned()))
+                .render()
+                .unwrap(),
+        );
     }
     let rules = &book.rule_sets["eu-2018-2001"];
     let refused = NewVersion::refused(rules, HOSTILE, vec![own::said("/id", HOSTILE)]);

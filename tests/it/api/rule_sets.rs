@@ -217,7 +217,8 @@ async fn another_organisation_has_its_own() {
 #[tokio::test]
 async fn toml_says_the_same_as_json() {
     let app = TestApp::new().await;
-    let rules = wheelwort::core::documents::rule_set::from_value(&own_rules(), wheelwort::library::book()).unwrap();
+    let rules =
+        wheelwort::core::documents::rule_set::from_value(&own_rules(), wheelwort::library::book()).unwrap();
     let text = wheelwort::core::documents::rule_set::toml_of(&rules).unwrap();
     let toml = [("content-type", "application/toml")];
     let added = app.ask("PUT", ADDRESS, &toml, text.clone()).await;

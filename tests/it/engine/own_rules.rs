@@ -182,7 +182,10 @@ fn it_serves_an_assessment() {
 fn an_own_rule_set_has_the_limits_that_it_carries() {
     let mut document = chain(&Figures::usual());
     document["rule_set"] = json!("own-2027");
-    document["stages"][0]["inputs"].as_array_mut().unwrap().push(json!({ "key": "soil", "model": {
+    document["stages"][0]["inputs"]
+        .as_array_mut()
+        .unwrap()
+        .push(json!({ "key": "soil", "model": {
         "kind": "soil_carbon", "area_ha": 1, "carbon_before": { "value": 50, "unit": "t/ha" },
         "carbon_after": { "value": 80, "unit": "t/ha" }, "years": 5, "practice": "cover_crop",
         "practice_since": "2020-01-01", "committed_until": "2031-01-01" } }));
@@ -190,38 +193,66 @@ fn an_own_rule_set_has_the_limits_that_it_carries() {
         let set = read(value).unwrap();
         let mut with = book().clone();
         with.rule_sets.insert(set.id.clone(), set);
-        let assessment = evaluate(&Pathway::from_value(&document).unwrap(), &with, Options::default()).unwrap();
+        let assessment = evaluate(
+            &Pathway::from_value(&document).unwrap(),
+            &with,
+            Options::default(),
+        )
+        .unwrap();
         -assessment.terms_g_co2e_per_mj.e_sca
     };
     let as_the_directive = claim(&own());
     let mut lower = own();
     lower["limits"]["soil_carbon_cap"]["value"] = json!(10);
-    assert!((as_the_directive / claim(&lower) - 2.5).abs() < 1e-9, "25 and 10 g/MJ of the fuel grown there");
+    assert!(
+        (as_the_directive / claim(&lower) - 2.5).abs() < 1e-9,
+        "25 and 10 g/MJ of the fuel grown there"
+    );
     let mut none = own();
     none.as_object_mut().unwrap().remove("limits");
     assert!(claim(&none) > as_the_directive);
     document["stages"][0]["inputs"].as_array_mut().unwrap().pop();
-    document["stages"][0]["inputs"].as_array_mut().unwrap().push(json!({ "key": "land", "model": {
+    document["stages"][0]["inputs"]
+        .as_array_mut()
+        .unwrap()
+        .push(json!({ "key": "land", "model": {
         "kind": "land_use_change", "area_ha": 1, "converted_in": 2015, "degraded_land_bonus": true,
         "before": { "carbon_t_per_ha": 70 }, "after": { "carbon_t_per_ha": 70 } } }));
     let set = read(&none).unwrap();
     let mut with = book().clone();
     with.rule_sets.insert(set.id.clone(), set);
-    let problems = evaluate(&Pathway::from_value(&document).unwrap(), &with, Options::default()).unwrap_err();
-    assert!(problems.list().iter().any(|problem| problem.detail.contains("knows no bonus")), "{problems:?}");
+    let problems = evaluate(
+        &Pathway::from_value(&document).unwrap(),
+        &with,
+        Options::default(),
+    )
+    .unwrap_err();
+    assert!(
+        problems
+            .list()
+            .iter()
+            .any(|problem| problem.detail.contains("knows no bonus")),
+        "{problems:?}"
+    );
 }
 
 #[test]
 fn months_of_data_are_asked_for_where_the_rule_set_names_them() {
     let mut value = own();
-    value["data_months"] = json!({ "value": 24, "unit": "months", "source": "made-up contract, point 9", "status": "own" });
+    value["data_months"] =
+        json!({ "value": 24, "unit": "months", "source": "made-up contract, point 9", "status": "own" });
     let mut document = chain(&Figures::usual());
     document["rule_set"] = json!("own-2027");
     let found = |value: &Value| {
         let set = read(value).unwrap();
         let mut with = book().clone();
         with.rule_sets.insert(set.id.clone(), set);
-        let assessment = evaluate(&Pathway::from_value(&document).unwrap(), &with, Options::default()).unwrap();
+        let assessment = evaluate(
+            &Pathway::from_value(&document).unwrap(),
+            &with,
+            Options::default(),
+        )
+        .unwrap();
         assessment.findings.iter().any(|finding| finding.id == "E-14")
     };
     assert!(found(&value));

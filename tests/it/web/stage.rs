@@ -210,7 +210,10 @@ async fn a_card_is_worked_out_without_being_saved() {
     let answer = send(&app, &form).await;
     assert_eq!(answer.status, 200, "{}", answer.text());
     let html = answer.text();
-    assert!(html.contains("Worked out, not saved: ") && html.contains(" against the revision"), "{html}");
+    assert!(
+        html.contains("Worked out, not saved: ") && html.contains(" against the revision"),
+        "{html}"
+    );
     let again = Form::find(&html, "/stages/works");
     assert_eq!((again.get(&amount), again.get("expected")), (twice.as_str(), "1"));
     assert!(html.contains(">Trying</textarea>"), "everything typed is kept");
@@ -218,7 +221,11 @@ async fn a_card_is_worked_out_without_being_saved() {
     form.set(&amount, "1,5");
     let answer = send(&app, &form).await;
     assert_eq!(answer.status, 422);
-    assert!(answer.text().contains("Not worked out: one thing does not fit"), "{}", answer.text());
+    assert!(
+        answer.text().contains("Not worked out: one thing does not fit"),
+        "{}",
+        answer.text()
+    );
 }
 
 #[tokio::test]
@@ -226,6 +233,12 @@ async fn a_model_shows_its_words_its_unit_and_its_workings() {
     let app = TestApp::new().await;
     let (one, _) = app.stores_chain().await;
     let html = page(&app, &format!("{}/stages/truck", of_pages(&one))).await;
-    assert!(html.contains(">Comes back empty</label>") && html.contains(">Energy of the empty trip</label>"), "{html}");
-    assert!(html.contains("aria-label=\"Unit of Distance\"") && html.contains("<summary>Workings"), "{html}");
+    assert!(
+        html.contains(">Comes back empty</label>") && html.contains(">Energy of the empty trip</label>"),
+        "{html}"
+    );
+    assert!(
+        html.contains("aria-label=\"Unit of Distance\"") && html.contains("<summary>Workings"),
+        "{html}"
+    );
 }

@@ -66,7 +66,10 @@ fn meter(value: &Value, at: &Place, problems: &mut Problems) -> Option<Meter> {
     let list = at.field("readings");
     for (k, pair) in meter.readings.windows(2).enumerate() {
         if pair[1].on < pair[0].on || (pair[1].on == pair[0].on && !pair[1].reset) {
-            let detail = format!("The reading of {} stands after that of {}.", pair[1].on, pair[0].on);
+            let detail = format!(
+                "The reading of {} stands after that of {}.",
+                pair[1].on, pair[0].on
+            );
             let remedy = "Put the readings in order of their days, one a day; only a new dial begins on the day of the old one's last reading.";
             problems.add(list.item(k + 1).field("on"), detail, remedy);
         }
@@ -90,12 +93,7 @@ fn per_unit(value: &Value, at: &Place, problems: &mut Problems) -> Option<crate:
     }
 }
 
-fn not_negative(
-    name: &'static str,
-    fields: &mut Fields,
-    at: &Place,
-    problems: &mut Problems,
-) -> Option<f64> {
+fn not_negative(name: &'static str, fields: &mut Fields, at: &Place, problems: &mut Problems) -> Option<f64> {
     let figure = fields.number(name, at, problems)?;
     if figure < 0.0 {
         let detail = format!("{figure} is below zero.");
@@ -188,7 +186,11 @@ pub fn known_meters(stage: &Stage, at: &Place, problems: &mut Problems) {
         let place = place.field("meter");
         if input.gases.is_some() {
             let detail = "Gases in kg are read from no meter.";
-            problems.add(place, detail, "Take \"meter\" out, or give an amount and a factor.");
+            problems.add(
+                place,
+                detail,
+                "Take \"meter\" out, or give an amount and a factor.",
+            );
             continue;
         }
         for id in named.list().iter().filter(|id| !known.contains(id.as_str())) {
@@ -248,7 +250,11 @@ fn earlier(value: &Value, at: &Place, problems: &mut Problems) -> Option<Earlier
     let yielded = fields.part("yield", at, problems, amount);
     if yielded.as_ref().is_some_and(|amount| amount.value <= 0.0) {
         let place = at.field("yield");
-        problems.add(place.field("value"), "A yield is above zero.", "Check the figure.");
+        problems.add(
+            place.field("value"),
+            "A yield is above zero.",
+            "Check the figure.",
+        );
     }
     let note = fields.text("note", at, problems);
     fields.close(at, problems);

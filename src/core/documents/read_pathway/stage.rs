@@ -1,7 +1,7 @@
 //! Reads a stage: its kind, what it takes and gives, and where its crop grew.
 
-use super::records::{earlier_periods, known_meters, meters};
 use super::flows::{co_product, intake, output};
+use super::records::{earlier_periods, known_meters, meters};
 use super::stated::stated;
 use crate::core::documents::pathway::{Grown, Stage};
 use crate::core::documents::problem::Problems;

@@ -142,7 +142,10 @@ fn figures(set: &RuleSet, problems: &mut Problems) {
 fn one(wanted: &Figure, cited: &Cited, at: &Place, problems: &mut Problems) {
     let name = wanted.name;
     if cited.unit != wanted.unit {
-        let detail = format!("{name} is given in {}, but counts in {}.", cited.unit, wanted.unit);
+        let detail = format!(
+            "{name} is given in {}, but counts in {}.",
+            cited.unit, wanted.unit
+        );
         problems.add(at.field("unit"), detail, format!("Give it in {}.", wanted.unit));
     } else if !(wanted.least..=wanted.most).contains(&cited.value) {
         let detail = format!(
