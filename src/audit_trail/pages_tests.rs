@@ -2,6 +2,7 @@
 
 use super::*;
 use crate::app::who::Who;
+use crate::audit_trail::{By, FORMAT};
 use serde_json::json;
 
 const HOSTILE: &str = "<script>alert('1')</script> \"x\" & <b>bold</b>";
@@ -15,11 +16,11 @@ fn entry(number: i64, thing: &str, what: Value, words: &str) -> Entry {
     };
     Entry {
         line: Line {
-            format: super::super::FORMAT.into(),
+            format: FORMAT.into(),
             number,
             previous: String::new(),
             at: "2027-07-12T10:21:07Z".parse().expect("a time"),
-            by: super::super::By::of(&who),
+            by: By::of(&who),
             did: "saved".into(),
             thing: thing.into(),
             id: "0197d3c8-5b9e-7cc1-9f5e-2a3b4c5d6e7f".into(),

@@ -109,7 +109,7 @@ async fn a_restored_copy_passes_the_check_and_answers_the_same() {
 async fn what_was_changed_behind_its_back_is_found() {
     for (sql, words) in [
         (
-            "DROP TRIGGER revision_never_changes; UPDATE revision SET document = replace(document, '165', '166')",
+            "DROP TRIGGER revision_never_changes; UPDATE revision SET document = replace(document, 'period', 'perioc')",
             "Its document was changed",
         ),
         (
