@@ -9,7 +9,7 @@ use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
 use crate::core::evaluate::{Options, evaluate};
 use crate::store::memory::Memory;
-use crate::store::{OrganisationId, Settings, Store, StoreError};
+use crate::store::{Settings, Store, StoreError};
 use doors::Doors;
 use std::ops::Deref;
 use std::path::Path;
@@ -17,6 +17,7 @@ use std::sync::Arc;
 use who::Who;
 
 pub use crate::core::engine::assess::PROGRAM;
+pub use crate::store::OrganisationId;
 
 /// The accounting as a value, so that tests of the shell can bring their own.
 pub type Evaluate = fn(&Pathway, &Book, Options<'_>) -> Result<Assessment, Problems>;
@@ -128,6 +129,38 @@ impl App {
             clock,
             library,
             organisation,
+            who: Arc::new(Who::command()),
+            evaluate,
+            memory: Arc::new(Memory::default()),
+        })
+    }
+
+    /// Does the accounting of a document.
+    ///
+    /// # Errors
+    /// Every problem of the document.
+    pub fn evaluates(
+        &self,
+        pathway: &Pathway,
+        book: &Book,
+        options: Options<'_>,
+    ) -> Result<Assessment, Problems> {
+        metrics::counter!("wheelwort_evaluations_total").increment(1);
+        (self.evaluate)(pathway, book, options)
+    }
+
+    /// Opens a data file that is there, to look at it and change nothing; on behalf of nobody until
+    /// [`App::on_behalf_of`] says whom.
+    ///
+    /// # Errors
+    /// When the file is not there, cannot be read, or belongs to another version of the program.
+    pub async fn open_to_read(file: &Path, clock: Clock, library: &'static Book) -> Result<App, StoreError> {
+        Ok(App {
+            doors: Arc::new(Doors::new(&clock)),
+            store: Store::open_to_read(file).await?,
+            clock,
+            library,
+            organisation: OrganisationId::NOBODY,
             who: Arc::new(Who::command()),
             evaluate,
             memory: Arc::new(Memory::default()),

@@ -1,7 +1,7 @@
 //! `demo`: invented data in a temporary folder, served until it is asked to stop.
 
 use super::say;
-use super::serve::{open, running, serve};
+use super::serve::{door, open, running, serve};
 use crate::config::Config;
 use crate::people::pages::gate::{DemoDoor, Door};
 use crate::{demo, telemetry};
@@ -34,7 +34,7 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         say("Open:");
         let door = Door {
             demo: Some(Arc::new(DemoDoor::new(people.ids))),
-            ..Door::default()
+            ..door(config)
         };
         serve(app, config, door).await
     })

@@ -5,7 +5,7 @@ use super::serve::{open, running};
 use super::{COULD_NOT, WRONG, print, say};
 use crate::app::App;
 use crate::app::who::{Right, Role};
-use crate::config::FIRST_ADMINISTRATOR;
+use crate::config::FirstAdministrator;
 use crate::people::{self, NewPerson, NewToken, PeopleError};
 use anyhow::{Context, bail};
 use clap::{Args, Subcommand};
@@ -268,44 +268,17 @@ pub(super) async fn anybody(app: &App) -> anyhow::Result<bool> {
     Ok(people::anybody(app).await?)
 }
 
-/// Makes the first administrator that the environment names: for containers, where nobody types.
-pub(super) async fn first_of_environment(app: &App) -> anyhow::Result<()> {
-    let [name, file, password] = FIRST_ADMINISTRATOR.map(std::env::var_os);
-    let Some(name) = name
-        .and_then(|name| name.into_string().ok())
-        .filter(|name| !name.is_empty())
-    else {
-        return Ok(());
-    };
-    if people::anybody(app).await? {
-        return Ok(());
-    }
-    let password = match (file, password) {
-        (Some(file), _) => std::fs::read_to_string(&file)
-            .with_context(|| {
-                format!(
-                    "the password file {} cannot be read",
-                    PathBuf::from(&file).display()
-                )
-            })?
-            .trim_end_matches(['\r', '\n'])
-            .to_owned(),
-        (None, Some(password)) => match password.into_string() {
-            Ok(password) => password,
-            Err(_) => bail!("WHEELWORT_ADMINISTRATOR_PASSWORD is not UTF-8"),
-        },
-        (None, None) => bail!(
-            "WHEELWORT_ADMINISTRATOR is set without a password: set WHEELWORT_ADMINISTRATOR_PASSWORD_FILE, or \
-             WHEELWORT_ADMINISTRATOR_PASSWORD"
-        ),
-    };
-    match people::first_administrator(app, &name, password).await {
-        Ok(_) => {
+/// Makes the first administrator that the settings name: for containers, where nobody types.
+pub(super) async fn first_of_settings(app: &App, first: &FirstAdministrator) -> anyhow::Result<()> {
+    match people::first_administrator(app, &first.name, first.password.reveal().to_owned()).await {
+        Ok(true) => {
             say(&format!(
-                "The first administrator is made: {name}, as the environment says."
+                "The first administrator is made: {}, as the settings say.",
+                first.name
             ));
             Ok(())
         }
+        Ok(false) => Ok(()),
         Err(PeopleError::Problems(problems)) => {
             let words: Vec<_> = problems.list().iter().map(ToString::to_string).collect();
             bail!("the first administrator cannot be made: {}", words.join("; "))

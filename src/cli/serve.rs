@@ -5,7 +5,9 @@ use crate::app::App;
 use crate::clock::Clock;
 use crate::config::Config;
 use crate::people::pages::gate::Door;
+use crate::store::{FILE, FolderLock};
 use crate::web::extract::Limits;
+use crate::web::metrics::Metrics;
 use crate::web::patience::Patient;
 use crate::web::{Shell, router};
 use crate::{library, telemetry};
@@ -15,9 +17,6 @@ use std::path::Path;
 use std::time::Duration;
 use tokio::net::TcpListener;
 
-/// Name of the data file in its folder.
-const FILE: &str = "wheelwort.db";
-
 /// Runs until it is asked to stop.
 pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     telemetry::begin(&config.log, config.log_format)?;
@@ -25,8 +24,12 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
+        // Held until the program ends, however it ends.
+        let _alone = FolderLock::take(&folder)?;
         let app = open(&folder).await?;
-        people::first_of_environment(&app).await?;
+        if let Some(first) = &config.first_administrator {
+            people::first_of_settings(&app, first).await?;
+        }
         if !people::anybody(&app).await? {
             say(&format!(
                 "Nobody can sign in yet. Make the first administrator: wheelwort people add --data {} --name \"NAME\" \
@@ -34,8 +37,17 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
                 folder.display()
             ));
         }
-        serve(app, config, Door::default()).await
+        serve(app, config, door(config)).await
     })
+}
+
+/// How people come in, as the settings say.
+pub(super) fn door(config: &Config) -> Door {
+    Door {
+        trusted_proxies: config.trusted_proxies.clone(),
+        secure_cookies: config.cookies_are_secure(),
+        demo: None,
+    }
 }
 
 /// Runs the program's threads.
@@ -79,6 +91,9 @@ async fn until_asked_to_stop(app: App, config: &Config, door: Door) -> anyhow::R
              proxy with TLS before it."
         ));
     }
+    if let Some(address) = config.metrics_listen {
+        serve_metrics(&app, address).await?;
+    }
     let shell = Shell {
         limits: Limits {
             body_bytes: config.body_bytes,
@@ -112,6 +127,24 @@ async fn until_asked_to_stop(app: App, config: &Config, door: Door) -> anyhow::R
             .context("the service stopped")?
             .context("the service failed")?,
     }
+    Ok(())
+}
+
+/// Serves `/metrics` on an address of its own, until the program ends.
+async fn serve_metrics(app: &App, address: std::net::SocketAddr) -> anyhow::Result<()> {
+    let metrics = Metrics::begin(app.clone()).context("measurements cannot begin")?;
+    let listener = TcpListener::bind(address)
+        .await
+        .with_context(|| format!("cannot listen on {address} for measurements"))?;
+    let address = listener.local_addr().context("the address is not known")?;
+    say(&format!("Measurements: http://{address}/metrics"));
+    tokio::spawn(metrics.clone().keep_up());
+    let patient = Patient::new(listener, 16, Duration::from_secs(15));
+    tokio::spawn(crate::web::serve(
+        patient,
+        metrics.router(),
+        std::future::pending(),
+    ));
     Ok(())
 }
 

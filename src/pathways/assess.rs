@@ -95,7 +95,7 @@ pub(super) fn make(
     rule_set: Option<&str>,
 ) -> Result<Made, PathwayError> {
     let options = basis.options(rule_set);
-    let assessment = (app.evaluate)(document, &basis.book, options)?;
+    let assessment = app.evaluates(document, &basis.book, options)?;
     let defect = |error| PathwayError::defect("wrote an assessment", error);
     let bytes = canonical::bytes(&assessment).map_err(defect)?;
     let assessment_hash = canonical::hash(&bytes);
@@ -196,6 +196,7 @@ pub async fn assessment(
     revision: Option<i64>,
     rule_set: Option<&str>,
 ) -> Result<AssessmentBytes, PathwayError> {
+    seen(app, id)?;
     let basis = basis(app).await?;
     if revision.is_none() {
         let head = head(app, id).await?;
@@ -286,6 +287,15 @@ pub(super) fn key<'k>(document: &'k str, rule_set: &'k str, basis: &'k Basis) ->
     }
 }
 
+/// Refuses what whoever asks was not invited to, as if it were not there.
+pub(super) fn seen(app: &App, id: Uuid) -> Result<(), PathwayError> {
+    if app.who.sees_pathway(id) {
+        Ok(())
+    } else {
+        Err(PathwayError::NotFound(What::Pathway))
+    }
+}
+
 pub(super) fn missing(revision: Option<i64>) -> What {
     if revision.is_some() {
         What::Revision
@@ -305,6 +315,27 @@ fn answer(revision: i64, pathway_hash: String, rule_set: &str, kept: Kept) -> As
     }
 }
 
+/// Everything that a page of the current revision shows, as a text that changes when any of it does.
+///
+/// # Errors
+/// `NotFound`, or when the database fails.
+pub async fn face(app: &App, id: Uuid) -> Result<String, PathwayError> {
+    seen(app, id)?;
+    let basis = basis(app).await?;
+    let head = head(app, id).await?;
+    let Head {
+        revision,
+        hash,
+        rule_set,
+        reasons,
+        archived,
+    } = &*head;
+    let basis = &basis.hash;
+    Ok(format!(
+        "{id} {revision} {hash} {basis} {reasons} {archived} {rule_set}"
+    ))
+}
+
 /// The current revision of a pathway, from memory or the file.
 pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError> {
     let now = app.clock.millis();
@@ -320,6 +351,7 @@ pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError>
         hash: row.hash,
         rule_set: row.rule_set,
         reasons: row.reasons,
+        archived: row.archived_at.is_some(),
     });
     app.memory.learn(app.organisation, id, head.clone(), now, writes);
     Ok(head)
@@ -369,7 +401,7 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
                         without_workings: true,
                         ..basis.options(None)
                     };
-                    let assessment = (app.evaluate)(&document, &basis.book, options);
+                    let assessment = app.evaluates(&document, &basis.book, options);
                     assessment
                         .map(|made| (made.net.g_co2e_per_mj, None))
                         .map_err(PathwayError::Problems)

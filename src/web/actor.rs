@@ -2,9 +2,8 @@
 
 use super::form_check::FormCheck;
 use super::problem::Refusal;
-use crate::app::App;
 use crate::app::who::{Right, Who};
-use crate::store::OrganisationId;
+use crate::app::{App, OrganisationId};
 use axum::extract::FromRequestParts;
 use axum::http::StatusCode;
 use axum::http::header::{HeaderValue, WWW_AUTHENTICATE};

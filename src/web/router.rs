@@ -5,11 +5,11 @@ use super::actor::{Actor, CanWrite};
 use super::extract::Limits;
 use super::openapi::{self, Document};
 use super::problem::{Refusal, RefusalPage};
-use super::{api_page, error_page};
+use super::{api_page, error_page, idempotency};
 use super::{assets, health, layers};
 use crate::app::App;
 use crate::people::pages::gate::{Door, Gate, authenticate};
-use crate::{calculators, demo, factors, pathways, people, rules};
+use crate::{audit_trail, calculators, demo, factors, pathways, people, rules};
 use axum::Router;
 use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
@@ -50,7 +50,10 @@ impl Default for Shell {
 /// The whole service.
 pub fn router(app: App, shell: Shell) -> Router {
     let (api, description) = api().split_for_parts();
+    // Inside of the layer that knows who asks: a key belongs to a person.
+    let once = from_fn_with_state(app.clone(), idempotency::layer);
     let work = api
+        .layer(once)
         .merge(pages_router())
         .merge(assets::routes())
         .fallback(nowhere)
@@ -78,6 +81,7 @@ fn api() -> OpenApiRouter<App> {
         .merge(factors::api::routes())
         .merge(rules::api::routes())
         .merge(calculators::api::routes())
+        .merge(audit_trail::api::routes())
         .merge(people::api::routes());
     let mut all = OpenApiRouter::with_openapi(openapi::begun()).nest("/api/v1", v1);
     // Described with the rest, routed apart.
@@ -94,6 +98,8 @@ pub fn pages_router() -> Router<App> {
         .merge(pathways::pages::routes())
         .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
+        .merge(rules::pages::routes())
+        .merge(audit_trail::pages::routes())
         .merge(people::pages::routes())
 }
 

@@ -10,7 +10,8 @@ macro_rules! listed {
         concat!(
             "SELECT p.id, p.public_id, p.name, p.name_folded, p.feedstock, p.rule_set AS pathway_rule_set, p.example, ",
             "p.created_at, p.updated_at, p.archived_at, r.id AS revision_id, r.number, r.hash, r.rule_set, ",
-            "a.hash AS assessment_hash, a.net, a.saving, a.thresholds, a.blocks, a.warnings, a.infos ",
+            "a.hash AS assessment_hash, a.net, a.saving, a.thresholds, a.blocks, a.warnings, a.infos, ",
+            "EXISTS (SELECT 1 FROM reasons g WHERE g.pathway_id = p.id AND g.organisation_id = p.organisation_id) AS reasoned ",
             "FROM pathway p ",
             "JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision ",
             "AND r.organisation_id = p.organisation_id ",
@@ -19,7 +20,8 @@ macro_rules! listed {
             "WHERE p.organisation_id = $1 AND (p.archived_at IS NOT NULL) = $3 ",
             "AND ($4 IS NULL OR p.name_folded LIKE $4 ESCAPE '\\') ",
             "AND ($5 IS NULL OR p.feedstock = $5) AND ($6 IS NULL OR p.rule_set = $6) ",
-            "AND ($7 IS NULL OR p.example = $7) AND ($8 IS NULL OR ",
+            "AND ($7 IS NULL OR p.example = $7) ",
+            "AND ($12 IS NULL OR p.public_id IN (SELECT value FROM json_each($12))) AND ($8 IS NULL OR ",
             $further,
             ") ORDER BY ",
             $order,
@@ -67,6 +69,8 @@ pub(super) struct LineRow {
     pub(super) revision_id: i64,
     pub(super) number: i64,
     pub(super) hash: String,
+    /// True if reasons were ever given for its warnings.
+    pub(super) reasoned: bool,
     #[sqlx(flatten)]
     pub(super) summary: SummaryRow,
 }
@@ -146,7 +150,7 @@ impl Place {
     }
 }
 
-/// The lines after a place.
+/// The lines after a place; of these pathways alone, if they are given (public ids as a JSON list).
 pub(super) async fn lines(
     c: &mut Connection,
     who: OrganisationId,
@@ -154,6 +158,7 @@ pub(super) async fn lines(
     after: Option<&Place>,
     limit: i64,
     settings: &str,
+    chosen: Option<&str>,
 ) -> Result<Vec<LineRow>, StoreError> {
     let text = match question.sort {
         Sort::Updated => BY_UPDATE,
@@ -179,6 +184,7 @@ pub(super) async fn lines(
         .bind(after.map(|place| place.id.as_str()))
         .bind(limit)
         .bind(settings)
+        .bind(chosen)
         .fetch_all(c)
         .await?)
 }

@@ -1,20 +1,21 @@
 //! `serve` and `demo`: they say where they are, answer there, and stop in order when asked.
 
 use super::program;
+use crate::support::client;
 use crate::support::documents::chain;
 use std::io::{BufRead, BufReader, Read};
 use std::process::{Child, ChildStdout, Command, Stdio};
 use std::time::Duration;
 
 /// A running program; killed if the test fails before it stops it.
-struct Running {
+pub struct Running {
     child: Child,
     out: BufReader<ChildStdout>,
-    address: String,
+    pub address: String,
 }
 
 impl Running {
-    fn start(command: &mut Command) -> Running {
+    pub fn start(command: &mut Command) -> Running {
         let mut child = command
             .stdout(Stdio::piped())
             .stderr(Stdio::piped())
@@ -27,12 +28,12 @@ impl Running {
         Running { child, out, address }
     }
 
-    fn url(&self, path: &str) -> String {
+    pub fn url(&self, path: &str) -> String {
         format!("{}{path}", self.address)
     }
 
     /// Asks it to stop; its exit code, the rest of its standard output, and its standard error.
-    fn stop(mut self, signal: &str) -> (Option<i32>, String, String) {
+    pub fn stop(mut self, signal: &str) -> (Option<i32>, String, String) {
         let asked = Command::new("kill")
             .args([signal, &self.child.id().to_string()])
             .status()
@@ -71,7 +72,7 @@ async fn serve_keeps_its_data_over_a_stop() {
             .args(["--listen", "127.0.0.1:0"]);
         Running::start(&mut command)
     };
-    let client = reqwest::Client::new();
+    let client = client();
     let running = serve();
     assert!(
         running.address.starts_with("http://127.0.0.1:"),
@@ -118,7 +119,7 @@ async fn a_stop_does_not_wait_for_idle_connections() {
         .arg(folder.path())
         .args(["--listen", "127.0.0.1:0"]);
     let running = Running::start(&mut command);
-    let client = reqwest::Client::new();
+    let client = client();
     assert_eq!(
         client
             .get(running.url("/health/ready"))
@@ -178,7 +179,9 @@ async fn the_demo_shows_its_pathways_and_leaves_nothing() {
         .args(["demo", "--listen", "127.0.0.1:0"])
         .env("TMPDIR", folder.path());
     let running = Running::start(&mut command);
-    let answer = reqwest::get(running.url("/api/v1/pathways?example=true"))
+    let answer = client()
+        .get(running.url("/api/v1/pathways?example=true"))
+        .send()
         .await
         .expect("answers");
     let list: serde_json::Value = answer.json().await.expect("JSON");
