@@ -76,7 +76,7 @@ pub async fn sign_in(
     match row {
         Some(row) if fits && able => begin(app, row, before, "password").await,
         row => {
-            refused(app, row)?;
+            refused(app, row.as_ref())?;
             Err(PeopleError::DoNotFit)
         }
     }
@@ -152,9 +152,9 @@ async fn begin(
 
 /// Writes that a sign-in was refused: after the answer, so that it takes no time of it, and a line a minute at most. What
 /// was typed is not kept: people type their password where the name belongs.
-fn refused(app: &App, row: Option<PersonRow>) -> Result<(), StoreError> {
+fn refused(app: &App, row: Option<&PersonRow>) -> Result<(), StoreError> {
     let now = app.clock.millis();
-    let (who, person) = match &row {
+    let (who, person) = match row {
         Some(row) => (
             row.organisation(),
             Some(public_id(&row.public_id, "person", row.id)?),
