@@ -3,6 +3,7 @@
 mod evaluate;
 mod help;
 mod serve;
+mod verify;
 
 use std::ffi::OsStr;
 use std::io::Write;
