@@ -8,7 +8,7 @@ use wheelwort::core::checks::settings::Settings;
 use wheelwort::core::documents::statement::{EvidenceFile, Person, Previous, Statement, StatementFacts};
 use wheelwort::core::documents::{Assessment, Pathway};
 use wheelwort::core::evaluate::{Options, evaluate};
-use wheelwort::core::statement::seal::PublicKey;
+use wheelwort::core::statement::seal::{PublicKey, hex};
 use wheelwort::core::statement::{Inputs, Refused, build, seal};
 use wheelwort::library;
 
@@ -130,8 +130,7 @@ pub fn again(mut document: Value) -> Vec<u8> {
     use wheelwort::core::documents::{canonical, statement::signed_bytes};
     let signed = signed_bytes(document.clone()).expect("bytes");
     document["hash"] = canonical::hash(&signed).into();
-    document["signature"]["value"] =
-        wheelwort::core::statement::seal::hex(&key().sign(&signed).to_bytes()).into();
+    document["signature"]["value"] = hex(&key().sign(&signed).to_bytes()).into();
     bytes_of(&document)
 }
 
