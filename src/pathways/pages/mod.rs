@@ -17,6 +17,7 @@ pub mod home;
 mod kept;
 pub mod ladder;
 pub mod links;
+pub mod meeting;
 pub mod new;
 mod notices;
 pub mod revision;

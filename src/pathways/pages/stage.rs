@@ -44,6 +44,10 @@ pub struct ShowStage {
     pub refused: Vec<Refused>,
     /// What somebody else saved meanwhile.
     pub met: Vec<Met>,
+    /// Who that was, and when.
+    pub meeting: super::meeting::Meeting,
+    /// How many fields differ, as a sentence.
+    pub differ: String,
     /// Where the form is sent.
     pub action: String,
     /// Steering fields: name, value.
@@ -280,6 +284,8 @@ impl ShowStage {
             refused_words: "Not saved",
             refused: Vec::new(),
             met: Vec::new(),
+            meeting: super::meeting::Meeting::default(),
+            differ: String::new(),
             action: links::stage(&card.head.id, card.key),
             hidden,
             about,

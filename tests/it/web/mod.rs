@@ -4,6 +4,7 @@ mod calculators;
 mod defaults;
 mod facts;
 mod form;
+mod meeting;
 mod pages;
 mod rules;
 mod stage;

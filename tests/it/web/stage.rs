@@ -141,7 +141,11 @@ async fn two_people_meet_and_nothing_of_either_is_lost() {
     assert_eq!(answer.status, 412);
     let html = answer.text();
     assert!(
-        html.contains("revision 2 was saved while you were typing"),
+        html.contains("Not saved: you saved revision 2 elsewhere while this page was open"),
+        "{html}"
+    );
+    assert!(
+        html.contains("3 fields differ.") || html.contains("2 fields differ."),
         "{html}"
     );
     let mut joined = Form::find(&html, "/stages/works");

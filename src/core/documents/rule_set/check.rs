@@ -46,10 +46,13 @@ pub const FIGURES: [Figure; 11] = [
 ];
 
 /// Limits and bonuses of deductions that models ask for: what is not listed here is no limit. Spans are ours.
-pub const LIMITS: [Figure; 9] = [
+pub const LIMITS: [Figure; 12] = [
     figure("land_use_since", "year", 1900.0, 2200.0),
     figure("degraded_land_bonus", "g CO2e/MJ", 0.0, 300.0),
     figure("degraded_land_years", "years", 1.0, 100.0),
+    figure("iluc_cereals", "g CO2e/MJ", 0.0, 300.0),
+    figure("iluc_none", "g CO2e/MJ", 0.0, 300.0),
+    figure("iluc_sugars", "g CO2e/MJ", 0.0, 300.0),
     figure("soil_carbon_cap", "g CO2e/MJ", 0.0, 300.0),
     figure("soil_carbon_cap_biochar", "g CO2e/MJ", 0.0, 300.0),
     figure("soil_carbon_practice_years", "years", 0.0, 100.0),
