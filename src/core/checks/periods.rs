@@ -149,7 +149,7 @@ pub fn in_force(edition: &Edition, period: &Period) -> Option<Finding> {
 fn months(period: &Period) -> Option<i32> {
     let after = period.to.tomorrow().ok()?;
     let span = period.from.until((jiff::Unit::Month, after)).ok()?;
-    Some(span.get_years() as i32 * 12 + span.get_months())
+    Some(i32::from(span.get_years()) * 12 + span.get_months())
 }
 
 /// E-14: the period holds as many months as the rule set asks for an actual value.
