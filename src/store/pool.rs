@@ -26,21 +26,25 @@ fn options(file: &Path, settings: &Settings) -> SqliteConnectOptions {
         .row_buffer_size(256)
 }
 
+/// For how long a reader is waited for.
+const PATIENCE: Duration = Duration::from_secs(5);
+
 /// A pool of exactly `count` connections that live as long as it.
-fn pool(count: u32) -> SqlitePoolOptions {
+fn pool(count: u32, patience: Duration) -> SqlitePoolOptions {
     SqlitePoolOptions::new()
         .min_connections(count)
         .max_connections(count)
         .idle_timeout(None)
         .max_lifetime(None)
-        .acquire_timeout(Duration::from_secs(5))
+        .acquire_timeout(patience)
         .test_before_acquire(false)
 }
 
 /// Opens the connection that writes, and brings the tables up to date with it. Comes before the readers, which
 /// cannot make the file or its `-shm`.
 pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
-    let writer = pool(1)
+    // Longer than the wait for a lock, so that whoever opens hears of the lock and not of a busy service.
+    let writer = pool(1, settings.busy_timeout + PATIENCE)
         .connect_with(options(file, settings).create_if_missing(true))
         .await?;
     if let Err(error) = MIGRATIONS.run(&writer).await {
@@ -56,5 +60,5 @@ pub(super) async fn readers(file: &Path, settings: &Settings) -> Result<SqlitePo
         .create_if_missing(false)
         .read_only(true)
         .pragma("query_only", "ON");
-    Ok(pool(settings.readers).connect_with(options).await?)
+    Ok(pool(settings.readers, PATIENCE).connect_with(options).await?)
 }
