@@ -4,6 +4,7 @@ use super::{Settings, StoreError};
 use sqlx::SqlitePool;
 use sqlx::sqlite::{SqliteConnectOptions, SqliteJournalMode, SqlitePoolOptions, SqliteSynchronous};
 use std::path::Path;
+use std::sync::Arc;
 use std::time::Duration;
 
 /// The tables of this version of the program.
@@ -26,32 +27,47 @@ fn options(file: &Path, settings: &Settings) -> SqliteConnectOptions {
         .row_buffer_size(256)
 }
 
-/// For how long a reader is waited for.
-const PATIENCE: Duration = Duration::from_secs(5);
-
 /// A pool of exactly `count` connections that live as long as it.
-fn pool(count: u32, patience: Duration) -> SqlitePoolOptions {
+fn pool(count: u32) -> SqlitePoolOptions {
     SqlitePoolOptions::new()
         .min_connections(count)
         .max_connections(count)
         .idle_timeout(None)
         .max_lifetime(None)
-        .acquire_timeout(patience)
+        .acquire_timeout(Duration::from_secs(5))
         .test_before_acquire(false)
 }
 
 /// Opens the connection that writes, and brings the tables up to date with it. Comes before the readers, which
 /// cannot make the file or its `-shm`.
 pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
-    // Longer than the wait for a lock, so that whoever opens hears of the lock and not of a busy service.
-    let writer = pool(1, settings.busy_timeout + PATIENCE)
+    let writer = pool(1)
         .connect_with(options(file, settings).create_if_missing(true))
-        .await?;
+        .await
+        .map_err(|error| match error {
+            // Nobody else is here yet: what is waited for at opening is another program's lock.
+            sqlx::Error::PoolTimedOut => StoreError::Locked(Arc::new(error)),
+            error => error.into(),
+        })?;
     if let Err(error) = MIGRATIONS.run(&writer).await {
         writer.close().await;
         return Err(error.into());
     }
+    if let Err(error) = can_write(&writer).await {
+        writer.close().await;
+        return Err(error.into());
+    }
     Ok(writer)
+}
+
+/// SQLite opens a file that it may not write for reading alone and says so at the first write: better now than when
+/// somebody saves. `BEGIN IMMEDIATE` alone passes on such a file, so this writes, and takes it back.
+async fn can_write(writer: &SqlitePool) -> Result<(), sqlx::Error> {
+    let mut connection = writer.acquire().await?;
+    for sql in ["BEGIN IMMEDIATE", "PRAGMA user_version = 1", "ROLLBACK"] {
+        sqlx::query(sql).execute(&mut *connection).await?;
+    }
+    Ok(())
 }
 
 /// Opens the connections that read and can do nothing else.
@@ -60,5 +76,5 @@ pub(super) async fn readers(file: &Path, settings: &Settings) -> Result<SqlitePo
         .create_if_missing(false)
         .read_only(true)
         .pragma("query_only", "ON");
-    Ok(pool(settings.readers, PATIENCE).connect_with(options).await?)
+    Ok(pool(settings.readers).connect_with(options).await?)
 }
