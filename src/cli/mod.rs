@@ -1,10 +1,13 @@
 //! The command line: what it takes, what it prints, and how it ends. Results go to standard output, everything else to
 //! standard error.
 
+mod backup;
+mod check;
 mod demo;
 mod evaluate;
 mod health;
 mod serve;
+mod verify;
 
 use crate::config::{ConfigError, Given};
 use crate::web::router;
@@ -24,6 +27,9 @@ Examples:
   wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
   wheelwort evaluate wheat.json             print the assessment of a pathway file
   wheelwort evaluate - < wheat.json         the same from standard input
+  wheelwort verify WW-2026-0031.json        check a statement file
+  wheelwort backup --data data today.zip    everything in that folder, as one file
+  wheelwort check --data data               is what is stored still what was stored?
 
 Exit codes: 0 done; 1 it could not be done (an address in use, a folder that cannot be written);
 2 what was given is wrong (a document, a setting, the command line).
@@ -79,6 +85,38 @@ output, and standard error holds one line for each error: where (a JSON pointer)
 with several files the name of the file comes first.
 Exit codes: 0 printed; 2 a file is wrong or cannot be read.";
 
+const VERIFY_EXAMPLES: &str = "\
+Examples:
+  wheelwort verify WW-2026-0031.json        work every figure out again, check hash and signature
+  wheelwort verify --key issuer.keys *.json against the keys that the issuer publishes, and as a series
+
+Needs nothing but the files. Prints a verdict a line; what else there is to know goes to standard error.
+Without --key a file vouches for its own key: compare its id with the one the issuer publishes.
+Exit codes: 0 verified; 1 something does not hold (the first thing is named); 2 a file cannot be read.";
+const CHECK_EXAMPLES: &str = "\
+Examples:
+  wheelwort check --data data               also while the service runs
+
+Looks at the file, every revision against its hash, and the audit trail link by link, and changes nothing.
+One line on standard output for each finding, then a closing line; it names where the audit trail ends: noted
+elsewhere, that shows later whether the trail was cut.
+Exit codes: 0 sound; 1 not sound, or not to be read.";
+
+const BACKUP_EXAMPLES: &str = "\
+Examples:
+  wheelwort backup --data data today.zip    also while the service runs
+
+Writes one ZIP file with the database as it stands at one moment, the files of evidence, and a manifest with the
+SHA-256 of each. A file that is there already is left alone.
+Exit codes: 0 written; 1 it could not be done, and nothing was written.";
+
+const RESTORE_EXAMPLES: &str = "\
+Examples:
+  wheelwort restore today.zip --data data   into a folder that is empty or not there yet
+
+Holds every file against the manifest first; the folder gets its name when all of it is on the disk.
+Exit codes: 0 restored; 1 it could not be done, and the folder is as it was.";
+
 /// Well-to-wheel greenhouse-gas accounting of fuel ethanol.
 #[derive(Debug, Parser)]
 #[command(name = "wheelwort", version, about, after_help = EXAMPLES, arg_required_else_help = true)]
@@ -104,6 +142,18 @@ enum Command {
     /// Ask a running service whether it can do its work.
     #[command(after_help = HEALTH_EXAMPLES)]
     Health(health::Health),
+    /// Check statement files: figures, published data, hash, signature, series.
+    #[command(after_help = VERIFY_EXAMPLES)]
+    Verify(verify::Verify),
+    /// Look whether stored data are still what was stored.
+    #[command(after_help = CHECK_EXAMPLES)]
+    Check(Data),
+    /// Back up the data of a folder into one file.
+    #[command(after_help = BACKUP_EXAMPLES)]
+    Backup(Backup),
+    /// Bring a backup back into an empty folder.
+    #[command(after_help = RESTORE_EXAMPLES)]
+    Restore(Backup),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -115,6 +165,22 @@ struct Serve {
     data: Option<PathBuf>,
     #[command(flatten)]
     common: Common,
+}
+
+#[derive(Debug, Args)]
+struct Data {
+    /// Folder of the data.
+    #[arg(long, value_name = "DIR", env = "WHEELWORT_DATA", default_value = "data")]
+    data: PathBuf,
+}
+
+#[derive(Debug, Args)]
+struct Backup {
+    #[command(flatten)]
+    data: Data,
+    /// The backup.
+    #[arg(value_name = "FILE")]
+    file: PathBuf,
 }
 
 #[derive(Debug, Args)]
@@ -184,6 +250,10 @@ pub fn main() -> ExitCode {
         Command::Evaluate(command) => evaluate::run(&command),
         Command::Settings(command) => print_settings(command),
         Command::Health(command) => health::run(command),
+        Command::Verify(command) => verify::run(&command),
+        Command::Check(Data { data }) => check::run(&data),
+        Command::Backup(Backup { data, file }) => backup::run(&data.data, &file),
+        Command::Restore(Backup { data, file }) => backup::restore(&file, &data.data),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

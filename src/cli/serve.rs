@@ -4,6 +4,7 @@ use super::{print, say};
 use crate::app::App;
 use crate::clock::Clock;
 use crate::config::Config;
+use crate::store::{FILE, FolderLock};
 use crate::web::extract::Limits;
 use crate::web::metrics::Metrics;
 use crate::web::patience::Patient;
@@ -15,9 +16,6 @@ use std::path::Path;
 use std::time::Duration;
 use tokio::net::TcpListener;
 
-/// Name of the data file in its folder.
-const FILE: &str = "wheelwort.db";
-
 /// Runs until it is asked to stop.
 pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     telemetry::begin(&config.log, config.log_format)?;
@@ -25,6 +23,8 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
+        // Held until the program ends, however it ends.
+        let _alone = FolderLock::take(&folder)?;
         let app = open(&folder).await?;
         // The demonstration says what it is in words of its own; a folder of one's own data deserves this line.
         if config.listen.ip().is_loopback() {

@@ -13,6 +13,7 @@ pub mod extract;
 pub mod filters;
 pub mod frame;
 pub mod health;
+pub mod idempotency;
 pub mod layers;
 pub mod links;
 pub mod metrics;

@@ -1,5 +1,6 @@
 //! The database and the use cases of pathways, with the real engine and the real library.
 
+mod backup;
 mod changes;
 mod faults;
 mod history;
