@@ -9,6 +9,7 @@ pub mod clock;
 pub mod config;
 pub mod core;
 pub mod demo;
+pub mod exchange;
 pub mod factors;
 pub mod library;
 pub mod pathways;

@@ -1,0 +1,5 @@
+//! Bytes to documents and back: files for other programs, made from what the core worked out.
+
+/// The statement on paper.
+#[cfg(feature = "pdf")]
+pub mod pdf;
