@@ -4,6 +4,7 @@
 mod demo;
 mod evaluate;
 mod serve;
+mod verify;
 
 use crate::config::{ConfigError, Given};
 use crate::web::router;
@@ -23,6 +24,7 @@ Examples:
   wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
   wheelwort evaluate wheat.json             print the assessment of a pathway file
   wheelwort evaluate - < wheat.json         the same from standard input
+  wheelwort verify WW-2026-0031.json        check a statement file
 
 Exit codes: 0 done; 1 it could not be done (an address in use, a folder that cannot be written);
 2 what was given is wrong (a document, a setting, the command line).
@@ -61,6 +63,15 @@ output, and standard error holds one line for each error: where (a JSON pointer)
 with several files the name of the file comes first.
 Exit codes: 0 printed; 2 a file is wrong or cannot be read.";
 
+const VERIFY_EXAMPLES: &str = "\
+Examples:
+  wheelwort verify WW-2026-0031.json        work every figure out again, check hash and signature
+  wheelwort verify --key issuer.keys *.json against the keys that the issuer publishes, and as a series
+
+Needs nothing but the files. Prints a verdict a line; what else there is to know goes to standard error.
+Without --key a file vouches for its own key: compare its id with the one the issuer publishes.
+Exit codes: 0 verified; 1 something does not hold (the first thing is named); 2 a file cannot be read.";
+
 /// Well-to-wheel greenhouse-gas accounting of fuel ethanol.
 #[derive(Debug, Parser)]
 #[command(name = "wheelwort", version, about, after_help = EXAMPLES, arg_required_else_help = true)]
@@ -80,6 +91,9 @@ enum Command {
     /// Print the assessment of pathway files.
     #[command(after_help = EVALUATE_EXAMPLES)]
     Evaluate(evaluate::Evaluate),
+    /// Check statement files: figures, published data, hash, signature, series.
+    #[command(after_help = VERIFY_EXAMPLES)]
+    Verify(verify::Verify),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -135,6 +149,7 @@ pub fn main() -> ExitCode {
         Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
+        Command::Verify(command) => verify::run(&command),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

@@ -14,10 +14,12 @@ mod materials;
 mod reading;
 mod rules;
 mod soils;
+mod statements;
 #[cfg(test)]
 mod tests;
 
 use crate::core::domain::Book;
+use crate::core::statement::items::Items;
 pub use elsewhere::Elsewhere;
 use reading::Reading;
 use std::sync::LazyLock;
@@ -26,6 +28,7 @@ use std::sync::LazyLock;
 struct Loaded {
     book: Book,
     elsewhere: Vec<Elsewhere>,
+    statement_items: Items,
     memory: Vec<String>,
 }
 
@@ -46,6 +49,11 @@ pub fn book() -> &'static Book {
 /// Limits of other jurisdictions that were read and that no rule set here follows, with the reason.
 pub fn limits_elsewhere() -> &'static [Elsewhere] {
     &LOADED.elsewhere
+}
+
+/// The items of a statement and the laws that ask for them.
+pub fn statement_items() -> &'static Items {
+    &LOADED.statement_items
 }
 
 /// Every figure that nobody has read at its source, with that source, in alphabetical order. Pages say so too.
@@ -76,6 +84,7 @@ fn read() -> Result<Loaded, Vec<String>> {
         editions,
     };
     let elsewhere = elsewhere::read(&mut reading);
+    let statement_items = statements::read(&mut reading);
     checks::run(&mut reading, &book);
     let Reading { problems, mut memory } = reading;
     if !problems.is_empty() {
@@ -86,6 +95,7 @@ fn read() -> Result<Loaded, Vec<String>> {
     Ok(Loaded {
         book,
         elsewhere,
+        statement_items,
         memory,
     })
 }

@@ -11,6 +11,7 @@ mod api;
 mod cli;
 mod engine;
 mod levers;
+mod statements;
 mod store;
 mod support;
 mod tidy;

@@ -12,8 +12,10 @@ pub mod read_input;
 pub mod read_pathway;
 pub mod reader;
 pub mod rule_set;
+pub mod statement;
 
 pub use amount::Amount;
 pub use assessment::Assessment;
 pub use pathway::Pathway;
 pub use problem::{Problem, Problems};
+pub use statement::{Statement, StatementFacts};

@@ -1,6 +1,6 @@
 //! Reads a JSON object field by field and notes everything that is wrong, each with its pointer.
 
-use super::problem::Problems;
+use super::problem::{Problem, Problems};
 use jiff::civil::Date;
 use serde_json::{Map, Value};
 use std::collections::BTreeSet;
@@ -55,6 +55,14 @@ impl fmt::Display for Place<'_> {
             Step::Item(index) => write!(f, "/{index}"),
         }
     }
+}
+
+/// How the detail of a problem with a field that nobody knows begins.
+const UNKNOWN: &str = "There is no field";
+
+/// True for a problem that [`Fields::close`] noted.
+pub fn is_unknown_field(problem: &Problem) -> bool {
+    problem.detail.starts_with(UNKNOWN)
 }
 
 /// The fields of one object while they are being read.
@@ -280,11 +288,7 @@ impl<'v> Fields<'v> {
                 Some(near) => format!("Take it out, or write \"{near}\" if that was meant."),
                 None => format!("Take it out; known here: {}.", self.known.join(", ")),
             };
-            problems.add(
-                at.field(name),
-                format!("There is no field \"{name}\" here."),
-                remedy,
-            );
+            problems.add(at.field(name), format!("{UNKNOWN} \"{name}\" here."), remedy);
         }
     }
 }
