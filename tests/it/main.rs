@@ -10,6 +10,7 @@
 mod api;
 mod cli;
 mod engine;
+mod exchange;
 mod levers;
 mod statements;
 mod store;

@@ -55,9 +55,9 @@ fn shorten(table: &mut Table) {
     }
     if let Some(more) = table.rows.len().checked_sub(ROWS).filter(|&more| more > 0) {
         table.rows.truncate(ROWS);
-        table
-            .notes
-            .push(format!("{more} more rows are in the statement file, not on this paper."));
+        table.notes.push(format!(
+            "{more} more rows are in the statement file, not on this paper."
+        ));
     }
 }
 
@@ -79,7 +79,10 @@ mod tests {
         });
         assert_eq!(sheet.stages.rows.len(), ROWS);
         assert!(sheet.stages.rows.iter().all(|row| row.len() == 2));
-        assert_eq!(sheet.stages.notes, ["3 more rows are in the statement file, not on this paper."]);
+        assert_eq!(
+            sheet.stages.notes,
+            ["3 more rows are in the statement file, not on this paper."]
+        );
     }
 
     #[test]

@@ -5,15 +5,17 @@
 
 mod bounds;
 mod fonts;
+mod of_statement;
 mod pictures;
 mod sheet;
 mod text;
 mod world;
 
+pub use of_statement::Beside;
 pub use pictures::code_text;
 pub use sheet::{
-    Answer, Chapter, Check, Column, ColumnKind, Day, Fact, Picture, Sheet, Signature, Step, Table, TermRow, Terms,
-    Working,
+    Answer, Chapter, Check, Column, ColumnKind, Day, Fact, Picture, Sheet, Signature, Step, Table, TermRow,
+    Terms, Working,
 };
 
 use serde_json::{Value, json};
@@ -76,9 +78,12 @@ pub fn write(sheet: &Sheet) -> Result<Vec<u8>, PdfError> {
 fn data(sheet: &Sheet) -> Result<Vec<u8>, PdfError> {
     let fault = |problem: serde_json::Error| PdfError::Sheet(problem.to_string());
     let mut value = serde_json::to_value(bounds::bounded(sheet.clone())).map_err(fault)?;
-    if let Some(Value::String(svg)) = value.pointer_mut("/ladder/svg") {
-        svg.clear();
-    }
+    // The drawing is a file of its own; without one there is no picture to describe.
+    let drawn = sheet.ladder.as_ref().filter(|picture| !picture.svg.is_empty());
+    value["ladder"] = match drawn {
+        Some(picture) => json!({ "alt": picture.alt }),
+        None => Value::Null,
+    };
     let lacking = text::clean_all(&mut value, &["hash"]);
     if let Value::Object(fields) = &mut value {
         fields.insert("lacking".to_owned(), json!(lacking));
@@ -99,9 +104,6 @@ fn options(sheet: &Sheet) -> Result<PdfOptions, PdfError> {
 }
 
 fn list(problems: &[SourceDiagnostic]) -> String {
-    let messages: Vec<&str> = problems
-        .iter()
-        .map(|problem| problem.message.as_str())
-        .collect();
+    let messages: Vec<&str> = problems.iter().map(|problem| problem.message.as_str()).collect();
     messages.join("; ")
 }

@@ -79,11 +79,16 @@ mod tests {
 
     #[test]
     fn a_ladder_is_dressed_and_keeps_its_words() {
-        let drawn = r#"<svg class="ladder print" viewBox="0 0 1 1"><desc id="d">a &lt; b &amp;amp; c</desc></svg>"#;
+        let drawn =
+            r#"<svg class="ladder print" viewBox="0 0 1 1"><desc id="d">a &lt; b &amp;amp; c</desc></svg>"#;
         let patterns = r#"<svg class="defs"><defs><pattern id="g-n2o"/></defs></svg>"#;
         let picture = Picture::of_ladder(drawn, patterns);
         assert_eq!(picture.alt, "a < b &amp; c");
-        assert!(picture.svg.starts_with(r#"<svg xmlns="http://www.w3.org/2000/svg" class="ladder print""#));
+        assert!(
+            picture
+                .svg
+                .starts_with(r#"<svg xmlns="http://www.w3.org/2000/svg" class="ladder print""#)
+        );
         assert!(picture.svg.contains(r#"<defs><pattern id="g-n2o"/></defs><desc"#));
         assert_eq!(Picture::of_ladder("no picture", patterns).svg, "");
     }
@@ -97,7 +102,10 @@ mod tests {
             };
             code_text(&check, "ab12")
         };
-        assert_eq!(at("https://a.example/check-statement"), "https://a.example/check-statement?sha256=ab12");
+        assert_eq!(
+            at("https://a.example/check-statement"),
+            "https://a.example/check-statement?sha256=ab12"
+        );
         assert_eq!(at("https://a.example/?p=1"), "https://a.example/?p=1&sha256=ab12");
         assert_eq!(at(""), "sha256:ab12");
     }

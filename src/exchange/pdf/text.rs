@@ -37,7 +37,12 @@ pub(super) fn clean_all(value: &mut Value, exact: &[&str]) -> bool {
 
 /// `text` as it can be printed, and whether a character was lacking.
 fn clean(text: &str) -> (String, bool) {
-    let (printable, lacking) = printable(text);
+    let (mut printable, mut lacking) = printable(text);
+    if printable.trim().is_empty() && !text.trim().is_empty() {
+        // A text of marks that show nothing: an empty heading or label would be worse than a square.
+        printable = LACKING.to_string();
+        lacking = true;
+    }
     let mut cut: String = printable.chars().take(LONGEST).collect();
     if cut.len() < printable.len() {
         cut.push_str("\u{2026} (cut here; the statement file has the whole text)");
@@ -108,6 +113,8 @@ mod tests {
     fn what_shows_nothing_goes_and_what_is_lacking_becomes_a_square() {
         let hostile = "a\u{202e}b\u{0}c\tdé\u{5d0}\u{1f33e}\u{fe0f}\u{e000}";
         assert_eq!(printable(hostile), ("abc dé□□□".to_owned(), true));
+        assert_eq!(clean("\u{200b}\u{202e}"), ("□".to_owned(), true));
+        assert_eq!(clean(""), (String::new(), false));
         assert_eq!(printable("#let x = [*_$"), ("#let x = [*_$".to_owned(), false));
     }
 
@@ -116,14 +123,20 @@ mod tests {
         assert_eq!(clean("EV-0031 wheat").0, "EV-0031 wheat");
         let run = "x".repeat(50);
         let broken = clean(&run).0;
-        assert!(broken.split(BREAK).all(|part| part.chars().count() <= LONGEST_RUN));
+        assert!(
+            broken
+                .split(BREAK)
+                .all(|part| part.chars().count() <= LONGEST_RUN)
+        );
         assert_eq!(broken.replace(BREAK, ""), run);
     }
 
     #[test]
     fn texts_are_cut_and_say_so() {
         let (cut, _) = clean(&"word ".repeat(1_000));
-        assert!(cut.chars().count() < 1_600 && cut.ends_with("(cut here; the statement file has the whole text)"));
+        assert!(
+            cut.chars().count() < 1_600 && cut.ends_with("(cut here; the statement file has the whole text)")
+        );
     }
 
     #[test]

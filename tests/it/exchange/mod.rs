@@ -1,0 +1,4 @@
+//! Files for other programs.
+
+#[cfg(feature = "pdf")]
+mod pdf;
