@@ -20,6 +20,12 @@ pub(super) fn bounded(mut sheet: Sheet) -> Sheet {
     for table in tables {
         shorten(table);
     }
+    if let Some(more) = sheet.sources.len().checked_sub(ROWS).filter(|&more| more > 0) {
+        sheet.sources.truncate(ROWS);
+        sheet
+            .sources
+            .push(format!("and {more} more, in the statement file"));
+    }
     let mut room = STEPS;
     let mut left_out = 0;
     for chapter in &mut sheet.annex {

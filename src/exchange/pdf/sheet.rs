@@ -44,8 +44,10 @@ pub struct Sheet {
     pub carbon: Table,
     /// What was declared for the land.
     pub land: Table,
-    /// Factors used, with their sources.
+    /// Factors used, with the numbers of their sources.
     pub factors: Table,
+    /// The sources, in the order of their numbers from 1: each is printed once and named by its number elsewhere.
+    pub sources: Vec<String>,
     /// Findings that needed a reason, with the reason, and those that inform.
     pub findings: Table,
     /// What the figure does not cover, a sentence each.
@@ -184,9 +186,11 @@ pub struct Column {
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize, Deserialize)]
 #[serde(rename_all = "snake_case")]
 pub enum ColumnKind {
-    /// Long words: takes its part of the room that is left.
+    /// Words: takes its part of the room that is left.
     #[default]
     Words,
+    /// Sentences: takes twice as much.
+    Prose,
     /// A short word or id: as wide as needed, at the left.
     Short,
     /// A figure: as wide as needed, at the right.
@@ -246,6 +250,6 @@ pub struct Step {
     pub value: String,
     /// Its unit.
     pub unit: String,
-    /// Where a figure of the step comes from; empty where nothing new comes in.
+    /// Number of the source of a figure in it; empty where nothing new comes in.
     pub source: String,
 }

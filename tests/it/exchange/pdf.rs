@@ -2,7 +2,7 @@
 
 use crate::statements::made::{Made, STATEMENT, demo};
 use wheelwort::core::units::rounding::{show, show_all};
-use wheelwort::exchange::pdf::{Beside, Sheet};
+use wheelwort::exchange::pdf::{Beside, Sheet, write};
 
 fn sheet() -> Sheet {
     Sheet::of(&STATEMENT, Beside::default())
@@ -16,7 +16,7 @@ fn the_answer_is_that_of_the_document() {
     let saving = show(figures.saving_percent.unwrap(), 2);
     assert_eq!(
         sheet.answer.saving.unwrap(),
-        format!("{saving}\u{a0}% below petrol")
+        format!("{saving}\u{a0}% below the fossil fuel comparator")
     );
     let met = figures.thresholds.iter().find(|one| one.met).unwrap();
     let verdict = format!("meets {}\u{a0}%", show_all(met.percent));
@@ -68,11 +68,22 @@ fn a_missed_saving_is_said_and_one_that_cannot_be_decided_is_not() {
     );
     assert_eq!(
         missed.saving.as_deref(),
-        Some("59.996\u{a0}% below petrol"),
+        Some("59.996\u{a0}% below the fossil fuel comparator"),
         "60.00 would look wrong"
     );
     let other = statement.figures.thresholds[0].clone();
     statement.figures.thresholds.push(other);
     let open = Sheet::of(&statement, Beside::default()).answer;
     assert_eq!((open.verdict, open.meets), (None, true));
+}
+
+#[test]
+fn a_statement_of_the_demo_becomes_a_paper() {
+    let paper = write(&sheet()).unwrap();
+    assert!(paper.starts_with(b"%PDF-1.7"));
+    std::fs::write(
+        std::path::Path::new(env!("CARGO_TARGET_TMPDIR")).join("of_statement.pdf"),
+        paper,
+    )
+    .unwrap();
 }

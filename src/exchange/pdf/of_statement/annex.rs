@@ -1,19 +1,19 @@
 //! The workings of every stage and input, field first, as the assessment has them.
 
 use super::super::sheet::{Chapter, Step, Working};
-use super::say::{grams, worked};
+use super::say::{Sources, grams, worked};
 use super::tables::name;
 use crate::core::documents::assessment;
 use crate::core::documents::statement::Statement;
 
-pub(super) fn workings(statement: &Statement) -> Vec<Chapter> {
+pub(super) fn workings(statement: &Statement, sources: &mut Sources) -> Vec<Chapter> {
     let stages = statement.assessment.document.stages.iter();
     stages
         .map(|stage| {
             let shares = (!stage.workings.is_empty()).then(|| Working {
                 name: "Demand and shares".to_owned(),
                 result: String::new(),
-                steps: steps(&stage.workings),
+                steps: steps(&stage.workings, sources),
             });
             let inputs = stage.inputs.iter().map(|input| {
                 let label = if input.label.is_empty() {
@@ -28,7 +28,7 @@ pub(super) fn workings(statement: &Statement) -> Vec<Chapter> {
                 Working {
                     name: label.clone(),
                     result,
-                    steps: steps(&input.workings),
+                    steps: steps(&input.workings, sources),
                 }
             });
             Chapter {
@@ -40,14 +40,14 @@ pub(super) fn workings(statement: &Statement) -> Vec<Chapter> {
         .collect()
 }
 
-fn steps(steps: &[assessment::Step]) -> Vec<Step> {
+fn steps(steps: &[assessment::Step], sources: &mut Sources) -> Vec<Step> {
     steps
         .iter()
         .map(|step| Step {
             text: step.text.clone(),
             value: worked(step.value),
             unit: step.unit.clone(),
-            source: step.source.clone(),
+            source: sources.number(&step.source),
         })
         .collect()
 }

@@ -9,7 +9,7 @@ use super::sheet::{Answer, Check, Day, Fact, Picture, Sheet, Signature, TermRow,
 use crate::core::documents::statement::{Person, Statement};
 use crate::core::domain::Term;
 use crate::core::units::rounding::{decimals_against, show, show_all};
-use say::{day, gases, grams, instant, percent};
+use say::{Sources, capital, day, gases, grams, instant, percent};
 
 /// What stands on the paper and is not in the statement.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -25,6 +25,7 @@ pub struct Beside {
 impl Sheet {
     /// The sheet of an issued statement.
     pub fn of(statement: &Statement, beside: Beside) -> Sheet {
+        let mut sources = Sources::default();
         let issued = jiff::tz::Offset::UTC.to_datetime(statement.issued_at).date();
         Sheet {
             title: "Greenhouse-gas statement for fuel ethanol".to_owned(),
@@ -49,7 +50,7 @@ impl Sheet {
             stages: tables::stages(statement),
             carbon: tables::carbon(statement),
             land: tables::land(statement),
-            factors: tables::factors(statement),
+            factors: tables::factors(statement, &mut sources),
             findings: tables::findings(statement),
             not_covered: not_covered(statement),
             verification: who::verification(statement),
@@ -67,7 +68,8 @@ impl Sheet {
                 keep: format!("Keep the records until {}", day(statement.keep_until)),
             },
             cautions: statement.words.cautions.clone(),
-            annex: annex::workings(statement),
+            annex: annex::workings(statement, &mut sources),
+            sources: sources.list(),
         }
     }
 }
@@ -112,10 +114,9 @@ fn answer(statement: &Statement) -> Answer {
     let edge = verdict.as_ref().map(|&(_, edge, _)| edge);
     let decimals = |saving: f64| edge.map_or(2, |edge| decimals_against(saving, edge, 2));
     let mut note = format!(
-        "For {}. {} Compared with {}, {} g CO2e/MJ.",
+        "For {}. Compared with {}, {} g CO2e/MJ.",
         figures.declared_unit,
-        statement.words.boundary,
-        figures.comparator_word,
+        baseline_words(&figures.comparator_word),
         show_all(baseline)
     );
     if let Some(saving) = figures.saving_percent.filter(|_| verdict.is_some()) {
@@ -136,9 +137,18 @@ fn answer(statement: &Statement) -> Answer {
     }
 }
 
+/// "petrol", "the fossil fuel comparator".
+fn baseline_words(word: &str) -> String {
+    if word.ends_with("comparator") {
+        format!("the {word}")
+    } else {
+        word.to_owned()
+    }
+}
+
 /// "65.01 % below petrol", or above it.
 fn below(saving: f64, decimals: u8, baseline: &str) -> String {
-    let word = baseline.split_whitespace().last().unwrap_or("baseline");
+    let word = baseline_words(baseline);
     let side = if saving < 0.0 { "above" } else { "below" };
     format!("{}\u{a0}% {side} {word}", show(saving.abs(), decimals))
 }
@@ -162,7 +172,7 @@ fn terms(statement: &Statement) -> Terms {
         TermRow {
             sign: sign.to_owned(),
             term: line.term.name().to_owned(),
-            holds: line.what.clone(),
+            holds: capital(&line.what),
             kind: line.value_kind.clone(),
             value: grams(value),
         }

@@ -73,6 +73,49 @@ pub(super) fn sharing(stage: &SharingStage) -> String {
     format!("{}: by {}, {}", stage.name, stage.method.name(), parts.join(", "))
 }
 
+/// The sources of a sheet, each once.
+#[derive(Default)]
+pub(super) struct Sources(Vec<String>);
+
+impl Sources {
+    /// The number of a source, from 1; empty for none.
+    pub fn number(&mut self, source: &str) -> String {
+        if source.is_empty() {
+            return String::new();
+        }
+        let at = self.0.iter().position(|known| known == source);
+        let at = at.unwrap_or_else(|| {
+            self.0.push(source.to_owned());
+            self.0.len() - 1
+        });
+        (at + 1).to_string()
+    }
+
+    /// All of them, in the order of their numbers.
+    pub fn list(self) -> Vec<String> {
+        self.0
+    }
+}
+
+/// `words` with a capital.
+pub(super) fn capital(words: &str) -> String {
+    let mut letters = words.chars();
+    letters
+        .next()
+        .map(|first| first.to_uppercase().chain(letters).collect())
+        .unwrap_or_default()
+}
+
+/// A published figure: as printed, unless it was worked out and has no end.
+pub(super) fn published(x: f64) -> String {
+    let all = show_all(x);
+    if all.chars().count() > 12 {
+        significant(x, 7, 12)
+    } else {
+        all
+    }
+}
+
 /// A word of a document for people: its low lines are spaces.
 pub(super) fn spaced(word: &str) -> String {
     word.replace('_', " ")
@@ -81,6 +124,16 @@ pub(super) fn spaced(word: &str) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn a_source_has_one_number_and_none_has_none() {
+        let mut sources = Sources::default();
+        assert_eq!(
+            ["a", "b", "", "a"].map(|one| sources.number(one)),
+            ["1", "2", "", "1"]
+        );
+        assert_eq!(sources.list(), ["a", "b"]);
+    }
 
     #[test]
     fn figures_and_days_read_as_on_a_statement() {
@@ -92,6 +145,11 @@ mod tests {
         );
         assert_eq!(either(25.0, 25.0), "25");
         assert_eq!(either(29.8, 27.0), "29.8 (fossil) and 27 (biogenic)");
+        assert_eq!(
+            (published(44.0 / 28.0), published(0.0075)),
+            ("1.571429".to_owned(), "0.0075".to_owned())
+        );
+        assert_eq!((capital("élan"), capital("")), ("Élan".to_owned(), String::new()));
         assert_eq!(day(jiff::civil::date(2026, 9, 2)), "2 September 2026");
         let at: Timestamp = "2026-09-02T09:05:59Z".parse().unwrap_or_default();
         assert_eq!(instant(at), "2 September 2026, 09:05 UTC");

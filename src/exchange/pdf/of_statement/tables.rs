@@ -1,12 +1,12 @@
 //! The tables of the paper: stages, carbon, land, factors, findings.
 
 use super::super::sheet::{Column, ColumnKind, Table};
-use super::say::{day, grams, spaced};
+use super::say::{Sources, capital, day, grams, published, spaced};
 use crate::core::documents::assessment::{Finding, Severity, StageResult};
 use crate::core::documents::statement::Statement;
 use crate::core::documents::statement::facts::LandCriterion;
 use crate::core::domain::{Gas, GasVector, GwpSet};
-use crate::core::units::rounding::{show_all, show_change, significant};
+use crate::core::units::rounding::{show_change, significant};
 use std::collections::BTreeMap;
 
 fn column(head: &str, kind: ColumnKind) -> Column {
@@ -105,7 +105,7 @@ pub(super) fn carbon(statement: &Statement) -> Table {
     for row in &carbon.rows {
         left += row.g_co2_per_mj;
         rows.push(vec![
-            row.what.clone(),
+            capital(&row.what),
             place(&row.stage),
             show_change(row.g_co2_per_mj, 2),
         ]);
@@ -163,7 +163,7 @@ pub(super) fn land(statement: &Statement) -> Table {
 }
 
 /// Factors and published values that figures rest on; what is there for comparison only is left to the file.
-pub(super) fn factors(statement: &Statement) -> Table {
+pub(super) fn factors(statement: &Statement, sources: &mut Sources) -> Table {
     let (data, weights) = (&statement.data, statement.data.gwp_set.set());
     let used = data.factors.iter().filter(|factor| !factor.for_comparison);
     let mut rows: Vec<Vec<String>> = used
@@ -174,10 +174,11 @@ pub(super) fn factors(statement: &Statement) -> Table {
                 .map(|(gas, kg)| GasVector::of(*gas, *kg).co2e(&weights))
                 .sum();
             vec![
-                format!("{}\n{}", factor.name, factor.id),
+                capital(&factor.name),
+                factor.id.clone(),
                 significant(kg, 4, 9),
                 format!("kg CO2e per {}", factor.per),
-                factor.source.clone(),
+                sources.number(&factor.source),
             ]
         })
         .collect();
@@ -187,27 +188,30 @@ pub(super) fn factors(statement: &Statement) -> Table {
             .filter(|row| !row.for_comparison)
             .map(|row| {
                 vec![
-                    format!("Default value: {}\n{}", row.description, row.id),
-                    show_all(row.default.total),
+                    format!("Default value: {}", row.description),
+                    row.id.clone(),
+                    published(row.default.total),
                     "g CO2e/MJ".to_owned(),
-                    row.source.clone(),
+                    sources.number(&row.source),
                 ]
             }),
     );
     rows.extend(data.constants.iter().map(|constant| {
         vec![
-            format!("{} ({})", constant.symbol, constant.table),
-            show_all(constant.value),
+            format!("Constant {}", constant.symbol),
+            constant.table.clone(),
+            published(constant.value),
             constant.unit.clone(),
-            constant.source.clone(),
+            sources.number(&constant.source),
         ]
     }));
     Table {
         columns: vec![
             column("Factor or constant", ColumnKind::Words),
+            column("Id or table", ColumnKind::Words),
             column("Value", ColumnKind::Figure),
-            column("Unit", ColumnKind::Short),
-            column("Source", ColumnKind::Words),
+            column("Unit", ColumnKind::Words),
+            column("Source", ColumnKind::Figure),
         ],
         rows,
         foot: Vec::new(),
@@ -248,7 +252,7 @@ pub(super) fn findings(statement: &Statement) -> Table {
         columns: vec![
             column("Check", ColumnKind::Short),
             column("Where", ColumnKind::Words),
-            column("What it says", ColumnKind::Words),
+            column("What it says", ColumnKind::Prose),
             column("Reason given", ColumnKind::Words),
         ],
         rows: rows.collect(),

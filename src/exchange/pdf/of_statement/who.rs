@@ -1,7 +1,7 @@
 //! Parties, consignment, product, works and verification as facts; what was not declared is not printed.
 
 use super::super::sheet::Fact;
-use super::say::{day, percent, spaced, tenth};
+use super::say::{capital, day, percent, spaced, tenth};
 use crate::core::documents::statement::facts::{Days, Declaration, Party, Plant};
 use crate::core::documents::statement::{Statement, StatementFacts};
 use crate::core::units::rounding::{show, show_all};
@@ -228,13 +228,24 @@ pub(super) fn product(statement: &Statement) -> Vec<Fact> {
         "Feedstock",
         joined(&[Some(name), class.as_deref(), country.as_deref()], ", "),
     );
-    list.add("Category", facts.category.map(|category| spaced(category.name())));
+    list.add(
+        "Category",
+        facts.category.map(|category| capital(&spaced(category.name()))),
+    );
     list.add("Waste permit", facts.permit_no.clone());
     list.add("Works", facts.plant.as_ref().and_then(works));
     list.add("Made in", facts.production_country.clone());
-    let because = figures.thresholds.iter().map(|one| one.because.as_str()).next();
+    let asked = match figures.thresholds.as_slice() {
+        [one] => Some(format!("so {} % or more is asked", show_all(one.percent))),
+        _ => None,
+    };
     let started = pathway.plant_started.map(day);
-    list.add("Works started", joined(&[started.as_deref(), because], "; "));
+    if started.is_some() {
+        list.add(
+            "Works started",
+            joined(&[started.as_deref(), asked.as_deref()], ", "),
+        );
+    }
     let sources: Vec<String> = facts
         .energy_sources
         .iter()
