@@ -74,13 +74,14 @@ fn read() -> Result<Loaded, Vec<String>> {
     let mut reading = Reading::default();
     let editions = editions::read(&mut reading);
     let materials = materials::read(&mut reading, editions.get("eu-2022-996"));
+    let mut rule_sets = rules::rule_sets(&mut reading);
+    land::limits(&mut reading, &mut rule_sets);
     let book = Book {
         materials,
-        rule_sets: rules::rule_sets(&mut reading),
+        rule_sets,
         gwp_sets: rules::gwp_sets(&mut reading),
         soils: soils::read(&mut reading),
         land: land::carbon(&mut reading),
-        limits: land::limits(&mut reading),
         editions,
     };
     let elsewhere = elsewhere::read(&mut reading);

@@ -9,9 +9,11 @@
 )]
 
 mod api;
+mod audit_trail;
 mod cli;
 mod engine;
 mod exchange;
+mod faults;
 mod levers;
 mod statements;
 mod store;

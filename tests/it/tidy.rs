@@ -52,7 +52,7 @@ const ROOMS: &[(&str, &[&str])] = &[
     ("telemetry", &["config"]),
     ("app", &["core", "library", "store", "clock", "config"]),
     ("store", &["core", "app", "clock"]),
-    ("web", &["core", "app", "clock", "config", "telemetry"]),
+    ("web", &["core", "app", "store", "clock", "config", "telemetry"]),
     (
         "things",
         &[

@@ -11,6 +11,7 @@ pub mod problem;
 pub mod read_input;
 pub mod read_pathway;
 pub mod reader;
+pub mod records;
 pub mod rule_set;
 pub mod statement;
 

@@ -175,7 +175,7 @@ pub fn stated(
 ) -> Result<(Figures, Words), Refused> {
     let book = pick::book(data).map_err(|_| Refused::Incomplete)?;
     let plan = resolve(pathway, Some(&data.rule_set.id), &book, false).map_err(Refused::Pathway)?;
-    let figures = figures(facts, assessment, &plan, &book, uncertainty);
+    let figures = figures(facts, assessment, &plan, uncertainty);
     let words = words(pathway, assessment, &data.rule_set);
     Ok((figures, words))
 }

@@ -1,8 +1,8 @@
 //! Checks of the audit checklist that look at a statement: people, days, validity, certificates, audits, corrections.
 //! Ids are those of the checklist; each is a pure function.
 
-use crate::core::checks::evidence::unchanged;
 use crate::core::checks::finding;
+use crate::core::checks::issue::unchanged;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::statement::facts::{Grade, StatementFacts};
 use crate::core::documents::{Assessment, Pathway};

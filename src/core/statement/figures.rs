@@ -8,7 +8,7 @@ use crate::core::documents::statement::figures::{
     SharingStage, TermLine, Uncertainty, UncertaintyRange, WithMargin,
 };
 use crate::core::documents::{Assessment, StatementFacts};
-use crate::core::domain::{Book, Cited, RuleSet, StageKind, Term};
+use crate::core::domain::{Cited, RuleSet, StageKind, Term};
 use crate::core::engine::Resolved;
 use crate::core::units::rounding::{plain, plain_fixed};
 use std::collections::{BTreeMap, BTreeSet};
@@ -21,7 +21,6 @@ pub fn figures(
     facts: &StatementFacts,
     assessment: &Assessment,
     plan: &Resolved,
-    book: &Book,
     range: Option<UncertaintyRange>,
 ) -> Figures {
     let rules = plan.rules;
@@ -44,7 +43,7 @@ pub fn figures(
         saving_percent: assessment.saving_percent,
         thresholds: assessment.thresholds.clone(),
         terms: terms(assessment, rules, &kinds(plan)),
-        iluc_g_per_mj: facts.iluc_group.and_then(|group| iluc(group, rules, book)),
+        iluc_g_per_mj: facts.iluc_group.and_then(|group| iluc(group, rules)),
         with_margin: facts.margin_g_per_mj.map(|margin| WithMargin {
             margin_g_per_mj: margin,
             g_co2e_per_mj: net + margin,
@@ -113,8 +112,8 @@ fn terms(assessment: &Assessment, rules: &RuleSet, kinds: &BTreeMap<Term, BTreeS
 }
 
 /// The published estimate of a group; none where the rule set has none.
-pub fn iluc(group: IlucGroup, rules: &RuleSet, book: &Book) -> Option<Cited> {
-    book.limit(&rules.id, &format!("iluc_{}", group.name())).cloned()
+pub fn iluc(group: IlucGroup, rules: &RuleSet) -> Option<Cited> {
+    rules.limit(&format!("iluc_{}", group.name())).cloned()
 }
 
 fn allocation(assessment: &Assessment, plan: &Resolved) -> Vec<SharingStage> {

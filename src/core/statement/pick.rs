@@ -46,7 +46,7 @@ pub fn pick(
         residues: Vec::new(),
     };
     named(pathway, book, &mut data);
-    tables(book, &rules.id, &mut data);
+    tables(book, &mut data);
     let leads = |data: &Data| {
         let found = self::book(data)
             .ok()
@@ -198,8 +198,8 @@ fn collect(value: &Value, words: &mut BTreeSet<String>) {
     }
 }
 
-/// Tables of models and the limits of the rule set.
-fn tables(book: &Book, rule_set: &str, data: &mut Data) {
+/// Tables of models.
+fn tables(book: &Book, data: &mut Data) {
     for (edition, soil) in &book.soils {
         let table = format!("soils/{edition}");
         data.constants.extend(
@@ -218,10 +218,6 @@ fn tables(book: &Book, rule_set: &str, data: &mut Data) {
             .iter()
             .map(|(symbol, figure)| ConstantUsed::of("land", symbol, figure)),
     );
-    let table = format!("limits/{rule_set}");
-    let limits = book.limits.get(rule_set).into_iter().flatten();
-    data.constants
-        .extend(limits.map(|(symbol, figure)| ConstantUsed::of(&table, symbol, figure)));
     data.constants
         .sort_by(|a, b| (&a.table, &a.symbol).cmp(&(&b.table, &b.symbol)));
 }
@@ -281,13 +277,8 @@ fn thin(pathway: &Pathway, assessment: &Assessment, data: &mut Data) {
             *data = less;
         }
     }
-    // What stays of the limits stays whole: it is short, and says what would have been asked.
     let mut at = 0;
-    while let Some(constant) = data.constants.get(at) {
-        if constant.table.starts_with("limits/") {
-            at += 1;
-            continue;
-        }
+    while at < data.constants.len() {
         let taken = data.constants.remove(at);
         if !holds(data) {
             data.constants.insert(at, taken);
@@ -336,6 +327,8 @@ fn editions(data: &Data, book: &Book) -> Vec<EditionUsed> {
         title: edition.title.clone(),
         source: edition.citation.source.clone(),
         status: edition.citation.status,
+        valid_from: edition.valid_from,
+        valid_to: edition.valid_to,
         hash: edition_hash(edition, book),
     };
     used.into_iter()
@@ -415,12 +408,6 @@ pub fn book(data: &Data) -> Result<Book, String> {
                     .constants
                     .insert(symbol, figure);
             }
-            Some(("limits", rule_set)) => {
-                book.limits
-                    .entry(rule_set.to_owned())
-                    .or_default()
-                    .insert(symbol, figure);
-            }
             None if used.table == "land" => {
                 book.land.insert(symbol, figure);
             }
@@ -468,7 +455,11 @@ fn empty(used: &EditionUsed) -> Edition {
         source: used.source.clone(),
         status: used.status,
     };
-    bare(&used.id, used.title.clone(), citation)
+    Edition {
+        valid_from: used.valid_from,
+        valid_to: used.valid_to,
+        ..bare(&used.id, used.title.clone(), citation)
+    }
 }
 
 fn bare(id: &str, title: String, citation: Citation) -> Edition {
@@ -477,6 +468,9 @@ fn bare(id: &str, title: String, citation: Citation) -> Edition {
         title,
         citation,
         note: None,
+        valid_from: None,
+        valid_to: None,
+        validity_source: None,
         factors: BTreeMap::new(),
         aliases: BTreeMap::new(),
         fuel_splits: BTreeMap::new(),

@@ -39,7 +39,6 @@ pub(super) struct Subject<'d> {
     pub pathway: &'d Pathway,
     pub assessment: &'d Assessment,
     pub rules: RuleSet,
-    pub book: &'d Book,
     pub supersedes: bool,
     pub uncertain: bool,
     pub converts: bool,
@@ -100,7 +99,7 @@ pub fn preflight(draft: Draft, book: &Book, items: &Items) -> Result<Preflight, 
         ..
     } = draft;
     let plan = resolve(pathway, Some(&assessment.rule_set), book, false)?;
-    let figures = super::figures::figures(facts, assessment, &plan, book, None);
+    let figures = super::figures::figures(facts, assessment, &plan, None);
     let inputs = || pathway.stages.iter().flat_map(|stage| &stage.inputs);
     let primary = || inputs().filter(|input| input.origin.is_some_and(|origin| origin.is_primary()));
     let subject = Subject {
@@ -108,7 +107,6 @@ pub fn preflight(draft: Draft, book: &Book, items: &Items) -> Result<Preflight, 
         pathway,
         assessment,
         rules: plan.rules.clone(),
-        book,
         supersedes: draft.supersedes,
         uncertain: draft.uncertain,
         converts: figures.conversion_factor.is_some(),

@@ -105,7 +105,7 @@ pub fn standing(id: &str, subject: &Subject) -> Option<Standing> {
         "S-507" => here(
             facts
                 .iluc_group
-                .and_then(|group| iluc(group, &subject.rules, subject.book))
+                .and_then(|group| iluc(group, &subject.rules))
                 .is_some(),
         ),
         "S-511" => when(

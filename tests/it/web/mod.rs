@@ -2,8 +2,11 @@
 
 mod calculators;
 mod defaults;
+mod facts;
 mod form;
+mod meeting;
 mod pages;
+mod rules;
 mod stage;
 
 use crate::support::test_app::{Answer, TestApp};

@@ -8,6 +8,7 @@ use crate::core::domain::{
     PublishedGases, RuleSet, Status,
 };
 use crate::core::units::parse_unit;
+use jiff::civil::Date;
 use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
@@ -70,6 +71,14 @@ pub struct EditionUsed {
     pub source: String,
     /// Whether it was read.
     pub status: Status,
+    /// First day it may be used; absent where the document fixes none.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    #[schema(value_type = Option<String>, format = Date)]
+    pub valid_from: Option<Date>,
+    /// Last day it may be used; absent where it is open.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    #[schema(value_type = Option<String>, format = Date)]
+    pub valid_to: Option<Date>,
     /// Hash of all its rows, written as here.
     pub hash: String,
 }

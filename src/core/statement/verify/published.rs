@@ -189,7 +189,6 @@ fn tables(data: &Data, library: &Book) -> Option<Answer> {
                 .soils
                 .get(edition)
                 .and_then(|soil| soil.constants.get(&used.symbol)),
-            Some(("limits", rule_set)) => library.limit(rule_set, &used.symbol),
             _ => library.land.get(&used.symbol),
         };
         let Some(published) = published else {
@@ -233,6 +232,8 @@ fn editions(data: &Data, library: &Book, notes: &mut Vec<String>) -> Option<Answ
             title: published.title.clone(),
             source: published.citation.source.clone(),
             status: published.citation.status,
+            valid_from: published.valid_from,
+            valid_to: published.valid_to,
             hash: used.hash.clone(),
         };
         if let Some(answer) = swapped(format!("edition {}", used.id), used, &line) {
