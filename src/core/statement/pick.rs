@@ -259,8 +259,7 @@ fn thin(pathway: &Pathway, assessment: &Assessment, data: &mut Data) {
         .iter()
         .map(|constant| constant.table.clone())
         .collect();
-    // The limits of the rule set stay whole: they are short, and say what would have been asked.
-    for table in tables.iter().filter(|table| !table.starts_with("limits/")) {
+    for table in &tables {
         let mut less = data.clone();
         less.constants.retain(|constant| constant.table != *table);
         if let Some(edition) = table.strip_prefix("soils/") {
