@@ -21,7 +21,7 @@ pub mod web;
 /// Every SQL text of the program; a test prepares them all on a fresh database.
 pub fn all_statements() -> Vec<&'static str> {
     [
-        store::STATEMENTS.to_vec(),
+        store::statements(),
         audit_trail::statements(),
         pathways::statements(),
         rules::statements(),

@@ -88,6 +88,7 @@ impl Site {
             "/rule-sets".to_owned(),
             "/rule-sets/eu-2018-2001".to_owned(),
             format!("{}/defaults", self.one),
+            "/audit-trail".to_owned(),
             "/calculators".to_owned(),
             "/calculators/alcoholometry?strength=96&strength_is=percent_vol&quantity=1000&quantity_is=litres".to_owned(),
             "/calculators/distillation?wash_strength_percent_vol=12&product_strength_percent_mass=94&coupling_factor=0.5"

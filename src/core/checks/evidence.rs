@@ -2,13 +2,11 @@
 
 use super::parameters::{models, word};
 use super::{Subject, finding};
-use crate::core::documents::Assessment;
 use crate::core::documents::assessment::{Finding, Severity, Terms};
 use crate::core::documents::pathway::ValueKind;
 use crate::core::domain::Term;
 use crate::core::engine::resolved::Resolved;
 use crate::core::units::rounding::plain_fixed;
-use jiff::civil::Date;
 use std::collections::{BTreeMap, BTreeSet};
 
 /// Runs the checks that a pathway can tell.
@@ -125,34 +123,9 @@ fn soil_editions(resolved: &Resolved) -> Vec<EditionUse> {
     uses
 }
 
-/// E-06: an edition begins no later than the period ends.
-pub fn edition_begins(edition: &str, valid_from: Date, period_end: Date) -> Option<Finding> {
-    (valid_from > period_end).then(|| {
-        let message = format!("Edition {edition} starts on {valid_from}, after this period.");
-        let remedy = "Choose an earlier one or give the reason.";
-        finding("E-06", Severity::Warn, "", "period.to", message, remedy)
-    })
-}
-
-/// E-12: the document is the one that was assessed.
-pub fn unchanged(pathway_hash: &str, assessment: &Assessment) -> Option<Finding> {
-    (pathway_hash != assessment.pathway_hash).then(|| {
-        let message = format!("{} was changed after the assessment.", assessment.pathway_name);
-        finding(
-            "E-12",
-            Severity::Block,
-            "",
-            "pathway_hash",
-            message,
-            "Work it out again.",
-        )
-    })
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
-    use jiff::civil::date;
 
     fn used(edition: &str, version: &str) -> EditionUse {
         let [edition, version] = [edition, version].map(str::to_owned);
@@ -200,16 +173,5 @@ mod tests {
         let found = one_version(&mixed);
         assert_eq!(found.len(), 1);
         assert!(found[0].message.contains("2006 and 2019"));
-    }
-
-    #[test]
-    fn an_edition_begins_before_the_period_ends() {
-        assert_eq!(edition_begins("own", date(2027, 5, 31), date(2027, 5, 31)), None);
-        assert_eq!(
-            edition_begins("own", date(2027, 6, 1), date(2027, 5, 31))
-                .unwrap()
-                .id,
-            "E-06"
-        );
     }
 }
