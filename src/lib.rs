@@ -13,6 +13,7 @@ pub mod exchange;
 pub mod factors;
 pub mod library;
 pub mod pathways;
+pub mod people;
 pub mod rules;
 pub mod store;
 pub mod telemetry;
@@ -24,6 +25,7 @@ pub fn all_statements() -> Vec<&'static str> {
         store::statements(),
         audit_trail::statements(),
         pathways::statements(),
+        people::statements(),
         rules::statements(),
     ]
     .concat()

@@ -15,6 +15,7 @@ mod engine;
 mod exchange;
 mod faults;
 mod levers;
+mod people;
 mod statements;
 mod store;
 mod support;
