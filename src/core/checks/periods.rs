@@ -4,7 +4,7 @@
 use super::settings::Settings;
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Finding, Severity};
-use crate::core::documents::input::{FactorRef, Input};
+use crate::core::documents::input::{FactorRef, Input, OneOrMany};
 use crate::core::documents::pathway::{Period, Stage};
 use crate::core::domain::factor::Edition;
 use crate::core::domain::{Cited, Term};
@@ -111,7 +111,7 @@ fn edition_of(id: &str) -> Option<&str> {
 
 fn input_editions(input: &Input) -> Vec<&str> {
     let mut found = Vec::new();
-    for factor in input.factor.iter().flat_map(|factors| factors.list()) {
+    for factor in input.factor.iter().flat_map(OneOrMany::list) {
         if let FactorRef::Id(id) = factor {
             found.extend(edition_of(id));
         }
