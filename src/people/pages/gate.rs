@@ -238,7 +238,7 @@ fn put_before(asking: &Asking) -> Visit {
 
 fn visitor(visit: &Visit, form_token: String) -> Visitor {
     let who = visit.come.as_ref().map(|(_, who, _)| who);
-    let known = who.filter(|who| matches!(who.via, Via::Session(_)));
+    let known = who.filter(|who| !visit.by_token && matches!(who.via, Via::Session(_)));
     Visitor {
         name: known.map(|who| who.name.clone()),
         administers: known.is_some_and(|who| who.may(Right::Administer)),
