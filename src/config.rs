@@ -1,6 +1,10 @@
 //! Settings: defaults, then a file, then the environment, then the command line; each later one wins. All are checked
 //! before the program does anything.
 
+mod evidence;
+
+pub use evidence::{Bucket, EvidenceStore};
+
 use serde::Deserialize;
 use std::net::SocketAddr;
 use std::path::{Path, PathBuf};
@@ -36,6 +40,10 @@ pub struct Config {
     pub log: String,
     /// How log lines look.
     pub log_format: LogFormat,
+    /// Bytes of a file of evidence.
+    pub evidence_bytes: usize,
+    /// Where the files of evidence are kept.
+    pub evidence_store: EvidenceStore,
 }
 
 /// How log lines look.
@@ -73,6 +81,20 @@ pub struct Given {
     pub log: Option<String>,
     /// How log lines look.
     pub log_format: Option<LogFormat>,
+    /// Bytes of a file of evidence.
+    pub evidence_bytes: Option<usize>,
+    /// Address of the store of evidence.
+    pub evidence_endpoint: Option<String>,
+    /// Bucket of that store.
+    pub evidence_bucket: Option<String>,
+    /// Region of that store.
+    pub evidence_region: Option<String>,
+    /// Id of the key to it.
+    pub evidence_key_id: Option<String>,
+    /// Secret of that key.
+    pub evidence_secret: Option<String>,
+    /// File that holds the secret.
+    pub evidence_secret_file: Option<PathBuf>,
 }
 
 /// Why settings do not hold.
@@ -137,6 +159,13 @@ impl Given {
                         _ => return Err(wrong(&variable, &value, "give text or json")),
                     });
                 }
+                "evidence_bytes" => given.evidence_bytes = Some(number(&variable, &value)?),
+                "evidence_endpoint" => given.evidence_endpoint = Some(value),
+                "evidence_bucket" => given.evidence_bucket = Some(value),
+                "evidence_region" => given.evidence_region = Some(value),
+                "evidence_key_id" => given.evidence_key_id = Some(value),
+                "evidence_secret" => given.evidence_secret = Some(value),
+                "evidence_secret_file" => given.evidence_secret_file = Some(value.into()),
                 _ => return Err(wrong(&variable, &value, "there is no such setting")),
             }
         }
@@ -157,6 +186,13 @@ impl Given {
             stop_within_seconds: later.stop_within_seconds.or(self.stop_within_seconds),
             log: later.log.or(self.log),
             log_format: later.log_format.or(self.log_format),
+            evidence_bytes: later.evidence_bytes.or(self.evidence_bytes),
+            evidence_endpoint: later.evidence_endpoint.or(self.evidence_endpoint),
+            evidence_bucket: later.evidence_bucket.or(self.evidence_bucket),
+            evidence_region: later.evidence_region.or(self.evidence_region),
+            evidence_key_id: later.evidence_key_id.or(self.evidence_key_id),
+            evidence_secret: later.evidence_secret.or(self.evidence_secret),
+            evidence_secret_file: later.evidence_secret_file.or(self.evidence_secret_file),
         }
     }
 
@@ -228,6 +264,22 @@ impl Given {
             stop_within: seconds("stop_within_seconds", self.stop_within_seconds, 30)?,
             log: self.log.unwrap_or_else(|| "info".into()),
             log_format: self.log_format.unwrap_or_default(),
+            evidence_bytes: within(
+                "evidence_bytes",
+                self.evidence_bytes,
+                evidence::USUAL_BYTES,
+                1 << 10,
+                1 << 30,
+                "give 1024 to 1073741824 bytes",
+            )?,
+            evidence_store: evidence::checked(evidence::Said {
+                endpoint: self.evidence_endpoint,
+                bucket: self.evidence_bucket,
+                region: self.evidence_region,
+                key_id: self.evidence_key_id,
+                secret: self.evidence_secret,
+                secret_file: self.evidence_secret_file,
+            })?,
         })
     }
 }

@@ -9,6 +9,7 @@ pub mod clock;
 pub mod config;
 pub mod core;
 pub mod demo;
+pub mod evidence;
 pub mod factors;
 pub mod library;
 pub mod pathways;
@@ -22,6 +23,7 @@ pub fn all_statements() -> Vec<&'static str> {
     [
         store::STATEMENTS.to_vec(),
         audit_trail::statements(),
+        evidence::statements(),
         pathways::statements(),
         rules::statements(),
     ]

@@ -3,6 +3,7 @@
 pub mod who;
 
 use crate::clock::Clock;
+use crate::config::EvidenceStore;
 use crate::core::checks::settings::Settings as CheckSettings;
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
@@ -83,6 +84,10 @@ pub struct App {
     pub who: Arc<Who>,
     /// The accounting.
     pub evaluate: Evaluate,
+    /// Folder of the data.
+    pub folder: Arc<Path>,
+    /// Where the files of evidence are kept.
+    pub evidence_store: Arc<EvidenceStore>,
     /// Immutable bytes at hand.
     pub(crate) memory: Arc<Memory>,
 }
@@ -125,8 +130,18 @@ impl App {
             organisation,
             who: Arc::new(Who::command()),
             evaluate,
+            folder: folder_of(file),
+            evidence_store: Arc::default(),
             memory: Arc::new(Memory::default()),
         })
+    }
+
+    /// The same program with its files of evidence kept elsewhere.
+    pub fn keeping_evidence_in(self, store: EvidenceStore) -> App {
+        App {
+            evidence_store: Arc::new(store),
+            ..self
+        }
     }
 
     /// The same program on behalf of another organisation.
@@ -149,5 +164,13 @@ impl App {
     /// Finishes the writes that wait and closes the database.
     pub async fn close(&self) {
         self.store.close().await;
+    }
+}
+
+/// The folder that a data file lies in.
+fn folder_of(file: &Path) -> Arc<Path> {
+    match file.parent() {
+        Some(folder) if folder != Path::new("") => folder.into(),
+        _ => Path::new(".").into(),
     }
 }

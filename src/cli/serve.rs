@@ -24,7 +24,9 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
-        let app = open(&folder).await?;
+        let app = open(&folder)
+            .await?
+            .keeping_evidence_in(config.evidence_store.clone());
         // The demonstration says what it is in words of its own; a folder of one's own data deserves this line.
         if config.listen.ip().is_loopback() {
             say(
@@ -81,6 +83,7 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
         limits: Limits {
             body_bytes: config.body_bytes,
             batch_lines: config.batch_lines,
+            evidence_bytes: config.evidence_bytes,
             ..Limits::default()
         },
         at_once: config.requests_at_once,

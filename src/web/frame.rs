@@ -11,6 +11,8 @@ pub enum Section {
     Calculators,
     /// Factors, materials and rule sets.
     Factors,
+    /// Files that back figures.
+    Evidence,
     /// The API in words.
     Api,
     /// None of them: a page that says what went wrong.
@@ -85,7 +87,7 @@ impl Frame {
     }
 
     /// The words of the navigation: address, word, whether this page is there.
-    pub fn words(&self) -> [(&'static str, &'static str, bool); 5] {
+    pub fn words(&self) -> [(&'static str, &'static str, bool); 6] {
         [
             ("/", "Pathways", self.section == Section::Pathways),
             ("/compare", "Compare", self.section == Section::Compare),
@@ -95,6 +97,7 @@ impl Frame {
                 self.section == Section::Calculators,
             ),
             ("/factors", "Factors", self.section == Section::Factors),
+            ("/evidence", "Evidence", self.section == Section::Evidence),
             ("/api", "API", self.section == Section::Api),
         ]
     }

@@ -41,3 +41,8 @@ pub fn factor(full: &str) -> String {
     let (edition, row) = full.split_once('/').unwrap_or((full, ""));
     format!("/factors/{}/{}", segment(edition), segment(row))
 }
+
+/// The page of a piece of evidence.
+pub fn evidence(id: &str) -> String {
+    format!("/evidence/{}", segment(id))
+}

@@ -15,6 +15,7 @@ pub mod frame;
 pub mod health;
 pub mod layers;
 pub mod links;
+pub mod multipart;
 pub mod openapi;
 pub mod paging;
 pub mod patience;

@@ -8,7 +8,7 @@ use super::problem::{Refusal, RefusalPage};
 use super::{api_page, error_page};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{calculators, demo, factors, pathways, rules};
+use crate::{calculators, demo, evidence, factors, pathways, rules};
 use axum::Router;
 use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
@@ -64,6 +64,7 @@ fn api() -> OpenApiRouter<App> {
     let v1 = OpenApiRouter::new()
         .merge(openapi::routes())
         .merge(pathways::api::routes())
+        .merge(evidence::api::routes())
         .merge(factors::api::routes())
         .merge(rules::api::routes())
         .merge(calculators::api::routes());
@@ -80,6 +81,7 @@ pub fn pages_router() -> Router<App> {
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
+        .merge(evidence::pages::routes())
         .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
 }
