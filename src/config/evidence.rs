@@ -154,10 +154,21 @@ mod tests {
 
     #[test]
     fn http_is_for_this_machine() {
-        for good in ["https://files.example", "http://127.0.0.1:9000", "http://[::1]:9000", "http://localhost:1"] {
+        for good in [
+            "https://files.example",
+            "http://127.0.0.1:9000",
+            "http://[::1]:9000",
+            "http://localhost:1",
+        ] {
             assert!(checked(said(good)).is_ok(), "{good}");
         }
-        for bad in ["http://files.example", "http://10.0.0.1", "ftp://127.0.0.1", "files.example", "http://127.0.0.1.example"] {
+        for bad in [
+            "http://files.example",
+            "http://10.0.0.1",
+            "ftp://127.0.0.1",
+            "files.example",
+            "http://127.0.0.1.example",
+        ] {
             assert!(checked(said(bad)).is_err(), "{bad}");
         }
     }
@@ -165,10 +176,22 @@ mod tests {
     #[test]
     fn half_a_store_is_none_and_secrets_stay_hidden() {
         for half in [
-            Said { bucket: None, ..said("https://files.example") },
-            Said { secret: None, ..said("https://files.example") },
-            Said { region: Some("x".into()), ..Said::default() },
-            Said { secret_file: Some("x".into()), ..said("https://files.example") },
+            Said {
+                bucket: None,
+                ..said("https://files.example")
+            },
+            Said {
+                secret: None,
+                ..said("https://files.example")
+            },
+            Said {
+                region: Some("x".into()),
+                ..Said::default()
+            },
+            Said {
+                secret_file: Some("x".into()),
+                ..said("https://files.example")
+            },
         ] {
             assert!(checked(half).is_err());
         }

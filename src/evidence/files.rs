@@ -31,7 +31,9 @@ pub enum FilesError {
     #[error("The store of evidence does not answer as it should. Nothing was saved; try again in a moment.")]
     Store(#[source] Arc<object_store::Error>),
     /// A file on its way in could not be put down.
-    #[error("The file could not be put down. Nothing was saved; check the space and the rights of the data folder.")]
+    #[error(
+        "The file could not be put down. Nothing was saved; check the space and the rights of the data folder."
+    )]
     Disk(#[source] Arc<std::io::Error>),
     /// The bytes are not those that were attached.
     #[error("The file is not the one that was attached.")]

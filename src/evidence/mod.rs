@@ -6,6 +6,7 @@ mod error;
 mod examples;
 mod files;
 mod incoming;
+mod link;
 mod naming;
 pub mod pages;
 pub mod receive;
@@ -16,6 +17,7 @@ pub use error::EvidenceError;
 pub use examples::{Example, forget, load_examples, remove_examples};
 pub use files::{FilesError, Pieces};
 pub use incoming::{Arrived, Incoming};
+pub use link::EvidenceLink;
 pub use naming::Naming;
 pub use verify::{Fault, FaultKind, verify};
 
@@ -159,7 +161,10 @@ pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<R
     let keeping = KEEPING.read().await;
     Files::of(app)?.keep(&mut arrived).await?;
     let (organisation, who, now) = (app.organisation, app.who.clone(), app.clock.millis());
-    let (hash, size) = (arrived.hash.clone(), i64::try_from(arrived.size).unwrap_or(i64::MAX));
+    let (hash, size) = (
+        arrived.hash.clone(),
+        i64::try_from(arrived.size).unwrap_or(i64::MAX),
+    );
     app.store
         .write_then(
             move |c| {

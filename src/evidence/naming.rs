@@ -36,7 +36,11 @@ impl Naming {
             // "." and ".." are no addresses of anything.
             if !is_evidence_id(id) || id.bytes().all(|b| b == b'.') {
                 let detail = "The id is not one that evidence can have.";
-                problems.add("/id", detail, "Use 1 to 64 of A-Z a-z 0-9 . _ and -, or leave it out.");
+                problems.add(
+                    "/id",
+                    detail,
+                    "Use 1 to 64 of A-Z a-z 0-9 . _ and -, or leave it out.",
+                );
             }
         }
         let note = self.note.filter(|note| !note.trim().is_empty());
@@ -44,12 +48,19 @@ impl Naming {
             if note.chars().count() > NOTE {
                 problems.add("/note", "The note is longer than 1000 letters.", "Shorten it.");
             }
-            if note.chars().any(|c| c.is_control() && !matches!(c, '\n' | '\r' | '\t')) {
+            if note
+                .chars()
+                .any(|c| c.is_control() && !matches!(c, '\n' | '\r' | '\t'))
+            {
                 problems.add("/note", "The note holds control characters.", "Take them out.");
             }
         }
         if size == 0 {
-            problems.add("/file", "The file is empty.", "Choose the file that backs the figure.");
+            problems.add(
+                "/file",
+                "The file is empty.",
+                "Choose the file that backs the figure.",
+            );
         }
         if !problems.is_empty() {
             return Err(EvidenceError::Problems(problems));

@@ -10,8 +10,7 @@ use sqlx::FromRow;
 type Answer<T> = Result<T, StoreError>;
 
 const NEXT_NUMBER: &str = "SELECT COALESCE(MAX(number), 0) + 1 FROM evidence WHERE organisation_id = $1";
-const IS_THERE: &str =
-    "SELECT EXISTS (SELECT 1 FROM evidence WHERE organisation_id = $1 AND public_id = $2)";
+const IS_THERE: &str = "SELECT EXISTS (SELECT 1 FROM evidence WHERE organisation_id = $1 AND public_id = $2)";
 const ADD: &str = "\
     INSERT INTO evidence (organisation_id, public_id, number, file_name, media_type, size, hash, note, example, person, \
                           by_name, attached_at) \
@@ -249,11 +248,7 @@ pub(super) async fn uses(
 
 /// The next records of every organisation, by hash.
 pub(super) async fn all_after(c: &mut Connection, hash: &str, id: i64) -> Answer<Vec<KeptRow>> {
-    Ok(sqlx::query_as(ALL_AFTER)
-        .bind(hash)
-        .bind(id)
-        .fetch_all(c)
-        .await?)
+    Ok(sqlx::query_as(ALL_AFTER).bind(hash).bind(id).fetch_all(c).await?)
 }
 
 /// Takes the demonstration's evidence out that no revision names any more; the hashes it had.

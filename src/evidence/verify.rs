@@ -88,7 +88,11 @@ pub async fn verify(app: &App) -> Result<Vec<Fault>, EvidenceError> {
             let day = super::day_of(super::time(row.attached_at, "evidence", row.id)?);
             if let Some(finding) = file_unchanged(&row.file_name, day, &row.hash, found.as_deref()) {
                 faults.push(Fault {
-                    kind: if found.is_some() { FaultKind::Altered } else { FaultKind::Missing },
+                    kind: if found.is_some() {
+                        FaultKind::Altered
+                    } else {
+                        FaultKind::Missing
+                    },
                     organisation: row.organisation,
                     id: row.public_id,
                     message: finding.message,

@@ -61,7 +61,9 @@ async fn computed(app: &App, document: Pathway) -> Result<Arc<Prepared>, Pathway
         let assessment = make(&app, &basis, &document, None)?;
         let rows = Rows::of(&document);
         let evidence = rows.evidence.clone();
-        let rows = rows.texts().map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
+        let rows = rows
+            .texts()
+            .map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
         let hash = canonical::hash(&bytes);
         let text =
             String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote a pathway", error))?;

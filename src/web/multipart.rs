@@ -57,9 +57,8 @@ impl<S: Send + Sync> FromRequest<S> for Multipart {
 
     async fn from_request(mut request: Request, state: &S) -> Result<Multipart, Refusal> {
         if !is_multipart(&request) {
-            return Err(
-                Refusal::of(StatusCode::UNSUPPORTED_MEDIA_TYPE).detail("Send the form as multipart/form-data.")
-            );
+            return Err(Refusal::of(StatusCode::UNSUPPORTED_MEDIA_TYPE)
+                .detail("Send the form as multipart/form-data."));
         }
         let limits = Limits::of(request.extensions());
         // The fields beside the files are as long as any body may be.
@@ -79,7 +78,9 @@ impl<S: Send + Sync> FromRequest<S> for Multipart {
         DefaultBodyLimit::max(most).apply(&mut request);
         match axum::extract::Multipart::from_request(request, state).await {
             Ok(parts) => Ok(Multipart { parts, limits }),
-            Err(_) => Err(Refusal::bad_request("The content type names no boundary of the parts.")),
+            Err(_) => Err(Refusal::bad_request(
+                "The content type names no boundary of the parts.",
+            )),
         }
     }
 }
@@ -157,8 +158,9 @@ impl Part<'_> {
             bytes.extend_from_slice(&piece);
         }
         let name = shown(self.name());
-        String::from_utf8(bytes)
-            .map_err(|_| Refusal::bad_request(format!("The field \"{name}\" holds bytes that are not UTF-8.")))
+        String::from_utf8(bytes).map_err(|_| {
+            Refusal::bad_request(format!("The field \"{name}\" holds bytes that are not UTF-8."))
+        })
     }
 
     async fn raw_piece(&mut self) -> Result<Option<Bytes>, Refusal> {
@@ -177,7 +179,9 @@ async fn in_time<T>(
         Err(_) => Err(Refusal::of(StatusCode::REQUEST_TIMEOUT)),
         Ok(Ok(value)) => Ok(value),
         Ok(Err(error)) if error.status() == StatusCode::PAYLOAD_TOO_LARGE => Err(refused_size(limits)),
-        Ok(Err(_)) => Err(Refusal::bad_request("The form broke off, or its parts cannot be told apart.")),
+        Ok(Err(_)) => Err(Refusal::bad_request(
+            "The form broke off, or its parts cannot be told apart.",
+        )),
     }
 }
 

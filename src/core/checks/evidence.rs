@@ -221,10 +221,16 @@ mod tests {
     #[test]
     fn a_file_is_the_one_that_was_attached() {
         let day = date(2026, 12, 1);
-        assert_eq!(file_unchanged("bill.pdf", day, "sha256:a", Some("sha256:a")), None);
+        assert_eq!(
+            file_unchanged("bill.pdf", day, "sha256:a", Some("sha256:a")),
+            None
+        );
         let altered = file_unchanged("bill.pdf", day, "sha256:a", Some("sha256:b")).unwrap();
         assert_eq!((altered.id.as_str(), altered.severity), ("E-11", Severity::Block));
-        assert_eq!(altered.message, "bill.pdf is not the file that was attached on 2026-12-01.");
+        assert_eq!(
+            altered.message,
+            "bill.pdf is not the file that was attached on 2026-12-01."
+        );
         let missing = file_unchanged("bill.pdf", day, "sha256:a", None).unwrap();
         assert_eq!(missing.message, "bill.pdf, attached on 2026-12-01, is missing.");
     }

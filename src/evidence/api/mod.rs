@@ -62,9 +62,9 @@ async fn list_evidence(
     let page = list(&app, ask.after.as_deref(), limit)
         .await
         .map_err(|error| match error {
-            EvidenceError::NotFound => Refusal::bad_request(
-                "\"after\" is not a place in this list. Take it from the page before.",
-            ),
+            EvidenceError::NotFound => {
+                Refusal::bad_request("\"after\" is not a place in this list. Take it from the page before.")
+            }
             other => other.into(),
         })?;
     Ok(Page {

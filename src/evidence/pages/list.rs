@@ -1,7 +1,6 @@
 //! The page of all evidence: a form to attach a file, and the records, newest first.
 
-use super::EvidenceLink;
-use crate::evidence::RecordPage;
+use crate::evidence::{EvidenceLink, RecordPage};
 use crate::web::frame::{Frame, Section};
 use crate::web::links;
 use askama::Template;

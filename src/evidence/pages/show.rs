@@ -1,6 +1,6 @@
 //! The page of one piece of evidence: the file, its hash, who attached it, and every figure it backs.
 
-use super::{day_words, size_words};
+use crate::evidence::link::{day_words, size_words};
 use crate::evidence::{Record, Use};
 use crate::web::frame::{Frame, Section};
 use crate::web::links;

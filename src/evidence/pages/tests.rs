@@ -1,8 +1,9 @@
 //! Every page with every sample: empty, full, hostile.
 
 use super::list::Asked;
-use super::{EvidenceLink, ListEvidence, ShowEvidence, short_hash, size_words};
-use crate::evidence::{Record, RecordPage, Use};
+use super::{ListEvidence, ShowEvidence};
+use crate::evidence::link::{short_hash, size_words};
+use crate::evidence::{EvidenceLink, Record, RecordPage, Use};
 use askama::Template;
 use uuid::Uuid;
 
@@ -44,7 +45,9 @@ fn every_page_shows_every_sample_and_keeps_hostile_text_text() {
         records: Vec::new(),
         next: None,
     };
-    let page = ListEvidence::of(&empty, Asked::default()).render().expect("renders");
+    let page = ListEvidence::of(&empty, Asked::default())
+        .render()
+        .expect("renders");
     assert!(page.contains("No file is attached yet"));
     for text in ["gas bill.pdf", HOSTILE] {
         let full = RecordPage {
@@ -57,7 +60,11 @@ fn every_page_shows_every_sample_and_keeps_hostile_text_text() {
             wrong: vec![text.into()],
         };
         let list = ListEvidence::of(&full, asked).render().expect("renders");
-        assert!(list.contains("/evidence?after=EV-0001") && list.contains("1.2 MB") && list.contains("0123456789ab<"));
+        assert!(
+            list.contains("/evidence?after=EV-0001")
+                && list.contains("1.2 MB")
+                && list.contains("0123456789ab<")
+        );
         let uses = [used(text, true), used(text, false)];
         let show = ShowEvidence::of(&record(text), &uses).render().expect("renders");
         assert!(show.contains("/evidence/EV-0001/file"));

@@ -1,8 +1,8 @@
 //! Where a document names evidence: at its inputs, in amounts inside their models, at what a supplier stated.
 
 use super::EvidenceUseRow;
-use crate::core::documents::pathway::{Pathway, Stage};
 use crate::core::documents::Problems;
+use crate::core::documents::pathway::{Pathway, Stage};
 use serde_json::Value;
 use std::collections::BTreeSet;
 
@@ -12,11 +12,23 @@ pub fn named(pathway: &Pathway) -> Vec<EvidenceUseRow> {
     for (index, stage) in pathway.stages.iter().enumerate() {
         let at = format!("/stages/{index}");
         if let Some(stated) = &stage.stated {
-            add(&mut found, stage, None, &format!("{at}/stated/evidence"), texts(&stated.evidence));
+            add(
+                &mut found,
+                stage,
+                None,
+                &format!("{at}/stated/evidence"),
+                texts(&stated.evidence),
+            );
         }
         for (index, input) in stage.inputs.iter().enumerate() {
             let at = format!("{at}/inputs/{index}");
-            add(&mut found, stage, Some(&input.key), &format!("{at}/evidence"), texts(&input.evidence));
+            add(
+                &mut found,
+                stage,
+                Some(&input.key),
+                &format!("{at}/evidence"),
+                texts(&input.evidence),
+            );
             let Some(models) = &input.model else { continue };
             for (index, model) in models.list().iter().enumerate() {
                 let at = if models.is_list() {
@@ -25,7 +37,13 @@ pub fn named(pathway: &Pathway) -> Vec<EvidenceUseRow> {
                     format!("{at}/model")
                 };
                 for (name, value) in &model.parameters {
-                    inside(&mut found, stage, &input.key, &format!("{at}/{}", escaped(name)), value);
+                    inside(
+                        &mut found,
+                        stage,
+                        &input.key,
+                        &format!("{at}/{}", escaped(name)),
+                        value,
+                    );
                 }
             }
         }
