@@ -3,19 +3,20 @@
 pub mod who;
 
 use crate::clock::Clock;
-use crate::config::EvidenceStore;
 use crate::core::checks::settings::Settings as CheckSettings;
 use crate::core::documents::{Assessment, Pathway, Problems};
 use crate::core::domain::Book;
 use crate::core::evaluate::{Options, evaluate};
 use crate::store::memory::Memory;
-use crate::store::{OrganisationId, Settings, Store, StoreError};
+use crate::store::{Settings, Store, StoreError};
 use std::ops::Deref;
 use std::path::Path;
 use std::sync::Arc;
 use who::Who;
 
+pub use crate::config::{Bucket, EvidenceStore};
 pub use crate::core::engine::assess::PROGRAM;
+pub use crate::store::OrganisationId;
 
 /// The accounting as a value, so that tests of the shell can bring their own.
 pub type Evaluate = fn(&Pathway, &Book, Options<'_>) -> Result<Assessment, Problems>;

@@ -2,8 +2,7 @@
 //! file that knows how they are kept.
 
 use super::incoming::{Arrived, hex};
-use crate::app::App;
-use crate::config::{Bucket, EvidenceStore};
+use crate::app::{App, Bucket, EvidenceStore};
 use object_store::aws::AmazonS3Builder;
 use object_store::buffered::BufWriter;
 use object_store::local::LocalFileSystem;

@@ -210,7 +210,7 @@ pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<R
 
 /// The next id by count that is free: a wished one may stand in its way.
 async fn counted(c: &mut Connection, organisation: OrganisationId) -> Result<(String, i64), StoreError> {
-    let mut number = sql::next_number(c, organisation).await?;
+    let mut number = sql::last_number(c, organisation).await? + 1;
     loop {
         let id = format!("EV-{number:04}");
         if !sql::is_there(c, organisation, &id).await? {

@@ -9,7 +9,8 @@ use sqlx::FromRow;
 
 type Answer<T> = Result<T, StoreError>;
 
-const NEXT_NUMBER: &str = "SELECT COALESCE(MAX(number), 0) + 1 FROM evidence WHERE organisation_id = $1";
+const LAST_NUMBER: &str = "\
+    SELECT number FROM evidence WHERE organisation_id = $1 AND number IS NOT NULL ORDER BY number DESC LIMIT 1";
 const IS_THERE: &str = "SELECT EXISTS (SELECT 1 FROM evidence WHERE organisation_id = $1 AND public_id = $2)";
 const ADD: &str = "\
     INSERT INTO evidence (organisation_id, public_id, number, file_name, media_type, size, hash, note, example, person, \
@@ -39,22 +40,22 @@ const LIST: &str = "\
 const AMONG: &str = "\
     SELECT e.id, e.public_id, e.file_name, e.media_type, e.size, e.hash, e.note, e.example, e.by_name, e.attached_at, \
            0 AS pathways \
-    FROM json_each($2) named JOIN evidence e ON e.organisation_id = $1 AND e.public_id = named.value ORDER BY e.id";
+    FROM json_each($2) JOIN evidence e ON e.organisation_id = $1 AND e.public_id = json_each.value ORDER BY e.id";
 const MISSING: &str = "\
-    SELECT DISTINCT named.value FROM json_each($2) named \
-    WHERE NOT EXISTS (SELECT 1 FROM evidence e WHERE e.organisation_id = $1 AND e.public_id = named.value)";
+    SELECT DISTINCT json_each.value FROM json_each($2) \
+    WHERE NOT EXISTS (SELECT 1 FROM evidence e WHERE e.organisation_id = $1 AND e.public_id = json_each.value)";
 const USES: &str = "\
-    WITH newest AS (SELECT r.pathway_id AS pathway, MAX(r.number) AS number FROM evidence_use u \
-                    JOIN revision r ON r.id = u.revision_id \
-                    WHERE u.evidence = $2 AND u.organisation_id = $1 GROUP BY r.pathway_id) \
     SELECT p.public_id, p.name, p.archived_at, r.number, p.current_revision, u.pointer, u.stage_key, u.input_key, \
            s.name AS stage_name, i.label AS input_label \
-    FROM newest n JOIN pathway p ON p.id = n.pathway AND p.organisation_id = $1 \
-    JOIN revision r ON r.pathway_id = n.pathway AND r.number = n.number \
-    JOIN evidence_use u ON u.revision_id = r.id AND u.evidence = $2 AND u.organisation_id = $1 \
+    FROM evidence_use u JOIN revision r ON r.id = u.revision_id \
+    JOIN pathway p ON p.id = r.pathway_id AND p.organisation_id = u.organisation_id \
     LEFT JOIN stage s ON s.revision_id = r.id AND s.key = u.stage_key \
     LEFT JOIN input i ON i.revision_id = r.id AND i.stage_key = u.stage_key AND i.key = u.input_key \
-    WHERE $3 IS NULL OR p.public_id IN (SELECT value FROM json_each($3)) \
+    WHERE u.organisation_id = $1 AND u.evidence = $2 \
+      AND ($3 IS NULL OR p.public_id IN (SELECT value FROM json_each($3))) \
+      AND NOT EXISTS (SELECT 1 FROM revision later JOIN evidence_use again ON again.revision_id = later.id \
+           AND again.evidence = $2 AND again.organisation_id = $1 \
+           WHERE later.pathway_id = r.pathway_id AND later.number > r.number) \
     ORDER BY p.name_folded, p.public_id, u.id LIMIT 1000";
 const ALL_AFTER: &str = "\
     SELECT e.id, e.public_id, e.file_name, e.hash, e.attached_at, o.name AS organisation \
@@ -68,12 +69,12 @@ const REMOVE_UNUSED_EXAMPLES: &str = "\
         (SELECT 1 FROM evidence_use u WHERE u.evidence = evidence.public_id \
             AND u.organisation_id = evidence.organisation_id)";
 const NAMED_BY_NONE: &str = "\
-    SELECT DISTINCT named.value FROM json_each($1) named \
-    WHERE NOT EXISTS (SELECT 1 FROM evidence e WHERE e.hash = named.value)";
+    SELECT DISTINCT json_each.value FROM json_each($1) \
+    WHERE NOT EXISTS (SELECT 1 FROM evidence e WHERE e.hash = json_each.value)";
 
 /// The statements of this file.
 pub(super) const STATEMENTS: &[&str] = &[
-    NEXT_NUMBER,
+    LAST_NUMBER,
     IS_THERE,
     ADD,
     FIND,
@@ -137,11 +138,13 @@ pub(super) struct New<'a> {
     pub(super) example: bool,
 }
 
-pub(super) async fn next_number(c: &mut Connection, organisation: OrganisationId) -> Answer<i64> {
-    Ok(sqlx::query_scalar(NEXT_NUMBER)
+/// The last number that was counted; 0 where none was.
+pub(super) async fn last_number(c: &mut Connection, organisation: OrganisationId) -> Answer<i64> {
+    let last: Option<i64> = sqlx::query_scalar(LAST_NUMBER)
         .bind(organisation.0)
-        .fetch_one(c)
-        .await?)
+        .fetch_optional(c)
+        .await?;
+    Ok(last.unwrap_or(0))
 }
 
 pub(super) async fn is_there(c: &mut Connection, organisation: OrganisationId, id: &str) -> Answer<bool> {

@@ -305,6 +305,26 @@ fn answer(revision: i64, pathway_hash: String, rule_set: &str, kept: Kept) -> As
     }
 }
 
+/// Everything that a page of the current revision shows, as a text that changes when any of it does.
+///
+/// # Errors
+/// `NotFound`, or when the database fails.
+pub async fn face(app: &App, id: Uuid) -> Result<String, PathwayError> {
+    let basis = basis(app).await?;
+    let head = head(app, id).await?;
+    let Head {
+        revision,
+        hash,
+        rule_set,
+        reasons,
+        archived,
+    } = &*head;
+    let basis = &basis.hash;
+    Ok(format!(
+        "{id} {revision} {hash} {basis} {reasons} {archived} {rule_set}"
+    ))
+}
+
 /// The current revision of a pathway, from memory or the file.
 pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError> {
     let now = app.clock.millis();
@@ -320,6 +340,7 @@ pub(super) async fn head(app: &App, id: Uuid) -> Result<Arc<Head>, PathwayError>
         hash: row.hash,
         rule_set: row.rule_set,
         reasons: row.reasons,
+        archived: row.archived_at.is_some(),
     });
     app.memory.learn(app.organisation, id, head.clone(), now, writes);
     Ok(head)

@@ -16,7 +16,7 @@ pub mod rows;
 mod save;
 mod sql;
 
-pub use assess::{AssessmentBytes, Reassessed, assessment, reassess_all};
+pub use assess::{AssessmentBytes, Reassessed, assessment, face, reassess_all};
 pub use changes::{Change, Kind};
 pub use defaults::{Defaults, defaults};
 pub use error::{PathwayError, What};

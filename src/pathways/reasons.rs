@@ -127,6 +127,7 @@ pub async fn put_reasons(
                     hash: head.hash,
                     rule_set: head.rule_set,
                     reasons: new,
+                    archived: false,
                 };
                 Ok::<_, PathwayError>(head)
             })

@@ -121,6 +121,7 @@ impl Prepared {
             hash: self.hash.clone(),
             rule_set: self.document.rule_set.clone(),
             reasons,
+            archived: false,
         }
     }
 
@@ -237,22 +238,32 @@ pub async fn restore(app: &App, id: Uuid, expected: Expected) -> Result<(), Path
 
 async fn set_archived(app: &App, id: Uuid, expected: Expected, archived: bool) -> Result<(), PathwayError> {
     let (who, now, by) = (app.organisation, app.clock.millis(), app.who.clone());
-    let job = app.store.write(move |c| {
-        Box::pin(async move {
-            let head = sql::head(c, who, id)
-                .await?
-                .ok_or(PathwayError::NotFound(What::Pathway))?;
-            expected.check(head.number, &head.hash)?;
-            if head.archived_at.is_some() != archived {
-                sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
-                let did = if archived { "archived" } else { "restored" };
-                let deed = Deed::new(did, "pathway", id, json!({ "revision": head.number }));
-                audit_trail::add(c, who, &by, now, deed).await?;
-            }
-            Ok(())
-        })
-    });
-    job.await
+    let memory = app.memory.clone();
+    let job = app.store.write_then(
+        move |c| {
+            Box::pin(async move {
+                let head = sql::head(c, who, id)
+                    .await?
+                    .ok_or(PathwayError::NotFound(What::Pathway))?;
+                expected.check(head.number, &head.hash)?;
+                if head.archived_at.is_some() != archived {
+                    sql::set_archived(c, who, head.id, archived.then_some(now), now).await?;
+                    let did = if archived { "archived" } else { "restored" };
+                    let deed = Deed::new(did, "pathway", id, json!({ "revision": head.number }));
+                    audit_trail::add(c, who, &by, now, deed).await?;
+                }
+                Ok::<_, PathwayError>(Head {
+                    revision: head.number,
+                    hash: head.hash,
+                    rule_set: head.rule_set,
+                    reasons: head.reasons,
+                    archived,
+                })
+            })
+        },
+        move |head| memory.wrote(who, id, head.clone(), now),
+    );
+    job.await.map(drop)
 }
 
 /// Saves one stage, in its place or after the last, as the next revision.

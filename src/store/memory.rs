@@ -23,6 +23,8 @@ pub(crate) struct Head {
     pub(crate) rule_set: String,
     /// Hash of the reasons given for its warnings; empty where there are none.
     pub(crate) reasons: String,
+    /// True if the pathway is hidden from lists.
+    pub(crate) archived: bool,
 }
 
 /// What makes the bytes of an assessment: the same key, the same bytes.
@@ -38,7 +40,7 @@ pub(crate) struct AssessmentKey<'k> {
     pub(crate) reasons: &'k str,
 }
 
-/// An assessment as bytes with their hash.
+/// Bytes with their hash: an assessment, or a page of one.
 #[derive(Clone, Debug)]
 pub(crate) struct Kept {
     pub(crate) hash: String,
@@ -131,9 +133,27 @@ impl Memory {
 
     /// An assessment, if it is at hand.
     pub(crate) fn assessment(&self, key: AssessmentKey<'_>) -> Option<Kept> {
+        self.kept(text_of(key))
+    }
+
+    /// Keeps an assessment at hand; the ones used longest ago give way.
+    pub(crate) fn keep(&self, key: AssessmentKey<'_>, kept: Kept) {
+        self.keep_under(text_of(key), kept);
+    }
+
+    /// A rendered page, if it is at hand. The key names all that the page shows.
+    pub(crate) fn page(&self, key: &str) -> Option<Kept> {
+        self.kept(page_key(key))
+    }
+
+    /// Keeps a rendered page at hand.
+    pub(crate) fn keep_page(&self, key: &str, kept: Kept) {
+        self.keep_under(page_key(key), kept);
+    }
+
+    fn kept(&self, key: String) -> Option<Kept> {
         let mut inner = self.inner();
         let turn = inner.next_turn();
-        let key = text_of(key);
         let (kept, last) = inner.kept.get_mut(&key)?;
         let (kept, last) = (kept.clone(), std::mem::replace(last, turn));
         inner.order.remove(&last);
@@ -141,15 +161,13 @@ impl Memory {
         Some(kept)
     }
 
-    /// Keeps an assessment at hand; the ones used longest ago give way.
-    pub(crate) fn keep(&self, key: AssessmentKey<'_>, kept: Kept) {
+    fn keep_under(&self, key: String, kept: Kept) {
         let size = kept.bytes.len();
         if size > MOST_BYTES / 4 {
             return;
         }
         let mut inner = self.inner();
         let turn = inner.next_turn();
-        let key = text_of(key);
         inner.drop_kept(&key);
         inner.bytes += size;
         inner.kept.insert(key.clone(), (kept, turn));
@@ -193,6 +211,11 @@ fn text_of(key: AssessmentKey<'_>) -> String {
     } = key;
     // Hashes hold no space, and the rule set comes last.
     format!("{document} {basis} {reasons} {rule_set}")
+}
+
+/// Hashes hold no such word, so that a page is never taken for an assessment.
+fn page_key(key: &str) -> String {
+    format!("page {key}")
 }
 
 #[cfg(test)]
@@ -264,6 +287,7 @@ mod tests {
             hash: "h".into(),
             rule_set: "r".into(),
             reasons: String::new(),
+            archived: false,
         };
         let writes = memory.head(who, id, 0).expect_err("empty");
         memory.wrote(who, id, head(2), 0);

@@ -1,9 +1,8 @@
 //! Who asks, with the right a handler needs: `Actor<CanWrite>` in a signature is the check.
 
 use super::problem::Refusal;
-use crate::app::App;
 use crate::app::who::{Right, Who};
-use crate::store::OrganisationId;
+use crate::app::{App, OrganisationId};
 use axum::extract::FromRequestParts;
 use axum::http::StatusCode;
 use axum::http::header::{HeaderValue, WWW_AUTHENTICATE};

@@ -52,7 +52,11 @@ impl Driver {
         let driver = Driver {
             process,
             base: format!("http://127.0.0.1:{port}"),
-            http: reqwest::Client::new(),
+            http: {
+                // The client wants to know who would encrypt, also where nothing is encrypted.
+                let _ = rustls::crypto::ring::default_provider().install_default();
+                reqwest::Client::new()
+            },
         };
         for _ in 0..200 {
             if driver

@@ -10,6 +10,7 @@
 mod api;
 mod cli;
 mod engine;
+mod evidence;
 mod levers;
 mod store;
 mod support;

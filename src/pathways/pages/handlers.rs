@@ -5,7 +5,7 @@ use super::show::ShowPathway;
 use super::workings::ShowWorkings;
 use super::{
     Head, Notice, RevisionRow, answers, blend, compare, defaults_handlers, document_handlers,
-    factor_handlers, links, notices, stage_handlers,
+    factor_handlers, facts, kept, links, notices, stage_handlers,
 };
 use crate::app::{App, SharedBook};
 use crate::core::checks::reasons::Reason;
@@ -42,6 +42,8 @@ pub fn routes() -> Router<App> {
         .route("/pathways/document", post(document_handlers::bring_in))
         .route("/pathways/{id}", get(show))
         .route("/pathways/{id}/workings", get(workings))
+        .route("/pathways/{id}/facts", get(facts::show).post(facts::save))
+        .route("/pathways/{id}/copy", post(facts::copy))
         .route("/pathways/{id}/archive", post(archive))
         .route("/pathways/{id}/reasons", post(reason))
         .route(
@@ -234,13 +236,27 @@ async fn show(
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
     let uuid = id_of(&app, &id).await?;
-    let seen = match see(&app, uuid, None).await {
-        Ok(seen) => seen,
-        Err(error) => return Err(refused(&app, &id, error).await),
+    // What a save did is told once; every other page of a revision is the same until something changes.
+    if query.saved.is_some() {
+        let shown = made(&app, uuid, &id, &query).await?;
+        return page(&shown).map_err(IntoResponse::into_response);
+    }
+    let view = match query.carbon.as_str() {
+        "in-line" => "show in line",
+        "apart" => "show apart",
+        _ => "show",
     };
-    let rows = match pathways::revisions(&app, uuid).await {
+    kept::page(&app, uuid, view, made(&app, uuid, &id, &query)).await
+}
+
+async fn made(app: &App, uuid: Uuid, id: &str, query: &ShowQuery) -> Result<ShowPathway, Response> {
+    let seen = match see(app, uuid, None).await {
+        Ok(seen) => seen,
+        Err(error) => return Err(refused(app, id, error).await),
+    };
+    let rows = match pathways::revisions(app, uuid).await {
         Ok(rows) => rows,
-        Err(error) => return Err(refused(&app, &id, error).await),
+        Err(error) => return Err(refused(app, id, error).await),
     };
     // The rule set says where the crop's carbon stands; the address can ask for the other.
     let in_line = match query.carbon.as_str() {
@@ -260,8 +276,8 @@ async fn show(
         rows,
         in_line,
     );
-    shown.notice = saved_notice(&app, &seen, query.saved).await;
-    page(&shown).map_err(IntoResponse::into_response)
+    shown.notice = saved_notice(app, &seen, query.saved).await;
+    Ok(shown)
 }
 
 /// Told after a save, by the number in the address: what the current revision did to the net.
@@ -307,17 +323,25 @@ async fn workings(
     Query(query): Query<ShowQuery>,
 ) -> Result<Response, Response> {
     let uuid = id_of(&app, &id).await?;
-    match see(&app, uuid, None).await {
-        Ok(seen) => match &seen.outcome {
-            Ok(found) => {
-                let open = query.open == "all";
-                let shown = ShowWorkings::of(seen.head(), &seen.pathway, found, &seen.book, open);
-                page(&shown).map_err(IntoResponse::into_response)
-            }
-            Err(_) => Ok(see_other(&links::pathway(&id))),
-        },
-        Err(error) => Err(refused(&app, &id, error).await),
-    }
+    let open = query.open == "all";
+    let view = if open { "workings open" } else { "workings" };
+    kept::page(&app, uuid, view, async {
+        let seen = match see(&app, uuid, None).await {
+            Ok(seen) => seen,
+            Err(error) => return Err(refused(&app, &id, error).await),
+        };
+        match &seen.outcome {
+            Ok(found) => Ok(ShowWorkings::of(
+                seen.head(),
+                &seen.pathway,
+                found,
+                &seen.book,
+                open,
+            )),
+            Err(_) => Err(see_other(&links::pathway(&id))),
+        }
+    })
+    .await
 }
 
 /// What is to become of a pathway.

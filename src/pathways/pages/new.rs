@@ -77,17 +77,10 @@ impl NewPathway {
         document_faults: Vec<Fault>,
         book: &Book,
     ) -> NewPathway {
-        let crops = book.materials.values().filter(|material| makes_ethanol(material));
         NewPathway {
             frame: Frame::new("New pathway", Section::Pathways, "POST /api/v1/pathways"),
-            feedstocks: crops
-                .map(|material| (material.id.clone(), material.name.clone()))
-                .collect(),
-            rule_sets: book
-                .offered_rule_sets()
-                .into_iter()
-                .map(|rules| (rules.id.clone(), rules.title.clone()))
-                .collect(),
+            feedstocks: feedstocks(book),
+            rule_sets: rule_sets(book),
             typed,
             faults,
             document,
@@ -97,10 +90,30 @@ impl NewPathway {
 
     /// What is wrong with a field of the short form.
     pub fn wrong(&self, id: &str) -> Vec<&Fault> {
-        let about =
-            |fault: &&Fault| fault.href.as_deref().and_then(|href| href.strip_prefix('#')) == Some(id);
-        self.faults.iter().filter(about).collect()
+        wrong(&self.faults, id)
     }
+}
+
+/// The faults that stand at a field of the short form.
+pub fn wrong<'f>(faults: &'f [Fault], id: &str) -> Vec<&'f Fault> {
+    let about = |fault: &&Fault| fault.href.as_deref().and_then(|href| href.strip_prefix('#')) == Some(id);
+    faults.iter().filter(about).collect()
+}
+
+/// Feedstocks to choose from: id, name.
+pub fn feedstocks(book: &Book) -> Vec<(String, String)> {
+    let crops = book.materials.values().filter(|material| makes_ethanol(material));
+    crops
+        .map(|material| (material.id.clone(), material.name.clone()))
+        .collect()
+}
+
+/// Rule sets to choose from: id, title.
+pub fn rule_sets(book: &Book) -> Vec<(String, String)> {
+    let offered = book.offered_rule_sets().into_iter();
+    offered
+        .map(|rules| (rules.id.clone(), rules.title.clone()))
+        .collect()
 }
 
 /// True for what ethanol can be made of: crops, residues, intermediates and wood whose carbon, starch or sugar is
@@ -136,12 +149,57 @@ pub fn field(pointer: &str) -> (Option<String>, String) {
     (Some(format!("#{id}")), name.to_owned())
 }
 
+/// The facts that a short form gives, read.
+pub struct Begun {
+    /// Name.
+    pub name: String,
+    /// Material id.
+    pub feedstock: String,
+    /// Id of the rule set.
+    pub rule_set: String,
+    /// First and last day.
+    pub period: Period,
+    /// Day the plant started.
+    pub plant_started: Option<Date>,
+}
+
 impl Start {
     /// The starter chain: field, haul, works, delivery, each with round figures to be replaced.
     ///
     /// # Errors
     /// What cannot be read, as fields and sentences.
     pub fn pathway(&self, book: &Book) -> Result<Pathway, Vec<Fault>> {
+        let Begun {
+            name,
+            feedstock,
+            rule_set,
+            period,
+            plant_started,
+        } = self.facts(book, &[])?;
+        Ok(Pathway {
+            format: pathway::FORMAT.to_owned(),
+            name,
+            example: false,
+            note: Some(
+                "The amounts are a start, not data: put your own in their place, stage by stage.".to_owned(),
+            ),
+            stages: starter(&feedstock),
+            feedstock,
+            period,
+            rule_set,
+            plant_started,
+            plant_capacity_per_year: None,
+            materials: Vec::new(),
+            defaults: BTreeMap::new(),
+            not_covered: Vec::new(),
+        })
+    }
+
+    /// The facts, read; `own` are the materials that the document itself describes.
+    ///
+    /// # Errors
+    /// What cannot be read, as fields and sentences.
+    pub fn facts(&self, book: &Book, own: &[pathway::OwnMaterial]) -> Result<Begun, Vec<Fault>> {
         let mut faults = Vec::new();
         let mut fault = |id: &str, place: &str, detail: &str, remedy: &str| {
             faults.push(Fault {
@@ -160,7 +218,8 @@ impl Start {
                 "Give it one that you will know it by.",
             );
         }
-        if !book.materials.contains_key(&self.feedstock) {
+        let is_own = own.iter().any(|material| material.id == self.feedstock);
+        if !is_own && !book.materials.contains_key(&self.feedstock) {
             fault(
                 "feedstock",
                 "Feedstock",
@@ -211,22 +270,12 @@ impl Start {
         let (Some(from), Some(to), true) = (from, to, faults.is_empty()) else {
             return Err(faults);
         };
-        Ok(Pathway {
-            format: pathway::FORMAT.to_owned(),
+        Ok(Begun {
             name: self.name.trim().to_owned(),
-            example: false,
-            note: Some(
-                "The amounts are a start, not data: put your own in their place, stage by stage.".to_owned(),
-            ),
             feedstock: self.feedstock.clone(),
-            period: Period { from, to, kind: None },
             rule_set: self.rule_set.clone(),
+            period: Period { from, to, kind: None },
             plant_started: started,
-            plant_capacity_per_year: None,
-            materials: Vec::new(),
-            defaults: BTreeMap::new(),
-            not_covered: Vec::new(),
-            stages: starter(&self.feedstock),
         })
     }
 }

@@ -1,7 +1,7 @@
 //! Over a real socket: large bodies, slow ones, batches that are sent whole before anything is read.
 
-use crate::support::TestApp;
 use crate::support::documents::{chain, ten_megabytes};
+use crate::support::{TestApp, client};
 use std::time::Duration;
 use tokio::io::{AsyncReadExt, AsyncWriteExt};
 use tokio::net::TcpStream;
@@ -12,7 +12,7 @@ use wheelwort::web::extract::Limits;
 async fn a_sender_of_ten_megabytes_hears_why_they_are_refused() {
     let app = TestApp::new().await;
     let url = format!("http://{}/api/v1/pathways", app.listens().await);
-    let client = reqwest::Client::new();
+    let client = client();
     let answer = client
         .post(url)
         .header("content-type", "application/json")

@@ -1,6 +1,7 @@
 //! `serve` and `demo`: they say where they are, answer there, and stop in order when asked.
 
 use super::program;
+use crate::support::client;
 use crate::support::documents::chain;
 use std::io::{BufRead, BufReader, Read};
 use std::process::{Child, ChildStdout, Command, Stdio};
@@ -71,7 +72,7 @@ async fn serve_keeps_its_data_over_a_stop() {
             .args(["--listen", "127.0.0.1:0"]);
         Running::start(&mut command)
     };
-    let client = reqwest::Client::new();
+    let client = client();
     let running = serve();
     assert!(
         running.address.starts_with("http://127.0.0.1:"),
@@ -118,7 +119,7 @@ async fn a_stop_does_not_wait_for_idle_connections() {
         .arg(folder.path())
         .args(["--listen", "127.0.0.1:0"]);
     let running = Running::start(&mut command);
-    let client = reqwest::Client::new();
+    let client = client();
     assert_eq!(
         client
             .get(running.url("/health/ready"))
@@ -178,7 +179,9 @@ async fn the_demo_shows_its_pathways_and_leaves_nothing() {
         .args(["demo", "--listen", "127.0.0.1:0"])
         .env("TMPDIR", folder.path());
     let running = Running::start(&mut command);
-    let answer = reqwest::get(running.url("/api/v1/pathways?example=true"))
+    let answer = client()
+        .get(running.url("/api/v1/pathways?example=true"))
+        .send()
         .await
         .expect("answers");
     let list: serde_json::Value = answer.json().await.expect("JSON");

@@ -2,6 +2,7 @@
 
 mod calculators;
 mod defaults;
+mod facts;
 mod form;
 mod pages;
 mod stage;
