@@ -40,7 +40,7 @@ const LIST: &str = "\
 const AMONG: &str = "\
     SELECT e.id, e.public_id, e.file_name, e.media_type, e.size, e.hash, e.note, e.example, e.by_name, e.attached_at, \
            0 AS pathways \
-    FROM json_each($2) JOIN evidence e ON e.organisation_id = $1 AND e.public_id = json_each.value ORDER BY e.id";
+    FROM evidence e WHERE e.organisation_id = $1 AND e.public_id IN (SELECT value FROM json_each($2))";
 const MISSING: &str = "\
     SELECT DISTINCT json_each.value FROM json_each($2) \
     WHERE NOT EXISTS (SELECT 1 FROM evidence e WHERE e.organisation_id = $1 AND e.public_id = json_each.value)";

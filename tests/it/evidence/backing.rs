@@ -1,6 +1,5 @@
 //! Pathways and the evidence they name: it must be there before they are stored, and knows what it backs.
 
-use super::attach;
 use crate::support::documents::{chain, chain_with};
 use crate::support::test_app::pointers;
 use crate::support::{TestApp, attach_text};

@@ -4,6 +4,7 @@
 use super::{attach, count, form, kept_files, post};
 use crate::support::{TestApp, client};
 use axum::Extension;
+use reqwest::Method;
 use sha2::{Digest, Sha256};
 use std::sync::Arc;
 use wheelwort::app::{Bucket, EvidenceStore};
@@ -15,14 +16,17 @@ fn endpoint() -> String {
     std::env::var("EVIDENCE_ENDPOINT").expect("EVIDENCE_ENDPOINT: start me with tests/evidence_store/run")
 }
 
+/// A request to the stand-in by somebody with a key: it asks that there is one, and looks no closer.
+async fn with_key(method: Method, address: String, body: &'static str) -> reqwest::Response {
+    let asked = client().request(method, address).header("authorization", "AWS made-up:made-up").body(body);
+    let answer = asked.send().await.expect("the stand-in answers");
+    assert!(answer.status().is_success(), "{}", answer.status());
+    answer
+}
+
 /// The service with its evidence in a bucket of that name, fresh.
 async fn with_bucket(name: &str) -> TestApp {
-    let made = client()
-        .put(format!("{}/{name}", endpoint()))
-        .send()
-        .await
-        .expect("the stand-in answers");
-    assert!(made.status().is_success(), "{}", made.status());
+    with_key(Method::PUT, format!("{}/{name}", endpoint()), "").await;
     let mut app = TestApp::new().await;
     let bucket = Bucket {
         endpoint: endpoint(),
@@ -63,11 +67,7 @@ async fn a_file_goes_into_the_bucket_once_and_comes_back() {
             b"abc"
         );
     }
-    let there = client()
-        .get(object("once", b"abc"))
-        .send()
-        .await
-        .expect("answers");
+    let there = with_key(Method::GET, object("once", b"abc"), "").await;
     assert_eq!(there.bytes().await.expect("bytes").as_ref(), b"abc");
     assert_eq!(verify(&app.app).await.expect("looks"), []);
     assert!(kept_files(&app).is_empty(), "nothing beside the data");
@@ -94,24 +94,9 @@ async fn altered_missing_and_unnamed_objects_are_found() {
     for bytes in [&b"abc"[..], b"xyz"] {
         attach(&app, &[("file", Some("bill.txt"), bytes)]).await;
     }
-    let altered = client()
-        .put(object("faults", b"abc"))
-        .body("abd")
-        .send()
-        .await
-        .expect("answers");
-    assert!(altered.status().is_success());
-    client()
-        .delete(object("faults", b"xyz"))
-        .send()
-        .await
-        .expect("answers");
-    client()
-        .put(object("faults", b"stray"))
-        .body("stray")
-        .send()
-        .await
-        .expect("answers");
+    with_key(Method::PUT, object("faults", b"abc"), "abd").await;
+    with_key(Method::DELETE, object("faults", b"xyz"), "").await;
+    with_key(Method::PUT, object("faults", b"stray"), "stray").await;
     let mut found: Vec<(FaultKind, String)> = verify(&app.app)
         .await
         .expect("looks")

@@ -61,7 +61,7 @@ async fn a_card_shows_what_backs_its_inputs() {
         .await;
     let at = api.trim_start_matches("/api/v1");
     let card = page(&app, &format!("{at}/stages/field")).await;
-    assert!(card.contains("<a href=\"/evidence/EV-1\">EV-1</a> Rübenschein.pdf (3 bytes, hash <code>ba7816bf8f01</code>, I. Marsh"));
+    assert!(card.contains("<a href=\"/evidence/EV-1\">EV-1</a> Rübenschein.pdf (3 bytes, hash <code>ba7816bf8f01</code>, command line, "));
     assert!(card.contains("type=\"file\"") && card.contains("name=\"/inputs/0/evidence/file\""));
     assert!(card.contains("<option value=\"EV-1\">Rübenschein.pdf</option>"));
     let workings = page(&app, &format!("{at}/workings")).await;
