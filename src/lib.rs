@@ -10,6 +10,7 @@ pub mod config;
 pub mod core;
 pub mod demo;
 pub mod evidence;
+pub mod exchange;
 pub mod factors;
 pub mod library;
 pub mod pathways;
@@ -21,7 +22,7 @@ pub mod web;
 /// Every SQL text of the program; a test prepares them all on a fresh database.
 pub fn all_statements() -> Vec<&'static str> {
     [
-        store::STATEMENTS.to_vec(),
+        store::statements(),
         audit_trail::statements(),
         evidence::statements(),
         pathways::statements(),

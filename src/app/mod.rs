@@ -14,7 +14,7 @@ use std::path::Path;
 use std::sync::Arc;
 use who::Who;
 
-pub use crate::config::{Bucket, EvidenceStore};
+pub use crate::config::{EvidenceStore, S3};
 pub use crate::core::engine::assess::PROGRAM;
 pub use crate::store::OrganisationId;
 
@@ -143,6 +143,39 @@ impl App {
             evidence_store: Arc::new(store),
             ..self
         }
+    }
+
+    /// Does the accounting of a document.
+    ///
+    /// # Errors
+    /// Every problem of the document.
+    pub fn evaluates(
+        &self,
+        pathway: &Pathway,
+        book: &Book,
+        options: Options<'_>,
+    ) -> Result<Assessment, Problems> {
+        metrics::counter!("wheelwort_evaluations_total").increment(1);
+        (self.evaluate)(pathway, book, options)
+    }
+
+    /// Opens a data file that is there, to look at it and change nothing; on behalf of nobody until
+    /// [`App::on_behalf_of`] says whom.
+    ///
+    /// # Errors
+    /// When the file is not there, cannot be read, or belongs to another version of the program.
+    pub async fn open_to_read(file: &Path, clock: Clock, library: &'static Book) -> Result<App, StoreError> {
+        Ok(App {
+            store: Store::open_to_read(file).await?,
+            clock,
+            library,
+            organisation: OrganisationId::NOBODY,
+            who: Arc::new(Who::command()),
+            evaluate,
+            folder: folder_of(file),
+            evidence_store: Arc::default(),
+            memory: Arc::new(Memory::default()),
+        })
     }
 
     /// The same program on behalf of another organisation.

@@ -1,10 +1,16 @@
 //! The append-only record of who did what: a chain of lines an organisation, each with the hash of the one before, each
 //! written in the transaction of the change it records.
 
+pub mod api;
 pub mod line;
+pub mod pages;
+mod question;
 mod sql;
+pub mod verify;
 
-pub use line::{By, Deed, Line};
+pub use line::{By, Deed, FORMAT, Line};
+pub use question::{Entry, Export, Page, Person, Question, head, list, of_revision, people};
+pub use verify::verify;
 
 use crate::app::who::Who;
 use crate::core::documents::canonical;
@@ -27,14 +33,14 @@ pub async fn add(
     at: i64,
     deed: Deed,
 ) -> Result<(), StoreError> {
-    let (number, previous) = sql::last(c, organisation).await?;
+    let (number, previous) = sql::head(c, organisation).await?;
     let wrong = |column| StoreError::Inconsistent {
         table: "audit_line",
         column,
         row: number,
     };
     let line = Line {
-        format: line::FORMAT.to_owned(),
+        format: FORMAT.to_owned(),
         number: number + 1,
         previous,
         at: Timestamp::from_millisecond(at).map_err(|_| wrong("at"))?,

@@ -79,7 +79,8 @@ fn evaluated(file: &Path, rule_set: Option<&str>) -> Result<Assessment, Problems
     )
 }
 
-fn bytes_of(file: &Path) -> std::io::Result<Vec<u8>> {
+/// The bytes of a file, or of standard input for `-`.
+pub(super) fn bytes_of(file: &Path) -> std::io::Result<Vec<u8>> {
     let source: Box<dyn Read> = if file.as_os_str() == "-" {
         Box::new(std::io::stdin().lock())
     } else {

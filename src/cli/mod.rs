@@ -1,9 +1,13 @@
 //! The command line: what it takes, what it prints, and how it ends. Results go to standard output, everything else to
 //! standard error.
 
+mod backup;
+mod check;
 mod demo;
 mod evaluate;
+mod health;
 mod serve;
+mod verify;
 
 use crate::config::{ConfigError, Given};
 use crate::web::router;
@@ -23,6 +27,9 @@ Examples:
   wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
   wheelwort evaluate wheat.json             print the assessment of a pathway file
   wheelwort evaluate - < wheat.json         the same from standard input
+  wheelwort verify WW-2026-0031.json        check a statement file
+  wheelwort backup --data data today.zip    everything in that folder, as one file
+  wheelwort check --data data               is what is stored still what was stored?
 
 Exit codes: 0 done; 1 it could not be done (an address in use, a folder that cannot be written);
 2 what was given is wrong (a document, a setting, the command line).
@@ -40,6 +47,23 @@ Examples:
 Prints its address on standard output once it answers. Stops on SIGINT or SIGTERM: it takes no new
 requests, finishes those that run, and closes its data.
 Exit codes: 0 stopped when asked; 1 it could not start; 2 a setting is wrong.";
+
+const SETTINGS_EXAMPLES: &str = "\
+Examples:
+  wheelwort settings                        every setting: value, who gave it, what it may be, what it means
+  wheelwort settings --config wheelwort.toml --set connections=200
+                                            the same with a file and one more word
+
+Takes what serve takes and checks it as serve does; secrets are hidden.
+Exit codes: 0 the settings hold; 2 one is wrong.";
+
+const HEALTH_EXAMPLES: &str = "\
+Examples:
+  wheelwort health                          the service that the settings of this machine describe
+  wheelwort health --url http://127.0.0.1:8080/health/ready
+
+For containers and whatever else watches a service; needs no other program.
+Exit codes: 0 it can; 1 it cannot, or does not answer in 5 seconds; 2 the address or a setting is wrong.";
 
 const DEMO_EXAMPLES: &str = "\
 Examples:
@@ -61,6 +85,39 @@ output, and standard error holds one line for each error: where (a JSON pointer)
 with several files the name of the file comes first.
 Exit codes: 0 printed; 2 a file is wrong or cannot be read.";
 
+const VERIFY_EXAMPLES: &str = "\
+Examples:
+  wheelwort verify WW-2026-0031.json        work every figure out again, check hash and signature
+  wheelwort verify --key issuer.keys *.json against the keys that the issuer publishes, and as a series
+
+Needs nothing but the files. Prints a verdict a line; what else there is to know goes to standard error.
+Without --key a file vouches for its own key: compare its id with the one the issuer publishes.
+Exit codes: 0 verified; 1 something does not hold (the first thing is named); 2 a file cannot be read.";
+const CHECK_EXAMPLES: &str = "\
+Examples:
+  wheelwort check --data data               also while the service runs
+
+Looks at the file, every revision against its hash, the audit trail link by link, and every file of evidence
+against its hash, and changes nothing. Evidence that is kept elsewhere is read there: give the settings of the service.
+One line on standard output for each finding, then a closing line; it names where the audit trail ends: noted
+elsewhere, that shows later whether the trail was cut.
+Exit codes: 0 sound; 1 not sound, or not to be read.";
+
+const BACKUP_EXAMPLES: &str = "\
+Examples:
+  wheelwort backup --data data today.zip    also while the service runs
+
+Writes one ZIP file with the database as it stands at one moment, the files of evidence, and a manifest with the
+SHA-256 of each. A file that is there already is left alone.
+Exit codes: 0 written; 1 it could not be done, and nothing was written.";
+
+const RESTORE_EXAMPLES: &str = "\
+Examples:
+  wheelwort restore today.zip --data data   into a folder that is empty or not there yet
+
+Holds every file against the manifest first; the folder gets its name when all of it is on the disk.
+Exit codes: 0 restored; 1 it could not be done, and the folder is as it was.";
+
 /// Well-to-wheel greenhouse-gas accounting of fuel ethanol.
 #[derive(Debug, Parser)]
 #[command(name = "wheelwort", version, about, after_help = EXAMPLES, arg_required_else_help = true)]
@@ -80,6 +137,24 @@ enum Command {
     /// Print the assessment of pathway files.
     #[command(after_help = EVALUATE_EXAMPLES)]
     Evaluate(evaluate::Evaluate),
+    /// Print the settings that `serve` would run with, and who gave each.
+    #[command(after_help = SETTINGS_EXAMPLES)]
+    Settings(Serve),
+    /// Ask a running service whether it can do its work.
+    #[command(after_help = HEALTH_EXAMPLES)]
+    Health(health::Health),
+    /// Check statement files: figures, published data, hash, signature, series.
+    #[command(after_help = VERIFY_EXAMPLES)]
+    Verify(verify::Verify),
+    /// Look whether stored data are still what was stored.
+    #[command(after_help = CHECK_EXAMPLES)]
+    Check(Check),
+    /// Back up the data of a folder into one file.
+    #[command(after_help = BACKUP_EXAMPLES)]
+    Backup(Backup),
+    /// Bring a backup back into an empty folder.
+    #[command(after_help = RESTORE_EXAMPLES)]
+    Restore(Backup),
     /// Print the description of the API (OpenAPI 3.1).
     Openapi,
 }
@@ -91,6 +166,31 @@ struct Serve {
     data: Option<PathBuf>,
     #[command(flatten)]
     common: Common,
+}
+
+#[derive(Debug, Args)]
+struct Data {
+    /// Folder of the data.
+    #[arg(long, value_name = "DIR", env = "WHEELWORT_DATA", default_value = "data")]
+    data: PathBuf,
+}
+
+#[derive(Debug, Args)]
+struct Check {
+    #[command(flatten)]
+    data: Data,
+    /// File of settings, in TOML: says where evidence is kept, if elsewhere.
+    #[arg(long, value_name = "FILE")]
+    config: Option<PathBuf>,
+}
+
+#[derive(Debug, Args)]
+struct Backup {
+    #[command(flatten)]
+    data: Data,
+    /// The backup.
+    #[arg(value_name = "FILE")]
+    file: PathBuf,
 }
 
 #[derive(Debug, Args)]
@@ -107,10 +207,13 @@ struct Common {
     /// File of settings, in TOML.
     #[arg(long, value_name = "FILE")]
     config: Option<PathBuf>,
+    /// Any other setting by its name; may be given several times. `wheelwort settings` lists them.
+    #[arg(long, value_name = "NAME=VALUE", value_parser = name_and_value)]
+    set: Vec<(String, String)>,
 }
 
-/// The settings of a command, from all sources.
-fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Config, ConfigError> {
+/// What all sources say of the settings of a command.
+fn given(data: Option<PathBuf>, common: Common) -> Result<Given, ConfigError> {
     let file = common
         .config
         .as_deref()
@@ -120,12 +223,32 @@ fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Conf
     let variables = std::env::vars_os()
         .filter_map(|(name, value)| Some((name.into_string().ok()?, value.into_string().ok()?)));
     let environment = Given::from_environment(variables)?;
-    let line = Given {
-        data,
-        listen: common.listen,
-        ..Given::default()
-    };
-    file.overlaid(environment).overlaid(line).checked()
+    let data = data.map(|data| ("data".to_owned(), data.display().to_string()));
+    let listen = common.listen.map(|listen| ("listen".to_owned(), listen));
+    let line = Given::from_line(common.set.into_iter().chain(data).chain(listen))?;
+    Ok(file.overlaid(environment).overlaid(line))
+}
+
+/// The settings of a command, checked.
+fn settings(data: Option<PathBuf>, common: Common) -> Result<crate::config::Config, ConfigError> {
+    given(data, common)?.checked()
+}
+
+/// Prints what is in force and who said so, if it holds.
+fn print_settings(Serve { data, common }: Serve) -> u8 {
+    match given(data, common).and_then(|given| given.checked().map(|_| given.table())) {
+        Ok(table) => print(table.as_bytes()),
+        Err(error) => {
+            say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
+            WRONG
+        }
+    }
+}
+
+/// Reads `NAME=VALUE`.
+fn name_and_value(text: &str) -> Result<(String, String), String> {
+    let (name, value) = text.split_once('=').ok_or("give NAME=VALUE")?;
+    Ok((name.into(), value.into()))
 }
 
 /// Runs the command of the command line.
@@ -135,6 +258,25 @@ pub fn main() -> ExitCode {
         Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
+        Command::Settings(command) => print_settings(command),
+        Command::Health(command) => health::run(command),
+        Command::Verify(command) => verify::run(&command),
+        Command::Check(Check { data, config }) => {
+            let common = Common {
+                listen: None,
+                config,
+                set: Vec::new(),
+            };
+            match settings(Some(data.data), common) {
+                Ok(settings) => check::run(&settings),
+                Err(error) => {
+                    say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
+                    COULD_NOT
+                }
+            }
+        }
+        Command::Backup(Backup { data, file }) => backup::run(&data.data, &file),
+        Command::Restore(Backup { data, file }) => backup::restore(&file, &data.data),
         Command::Openapi => print(router::description().bytes()),
     };
     ExitCode::from(code)

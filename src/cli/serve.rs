@@ -4,7 +4,9 @@ use super::{print, say};
 use crate::app::App;
 use crate::clock::Clock;
 use crate::config::Config;
+use crate::store::{FILE, FolderLock};
 use crate::web::extract::Limits;
+use crate::web::metrics::Metrics;
 use crate::web::patience::Patient;
 use crate::web::{Shell, router};
 use crate::{library, telemetry};
@@ -14,9 +16,6 @@ use std::path::Path;
 use std::time::Duration;
 use tokio::net::TcpListener;
 
-/// Name of the data file in its folder.
-const FILE: &str = "wheelwort.db";
-
 /// Runs until it is asked to stop.
 pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     telemetry::begin(&config.log, config.log_format)?;
@@ -24,6 +23,8 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
+        // Held until the program ends, however it ends.
+        let _alone = FolderLock::take(&folder)?;
         let app = open(&folder)
             .await?
             .keeping_evidence_in(config.evidence_store.clone());
@@ -79,6 +80,9 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
              can read and change everything."
         ));
     }
+    if let Some(address) = config.metrics_listen {
+        serve_metrics(&app, address).await?;
+    }
     let shell = Shell {
         limits: Limits {
             body_bytes: config.body_bytes,
@@ -112,6 +116,24 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
             .context("the service stopped")?
             .context("the service failed")?,
     }
+    Ok(())
+}
+
+/// Serves `/metrics` on an address of its own, until the program ends.
+async fn serve_metrics(app: &App, address: std::net::SocketAddr) -> anyhow::Result<()> {
+    let metrics = Metrics::begin(app.clone()).context("measurements cannot begin")?;
+    let listener = TcpListener::bind(address)
+        .await
+        .with_context(|| format!("cannot listen on {address} for measurements"))?;
+    let address = listener.local_addr().context("the address is not known")?;
+    say(&format!("Measurements: http://{address}/metrics"));
+    tokio::spawn(metrics.clone().keep_up());
+    let patient = Patient::new(listener, 16, Duration::from_secs(15));
+    tokio::spawn(crate::web::serve(
+        patient,
+        metrics.router(),
+        std::future::pending(),
+    ));
     Ok(())
 }
 

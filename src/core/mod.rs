@@ -7,4 +7,5 @@ pub mod engine;
 pub mod evaluate;
 pub mod levers;
 pub mod models;
+pub mod statement;
 pub mod units;

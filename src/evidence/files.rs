@@ -2,14 +2,13 @@
 //! file that knows how they are kept.
 
 use super::incoming::{Arrived, hex};
-use crate::app::{App, Bucket, EvidenceStore};
+use crate::app::{App, EvidenceStore, S3};
 use object_store::aws::AmazonS3Builder;
 use object_store::buffered::BufWriter;
 use object_store::local::LocalFileSystem;
 use object_store::path::Path;
 use object_store::{ObjectStore, ObjectStoreExt, RetryConfig};
 use sha2::{Digest, Sha256};
-use std::collections::BTreeMap;
 use std::pin::Pin;
 use std::sync::{Arc, Mutex, Once, PoisonError};
 use std::task::{Context, Poll, ready};
@@ -62,12 +61,12 @@ impl Files {
     /// The files of a program.
     pub(super) fn of(app: &App) -> Result<Files, FilesError> {
         match &*app.evidence_store {
-            EvidenceStore::Folder => {
+            EvidenceStore::Local => {
                 let folder = LocalFileSystem::new_with_prefix(&app.folder)?;
                 // A row must never name a file that a power cut took.
                 Ok(Files(Arc::new(folder.with_fsync(true))))
             }
-            EvidenceStore::Bucket(bucket) => elsewhere(bucket).map(Files),
+            EvidenceStore::S3(store) => elsewhere(store).map(Files),
         }
     }
 
@@ -161,12 +160,15 @@ fn place(hash: &str) -> Path {
     Path::from_iter([FOLDER, first, digits])
 }
 
-/// A client of a bucket. One for each bucket as long as the program runs: it keeps its connections.
-fn elsewhere(bucket: &Bucket) -> Result<Arc<dyn ObjectStore>, FilesError> {
-    static CLIENTS: Mutex<BTreeMap<Bucket, Arc<dyn ObjectStore>>> = Mutex::new(BTreeMap::new());
+/// Clients by the store they speak to.
+type Clients = Vec<(S3, Arc<dyn ObjectStore>)>;
+
+/// A client of a store elsewhere. One for each as long as the program runs: it keeps its connections.
+fn elsewhere(store: &S3) -> Result<Arc<dyn ObjectStore>, FilesError> {
+    static CLIENTS: Mutex<Clients> = Mutex::new(Vec::new());
     static CIPHERS: Once = Once::new();
     let mut clients = CLIENTS.lock().unwrap_or_else(PoisonError::into_inner);
-    if let Some(client) = clients.get(bucket) {
+    if let Some((_, client)) = clients.iter().find(|(known, _)| known == store) {
         return Ok(client.clone());
     }
     CIPHERS.call_once(|| {
@@ -180,17 +182,17 @@ fn elsewhere(bucket: &Bucket) -> Result<Arc<dyn ObjectStore>, FilesError> {
     };
     let client: Arc<dyn ObjectStore> = Arc::new(
         AmazonS3Builder::new()
-            .with_endpoint(&bucket.endpoint)
-            .with_bucket_name(&bucket.bucket)
-            .with_region(&bucket.region)
-            .with_access_key_id(&bucket.key_id)
-            .with_secret_access_key(&bucket.secret)
+            .with_endpoint(&store.endpoint)
+            .with_bucket_name(&store.bucket)
+            .with_region(&store.region)
+            .with_access_key_id(&store.key_id)
+            .with_secret_access_key(store.secret.reveal())
             // The settings let `http` through for this machine alone.
-            .with_allow_http(bucket.endpoint.starts_with("http://"))
+            .with_allow_http(store.endpoint.starts_with("http://"))
             .with_retry(patience)
             .build()?,
     );
-    clients.insert(bucket.clone(), client.clone());
+    clients.push((store.clone(), client.clone()));
     Ok(client)
 }
 

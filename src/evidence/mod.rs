@@ -145,17 +145,36 @@ fn sees(who: &Who) -> Option<String> {
     }
 }
 
-/// Keeps a file and records it.
+/// What attaching made.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Attached {
+    /// The record.
+    pub record: Record,
+    /// False where the same bytes stood under the wished id already: then nothing was written.
+    pub added: bool,
+}
+
+/// Keeps a file and records it. The same bytes, sent once more under the same wished id, are the record that is there.
 ///
 /// # Errors
-/// `Problems` with what stands beside it, `Taken` when the wished id is; or when the files or the database fail. Nothing
-/// is recorded then.
-pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<Record, EvidenceError> {
+/// `Problems` with what stands beside it, `Taken` when other bytes have the wished id; or when the files or the database
+/// fail. Nothing is recorded then.
+pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<Attached, EvidenceError> {
     let naming = naming.checked(arrived.size)?;
     if let Some(id) = &naming.id {
         let mut reader = app.store.reader().await?;
-        if sql::is_there(&mut reader, app.organisation, id).await? {
-            return Err(EvidenceError::Taken(id.clone()));
+        match sql::find(&mut reader, app.organisation, id, None).await? {
+            // Kept once more: should the file be gone or altered, this puts it right.
+            Some(there) if there.hash == arrived.hash => {
+                drop(reader);
+                Files::of(app)?.keep(&mut arrived).await?;
+                return Ok(Attached {
+                    record: there.into_record()?,
+                    added: false,
+                });
+            }
+            Some(_) => return Err(EvidenceError::Taken(id.clone())),
+            None => {}
         }
     }
     let keeping = KEEPING.read().await;
@@ -165,7 +184,8 @@ pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<R
         arrived.hash.clone(),
         i64::try_from(arrived.size).unwrap_or(i64::MAX),
     );
-    app.store
+    let record = app
+        .store
         .write_then(
             move |c| {
                 Box::pin(async move {
@@ -205,7 +225,8 @@ pub async fn attach(app: &App, mut arrived: Arrived, naming: Naming) -> Result<R
             },
             move |_: &Record| drop(keeping),
         )
-        .await
+        .await?;
+    Ok(Attached { record, added: true })
 }
 
 /// The next id by count that is free: a wished one may stand in its way.

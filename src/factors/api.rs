@@ -10,7 +10,7 @@ use crate::core::domain::{Factor, GwpSet, Material};
 use crate::web::Refusal;
 use crate::web::actor::{Actor, CanRead};
 use crate::web::extract::{NoQuery, Path, Query};
-use crate::web::paging::{self, Page};
+use crate::web::paging::{self, Page, PageQuestion};
 use axum::Json;
 use axum::extract::OriginalUri;
 use axum::response::Response;
@@ -43,18 +43,6 @@ struct FactorQuestion {
     search: Option<String>,
     /// A group of the edition.
     group: Option<String>,
-    /// Entries on the page.
-    #[param(minimum = 1, maximum = 200, default = 50)]
-    limit: Option<u32>,
-    /// `next` of the page before.
-    after: Option<String>,
-}
-
-/// Which page of a list.
-#[derive(Debug, Deserialize, IntoParams)]
-#[serde(deny_unknown_fields)]
-#[into_params(parameter_in = Query)]
-struct PageQuestion {
     /// Entries on the page.
     #[param(minimum = 1, maximum = 200, default = 50)]
     limit: Option<u32>,

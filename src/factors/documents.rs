@@ -2,6 +2,7 @@
 
 use crate::core::domain::factor::{FuelSplit, ProcessHeat, TermValues, Use};
 use crate::core::domain::{Book, Citation, Counts, Edition, Factor, Gas, PathwayDefault};
+use jiff::civil::Date;
 use serde::Serialize;
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
@@ -15,6 +16,14 @@ pub struct EditionLine {
     pub title: String,
     /// The document it was taken from.
     pub citation: Citation,
+    /// First day it may be used; null where its document fixes none.
+    #[schema(value_type = Option<String>, format = Date)]
+    pub valid_from: Option<Date>,
+    /// Last day it may be used; null where it is open.
+    #[schema(value_type = Option<String>, format = Date)]
+    pub valid_to: Option<Date>,
+    /// Where the days stand.
+    pub validity_source: Option<Citation>,
     /// Rows that are factors.
     pub factors: usize,
     /// Rows that are published pathways with default values.
@@ -178,6 +187,9 @@ impl EditionLine {
             id: edition.id.clone(),
             title: edition.title.clone(),
             citation: edition.citation.clone(),
+            valid_from: edition.valid_from,
+            valid_to: edition.valid_to,
+            validity_source: edition.validity_source.clone(),
             factors: edition.factors.len(),
             pathways: edition.pathways.len(),
         }

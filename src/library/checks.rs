@@ -12,9 +12,6 @@ pub(super) fn run(reading: &mut Reading, book: &Book) {
     for set in book.rule_sets.values() {
         rule_set(reading, book, set);
     }
-    for id in book.limits.keys().filter(|id| !book.rule_sets.contains_key(*id)) {
-        reading.problem("rule_sets/limits.csv", format!("there is no rule set {id}"));
-    }
     defaults(reading, book);
     haul_fuels(reading, book);
     aliases(reading, book);

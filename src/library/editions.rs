@@ -2,6 +2,7 @@
 
 use super::reading::Reading;
 use crate::core::domain::Edition;
+use jiff::civil::Date;
 use serde::Deserialize;
 use std::collections::BTreeMap;
 
@@ -14,6 +15,11 @@ struct About {
     source: String,
     status: String,
     note: Option<String>,
+    /// First and last day it may be used, with where they stand.
+    valid_from: Option<Date>,
+    valid_to: Option<Date>,
+    validity_source: Option<String>,
+    validity_status: Option<String>,
 }
 
 /// Every edition, filled.
@@ -57,11 +63,21 @@ fn empty(reading: &mut Reading, about: &str) -> Option<Edition> {
     };
     let place = format!("{}/edition.toml", about.id);
     let citation = reading.cite(&place, &about.id, &about.source, &about.status);
+    let validity_source = about.validity_source.map(|source| {
+        let status = about.validity_status.as_deref().unwrap_or_default();
+        reading.cite(&place, &format!("{} validity", about.id), &source, status)
+    });
+    if validity_source.is_none() && (about.valid_from.is_some() || about.valid_to.is_some()) {
+        reading.problem(&place, "days of validity without a source");
+    }
     Some(Edition {
         id: about.id,
         title: about.title,
         citation,
         note: about.note,
+        valid_from: about.valid_from,
+        valid_to: about.valid_to,
+        validity_source,
         factors: BTreeMap::new(),
         aliases: BTreeMap::new(),
         fuel_splits: BTreeMap::new(),

@@ -1,6 +1,7 @@
 //! Soil and vegetation carbon for land-use change, and the limits that rule sets put on deductions.
 
 use super::reading::Reading;
+use crate::core::domain::RuleSet;
 use crate::core::domain::book::Constants;
 use std::collections::BTreeMap;
 
@@ -17,17 +18,17 @@ pub(super) fn carbon(reading: &mut Reading) -> Constants {
     figures
 }
 
-/// Limits and bonuses by rule set and symbol. What a rule set does not list, it does not have.
-pub(super) fn limits(reading: &mut Reading) -> BTreeMap<String, Constants> {
+/// Puts limits and bonuses into their rule sets. What is not listed for one, it does not have.
+pub(super) fn limits(reading: &mut Reading, sets: &mut BTreeMap<String, RuleSet>) {
     let text = include_str!("rule_sets/limits.csv");
     let columns = ["rule_set", "symbol", "value", "unit", "source", "status", "note"];
-    let mut sets: BTreeMap<String, Constants> = BTreeMap::new();
     for row in reading.lines("rule_sets/limits.csv", text, &columns) {
         let (set, symbol) = (row.text("rule_set").to_owned(), row.text("symbol").to_owned());
         let figure = reading.cited(&row, "value", &format!("{set} limit {symbol}"));
-        if sets.entry(set).or_default().insert(symbol, figure).is_some() {
-            reading.problem(&row.place(), "the limit is given twice");
+        match sets.get_mut(&set).map(|set| set.limits.insert(symbol, figure)) {
+            None => reading.problem(&row.place(), "there is no such rule set"),
+            Some(Some(_)) => reading.problem(&row.place(), "the limit is given twice"),
+            Some(None) => {}
         }
     }
-    sets
 }

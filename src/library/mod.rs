@@ -14,10 +14,12 @@ mod materials;
 mod reading;
 mod rules;
 mod soils;
+mod statements;
 #[cfg(test)]
 mod tests;
 
 use crate::core::domain::Book;
+use crate::core::statement::items::Items;
 pub use elsewhere::Elsewhere;
 use reading::Reading;
 use std::sync::LazyLock;
@@ -26,6 +28,7 @@ use std::sync::LazyLock;
 struct Loaded {
     book: Book,
     elsewhere: Vec<Elsewhere>,
+    statement_items: Items,
     memory: Vec<String>,
 }
 
@@ -48,6 +51,11 @@ pub fn limits_elsewhere() -> &'static [Elsewhere] {
     &LOADED.elsewhere
 }
 
+/// The items of a statement and the laws that ask for them.
+pub fn statement_items() -> &'static Items {
+    &LOADED.statement_items
+}
+
 /// Every figure that nobody has read at its source, with that source, in alphabetical order. Pages say so too.
 pub fn figures_from_memory() -> Vec<String> {
     LOADED.memory.clone()
@@ -66,16 +74,18 @@ fn read() -> Result<Loaded, Vec<String>> {
     let mut reading = Reading::default();
     let editions = editions::read(&mut reading);
     let materials = materials::read(&mut reading, editions.get("eu-2022-996"));
+    let mut rule_sets = rules::rule_sets(&mut reading);
+    land::limits(&mut reading, &mut rule_sets);
     let book = Book {
         materials,
-        rule_sets: rules::rule_sets(&mut reading),
+        rule_sets,
         gwp_sets: rules::gwp_sets(&mut reading),
         soils: soils::read(&mut reading),
         land: land::carbon(&mut reading),
-        limits: land::limits(&mut reading),
         editions,
     };
     let elsewhere = elsewhere::read(&mut reading);
+    let statement_items = statements::read(&mut reading);
     checks::run(&mut reading, &book);
     let Reading { problems, mut memory } = reading;
     if !problems.is_empty() {
@@ -86,6 +96,7 @@ fn read() -> Result<Loaded, Vec<String>> {
     Ok(Loaded {
         book,
         elsewhere,
+        statement_items,
         memory,
     })
 }

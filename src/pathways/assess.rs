@@ -95,7 +95,7 @@ pub(super) fn make(
     rule_set: Option<&str>,
 ) -> Result<Made, PathwayError> {
     let options = basis.options(rule_set);
-    let assessment = (app.evaluate)(document, &basis.book, options)?;
+    let assessment = app.evaluates(document, &basis.book, options)?;
     let defect = |error| PathwayError::defect("wrote an assessment", error);
     let bytes = canonical::bytes(&assessment).map_err(defect)?;
     let assessment_hash = canonical::hash(&bytes);
@@ -390,7 +390,7 @@ pub async fn reassess_all(app: &App, keep: bool) -> Result<Reassessed, PathwayEr
                         without_workings: true,
                         ..basis.options(None)
                     };
-                    let assessment = (app.evaluate)(&document, &basis.book, options);
+                    let assessment = app.evaluates(&document, &basis.book, options);
                     assessment
                         .map(|made| (made.net.g_co2e_per_mj, None))
                         .map_err(PathwayError::Problems)

@@ -37,7 +37,7 @@ pub async fn defaults(app: &App, id: Uuid, rule_set: Option<&str>) -> Result<Def
     compute(work, move || {
         let mut options = basis.options(rule_set.as_deref());
         options.without_workings = true;
-        let assessment = (app.evaluate)(&pathway, &basis.book, options)?;
+        let assessment = app.evaluates(&pathway, &basis.book, options)?;
         let table = table(&pathway, &assessment, &basis.book)?;
         Ok(Defaults {
             revision: found.number,

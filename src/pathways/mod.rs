@@ -14,6 +14,7 @@ mod read;
 mod reasons;
 pub mod rows;
 mod save;
+mod sound;
 mod sql;
 
 pub use assess::{AssessmentBytes, Reassessed, assessment, face, reassess_all};
@@ -27,6 +28,7 @@ pub use read::{
 };
 pub use reasons::{MOST_REASONS, Reasons, ReasonsDocument, put_reasons, reasons};
 pub use save::{archive, create, delete_stage, put_stage, replace, restore};
+pub use sound::{Damage, damaged};
 
 use crate::core::documents::assessment::ThresholdResult;
 use crate::store::StoreError;

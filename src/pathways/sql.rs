@@ -54,6 +54,10 @@ const CURRENT_AFTER: &str = "\
     SELECT p.id, p.public_id, r.id AS revision_id, r.document FROM pathway p \
     JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision AND r.organisation_id = p.organisation_id \
     WHERE p.organisation_id = $1 AND p.id > $2 ORDER BY p.id LIMIT $3";
+const EVERY_REVISION: &str = "\
+    SELECT p.id, p.public_id, r.number, r.document, r.hash, r.rule_set, r.example \
+    FROM pathway p JOIN revision r ON r.pathway_id = p.id AND r.organisation_id = p.organisation_id \
+    WHERE p.organisation_id = $1 AND p.id >= $2 AND (p.id > $2 OR r.number > $3) ORDER BY p.id, r.number LIMIT $4";
 
 const ASSESSMENT: &str = "\
     SELECT hash, document FROM assessment \
@@ -87,6 +91,7 @@ pub(crate) const STATEMENTS: &[&str] = &[
     REMOVE_EXAMPLES,
     EXAMPLE_BY_HASH,
     CURRENT_AFTER,
+    EVERY_REVISION,
     ASSESSMENT,
     KEEP_ASSESSMENT,
     REASONS,
@@ -401,4 +406,32 @@ pub(super) async fn current_after(
 /// Small letters: how names are searched and ordered.
 pub(super) fn fold(name: &str) -> String {
     name.to_lowercase()
+}
+
+/// A revision as it is kept.
+#[derive(Debug, sqlx::FromRow)]
+pub(super) struct KeptRevision {
+    pub(super) id: i64,
+    pub(super) public_id: String,
+    pub(super) number: i64,
+    pub(super) document: String,
+    pub(super) hash: String,
+    pub(super) rule_set: String,
+    pub(super) example: bool,
+}
+
+/// Revisions of every pathway in order, after a number of the pathway with this inner id.
+pub(super) async fn every_revision(
+    c: &mut Connection,
+    organisation: OrganisationId,
+    (pathway, number): (i64, i64),
+    limit: i64,
+) -> Result<Vec<KeptRevision>, StoreError> {
+    Ok(sqlx::query_as(EVERY_REVISION)
+        .bind(organisation.0)
+        .bind(pathway)
+        .bind(number)
+        .bind(limit)
+        .fetch_all(c)
+        .await?)
 }

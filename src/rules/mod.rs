@@ -4,6 +4,7 @@
 pub mod api;
 mod basis;
 mod own;
+pub mod pages;
 mod settings;
 mod sql;
 

@@ -35,6 +35,11 @@ pub enum StoreError {
     /// The file was written by a newer program.
     #[error("The data was written by a newer version of this program. Use that version.")]
     Newer(#[source] Arc<MigrateError>),
+    /// The file was written by an older program and has not been brought up to date.
+    #[error(
+        "The data was written by an older version of this program. Start the service with it once: that brings it up to date."
+    )]
+    Older,
     /// The tables could not be brought up to date.
     #[error(
         "The data could not be brought up to this version of the program. Restore the last backup or use the old version."

@@ -1,14 +1,19 @@
 //! The database itself: two pools, one writer task, migrations and errors. Knows nothing of pathways.
 
+pub mod backup;
 mod error;
+mod idempotency;
+mod lock;
 pub(crate) mod memory;
 mod organisation;
 mod pool;
+mod sound;
 mod writer;
 
 pub use error::StoreError;
+pub use idempotency::{Claim, Claimed, KEPT_HOURS, KeptAnswer, Request};
+pub use lock::{FolderLock, LockError};
 pub use organisation::OrganisationId;
-pub(crate) use organisation::STATEMENTS;
 pub use writer::MOST_TOGETHER;
 
 use sqlx::SqlitePool;
@@ -26,8 +31,19 @@ pub type Connection = sqlx::SqliteConnection;
 /// A reading connection out of the pool; it goes back when dropped.
 pub type Reader = sqlx::pool::PoolConnection<sqlx::Sqlite>;
 
+/// A reading connection on which the data stand still; it goes back when dropped.
+pub type Moment = sqlx::Transaction<'static, sqlx::Sqlite>;
+
 /// The future of a job, bound to its connection.
 pub type Work<'c, T> = Pin<Box<dyn Future<Output = T> + Send + 'c>>;
+
+/// Name of the data file in its folder.
+pub const FILE: &str = "wheelwort.db";
+
+/// Every SQL text of the store.
+pub(crate) fn statements() -> Vec<&'static str> {
+    [organisation::STATEMENTS, idempotency::STATEMENTS].concat()
+}
 
 /// How a store is opened.
 #[derive(Clone, Copy, Debug)]
@@ -50,6 +66,15 @@ impl Default for Settings {
     }
 }
 
+/// How busy a store is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Load {
+    /// Writes in the queue of the one that writes.
+    pub writes_waiting: usize,
+    /// Reading connections that nobody uses.
+    pub readers_idle: usize,
+}
+
 /// An open database. Cheap to clone; clones share it.
 #[derive(Clone)]
 pub struct Store(Arc<Inner>);
@@ -60,6 +85,7 @@ struct Inner {
     jobs: mpsc::Sender<Box<dyn writer::Job>>,
     stop: Arc<Notify>,
     task: Mutex<Option<JoinHandle<()>>>,
+    claims: idempotency::InFlight,
 }
 
 impl Store {
@@ -93,6 +119,25 @@ impl Store {
             jobs,
             stop,
             task: Mutex::new(Some(task)),
+            claims: idempotency::InFlight::default(),
+        })))
+    }
+
+    /// Opens a file that is there, to read it and nothing else: every write is answered `Closed`. For looking at data that
+    /// a running program may hold.
+    ///
+    /// # Errors
+    /// When the file is not there, cannot be opened, or belongs to another version of the program.
+    pub async fn open_to_read(file: &Path) -> Result<Store, StoreError> {
+        let readers = pool::onlookers(file, &Settings::default()).await?;
+        let (jobs, _) = mpsc::channel(1);
+        Ok(Store(Arc::new(Inner {
+            writer: readers.clone(),
+            readers,
+            jobs,
+            stop: Arc::new(Notify::new()),
+            task: Mutex::new(None),
+            claims: idempotency::InFlight::default(),
         })))
     }
 
@@ -101,7 +146,27 @@ impl Store {
     /// # Errors
     /// `Busy` when none comes free in five seconds, `Closed` after [`Store::close`].
     pub async fn reader(&self) -> Result<Reader, StoreError> {
+        if let Some(reader) = self.0.readers.try_acquire() {
+            return Ok(reader);
+        }
+        metrics::counter!("wheelwort_reader_waits_total").increment(1);
         Ok(self.0.readers.acquire().await?)
+    }
+
+    /// How busy it is.
+    pub fn load(&self) -> Load {
+        Load {
+            writes_waiting: self.0.jobs.max_capacity() - self.0.jobs.capacity(),
+            readers_idle: self.0.readers.num_idle(),
+        }
+    }
+
+    /// A connection to read with that sees the data as they are now, whatever is written meanwhile.
+    ///
+    /// # Errors
+    /// As [`Store::reader`].
+    pub async fn moment(&self) -> Result<Moment, StoreError> {
+        Ok(self.0.readers.begin().await?)
     }
 
     /// Runs a job in a transaction and answers after it is durable. The job runs to its end even if the caller goes
@@ -130,9 +195,12 @@ impl Store {
         F: for<'c> FnOnce(&'c mut Connection) -> Work<'c, Result<T, E>> + Send + 'static,
         A: FnOnce(&T) + Send + 'static,
     {
-        let (job, answer) = writer::Waiting::new(job, after);
+        let (job, answer) = writer::Waiting::new(job, after, idempotency::claimed_here());
         self.0.jobs.try_send(Box::new(job)).map_err(|error| match error {
-            mpsc::error::TrySendError::Full(_) => StoreError::Busy,
+            mpsc::error::TrySendError::Full(_) => {
+                metrics::counter!("wheelwort_writes_refused_total").increment(1);
+                StoreError::Busy
+            }
             mpsc::error::TrySendError::Closed(_) => StoreError::Closed,
         })?;
         answer.await.unwrap_or_else(|_| Err(StoreError::Stopped.into()))

@@ -7,11 +7,17 @@ use uuid::Uuid;
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct OrganisationId(pub(crate) i64);
 
+impl OrganisationId {
+    /// No organisation: it has no records.
+    pub(crate) const NOBODY: OrganisationId = OrganisationId(0);
+}
+
 const FIRST: &str = "SELECT id FROM organisation ORDER BY id LIMIT 1";
+const ALL: &str = "SELECT id FROM organisation ORDER BY id";
 const ADD: &str = "INSERT INTO organisation (public_id, name, created_at) VALUES ($1, $2, $3) RETURNING id";
 
 /// The statements of this file.
-pub(crate) const STATEMENTS: &[&str] = &[FIRST, ADD];
+pub(crate) const STATEMENTS: &[&str] = &[FIRST, ALL, ADD];
 
 impl Store {
     /// The first organisation, made with the given id and name where there is none yet.
@@ -33,6 +39,16 @@ impl Store {
             })
         })
         .await
+    }
+
+    /// Every organisation.
+    ///
+    /// # Errors
+    /// When the database fails.
+    pub async fn organisations(&self) -> Result<Vec<OrganisationId>, StoreError> {
+        let mut reader = self.reader().await?;
+        let ids: Vec<i64> = sqlx::query_scalar(ALL).fetch_all(&mut *reader).await?;
+        Ok(ids.into_iter().map(OrganisationId).collect())
     }
 
     /// Another organisation.

@@ -2,6 +2,7 @@
 
 use super::{Settings, StoreError};
 use sqlx::SqlitePool;
+use sqlx::migrate::MigrateError;
 use sqlx::sqlite::{SqliteConnectOptions, SqliteJournalMode, SqlitePoolOptions, SqliteSynchronous};
 use std::path::Path;
 use std::time::Duration;
@@ -57,4 +58,52 @@ pub(super) async fn readers(file: &Path, settings: &Settings) -> Result<SqlitePo
         .read_only(true)
         .pragma("query_only", "ON");
     Ok(pool(settings.readers).connect_with(options).await?)
+}
+
+/// Opens connections that look at a file without changing it, and holds its tables against this version of the program.
+pub(super) async fn onlookers(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
+    let options = SqliteConnectOptions::new()
+        .filename(file)
+        .create_if_missing(false)
+        .busy_timeout(settings.busy_timeout)
+        .pragma("query_only", "ON")
+        .pragma("trusted_schema", "OFF");
+    let pool = pool(2).connect_with(options).await?;
+    if let Err(error) = current(&pool).await {
+        pool.close().await;
+        return Err(error);
+    }
+    Ok(pool)
+}
+
+/// `Newer` or `Older` when the tables are not those of this version.
+async fn current(pool: &SqlitePool) -> Result<(), StoreError> {
+    const APPLIED: &str = "SELECT version, checksum FROM _sqlx_migrations WHERE success ORDER BY version";
+    let applied: Vec<(i64, Vec<u8>)> = sqlx::query_as(APPLIED).fetch_all(pool).await?;
+    let known: Vec<(i64, &[u8])> = MIGRATIONS.iter().map(|m| (m.version, &*m.checksum)).collect();
+    for (version, checksum) in &applied {
+        match known.iter().find(|(known, _)| known == version) {
+            None => return Err(MigrateError::VersionMissing(*version).into()),
+            Some((_, expected)) if expected != checksum => {
+                return Err(MigrateError::VersionMismatch(*version).into());
+            }
+            Some(_) => {}
+        }
+    }
+    match known
+        .iter()
+        .find(|(version, _)| !applied.iter().any(|(done, _)| done == version))
+    {
+        Some(_) => Err(StoreError::Older),
+        None => Ok(()),
+    }
+}
+
+/// A connection for a copy of the whole file: not to write with, though it may make another file.
+pub(super) fn for_copy(file: &Path) -> SqliteConnectOptions {
+    SqliteConnectOptions::new()
+        .filename(file)
+        .create_if_missing(false)
+        .busy_timeout(Duration::from_secs(5))
+        .pragma("trusted_schema", "OFF")
 }

@@ -2,6 +2,7 @@
 //! transaction, commits, and only then answers. A write therefore outlives the request that asked for it.
 
 use super::error::primary_code;
+use super::idempotency::{Mark, mark_made};
 use super::{Connection, StoreError, Work};
 use sqlx::SqlitePool;
 use std::panic::{AssertUnwindSafe, catch_unwind};
@@ -25,18 +26,20 @@ pub(super) struct Waiting<T, E, F, A> {
     work: Option<F>,
     outcome: Option<Result<T, E>>,
     after: A,
+    claim: Option<Mark>,
     answer: oneshot::Sender<Result<T, E>>,
 }
 
 impl<T, E, F, A> Waiting<T, E, F, A> {
-    /// A job and where its answer will come.
-    pub(super) fn new(work: F, after: A) -> (Self, oneshot::Receiver<Result<T, E>>) {
+    /// A job, for the request that holds this claim if there is one, and where its answer will come.
+    pub(super) fn new(work: F, after: A, claim: Option<Mark>) -> (Self, oneshot::Receiver<Result<T, E>>) {
         let (answer, heard) = oneshot::channel();
         (
             Waiting {
                 work: Some(work),
                 outcome: None,
                 after,
+                claim,
                 answer,
             },
             heard,
@@ -54,7 +57,14 @@ where
     fn run<'c>(&'c mut self, connection: &'c mut Connection) -> Work<'c, bool> {
         Box::pin(async move {
             if let Some(work) = self.work.take() {
-                self.outcome = Some(work(connection).await);
+                let mut outcome = work(connection).await;
+                // In the transaction of the change: a claim that is marked stands for a change that was made.
+                if let (Ok(_), Some(claim)) = (&outcome, self.claim)
+                    && let Err(error) = mark_made(connection, claim).await
+                {
+                    outcome = Err(error.into());
+                }
+                self.outcome = Some(outcome);
             }
             matches!(self.outcome, Some(Ok(_)))
         })

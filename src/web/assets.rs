@@ -28,6 +28,7 @@ pub const FILES: &[(&str, &[u8])] = &[
         "mark-dark.svg",
         include_bytes!("../../templates/assets/mark-dark.svg"),
     ),
+    ("live.js", include_bytes!("../../templates/assets/live.js")),
     ("style.css", include_bytes!("../../templates/assets/style.css")),
 ];
 

@@ -57,6 +57,13 @@ impl Table {
     pub fn csv(&self) -> String {
         let mut out = String::new();
         line(&mut out, self.head.iter().map(|name| quoted(&harmless(name))));
+        out.push_str(&self.csv_rows());
+        out
+    }
+
+    /// Its rows without the head, for a table that is sent in pieces.
+    pub fn csv_rows(&self) -> String {
+        let mut out = String::new();
         for row in &self.rows {
             line(
                 &mut out,

@@ -170,6 +170,40 @@ impl<S: Send + Sync> FromRequest<S> for JsonBody {
     }
 }
 
+/// The body of a document that may come as JSON or as TOML, by its content type.
+#[derive(Clone, Debug)]
+pub enum JsonOrToml {
+    /// Read strictly, as [`JsonBody`].
+    Json(Value),
+    /// The text; whoever knows the document reads it.
+    Toml(String),
+}
+
+impl<S: Send + Sync> FromRequest<S> for JsonOrToml {
+    type Rejection = Refusal;
+
+    async fn from_request(request: Request, state: &S) -> Result<JsonOrToml, Refusal> {
+        if !is_of_type(request.headers(), |kind| kind == "application/toml") {
+            let JsonBody(value) =
+                JsonBody::from_request(request, state)
+                    .await
+                    .map_err(|refusal| match refusal.status() {
+                        StatusCode::UNSUPPORTED_MEDIA_TYPE => {
+                            refusal.detail("Send the body as application/json or application/toml.")
+                        }
+                        _ => refusal,
+                    })?;
+            return Ok(JsonOrToml::Json(value));
+        }
+        let limits = Limits::of(request.extensions());
+        let bytes = whole_body(request, &limits).await?;
+        match String::from_utf8(bytes.to_vec()) {
+            Ok(text) => Ok(JsonOrToml::Toml(text)),
+            Err(_) => Err(Refusal::bad_request("The body holds bytes that are not UTF-8.")),
+        }
+    }
+}
+
 /// True if the content type, without its parameters, is what `wanted` asks for.
 pub fn is_of_type(headers: &HeaderMap, wanted: impl Fn(&str) -> bool) -> bool {
     headers

@@ -110,6 +110,15 @@ pub fn capital(words: &str) -> String {
         .map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
+/// The first letter made small, for a name inside a sentence; formulas stay.
+pub fn small(words: &str) -> String {
+    let mut letters = words.chars();
+    match (letters.next(), letters.clone().next()) {
+        (Some(first), Some(second)) if second.is_lowercase() => first.to_lowercase().chain(letters).collect(),
+        _ => words.to_owned(),
+    }
+}
+
 /// Formulas with their subscripts, terms as e with its index, everything else escaped.
 #[askama::filter_fn]
 pub fn chem(words: impl std::fmt::Display, _: &dyn Values) -> Result<Safe<String>> {

@@ -13,6 +13,8 @@ pub enum Section {
     Factors,
     /// Files that back figures.
     Evidence,
+    /// Audit trail.
+    AuditTrail,
     /// The API in words.
     Api,
     /// None of them: a page that says what went wrong.
@@ -87,7 +89,7 @@ impl Frame {
     }
 
     /// The words of the navigation: address, word, whether this page is there.
-    pub fn words(&self) -> [(&'static str, &'static str, bool); 6] {
+    pub fn words(&self) -> [(&'static str, &'static str, bool); 7] {
         [
             ("/", "Pathways", self.section == Section::Pathways),
             ("/compare", "Compare", self.section == Section::Compare),
@@ -98,6 +100,7 @@ impl Frame {
             ),
             ("/factors", "Factors", self.section == Section::Factors),
             ("/evidence", "Evidence", self.section == Section::Evidence),
+            ("/audit-trail", "Audit trail", self.section == Section::AuditTrail),
             ("/api", "API", self.section == Section::Api),
         ]
     }

@@ -2,14 +2,16 @@
 //! refusals, panics, requests from other sites, limits; and, around the work itself, overload and time.
 
 use super::extract::{Limits, is_of_type};
+use super::metrics;
 use super::problem::{Refusal, RefusalPage, shape};
 use axum::Router;
 use axum::extract::{DefaultBodyLimit, Extension, Request, State};
 use axum::http::header::{
-    CACHE_CONTROL, CONTENT_SECURITY_POLICY, HeaderName, REFERRER_POLICY, X_CONTENT_TYPE_OPTIONS,
+    AUTHORIZATION, CACHE_CONTROL, CONTENT_SECURITY_POLICY, COOKIE, HeaderName, REFERRER_POLICY, SET_COOKIE,
+    X_CONTENT_TYPE_OPTIONS,
 };
 use axum::http::{HeaderValue, StatusCode};
-use axum::middleware::{Next, from_fn_with_state, map_request, map_response};
+use axum::middleware::{Next, from_fn, from_fn_with_state, map_request, map_response};
 use axum::response::{IntoResponse, Response};
 use std::any::Any;
 use std::sync::Arc;
@@ -21,6 +23,7 @@ use tower_http::compression::CompressionLayer;
 use tower_http::compression::predicate::{DefaultPredicate, NotForContentType, Predicate};
 use tower_http::csrf::CsrfLayer;
 use tower_http::request_id::{MakeRequestUuid, PropagateRequestIdLayer, RequestId, SetRequestIdLayer};
+use tower_http::sensitive_headers::{SetSensitiveRequestHeadersLayer, SetSensitiveResponseHeadersLayer};
 use tower_http::trace::{DefaultOnResponse, TraceLayer};
 use tracing::{Level, Span};
 
@@ -78,6 +81,9 @@ pub fn around_all<S: Clone + Send + Sync + 'static>(
         .and(NotForContentType::const_new("application/x-ndjson"));
     router.layer(
         ServiceBuilder::new()
+            // Whatever logs a header shows these as "Sensitive".
+            .layer(SetSensitiveRequestHeadersLayer::new([AUTHORIZATION, COOKIE]))
+            .layer(SetSensitiveResponseHeadersLayer::new([SET_COOKIE]))
             .layer(map_request(own_id_only))
             .layer(SetRequestIdLayer::x_request_id(MakeRequestUuid))
             .layer(PropagateRequestIdLayer::x_request_id())
@@ -86,6 +92,7 @@ pub fn around_all<S: Clone + Send + Sync + 'static>(
                     .make_span_with(span)
                     .on_response(DefaultOnResponse::new().level(Level::INFO)),
             )
+            .layer(from_fn(metrics::measure))
             .layer(CompressionLayer::new().compress_when(compressible))
             .layer(map_response(secured))
             .layer(from_fn_with_state(page, shape))

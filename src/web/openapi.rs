@@ -3,13 +3,14 @@
 
 use super::conditional::IfNoneMatch;
 use super::extract::NoQuery;
+use super::idempotency;
 use super::problem::{PROBLEM_JSON, ProblemDocument};
 use crate::core::documents::{Problem, canonical};
 use axum::extract::Extension;
 use axum::response::Response;
 use std::collections::BTreeMap;
 use std::sync::Arc;
-use utoipa::openapi::path::{Operation, PathItem};
+use utoipa::openapi::path::{Operation, ParameterBuilder, ParameterIn, PathItem};
 use utoipa::openapi::{
     ContentBuilder, HeaderBuilder, InfoBuilder, Object, OpenApi, OpenApiBuilder, Ref, RefOr, ResponseBuilder,
     Schema, Type,
@@ -85,6 +86,9 @@ fn completed(mut api: OpenApi) -> OpenApi {
         .schemas
         .insert(Problem::name().into_owned(), Problem::schema());
     for (path, item) in &mut api.paths.paths {
+        if let Some(post) = item.post.as_mut().filter(|_| idempotency::honoured(path)) {
+            takes_a_key(post);
+        }
         for (writes, operation) in operations(item) {
             let has_body = operation.request_body.is_some();
             let named = path.contains('{');
@@ -138,6 +142,42 @@ fn completed(mut api: OpenApi) -> OpenApi {
         }
     }
     api
+}
+
+/// What a POST that honours `Idempotency-Key` takes, and what it may answer because of it.
+fn takes_a_key(post: &mut Operation) {
+    let text = utoipa::openapi::ObjectBuilder::new()
+        .schema_type(Type::String)
+        .min_length(Some(1))
+        .max_length(Some(255))
+        .build();
+    let key = ParameterBuilder::new()
+        .name("Idempotency-Key")
+        .parameter_in(ParameterIn::Header)
+        .required(utoipa::openapi::Required::False)
+        .description(Some(
+            "A key of your own for this request, such as a UUID: 1 to 255 printable ASCII characters. The same request with \
+             the same key is done once; for 24 hours a repeat is given the first answer, with `Idempotency-Replayed: true`. \
+             Answers of 500 and above are not kept.",
+        ))
+        .schema(Some(Schema::Object(text)))
+        .build();
+    post.parameters.get_or_insert_default().push(RefOr::T(key));
+    for (status, words) in [
+        (
+            409,
+            "The same request is being worked on, or was done and its answer was lost.",
+        ),
+        (
+            422,
+            "The document does not hold, or the Idempotency-Key was used for another request.",
+        ),
+    ] {
+        post.responses
+            .responses
+            .entry(status.to_string())
+            .or_insert_with(|| problem(status, words));
+    }
 }
 
 fn operations(item: &mut PathItem) -> impl Iterator<Item = (bool, &mut Operation)> {

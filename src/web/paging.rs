@@ -1,17 +1,34 @@
 //! Lists a page at a time: `?limit=&after=`, and the address of the next page in `Link` (RFC 8288).
 
+#![allow(
+    unused_qualifications,
+    reason = "utoipa's macro writes the types of queries in full"
+)]
+
 use super::problem::Refusal;
 use axum::Json;
 use axum::http::header::LINK;
 use axum::http::{HeaderValue, Uri};
 use axum::response::{IntoResponse, Response};
-use serde::Serialize;
-use utoipa::ToSchema;
+use serde::{Deserialize, Serialize};
+use utoipa::{IntoParams, ToSchema};
 
 /// Entries of a page where no limit is asked for.
 pub const USUAL: u32 = 50;
 /// Entries of a page at most.
 pub const MOST: u32 = 200;
+
+/// Which page of a list.
+#[derive(Debug, Deserialize, IntoParams)]
+#[serde(deny_unknown_fields)]
+#[into_params(parameter_in = Query)]
+pub struct PageQuestion {
+    /// Entries on the page.
+    #[param(minimum = 1, maximum = 200, default = 50)]
+    pub limit: Option<u32>,
+    /// `next` of the page before.
+    pub after: Option<String>,
+}
 
 /// One page of a list.
 #[derive(Clone, Debug, Serialize, ToSchema)]

@@ -115,6 +115,16 @@ impl Refusal {
         .detail(detail)
     }
 
+    /// The bytes are not TOML at all: 400.
+    pub fn not_toml(problems: Problems) -> Refusal {
+        let refusal = Refusal::not_json(problems);
+        Refusal {
+            kind: "not-toml",
+            title: "Not TOML",
+            ..refusal
+        }
+    }
+
     /// The document is JSON and does not hold: 422, with everything that is wrong.
     pub fn invalid(problems: Problems) -> Refusal {
         let detail = match problems.len() {

@@ -5,10 +5,10 @@ use super::actor::{Actor, CanWrite};
 use super::extract::Limits;
 use super::openapi::{self, Document};
 use super::problem::{Refusal, RefusalPage};
-use super::{api_page, error_page};
+use super::{api_page, error_page, idempotency};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{calculators, demo, evidence, factors, pathways, rules};
+use crate::{audit_trail, calculators, demo, evidence, factors, pathways, rules};
 use axum::Router;
 use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
@@ -44,7 +44,10 @@ impl Default for Shell {
 /// The whole service.
 pub fn router(app: App, shell: Shell) -> Router {
     let (api, description) = api().split_for_parts();
+    // Inside of the layer that knows who asks: a key belongs to a person.
+    let once = axum::middleware::from_fn_with_state(app.clone(), idempotency::layer);
     let work = api
+        .layer(once)
         .merge(pages_router())
         .merge(assets::routes())
         .fallback(nowhere)
@@ -67,7 +70,8 @@ fn api() -> OpenApiRouter<App> {
         .merge(evidence::api::routes())
         .merge(factors::api::routes())
         .merge(rules::api::routes())
-        .merge(calculators::api::routes());
+        .merge(calculators::api::routes())
+        .merge(audit_trail::api::routes());
     let mut all = OpenApiRouter::with_openapi(openapi::begun()).nest("/api/v1", v1);
     // Described with the rest, routed apart.
     all.get_openapi_mut().merge(health::routes().into_openapi());
@@ -84,6 +88,8 @@ pub fn pages_router() -> Router<App> {
         .merge(evidence::pages::routes())
         .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
+        .merge(rules::pages::routes())
+        .merge(audit_trail::pages::routes())
 }
 
 /// Puts the demonstration in, marked as such.

@@ -1,6 +1,6 @@
 //! Measures the engine and the store; prints medians of repeated stretches as one JSON object a line.
 //!
-//! `cargo bench --bench measures -- WORD ...` with `engine FILE10 FILE60 FILE1000`, `store FILE60 COUNT` or
+//! `cargo bench --bench measures -- WORD ...` with `engine FILE10 FILE60 FILE1000`, `store FILE60 COUNT`, `mixed` or
 //! `static BYTES`. `tests/bench/run` calls it, sets the figures of one run against each other and prints ratios.
 #![allow(
     clippy::unwrap_used,
@@ -8,6 +8,8 @@
     clippy::disallowed_methods,
     reason = "a measurement fails by panicking"
 )]
+
+mod mixed;
 
 use serde_json::json;
 use sqlx::Connection;
@@ -33,10 +35,11 @@ fn main() {
     match words.iter().map(String::as_str).collect::<Vec<_>>()[..] {
         ["engine", ten, sixty, thousand] => engine(ten, sixty, thousand),
         ["store", sixty, count] => tokio(store(sixty, count.parse().expect("a count"))),
+        ["mixed"] => tokio(mixed::measure()),
         ["static", bytes] => tokio(static_handler(bytes.parse().expect("a size"))),
         _ => println!(
             "{}",
-            json!({ "usage": "engine FILE10 FILE60 FILE1000 | store FILE60 COUNT | static BYTES" })
+            json!({ "usage": "engine FILE10 FILE60 FILE1000 | store FILE60 COUNT | mixed | static BYTES" })
         ),
     }
 }

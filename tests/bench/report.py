@@ -15,7 +15,7 @@ def lines(path):
 
 
 def main(folder, page_bytes):
-    engine, store = lines(folder / "engine.jsonl"), lines(folder / "store.jsonl")
+    engine, store, mixed = (lines(folder / f"{name}.jsonl") for name in ("engine", "store", "mixed"))
     numpy = json.loads((folder / "numpy.json").read_text())
     http = {}
     for row in (folder / "http.txt").read_text().split("\n"):
@@ -59,6 +59,16 @@ def main(folder, page_bytes):
     show("durable writes grouped / single, the database's own library",
          value(store, "grouped_writes_per_second") / value(store, "single_writes_per_second"), "3",
          f"{value(store, 'grouped_writes_per_second'):.0f}/s against {value(store, 'single_writes_per_second'):.0f}/s")
+    without, with_trail = value(mixed, "writes_without_trail_per_second"), value(mixed, "writes_with_trail_per_second")
+    line = 1 / with_trail - 1 / without
+    show("durable writes with a line of the audit trail / without", with_trail / without, "-",
+         f"{spread(mixed['writes_with_trail_per_second'])} against {spread(mixed['writes_without_trail_per_second'])}")
+    show("cost of a line / cost of saving a pathway with its line", line * value(store, "pathways_saved_per_second"), "-",
+         f"{1e6 * line:.0f} us a line")
+    for what in ("reads", "writes"):
+        ours, plain = mixed[f"mixed_{what}_per_second"], mixed[f"plain_mixed_{what}_per_second"]
+        show(f"readers and writers at once, {what} / the database's own library", ours["median"] / plain["median"], "-",
+             f"{spread(ours)} against {spread(plain)}")
     print(f"pathways of 60 inputs saved: {value(store, 'pathways_saved_per_second'):.0f}/s")
 
 

@@ -85,9 +85,12 @@ impl Site {
             "/factors?q=nitrate".to_owned(),
             "/factors/eu-2022-996/fert_n_an".to_owned(),
             "/materials/wheat".to_owned(),
+            "/evidence".to_owned(),
+            "/evidence/EV-2026-201".to_owned(),
             "/rule-sets".to_owned(),
             "/rule-sets/eu-2018-2001".to_owned(),
             format!("{}/defaults", self.one),
+            "/audit-trail".to_owned(),
             "/calculators".to_owned(),
             "/calculators/alcoholometry?strength=96&strength_is=percent_vol&quantity=1000&quantity_is=litres".to_owned(),
             "/calculators/distillation?wash_strength_percent_vol=12&product_strength_percent_mass=94&coupling_factor=0.5"

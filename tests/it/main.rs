@@ -1,4 +1,5 @@
 //! The integration program: every test that looks at the crate from outside, in one binary so that it links once.
+#![recursion_limit = "256"]
 #![allow(
     clippy::unwrap_used,
     clippy::expect_used,
@@ -8,10 +9,14 @@
 )]
 
 mod api;
+mod audit_trail;
 mod cli;
 mod engine;
 mod evidence;
+mod exchange;
+mod faults;
 mod levers;
+mod statements;
 mod store;
 mod support;
 mod tidy;

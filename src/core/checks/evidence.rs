@@ -2,7 +2,6 @@
 
 use super::parameters::{models, word};
 use super::{Subject, finding};
-use crate::core::documents::Assessment;
 use crate::core::documents::assessment::{Finding, Severity, Terms};
 use crate::core::documents::pathway::ValueKind;
 use crate::core::domain::Term;
@@ -125,15 +124,6 @@ fn soil_editions(resolved: &Resolved) -> Vec<EditionUse> {
     uses
 }
 
-/// E-06: an edition begins no later than the period ends.
-pub fn edition_begins(edition: &str, valid_from: Date, period_end: Date) -> Option<Finding> {
-    (valid_from > period_end).then(|| {
-        let message = format!("Edition {edition} starts on {valid_from}, after this period.");
-        let remedy = "Choose an earlier one or give the reason.";
-        finding("E-06", Severity::Warn, "", "period.to", message, remedy)
-    })
-}
-
 /// E-11: the file of evidence is the one that was attached on a day; `found` is the hash of what lies in its place now.
 pub fn file_unchanged(file: &str, attached: Date, hash: &str, found: Option<&str>) -> Option<Finding> {
     let (message, remedy) = match found {
@@ -148,21 +138,6 @@ pub fn file_unchanged(file: &str, attached: Date, hash: &str, found: Option<&str
         ),
     };
     Some(finding("E-11", Severity::Block, "", "evidence", message, remedy))
-}
-
-/// E-12: the document is the one that was assessed.
-pub fn unchanged(pathway_hash: &str, assessment: &Assessment) -> Option<Finding> {
-    (pathway_hash != assessment.pathway_hash).then(|| {
-        let message = format!("{} was changed after the assessment.", assessment.pathway_name);
-        finding(
-            "E-12",
-            Severity::Block,
-            "",
-            "pathway_hash",
-            message,
-            "Work it out again.",
-        )
-    })
 }
 
 #[cfg(test)]
@@ -233,16 +208,5 @@ mod tests {
         );
         let missing = file_unchanged("bill.pdf", day, "sha256:a", None).unwrap();
         assert_eq!(missing.message, "bill.pdf, attached on 2026-12-01, is missing.");
-    }
-
-    #[test]
-    fn an_edition_begins_before_the_period_ends() {
-        assert_eq!(edition_begins("own", date(2027, 5, 31), date(2027, 5, 31)), None);
-        assert_eq!(
-            edition_begins("own", date(2027, 6, 1), date(2027, 5, 31))
-                .unwrap()
-                .id,
-            "E-06"
-        );
     }
 }

@@ -40,7 +40,9 @@ pub fn run(subject: &Subject, findings: &mut Vec<Finding>) {
         }
         let delivered = if dry { output.dry_kg() } else { output.wet_kg };
         if let (Some(input), Some(most), Some(delivered)) = (field, harvested, delivered) {
-            findings.extend(delivery(stage.document, input, delivered, most, subject.settings));
+            let over = delivery(stage.document, input, delivered, most, subject.settings);
+            let apart = || same_harvest(stage.document, delivered, most, subject.settings);
+            findings.extend(over.or_else(apart));
         }
     }
 }
@@ -168,6 +170,31 @@ pub fn delivery(
         Severity::Block,
         &stage.key,
         &field,
+        message,
+        remedy,
+    ))
+}
+
+/// K-01: the harvest that soil models count is what the stage gives; both in kg per recipe, dry or both wet. More than area
+/// times yield is C-10's matter; this is the harvest that is counted and not handed on, or a slip in a moisture.
+pub fn same_harvest(stage: &Stage, given: f64, counted: f64, settings: &Settings) -> Option<Finding> {
+    let apart = (given / counted - 1.0).abs();
+    if apart.is_nan() || apart <= settings.harvest_percent / 100.0 * (1.0 + SUM) {
+        return None;
+    }
+    let message = format!(
+        "{} gives {} t, and its soil models count a harvest of {} t; within {} % is usual.",
+        stage.title(),
+        plain_fixed(given / 1000.0, 2),
+        plain_fixed(counted / 1000.0, 2),
+        plain(settings.harvest_percent)
+    );
+    let remedy = "Give area, yield, moisture and output of the same harvest, or give the reason.";
+    Some(finding(
+        "K-01",
+        Severity::Warn,
+        &stage.key,
+        "output",
         message,
         remedy,
     ))
@@ -315,5 +342,19 @@ mod tests {
         drop_repeats(&mut findings);
         let left: Vec<&str> = findings.iter().map(|f| f.field.as_str()).collect();
         assert_eq!(left, ["inputs.n2o.organic_n_kg", "inputs.n2o.synthetic_n_kg"]);
+    }
+
+    #[test]
+    fn soil_models_count_the_harvest_that_the_stage_gives() {
+        let (stage, settings) = (stage(), Settings::default());
+        assert_eq!(same_harvest(&stage, 8_200.0, 8_200.0, &settings), None);
+        assert_eq!(same_harvest(&stage, 7_800.0, 8_200.0, &settings), None);
+        let found = same_harvest(&stage, 6_000.0, 8_200.0, &settings).unwrap();
+        assert_eq!((found.id.as_str(), found.field.as_str()), ("K-01", "output"));
+        assert!(
+            found.message.contains("6.00 t") && found.message.contains("8.20 t"),
+            "{}",
+            found.message
+        );
     }
 }

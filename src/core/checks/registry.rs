@@ -17,6 +17,8 @@ pub enum Runs {
     AtEntry,
     /// When somebody asks, with more than a pathway at hand (an auditor's own figure, a default to be chosen).
     OnRequest,
+    /// When a statement is issued, with the day and the people at hand: a pathway under work has neither.
+    AtIssue,
     /// Not yet: it waits for this.
     Later(&'static str),
     /// Never again: the id stays taken.

@@ -42,10 +42,14 @@ pub struct Settings {
     pub higher_basis_percent: f64,
     /// an outside recalculation may differ by this, g CO2e/MJ.
     pub recalculation_g_per_mj: f64,
+    /// C-08: yield against the median of the last earlier periods, %.
+    pub yield_shift_percent: f64,
     /// C-07: output over the capacity of the same days, %.
     pub capacity_percent: f64,
     /// C-10: delivery over area times yield, %.
     pub delivery_percent: f64,
+    /// K-01: harvest that soil models count against what the stage gives, %.
+    pub harvest_percent: f64,
     /// C-11: net over typical value below which a reason is asked.
     pub typical_low: f64,
     /// C-11: net over typical value above which a reason is asked.
@@ -104,8 +108,10 @@ impl Default for Settings {
             mass_volume_percent: 2.5,
             higher_basis_percent: 5.0,
             recalculation_g_per_mj: 0.005,
+            yield_shift_percent: 5.0,
             capacity_percent: 110.0,
             delivery_percent: 105.0,
+            harvest_percent: 5.0,
             typical_low: 0.7,
             typical_high: 1.3,
             nitrogen_kg_per_ha: 350.0,
@@ -164,8 +170,10 @@ pub const SETTINGS: &[Setting] = settings! {
     "mass_volume_percent" "A-10" "percent" 0.1 20.0 mass_volume_percent: "energy by mass and by volume may differ by this; 27 MJ/kg and 21 MJ/l are rounded";
     "higher_basis_percent" "A-11" "percent" 1.0 10.0 higher_basis_percent: "a heating value this far above the lower one counts as the higher one; ethanol's differ by 11 %";
     "recalculation_g_per_mj" "A-14" "g CO2e/MJ" 0.0 1.0 recalculation_g_per_mj: "an outside recalculation may differ by this";
+    "yield_shift_percent" "C-08" "percent" 0.1 50.0 yield_shift_percent: "how far a yield may move from the median of the last four earlier periods";
     "capacity_percent" "C-07" "percent" 100.0 200.0 capacity_percent: "output over the capacity of the same days";
     "delivery_percent" "C-10" "percent" 100.0 200.0 delivery_percent: "delivery over area times yield";
+    "harvest_percent" "K-01" "percent" 0.1 50.0 harvest_percent: "how far the harvest of the soil models may be from what the stage gives";
     "typical_low" "C-11" "" 0.0 1.0 typical_low: "net over typical value below which a reason is asked";
     "typical_high" "C-11" "" 1.0 10.0 typical_high: "net over typical value above which a reason is asked";
     "nitrogen_kg_per_ha" "C-17" "kg N/ha" 50.0 1000.0 nitrogen_kg_per_ha: "most nitrogen given, synthetic and organic together";

@@ -38,6 +38,10 @@ pub struct Input {
     /// The estimated part of a measured total, %.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub estimated_percent: Option<f64>,
+    /// Id of the meter of the stage, or ids of several, whose readings must give the amount (or the model's parameter that
+    /// the meter names) for the period of the pathway.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub meter: Option<OneOrMany<String>>,
     /// Ids of files that back the figure.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub evidence: Vec<String>,

@@ -11,9 +11,12 @@ pub mod problem;
 pub mod read_input;
 pub mod read_pathway;
 pub mod reader;
+pub mod records;
 pub mod rule_set;
+pub mod statement;
 
 pub use amount::Amount;
 pub use assessment::Assessment;
 pub use pathway::Pathway;
 pub use problem::{Problem, Problems};
+pub use statement::{Statement, StatementFacts};

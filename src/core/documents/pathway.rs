@@ -2,6 +2,7 @@
 
 use super::amount::Amount;
 use super::input::{FactorRef, Input, OneOrMany};
+use super::records::{Audit, EarlierPeriod, Meter};
 use crate::core::domain::StageKind;
 use crate::core::domain::rule_set::AllocationMethod;
 use jiff::civil::Date;
@@ -48,6 +49,9 @@ pub struct Pathway {
     /// Stage kinds that a partial chain leaves out.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub not_covered: Vec<StageKind>,
+    /// Audits that sites of the pathway passed.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub audits: Vec<Audit>,
     /// The stages; their order means nothing.
     pub stages: Vec<Stage>,
 }
@@ -165,6 +169,12 @@ pub struct Stage {
     /// The supplier's statement of bought fuel.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stated: Option<Stated>,
+    /// Meters behind its figures.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub meters: Vec<Meter>,
+    /// Yields of the same works in earlier periods, for comparison.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub earlier_periods: Vec<EarlierPeriod>,
 }
 
 impl Stage {

@@ -10,7 +10,7 @@ use serde_json::Value;
 /// Reads `{ "value": ..., "unit": ... }`.
 pub fn amount(value: &Value, at: &Place, problems: &mut Problems) -> Option<Amount> {
     let mut fields = Fields::open(value, at, problems)?;
-    let figure = fields.number("value", at, problems);
+    let figure = fields.amount("value", at, problems);
     let unit = fields.required_text("unit", at, problems);
     fields.need("value", at, problems);
     fields.close(at, problems);
@@ -80,7 +80,7 @@ pub fn input(value: &Value, at: &Place, problems: &mut Problems) -> Option<Input
     let input = Input {
         key: key.clone().unwrap_or_default(),
         label: fields.text("label", at, problems),
-        amount: fields.number("amount", at, problems),
+        amount: fields.amount("amount", at, problems),
         unit: fields.text("unit", at, problems),
         factor,
         gases: fields.part("gases", at, problems, gases),
@@ -88,6 +88,11 @@ pub fn input(value: &Value, at: &Place, problems: &mut Problems) -> Option<Input
         net_per_gross: fields.number("net_per_gross", at, problems),
         origin: fields.word("origin", &origins(), at, problems),
         estimated_percent: fields.number("estimated_percent", at, problems),
+        meter: fields.part("meter", at, problems, |v, place, problems| {
+            one_or_many(v, place, problems, |v, place, problems| {
+                text_of(v, place, problems).map(str::to_owned)
+            })
+        }),
         evidence: evidence(&mut fields, at, problems),
         uncertainty: fields.part("uncertainty", at, problems, uncertainty),
         note: fields.text("note", at, problems),

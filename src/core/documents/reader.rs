@@ -1,6 +1,7 @@
 //! Reads a JSON object field by field and notes everything that is wrong, each with its pointer.
 
-use super::problem::Problems;
+use super::problem::{Problem, Problems};
+use crate::core::units::rounding::plain;
 use jiff::civil::Date;
 use serde_json::{Map, Value};
 use std::collections::BTreeSet;
@@ -56,6 +57,17 @@ impl fmt::Display for Place<'_> {
         }
     }
 }
+
+/// How the detail of a problem with a field that nobody knows begins.
+const UNKNOWN: &str = "There is no field";
+
+/// True for a problem that [`Fields::close`] noted.
+pub fn is_unknown_field(problem: &Problem) -> bool {
+    problem.detail.starts_with(UNKNOWN)
+}
+
+/// No amount of a pathway is larger, in whatever unit: the grain harvest of the world is 3e15 g. Our own judgement.
+const LARGEST: f64 = 1e18;
 
 /// The fields of one object while they are being read.
 pub struct Fields<'v> {
@@ -134,6 +146,17 @@ impl<'v> Fields<'v> {
     pub fn number(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
         let value = self.take(name)?;
         number_of(value, &at.field(name), problems)
+    }
+
+    /// An optional amount of something: a number that somebody can have measured.
+    pub fn amount(&mut self, name: &'static str, at: &Place, problems: &mut Problems) -> Option<f64> {
+        let figure = self.number(name, at, problems)?;
+        if figure.abs() > LARGEST {
+            let detail = format!("{} is more than there is of anything.", plain(figure));
+            problems.add(at.field(name), detail, "Check the figure and its unit.");
+            return None;
+        }
+        Some(figure)
     }
 
     /// An optional share in %.
@@ -280,11 +303,7 @@ impl<'v> Fields<'v> {
                 Some(near) => format!("Take it out, or write \"{near}\" if that was meant."),
                 None => format!("Take it out; known here: {}.", self.known.join(", ")),
             };
-            problems.add(
-                at.field(name),
-                format!("There is no field \"{name}\" here."),
-                remedy,
-            );
+            problems.add(at.field(name), format!("{UNKNOWN} \"{name}\" here."), remedy);
         }
     }
 }

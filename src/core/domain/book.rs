@@ -45,8 +45,6 @@ pub struct Book {
     pub soils: BTreeMap<String, SoilTables>,
     /// Carbon of soil and vegetation under a use of land, by symbol (`soc.boreal.sandy`, `c_veg.annual_cropland`, ...).
     pub land: Constants,
-    /// Limits and bonuses of deductions by rule set and symbol (`soil_carbon_cap`, ...).
-    pub limits: BTreeMap<String, Constants>,
 }
 
 impl Book {
@@ -54,11 +52,6 @@ impl Book {
     pub fn factor(&self, id: &str) -> Option<&Factor> {
         let (edition, row) = id.split_once('/')?;
         self.editions.get(edition)?.factor(row)
-    }
-
-    /// A limit or bonus of a rule set; none where the rule set has no such thing.
-    pub fn limit(&self, rule_set: &str, symbol: &str) -> Option<&Cited> {
-        self.limits.get(rule_set)?.get(symbol)
     }
 
     /// The rule sets in the order in which lists offer them: those in force first, the repealed ones last. Versions of

@@ -3,6 +3,7 @@
 use super::citation::Citation;
 use super::gases::PublishedGases;
 use crate::core::units::Unit;
+use jiff::civil::Date;
 use serde::Serialize;
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
@@ -162,6 +163,12 @@ pub struct Edition {
     pub citation: Citation,
     /// What a reader should know.
     pub note: Option<String>,
+    /// First day it may be used; none where the document fixes none.
+    pub valid_from: Option<Date>,
+    /// Last day it may be used; none where it is open.
+    pub valid_to: Option<Date>,
+    /// Where the days stand.
+    pub validity_source: Option<Citation>,
     /// Rows by id inside the edition.
     pub factors: BTreeMap<String, Factor>,
     /// Other ids that rows answer to: alias to the row's id inside the edition.

@@ -6,6 +6,7 @@ use super::stage_kind::Term;
 use crate::core::units::rounding::plain;
 use jiff::civil::Date;
 use serde::{Deserialize, Serialize};
+use std::collections::BTreeMap;
 use utoipa::ToSchema;
 
 /// How a stage shares its burden between its products.
@@ -259,6 +260,12 @@ pub struct RuleSet {
     pub soil_n2o_method: String,
     /// Years over which land-use change is spread.
     pub land_use_years: Cited,
+    /// Months of data that an actual value asks for; none where the rule names none (the EU texts read name none).
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub data_months: Option<Cited>,
+    /// Limits and bonuses of deductions by symbol (`soil_carbon_cap`, ...); what is not here, the rule does not have.
+    #[serde(default, skip_serializing_if = "BTreeMap::is_empty")]
+    pub limits: BTreeMap<String, Cited>,
     /// Built-in materials that are residues whatever a file says.
     pub residues_by_law: Vec<String>,
     /// Source of the residue list; none for an empty list.
@@ -360,8 +367,13 @@ impl RuleSet {
         ))
     }
 
+    /// A limit or bonus of deductions; none where the rule has no such thing.
+    pub fn limit(&self, symbol: &str) -> Option<&Cited> {
+        self.limits.get(symbol)
+    }
+
     /// Its figures by field name, those it lacks as none.
-    pub fn figures(&self) -> [(&'static str, Option<&Cited>); 10] {
+    pub fn figures(&self) -> [(&'static str, Option<&Cited>); 11] {
         [
             ("comparator", Some(&self.comparator)),
             ("petrol", Some(&self.petrol)),
@@ -373,6 +385,7 @@ impl RuleSet {
             ("ambient", Some(&self.ambient)),
             ("building_heat_carnot", Some(&self.building_heat_carnot)),
             ("land_use_years", Some(&self.land_use_years)),
+            ("data_months", self.data_months.as_ref()),
         ]
     }
 

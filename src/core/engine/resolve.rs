@@ -3,20 +3,21 @@
 use super::allocation::{self, Ground, Shared};
 use super::assess::hash;
 use super::defaults;
-use super::graph::{Graph, Source, graph};
+use super::graph::{Graph, graph};
 use super::inputs;
+use super::linking::link;
 use super::materials::Materials;
-use super::resolved::{Intake, Product, Resolved, Stage};
+use super::measuring::{Flows, measure_all};
+use super::resolved::{Product, Resolved, Stage};
 use super::substitution;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::input::OneOrMany;
 use crate::core::documents::pathway::{CoProduct, Pathway, Role, Stage as StageDocument};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
-use crate::core::domain::rule_set::EthanolWater;
 use crate::core::domain::{Book, RuleSet, StageKind};
 use crate::core::models::Setting;
-use crate::core::models::flow::{ETHANOL, Measured, measure, no_heat};
+use crate::core::models::flow::{Measured, no_heat};
 
 /// Builds the plan of a pathway under a rule set (the pathway's own when `rule_set` is none). Without `workings` the
 /// figures are the same and the steps that lead to them are left out where they cost time.
@@ -99,6 +100,7 @@ pub fn resolve<'p>(
             measure_unit: shared.unit,
         });
     }
+    super::meters::agree(pathway, &mut problems);
     substitution::not_taken(&stages, &graph, &mut problems);
     if let (Some(last), Some(strength)) = (graph.last, ground.wheel_strength)
         && rules.ethanol_mj_per_kg(strength) <= 0.0
@@ -158,175 +160,6 @@ fn rules<'p>(
             None
         }
     }
-}
-
-/// The flows of one stage as measured; none where one cannot be.
-#[derive(Default)]
-struct Flows {
-    output: Option<Measured>,
-    co_products: Vec<Option<Measured>>,
-    intakes: Vec<Option<Measured>>,
-}
-
-impl Flows {
-    fn product(&self, index: usize) -> Option<&Measured> {
-        match index {
-            0 => self.output.as_ref(),
-            _ => self.co_products.get(index - 1)?.as_ref(),
-        }
-    }
-}
-
-fn measure_all(
-    pathway: &Pathway,
-    rules: &RuleSet,
-    materials: &Materials,
-    graph: &Graph,
-    problems: &mut Problems,
-    findings: &mut Vec<Finding>,
-) -> Vec<Flows> {
-    let stages_at = Place::ROOT.field("stages");
-    let mut flows: Vec<Flows> = Vec::with_capacity(pathway.stages.len());
-    for (j, stage) in pathway.stages.iter().enumerate() {
-        let at = stages_at.item(j);
-        let output_at = at.field("output");
-        let output = materials
-            .check(&stage.output.material, &output_at.field("material"), problems)
-            .then(|| {
-                measure(
-                    &stage.output.flow,
-                    &stage.output.material,
-                    rules,
-                    &output_at,
-                    problems,
-                )
-            })
-            .flatten();
-        let products_at = at.field("co_products");
-        let co_products = stage
-            .co_products
-            .iter()
-            .enumerate()
-            .map(|(k, product)| {
-                let place = products_at.item(k);
-                let known = materials.check(&product.material, &place.field("material"), problems);
-                known
-                    .then(|| measure(&product.flow, &product.material, rules, &place, problems))
-                    .flatten()
-            })
-            .collect();
-        flows.push(Flows {
-            output,
-            co_products,
-            intakes: Vec::new(),
-        });
-    }
-    strengths_of_energy(rules, graph, &mut flows, problems);
-    for (j, stage) in pathway.stages.iter().enumerate() {
-        strength_missing(flows[j].output.as_ref(), stage, "output", rules, findings);
-        for (product, flow) in stage.co_products.iter().zip(&flows[j].co_products) {
-            let field = format!("co_products.{}", product.key);
-            strength_missing(flow.as_ref(), stage, &field, rules, findings);
-        }
-        let intakes_at = stages_at.item(j);
-        let intakes_at = intakes_at.field("intakes");
-        let mut received = Vec::with_capacity(stage.intakes.len());
-        for (k, intake) in stage.intakes.iter().enumerate() {
-            let place = intakes_at.item(k);
-            let Some((i, product)) = graph.sources[j][k] else {
-                received.push(None);
-                continue;
-            };
-            let material = match product {
-                0 => &pathway.stages[i].output.material,
-                _ => &pathway.stages[i].co_products[product - 1].material,
-            };
-            let without_amount = intake.flow.amount.is_none() && intake.flow.unit.is_none();
-            if stage.kind == StageKind::Combustion && without_amount && material == ETHANOL {
-                received.push(burnt(flows[j].output.as_ref(), flows[i].product(product)));
-                continue;
-            }
-            let mut flow = measure(&intake.flow, material, rules, &place, problems);
-            if let (Some(flow), Some(source)) = (flow.as_mut(), flows[i].product(product)) {
-                strength_of_energy(flow, source.strength, rules, &place, problems);
-            }
-            let field = format!("intakes.{}", intake.from);
-            strength_missing(flow.as_ref(), stage, &field, rules, findings);
-            received.push(flow);
-        }
-        flows[j].intakes = received;
-    }
-    flows
-}
-
-/// Where the water of ethanol counts, fuel entered as energy without a strength has that of the fuel it is made from.
-fn strengths_of_energy(rules: &RuleSet, graph: &Graph, flows: &mut [Flows], problems: &mut Problems) {
-    let stages_at = Place::ROOT.field("stages");
-    for &j in &graph.order {
-        let sources = graph.sources[j].iter().flatten();
-        let strength = sources
-            .filter_map(|(i, product)| flows[*i].product(*product))
-            .find_map(|flow| flow.strength);
-        let at = stages_at.item(j);
-        if let Some(output) = flows[j].output.as_mut() {
-            strength_of_energy(output, strength, rules, &at.field("output"), problems);
-        }
-    }
-}
-
-fn strength_of_energy(
-    flow: &mut Measured,
-    strength: Option<f64>,
-    rules: &RuleSet,
-    at: &Place,
-    problems: &mut Problems,
-) {
-    let lacks = flow.is_ethanol() && flow.energy_j().is_some() && !flow.strength_given;
-    if let (true, EthanolWater::Evaporated, Some(strength)) = (lacks, rules.ethanol_water, strength) {
-        flow.take_strength(strength, rules, at, problems);
-        flow.strength_given = true;
-    }
-}
-
-/// What a combustion stage takes when it states the fuel burnt only: the same pure ethanol.
-fn burnt(output: Option<&Measured>, source: Option<&Measured>) -> Option<Measured> {
-    let (output, source) = (output?, source?);
-    let pure = output.pure_kg?;
-    let strength = source.strength.unwrap_or(1.0);
-    Some(Measured {
-        pure_kg: Some(pure),
-        strength: Some(strength),
-        wet_kg: Some(pure / strength),
-        ..output.clone()
-    })
-}
-
-fn strength_missing(
-    flow: Option<&Measured>,
-    stage: &StageDocument,
-    field: &str,
-    rules: &RuleSet,
-    findings: &mut Vec<Finding>,
-) {
-    let Some(flow) = flow.filter(|flow| flow.is_ethanol() && !flow.strength_given) else {
-        return;
-    };
-    // Where water does not count, fuel given as energy holds the same pure ethanol whatever its strength.
-    if flow.energy_j().is_some() && rules.ethanol_water == EthanolWater::Ignored {
-        return;
-    }
-    findings.push(Finding {
-        id: "K-04".to_owned(),
-        severity: Severity::Warn,
-        stage: stage.key.clone(),
-        field: field.to_owned(),
-        message: format!(
-            "The {field} of {} has no strength and counts as pure ethanol.",
-            stage.title()
-        ),
-        remedy: "Enter it in % mass or % vol at 20 °C.".to_owned(),
-        reason: None,
-    });
 }
 
 fn products<'p>(
@@ -463,84 +296,5 @@ fn bought(
     }
     if let Some(output) = &flows.output {
         inputs.extend(inputs::stated(document, output, setting, at, problems));
-    }
-}
-
-fn link(
-    pathway: &Pathway,
-    j: usize,
-    graph: &Graph,
-    flows: &[Flows],
-    at: &Place,
-    problems: &mut Problems,
-    findings: &mut Vec<Finding>,
-) -> Vec<Intake> {
-    let document = &pathway.stages[j];
-    let intakes_at = at.field("intakes");
-    let mut out = Vec::with_capacity(document.intakes.len());
-    for (k, intake) in document.intakes.iter().enumerate() {
-        let Some(source) = graph.sources[j][k] else {
-            continue;
-        };
-        let (Some(flow), Some(supply)) = (&flows[j].intakes[k], flows[source.0].product(source.1)) else {
-            continue;
-        };
-        let place = intakes_at.item(k);
-        let Some(recipes) = recipes(flow, supply, &place, problems) else {
-            continue;
-        };
-        let moistures = (flow.moisture.is_some(), supply.moisture.is_some());
-        if moistures.0 != moistures.1 && !flow.is_ethanol() {
-            findings.push(one_moisture(document, intake.from.as_str(), moistures.0));
-        }
-        let (from, product): Source = source;
-        out.push(Intake {
-            from,
-            product,
-            recipes,
-            flow: flow.clone(),
-            carbon_percent_dry: intake.flow.carbon_percent_dry,
-        });
-    }
-    out
-}
-
-/// Intake over product: on pure ethanol, on dry matter where both have a moisture, else as entered.
-fn recipes(flow: &Measured, supply: &Measured, at: &Place, problems: &mut Problems) -> Option<f64> {
-    if let (Some(taken), Some(made)) = (flow.pure_kg, supply.pure_kg) {
-        return Some(taken / made);
-    }
-    if flow.dimension != supply.dimension {
-        let detail = format!(
-            "The intake is {}, but its source makes {}.",
-            flow.dimension.describe(),
-            supply.dimension.describe()
-        );
-        problems.add(
-            at.field("unit"),
-            detail,
-            format!("Give it in {}.", supply.dimension.examples()),
-        );
-        return None;
-    }
-    match (flow.moisture, supply.moisture, flow.dry_kg(), supply.dry_kg()) {
-        (Some(_), Some(_), Some(taken), Some(made)) => Some(taken / made),
-        _ => Some(flow.base / supply.base),
-    }
-}
-
-fn one_moisture(stage: &StageDocument, from: &str, intake_has: bool) -> Finding {
-    let which = if intake_has { "the intake" } else { "the output" };
-    Finding {
-        id: "K-03".to_owned(),
-        severity: Severity::Warn,
-        stage: stage.key.clone(),
-        field: format!("intakes.{from}"),
-        message: format!(
-            "Of the intake of {} and the output of {from} only {which} has a moisture, so they are matched wet.",
-            stage.title()
-        ),
-        remedy: "Enter the other moisture.".to_owned(),
-        reason: None,
     }
 }

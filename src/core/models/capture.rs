@@ -195,7 +195,7 @@ fn replacement(given: &mut Given) -> Option<()> {
     require(given, "last_use_on", "CO2 that replaces fossil CO2")?;
     let day = given.day("last_use_on")?;
     let rules = given.setting.rules;
-    let last = given.setting.book.limit(&rules.id, "replacement_last_year");
+    let last = rules.limit("replacement_last_year");
     if let Some(last) = last.filter(|last| f64::from(day.year()) > last.value) {
         given.problem(
             "last_use_on",

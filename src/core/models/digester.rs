@@ -9,7 +9,7 @@ use crate::core::domain::{Gas, GasVector};
 use crate::core::units::rounding::plain;
 
 /// Row of Annex IX that prints the heating value of methane.
-const METHANE: &str = "eu-2022-996/fuel_methane";
+pub const METHANE: &str = "eu-2022-996/fuel_methane";
 /// Molar masses of CO2 and CH4, g/mol.
 const MOLAR: (f64, f64) = (44.0095, 16.0425);
 const CLOSED: &str = "closed";

@@ -197,7 +197,7 @@ fn bonus(given: &mut Given, converted: Option<i32>) -> Option<Option<(f64, Strin
         return Some(None);
     }
     let rules = given.setting.rules;
-    let Some(bonus) = given.setting.book.limit(&rules.id, "degraded_land_bonus") else {
+    let Some(bonus) = rules.limit("degraded_land_bonus") else {
         given.problem(
             "degraded_land_bonus",
             format!("{} knows no bonus for degraded land.", rules.title),
@@ -206,7 +206,7 @@ fn bonus(given: &mut Given, converted: Option<i32>) -> Option<Option<(f64, Strin
         return None;
     };
     let found = (bonus.value, bonus.source.clone());
-    let years = given.setting.book.limit(&rules.id, "degraded_land_years");
+    let years = rules.limit("degraded_land_years");
     let age = converted.map(|year| f64::from(i32::from(given.setting.harvest_year) - year));
     if let (Some(years), Some(age)) = (years, age)
         && age > years.value
@@ -225,7 +225,7 @@ fn bonus(given: &mut Given, converted: Option<i32>) -> Option<Option<(f64, Strin
 /// Why a conversion counts nothing, in words.
 fn nothing_counts(given: &Given, converted: i32, before: &Stock, after: &Stock) -> Option<String> {
     let setting = given.setting;
-    let since = setting.book.limit(&setting.rules.id, "land_use_since");
+    let since = setting.rules.limit("land_use_since");
     if let Some(since) = since.filter(|since| f64::from(converted) < since.value) {
         return Some(format!(
             "converted in {converted}, before January {}: nothing counts",

@@ -19,6 +19,7 @@ pub mod flow;
 pub mod given;
 pub mod haul;
 pub mod heat_from;
+pub mod labels;
 pub mod land_stock;
 pub mod land_use_change;
 pub mod lime;

@@ -163,6 +163,14 @@ impl Parameter {
         Parameter { usual: span, ..self }
     }
 
+    /// Its name in words, without the unit.
+    pub fn label(&self) -> String {
+        match super::labels::words(self.name) {
+            Some(words) => words.to_owned(),
+            None => self.name.replace('_', " "),
+        }
+    }
+
     /// Unit of a figure, empty where there is none.
     pub fn unit(&self) -> &'static str {
         match self.takes {

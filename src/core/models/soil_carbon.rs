@@ -119,10 +119,7 @@ fn compute(given: &mut Given) -> Option<Outcome> {
         given.step(text, net, "kg CO2e", MODEL.source);
     }
     if broken {
-        let ban = given
-            .setting
-            .book
-            .limit(&given.setting.rules.id, "soil_carbon_ban_years");
+        let ban = given.setting.rules.limit("soil_carbon_ban_years");
         let ban = ban.map_or(String::new(), |years| {
             format!(", and nothing can be claimed for {} years", plain(years.value))
         });
@@ -160,7 +157,7 @@ fn cap(given: &Given, practice: &str) -> Option<(f64, String)> {
         BIOCHAR => "soil_carbon_cap_biochar",
         _ => "soil_carbon_cap",
     };
-    let cap = given.setting.book.limit(&given.setting.rules.id, symbol)?;
+    let cap = given.setting.rules.limit(symbol)?;
     Some((cap.value, cap.source.clone()))
 }
 
@@ -171,12 +168,7 @@ fn conditions(given: &mut Given) {
         return;
     };
     let setting = given.setting;
-    let limit = |symbol: &str| {
-        setting
-            .book
-            .limit(&setting.rules.id, symbol)
-            .map(|figure| figure.value)
-    };
+    let limit = |symbol: &str| setting.rules.limit(symbol).map(|figure| figure.value);
     // Whole years of a small published figure.
     #[allow(clippy::cast_possible_truncation, reason = "a published count of years")]
     let after = |years: f64| since.saturating_add((years as i64).years());

@@ -228,6 +228,9 @@ fn edition() -> Edition {
         title: "test".to_owned(),
         citation: citation(Status::Read),
         note: None,
+        valid_from: None,
+        valid_to: None,
+        validity_source: None,
         factors: BTreeMap::from([
             factor("fuel", "fuel", &[(Gas::Co2Fossil, 0.06)], Use::Amount),
             factor("stack", "combustion", &stack, Use::Amount),

@@ -6,7 +6,7 @@
 
 mod refusals;
 
-use super::{EvidenceError, Record, Use, attach, list, open, read, receive, uses};
+use super::{Attached, EvidenceError, Record, Use, attach, list, open, read, receive, uses};
 use crate::app::App;
 use crate::web::Refusal;
 use crate::web::actor::{Actor, CanRead, CanWrite};
@@ -92,12 +92,15 @@ struct UploadForm {
 /// Attach a file
 ///
 /// Kept once under its hash, whoever attaches the same bytes again; recorded under an id that documents can name. A record
-/// never changes and is never removed. The parts come in any order; at most 25 MB, unless the service says otherwise.
+/// never changes and is never removed. With a wished id the request can be sent again: the same bytes give the record that
+/// is there. The parts come in any order; at most 25 MB, unless the service says otherwise.
 #[utoipa::path(post, path = "/evidence", tag = "evidence",
     request_body(content = UploadForm, content_type = "multipart/form-data"),
     responses((status = 201, description = "Attached.", body = Record,
             headers(("Location" = String, description = "Address of the record."))),
-        (status = 409, description = "The wished id is taken.", body = crate::web::problem::ProblemDocument,
+        (status = 200, description = "The same bytes stood under the wished id already.", body = Record,
+            headers(("Location" = String, description = "Address of the record."))),
+        (status = 409, description = "Other bytes have the wished id.", body = crate::web::problem::ProblemDocument,
             content_type = "application/problem+json")))]
 async fn attach_evidence(
     Actor { app, .. }: Actor<CanWrite>,
@@ -105,9 +108,14 @@ async fn attach_evidence(
     mut parts: Multipart,
 ) -> Result<Response, Refusal> {
     let (arrived, naming) = receive::whole(&app, &mut parts).await?;
-    let record = attach(&app, arrived, naming).await?;
+    let Attached { record, added } = attach(&app, arrived, naming).await?;
     let address = format!("/api/v1/evidence/{}", segment(&record.id));
-    let mut response = (StatusCode::CREATED, Json(record)).into_response();
+    let status = if added {
+        StatusCode::CREATED
+    } else {
+        StatusCode::OK
+    };
+    let mut response = (status, Json(record)).into_response();
     if let Ok(location) = HeaderValue::try_from(address) {
         response.headers_mut().insert(LOCATION, location);
     }

@@ -71,7 +71,7 @@ async fn take_in(
                 ..Asked::default()
             };
             match attach(&app, arrived, naming).await {
-                Ok(record) => Ok(record),
+                Ok(attached) => Ok(attached.record),
                 Err(error) => Err((Refusal::from(error), asked)),
             }
         }

@@ -56,6 +56,8 @@ pub struct Published {
     pub frame: Frame,
     /// The list it stands in: address, words.
     pub trail: Option<(&'static str, &'static str)>,
+    /// Address of its versions, for a rule set.
+    pub versions: Option<String>,
     /// Name.
     pub name: String,
     /// What it is, in a sentence.
@@ -91,6 +93,7 @@ impl Published {
                 format!("GET /api/v1/materials/{}", links::segment(&material.id)),
             ),
             trail: None,
+            versions: None,
             name: material.name.clone(),
             lead: format!("Built-in material {}, {}.", material.id, material.kind),
             facts: vec![
@@ -150,6 +153,13 @@ impl Published {
                 note: String::new(),
             });
         }
+        for (symbol, figure) in &rules.limits {
+            rows.push(cited(
+                limit_words(symbol),
+                figure,
+                "limit of a deduction".to_owned(),
+            ));
+        }
         if let Some(weights) = weights {
             let gases = [
                 ("fossil CH4", weights.ch4_fossil),
@@ -173,6 +183,10 @@ impl Published {
                 format!("GET /api/v1/rule-sets/{}", links::segment(&rules.id)),
             ),
             trail: Some(("/rule-sets", "Rule sets")),
+            versions: Some(format!(
+                "{}/versions",
+                links::rule_set(rules.id.split('@').next().unwrap_or_default())
+            )),
             name: rules.title.clone(),
             lead: format!(
                 "Rule set {}, version {}: {}; {}.",
@@ -246,6 +260,23 @@ fn figure_words(field: &str) -> &str {
         "ambient" => "temperature of the surroundings",
         "building_heat_carnot" => "Carnot factor of heat for buildings",
         "land_use_years" => "years of land-use change",
+        "data_months" => "months of data that an actual value asks for",
+        other => other,
+    }
+}
+
+/// What a limit of deductions is called on the page of its rule set.
+fn limit_words(symbol: &str) -> &str {
+    match symbol {
+        "land_use_since" => "land converted before this year counts no change",
+        "degraded_land_bonus" => "bonus for restored degraded land",
+        "degraded_land_years" => "longest the bonus may be used",
+        "soil_carbon_cap" => "cap on a soil-carbon claim",
+        "soil_carbon_cap_biochar" => "cap on a soil-carbon claim with biochar",
+        "soil_carbon_practice_years" => "years of the practice before a claim",
+        "soil_carbon_commitment_years" => "shortest commitment to the practice",
+        "soil_carbon_ban_years" => "years without a claim after a broken commitment",
+        "replacement_last_year" => "last year in which replacing fossil CO2 counts",
         other => other,
     }
 }

@@ -43,9 +43,9 @@ fn limits_of_the_directive() {
         ("soil_carbon_ban_years", 5.0),
         ("replacement_last_year", 2035.0),
     ] {
-        let figure = book().limit("eu-2018-2001", symbol);
+        let figure = book().rule_sets["eu-2018-2001"].limit(symbol);
         let found = figure.map(|figure| (figure.value, figure.status));
         assert_eq!(found, Some((value, Status::Read)), "{symbol}");
     }
-    assert!(book().limit("another", "soil_carbon_cap").is_none());
+    assert!(book().rule_sets["inventory-ar6"].limits.is_empty());
 }

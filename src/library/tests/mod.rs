@@ -100,7 +100,7 @@ fn every_figure_has_a_source() {
         assert!(tables.constants.values().all(|figure| figure.source.len() > 10));
         assert!(tables.residues.values().all(|row| row.citation.source.len() > 10));
     }
-    let limits = book.limits.values().flat_map(|set| set.values());
+    let limits = book.rule_sets.values().flat_map(|set| set.limits.values());
     assert!(
         book.land
             .values()

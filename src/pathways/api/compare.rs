@@ -157,7 +157,7 @@ fn side_by_side(
             without_workings: true,
             ..basis.options(rule_set)
         };
-        match (app.evaluate)(pathway, &basis.book, options) {
+        match app.evaluates(pathway, &basis.book, options) {
             Ok(assessment) => assessed.push(assessment),
             Err(found) => under(&format!("/pathways/{index}"), found, &mut problems),
         }

@@ -63,7 +63,9 @@ pub(super) fn assessed(
 ) -> Result<Vec<u8>, Refusal> {
     let pathway = Pathway::from_value(body).map_err(Refusal::invalid)?;
     let options = basis.options(rule_set);
-    let assessment = (app.evaluate)(&pathway, &basis.book, options).map_err(Refusal::invalid)?;
+    let assessment = app
+        .evaluates(&pathway, &basis.book, options)
+        .map_err(Refusal::invalid)?;
     canonical::bytes(&assessment).map_err(|error| {
         tracing::error!(%error, "an assessment could not be written");
         Refusal::of(StatusCode::INTERNAL_SERVER_ERROR)

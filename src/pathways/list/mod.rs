@@ -3,7 +3,7 @@
 pub(crate) mod sql;
 
 use super::assess::{Made, compute, document, keep_soon, lines, make};
-use super::{PathwayError, Summary, public_id, time};
+use super::{PathwayError, Summary, public_id, reasons, time};
 use crate::app::{App, Basis};
 use crate::core::documents::Problem;
 use crate::rules;
@@ -81,6 +81,8 @@ pub struct Line {
     pub archived_at: Option<Timestamp>,
     /// The assessment in short; null when this version of the program refuses the document.
     pub assessment: Option<Summary>,
+    /// Findings that still want a written reason; the summary counts those with one too.
+    pub warnings_without_reason: u32,
 }
 
 /// A page of the list.
@@ -146,8 +148,15 @@ async fn line(app: &App, basis: &Arc<Basis>, row: LineRow) -> Result<Line, Pathw
         Some(summary) => Some(summary),
         None => made_now(app, basis, row.revision_id, &row.public_id, row.id).await?,
     };
+    let id = public_id(&row.public_id, row.id)?;
+    let warnings = assessment.as_ref().map_or(0, |found| found.warnings);
+    // Only a pathway with reasons has its assessment read for them.
+    let warnings_without_reason = match row.reasoned && warnings > 0 {
+        true => u32::try_from(reasons(app, id).await?.wanting.len()).unwrap_or(u32::MAX),
+        false => warnings,
+    };
     Ok(Line {
-        id: public_id(&row.public_id, row.id)?,
+        id,
         name: row.name,
         feedstock: row.feedstock,
         rule_set: row.pathway_rule_set,
@@ -161,6 +170,7 @@ async fn line(app: &App, basis: &Arc<Basis>, row: LineRow) -> Result<Line, Pathw
             .map(|at| time(at, "pathway", "archived_at", row.id))
             .transpose()?,
         assessment,
+        warnings_without_reason,
     })
 }
 

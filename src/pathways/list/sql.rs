@@ -10,7 +10,8 @@ macro_rules! listed {
         concat!(
             "SELECT p.id, p.public_id, p.name, p.name_folded, p.feedstock, p.rule_set AS pathway_rule_set, p.example, ",
             "p.created_at, p.updated_at, p.archived_at, r.id AS revision_id, r.number, r.hash, r.rule_set, ",
-            "a.hash AS assessment_hash, a.net, a.saving, a.thresholds, a.blocks, a.warnings, a.infos ",
+            "a.hash AS assessment_hash, a.net, a.saving, a.thresholds, a.blocks, a.warnings, a.infos, ",
+            "EXISTS (SELECT 1 FROM reasons g WHERE g.pathway_id = p.id AND g.organisation_id = p.organisation_id) AS reasoned ",
             "FROM pathway p ",
             "JOIN revision r ON r.pathway_id = p.id AND r.number = p.current_revision ",
             "AND r.organisation_id = p.organisation_id ",
@@ -67,6 +68,8 @@ pub(super) struct LineRow {
     pub(super) revision_id: i64,
     pub(super) number: i64,
     pub(super) hash: String,
+    /// True if reasons were ever given for its warnings.
+    pub(super) reasoned: bool,
     #[sqlx(flatten)]
     pub(super) summary: SummaryRow,
 }

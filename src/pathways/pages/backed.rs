@@ -32,7 +32,9 @@ pub(super) struct Taken {
 /// a browser cannot send it again by itself.
 pub(super) async fn taken(app: &App, posted: Posted) -> Result<Taken, Refusal> {
     let mut parts = match posted {
-        Posted::Fields(fields) => {
+        Posted::Fields(mut fields) => {
+            // Without its file such a field says nothing: scripts send its name alone.
+            fields.retain(|(name, _)| !takes_file(name));
             return Ok(Taken {
                 form: Form::of(fields),
                 attached: Vec::new(),
@@ -44,7 +46,7 @@ pub(super) async fn taken(app: &App, posted: Posted) -> Result<Taken, Refusal> {
     let (mut fields, mut files, mut problems) = (Vec::new(), Vec::new(), Problems::default());
     while let Some(read) = next(app, &mut parts).await? {
         match read {
-            Read::Field(name, text) if name != FORM_TOKEN => fields.push((name, text)),
+            Read::Field(name, text) if name != FORM_TOKEN && !takes_file(&name) => fields.push((name, text)),
             Read::File(ids, id) => files.push((ids, id)),
             Read::Refused(ids, refusal) => {
                 for error in refusal.errors() {
@@ -69,6 +71,10 @@ pub(super) async fn taken(app: &App, posted: Posted) -> Result<Taken, Refusal> {
         attached,
         problems,
     })
+}
+
+fn takes_file(name: &str) -> bool {
+    name.strip_suffix(FILE).is_some_and(|ids| ids.ends_with(IDS))
 }
 
 /// One part of a posted card.
@@ -102,7 +108,7 @@ async fn next(app: &App, parts: &mut Multipart) -> Result<Option<Read>, Refusal>
         Err(refusal) => Err(refusal),
     };
     match kept {
-        Ok(record) => Ok(Some(Read::File(ids, record.id))),
+        Ok(attached) => Ok(Some(Read::File(ids, attached.record.id))),
         Err(refusal)
             if [StatusCode::PAYLOAD_TOO_LARGE, StatusCode::UNPROCESSABLE_ENTITY]
                 .contains(&refusal.status()) =>

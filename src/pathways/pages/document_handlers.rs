@@ -1,7 +1,9 @@
 //! Whole documents: beginning a pathway, bringing one in, putting another in its place, revisions, downloads.
 
+use super::card::merge;
 use super::defaults::ShowDefaults;
 use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
+use super::meeting::{choose, differ, meeting};
 use super::new::{NewPathway, ShowDocument, Start};
 use super::revision::ShowRevision;
 use super::show::ShowPathway;
@@ -9,7 +11,8 @@ use super::workings::ShowWorkings;
 use super::{Fault, answers, fault_rows, links};
 use crate::app::App;
 use crate::core::documents::Pathway;
-use crate::core::documents::problem::{Problem, Problems};
+use crate::core::documents::json;
+use crate::core::documents::problem::Problem;
 use crate::pathways::{self, Expected, PathwayError, What};
 use crate::rules::basis;
 use crate::web::Refusal;
@@ -17,8 +20,11 @@ use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::extract::{Form, Path, Query};
 use crate::web::frame::{Frame, Section};
 use answers::{csv, file, page, see_other, with_status};
+use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
+use serde_json::Value;
+use std::collections::BTreeMap;
 
 /// The empty form.
 pub(super) async fn new(Actor { app, .. }: Actor<CanWrite>) -> Result<Response, Refusal> {
@@ -68,10 +74,6 @@ fn rows(problems: &[Problem]) -> Vec<Fault> {
 #[derive(Debug, Deserialize)]
 pub(super) struct Typed {
     document: String,
-    #[serde(default)]
-    why: String,
-    #[serde(default)]
-    expected: i64,
 }
 
 /// A document becomes a pathway.
@@ -114,13 +116,7 @@ async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Respon
     }
 }
 
-fn document_page(
-    seen: &Seen,
-    document: String,
-    why: String,
-    faults: Vec<Fault>,
-    stale: bool,
-) -> ShowDocument {
+fn document_page(seen: &Seen, document: String, why: String, faults: Vec<Fault>) -> ShowDocument {
     let head = seen.head();
     let frame = Frame::new(
         format!("Document of {}", seen.pathway.name),
@@ -133,7 +129,10 @@ fn document_page(
         document,
         why,
         document_faults: faults,
-        stale,
+        expected: head.revision,
+        meeting: None,
+        met: Vec::new(),
+        differ: String::new(),
         head,
     }
 }
@@ -153,7 +152,6 @@ pub(super) async fn show(
         pretty(&seen.pathway),
         String::new(),
         Vec::new(),
-        false,
     ))
     .map_err(IntoResponse::into_response)
 }
@@ -162,38 +160,76 @@ pub(super) async fn show(
 pub(super) async fn replace(
     Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
-    Form(typed): Form<Typed>,
+    Form(pairs): Form<Vec<(String, String)>>,
 ) -> Result<Response, Response> {
     let now = seen(&app, &id, None).await?;
-    let refuse = |typed: Typed, problems: &[Problem], stale: bool| -> Response {
-        let shown = document_page(&now, typed.document, typed.why, rows(problems), stale);
+    let fields: BTreeMap<String, String> = pairs.into_iter().collect();
+    let text = |name: &str| fields.get(name).cloned().unwrap_or_default();
+    let expected = text("expected").parse::<i64>().unwrap_or(0);
+    let refuse = |document: String, problems: &[Problem]| -> Response {
+        let mut shown = document_page(&now, document, text("why"), rows(problems));
+        // Saved on top of what it began from: whoever saved meanwhile is still met.
+        shown.expected = count(expected);
         with_status(REFUSED, &shown).unwrap_or_else(IntoResponse::into_response)
     };
-    let document = match Pathway::from_bytes(typed.document.as_bytes()) {
-        Ok(document) => document,
-        Err(problems) => return Ok(refuse(typed, problems.list(), false)),
+    let typed = text("document");
+    let mut value = match json::parse(typed.as_bytes()) {
+        Ok(value) => value,
+        Err(problems) => return Ok(refuse(typed, problems.list())),
     };
-    let why = Some(typed.why.trim())
+    let unmet = choose(&mut value, &fields);
+    let document = match Pathway::from_value(&value) {
+        Ok(document) => document,
+        Err(problems) => return Ok(refuse(typed, problems.list())),
+    };
+    if !unmet.is_empty() {
+        return Ok(refuse(pretty(&document), unmet.list()));
+    }
+    let why = Some(text("why").trim())
         .filter(|why| !why.is_empty())
         .map(|why| why.chars().take(1_000).collect());
-    match pathways::replace(
+    let saved = pathways::replace(
         &app,
         now.stored.id,
-        document,
-        Expected::Number(typed.expected),
+        document.clone(),
+        Expected::Number(expected),
         why,
-    )
-    .await
-    {
+    );
+    match saved.await {
         Ok(saved) => Ok(see_other(&format!(
             "{}?saved={}",
             links::pathway(&id),
             saved.revision
         ))),
-        Err(PathwayError::Problems(problems)) => Ok(refuse(typed, problems.list(), false)),
-        Err(PathwayError::Conflict { .. }) => Ok(refuse(typed, Problems::default().list(), true)),
+        Err(PathwayError::Problems(problems)) => Ok(refuse(pretty(&document), problems.list())),
+        Err(PathwayError::Conflict { .. }) => met(&app, &id, expected, &document, text("why")).await,
         Err(error) => Err(refused(&app, &id, error).await),
     }
+}
+
+/// Somebody saved while the document was being changed: both versions joined, each field to choose.
+async fn met(app: &App, id: &str, expected: i64, mine: &Pathway, why: String) -> Result<Response, Response> {
+    let now = seen(app, id, None).await?;
+    let base = if (1..=now.stored.current_revision).contains(&expected) {
+        json_of(&seen(app, id, Some(expected)).await?.pathway)
+    } else {
+        Value::Null
+    };
+    let (joined, met) = merge::join(&base, &json_of(&now.pathway), &json_of(mine));
+    // Two halves that hold may not hold together; then the joined text is shown all the same.
+    let text = Pathway::from_value(&joined).map_or_else(
+        |_| serde_json::to_string_pretty(&joined).unwrap_or_default(),
+        |joined| pretty(&joined),
+    );
+    let mut shown = document_page(&now, text, why, Vec::new());
+    shown.meeting = Some(meeting(app, now.stored.id, expected, now.stored.revision).await);
+    shown.differ = differ(&met);
+    shown.met = met;
+    with_status(StatusCode::PRECONDITION_FAILED, &shown).map_err(IntoResponse::into_response)
+}
+
+fn json_of(pathway: &Pathway) -> Value {
+    serde_json::to_value(pathway).unwrap_or(Value::Null)
 }
 
 /// What a revision changed.
@@ -281,7 +317,7 @@ pub(super) async fn download(
         "defaults.csv",
     ];
     if !KNOWN.contains(&name.as_str()) {
-        return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response());
+        return Err(Refusal::of(StatusCode::NOT_FOUND).into_response());
     }
     let seen = seen(&app, &id, which.revision).await?;
     let base = format!(
@@ -320,7 +356,7 @@ pub(super) async fn download(
             false,
         );
         let Some(result) = shown.result else {
-            return Err(Refusal::of(axum::http::StatusCode::NOT_FOUND).into_response());
+            return Err(Refusal::of(StatusCode::NOT_FOUND).into_response());
         };
         match name.as_str() {
             "stages.csv" => result.ladder.table(),

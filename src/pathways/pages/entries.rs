@@ -6,6 +6,7 @@ use super::card::search;
 use super::card::spec::{self, Ground, Shape, Spec};
 use super::links;
 use super::stage::{Card, Choice, Entry, FieldView, covers, workings};
+use super::tried::StepLine;
 use crate::core::documents::assessment::StageResult;
 use crate::core::domain::Book;
 use crate::core::models;
@@ -154,6 +155,16 @@ impl Entries<'_> {
             entry.workings = Some(workings(self.card, key));
         }
         let model = item.map(spec::input_as).and_then(|is| models::find(&is));
+        let fresh = self.card.tried.is_some() || self.card.typed.get("expected").is_none();
+        if let (Some(result), true, true) = (result, model.is_some(), fresh) {
+            let steps = result.workings.iter().map(|step| StepLine {
+                text: step.text.clone(),
+                value: step.value,
+                unit: step.unit.clone(),
+                source: step.source.clone(),
+            });
+            entry.steps = steps.collect();
+        }
         entry.explain = model.map(|model| {
             (
                 format!("{}. {}", model.title, model.what),
@@ -165,7 +176,7 @@ impl Entries<'_> {
     /// The figure at the end of the line; where the card is being changed it is the last good one.
     fn figure(&self, entry: &mut Entry, label: &'static str, figure: Option<String>) {
         entry.result_label = label;
-        if self.card.typed.get("expected").is_some() {
+        if self.card.typed.get("expected").is_some() && self.card.tried.is_none() {
             entry.was = figure;
         } else {
             entry.result = figure;

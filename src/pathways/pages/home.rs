@@ -199,7 +199,7 @@ impl HomeRow {
             let net = found.net_g_co2e_per_mj;
             Verdict::of_figures(net, found.saving_percent, comparator, &found.thresholds, rules)
         });
-        let checks = found.map(checks_of);
+        let checks = found.map(|found| checks_of(found, line.warnings_without_reason));
         let title = rules.map_or(line.rule_set.as_str(), |rules| rules.title.as_str());
         HomeRow {
             id: line.id.to_string(),
@@ -234,11 +234,11 @@ impl HomeRow {
     }
 }
 
-fn checks_of(found: &Summary) -> Checks {
+fn checks_of(found: &Summary, without_reason: u32) -> Checks {
     let count = |n: u32| usize::try_from(n).unwrap_or(usize::MAX);
     Checks {
         blocks: count(found.blocks),
-        warns: count(found.warnings),
+        warns: count(without_reason),
         informs: count(found.infos),
     }
 }

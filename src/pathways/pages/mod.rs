@@ -18,12 +18,14 @@ pub mod home;
 mod kept;
 pub mod ladder;
 pub mod links;
+pub mod meeting;
 pub mod new;
 mod notices;
 pub mod revision;
 pub mod show;
 pub mod stage;
 mod stage_handlers;
+mod tried;
 pub mod verdict;
 pub mod workings;
 

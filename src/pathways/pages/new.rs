@@ -46,8 +46,14 @@ pub struct ShowDocument {
     pub why: String,
     /// What is wrong with the document.
     pub document_faults: Vec<Fault>,
-    /// True if somebody saved meanwhile.
-    pub stale: bool,
+    /// Number of the revision that the form is saved on top of.
+    pub expected: u64,
+    /// Who saved meanwhile.
+    pub meeting: Option<super::meeting::Meeting>,
+    /// What they changed.
+    pub met: Vec<super::card::merge::Met>,
+    /// How many fields differ, as a sentence.
+    pub differ: String,
 }
 
 /// The facts a pathway starts from, as typed.
@@ -192,6 +198,7 @@ impl Start {
             materials: Vec::new(),
             defaults: BTreeMap::new(),
             not_covered: Vec::new(),
+            audits: Vec::new(),
         })
     }
 
@@ -314,6 +321,8 @@ fn starter(feedstock: &str) -> Vec<Stage> {
                 co_products: Vec::new(),
                 allocation: None,
                 stated: None,
+                meters: Vec::new(),
+                earlier_periods: Vec::new(),
             }
         };
     vec![

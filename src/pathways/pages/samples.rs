@@ -107,6 +107,7 @@ pub fn lines() -> Vec<crate::pathways::Line> {
             infos: 1,
             assessment_hash: String::new(),
         }),
+        warnings_without_reason: figures.map_or(0, |(_, _, _, warnings)| warnings),
     };
     vec![
         line(

@@ -7,6 +7,7 @@ use super::card::spec::{self, Ground};
 use super::card::{Do, Form};
 use super::entries::Entries;
 use super::findings::{self, FindingRow};
+use super::tried::{StepLine, Tried};
 use super::{Fact, Head, Notice, links};
 use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Assessment, StageResult};
@@ -36,10 +37,18 @@ pub struct ShowStage {
     pub facts: Vec<Fact>,
     /// What just happened.
     pub notice: Option<Notice>,
+    /// What trying gave, where the card was worked out and not saved.
+    pub tried: Option<Tried>,
+    /// What was asked for and refused: to be saved, or to be worked out.
+    pub refused_words: &'static str,
     /// Why it was not saved; empty where nothing was refused.
     pub refused: Vec<Refused>,
     /// What somebody else saved meanwhile.
     pub met: Vec<Met>,
+    /// Who that was, and when.
+    pub meeting: super::meeting::Meeting,
+    /// How many fields differ, as a sentence.
+    pub differ: String,
     /// Where the form is sent.
     pub action: String,
     /// Steering fields: name, value.
@@ -110,6 +119,8 @@ pub struct Entry {
     pub explain: Option<(String, String)>,
     /// Where its arithmetic stands.
     pub workings: Option<String>,
+    /// The arithmetic of its model.
+    pub steps: Vec<StepLine>,
     /// What is wrong with the whole entry.
     pub wrong: Vec<(String, String)>,
     /// Where it stands in the stage, such as `/inputs/0`.
@@ -178,6 +189,8 @@ pub struct Card<'a> {
     pub pathway: &'a Pathway,
     /// Its assessment, if it has one.
     pub found: Option<&'a Assessment>,
+    /// What came of the card as typed, where it was worked out and not saved.
+    pub tried: Option<&'a Assessment>,
     /// Published data.
     pub book: &'a Book,
     /// Key of the stage.
@@ -218,9 +231,8 @@ impl ShowStage {
             stage: card.stage,
             typed: card.typed,
         };
-        let result = card
-            .found
-            .and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
+        let shown = card.tried.or(card.found);
+        let result = shown.and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
         let sources = sources(card.pathway, card.key);
         let at = Entries {
             card,
@@ -273,10 +285,14 @@ impl ShowStage {
             )
             .example(card.pathway.example),
             pathway: card.pathway.name.clone(),
-            facts: facts(card, result),
+            facts: facts(card),
             notice: None,
+            tried: card.tried.map(|now| Tried::of(now, card.found, card.key)),
+            refused_words: "Not saved",
             refused: Vec::new(),
             met: Vec::new(),
+            meeting: super::meeting::Meeting::default(),
+            differ: String::new(),
             action: links::stage(&card.head.id, card.key),
             hidden,
             about,
@@ -306,7 +322,7 @@ impl ShowStage {
 
     /// The findings of the last assessment, each at the figure it questions.
     fn put_findings(&mut self, card: &Card) {
-        let all = card.found.map_or(&[][..], |found| &found.findings);
+        let all = card.tried.or(card.found).map_or(&[][..], |found| &found.findings);
         let mut sorted: Vec<_> = all.iter().filter(|finding| finding.stage == card.key).collect();
         sorted.sort_by_key(|finding| finding.severity);
         let lists = [&mut self.intakes, &mut self.inputs, &mut self.co_products];
@@ -405,8 +421,11 @@ fn input_kinds(chosen: &str) -> Vec<Choice> {
     out
 }
 
-fn facts(card: &Card, result: Option<&StageResult>) -> Vec<Fact> {
+fn facts(card: &Card) -> Vec<Fact> {
     let mut out = Vec::new();
+    let result: Option<&StageResult> = card
+        .found
+        .and_then(|found| found.stages.iter().find(|stage| stage.key == card.key));
     let order: Vec<&str> = card
         .pathway
         .stages
@@ -477,7 +496,7 @@ pub(super) fn workings(card: &Card, input: &str) -> String {
 /// What the pressed button changes in what was typed, before the card is shown again. True if it asks to save.
 pub fn steer(form: &mut Form, asked: &Do) -> bool {
     match asked {
-        Do::Save => return true,
+        Do::Save | Do::Try => return true,
         Do::Add(list) => {
             let is = form.text("add-as").to_owned();
             let steering: &[(&str, &str)] = if *list == "/inputs" {

@@ -3,8 +3,10 @@
 use super::backed::{show_card, taken};
 use super::card::form::LISTS;
 use super::card::{Do, Form, build, merge};
-use super::handlers::{REFUSED, Seen, ShowQuery, count, id_of, refused, saved_notice, see};
+use super::handlers::{REFUSED, Seen, ShowQuery, id_of, refused, saved_notice, see};
+use super::meeting::{differ, meeting};
 use super::stage::{Card, ShowStage, sources, steer};
+use super::tried::work_out;
 use super::{answers, links};
 use crate::app::App;
 use crate::core::documents::Pathway;
@@ -21,7 +23,6 @@ use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
 use serde_json::Value;
-use uuid::Uuid;
 
 fn value_of(stage: &Stage) -> Value {
     serde_json::to_value(stage).unwrap_or(Value::Null)
@@ -66,6 +67,7 @@ fn card<'a>(seen: &'a Seen, key: &'a str, stage: &'a Value, typed: &'a Form) -> 
         head: seen.head(),
         pathway: &seen.pathway,
         found: seen.found(),
+        tried: None,
         book: &seen.book,
         key,
         stage,
@@ -150,6 +152,8 @@ fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value
         co_products: Vec::new(),
         allocation: None,
         stated: None,
+        meters: Vec::new(),
+        earlier_periods: Vec::new(),
     })
 }
 
@@ -190,7 +194,7 @@ pub(super) async fn save(
     let to_save = steer(&mut form, &asked);
     let shaped = build::shaped(&stood, &form);
     let shown = |problems: &[Problem], refused: bool| {
-        ShowStage::of(&Card {
+        let mut page = ShowStage::of(&Card {
             problems,
             refused,
             search: match &asked {
@@ -199,7 +203,11 @@ pub(super) async fn save(
             },
             after: new.then_some(after.as_str()),
             ..card(&base, &key, &shaped, &form)
-        })
+        });
+        if asked == Do::Try {
+            page.refused_words = "Not worked out";
+        }
+        page
     };
     if !to_save {
         return show_card(&app, StatusCode::OK, shown(taken.problems.list(), false)).await;
@@ -232,6 +240,23 @@ pub(super) async fn save(
         .find(|why| !why.is_empty())
         .map(|why| why.chars().take(1_000).collect::<String>());
     let (document, place) = with_stage(&base.pathway, stage, new.then_some(after.as_str()));
+    if asked == Do::Try {
+        let worked = work_out(&app, document.clone()).await;
+        return match worked.map_err(IntoResponse::into_response)? {
+            Ok(assessment) => {
+                let worked = ShowStage::of(&Card {
+                    tried: Some(&assessment),
+                    after: new.then_some(after.as_str()),
+                    ..card(&base, &key, &built, &form)
+                });
+                show_card(&app, StatusCode::OK, worked).await
+            }
+            Err(problems) => {
+                let own = of_stage(&document, place, problems.into_list());
+                show_card(&app, REFUSED, shown(own.list(), true)).await
+            }
+        };
+    }
     match pathways::replace(
         &app,
         base.stored.id,
@@ -246,8 +271,15 @@ pub(super) async fn save(
             let own = of_stage(&document, place, problems.into_list());
             show_card(&app, REFUSED, shown(own.list(), true)).await
         }
-        Err(PathwayError::Conflict { .. }) if !new => {
-            met(&app, base.stored.id, &id, &key, &stood, &built, &form).await
+        Err(PathwayError::Conflict { .. }) => {
+            let base_of = if new { Value::Null } else { stood };
+            let mine = Typed {
+                base: &base,
+                stood: &base_of,
+                built: &built,
+                form: &form,
+            };
+            met(&app, &id, &key, mine).await
         }
         Err(error) => Err(refused(&app, &id, error).await),
     }
@@ -312,40 +344,71 @@ fn of_stage(document: &Pathway, place: usize, problems: Vec<Problem>) -> Problem
     out
 }
 
+/// A card as somebody typed it, and what it began from.
+struct Typed<'t> {
+    base: &'t Seen,
+    /// The stage it began from; null for a new one.
+    stood: &'t Value,
+    built: &'t Value,
+    form: &'t Form,
+}
+
 /// Somebody saved while the card was being filled in: both versions joined, on the new revision, nothing lost.
-async fn met(
-    app: &App,
-    uuid: Uuid,
-    id: &str,
-    key: &str,
-    base: &Value,
-    mine: &Value,
-    form: &Form,
-) -> Result<Response, Response> {
+async fn met(app: &App, id: &str, key: &str, mine: Typed<'_>) -> Result<Response, Response> {
+    let uuid = mine.base.stored.id;
     let now = match see(app, uuid, None).await {
         Ok(now) => now,
         Err(error) => return Err(refused(app, id, error).await),
     };
-    let Some(theirs) = stage_of(&now.pathway, key) else {
-        return Err(no_stage());
+    let meeting = meeting(app, uuid, mine.base.stored.revision, now.stored.revision).await;
+    let theirs = stage_of(&now.pathway, key).map_or(Value::Null, value_of);
+    let (joined, met) = match &theirs {
+        // A stage that is not there (any more) is joined with nothing.
+        Value::Null => (mine.built.clone(), Vec::new()),
+        theirs => merge::join(mine.stood, theirs, mine.built),
     };
-    let theirs = value_of(theirs);
-    let (joined, met) = merge::join(base, &theirs, mine);
     let typed = joined_form(&now, &theirs, &joined);
-    let mut shown = ShowStage::of(&card(&now, key, &joined, &typed));
-    shown.why = form.text("why").to_owned();
+    let follows = before(&mine.base.pathway, &now.pathway, key, mine.form.text("after"));
+    let mut shown = ShowStage::of(&Card {
+        after: theirs.is_null().then_some(follows.as_str()),
+        ..card(&now, key, &joined, &typed)
+    });
+    shown.why = mine.form.text("why").to_owned();
     if met.is_empty() {
+        let then = match (theirs.is_null(), mine.stood.is_null()) {
+            (true, false) => {
+                "The stage was taken out. Yours stands here as a new one: save to bring it back."
+            }
+            (true, true) => "Your new stage is not saved yet: look it over, then save.",
+            (false, _) => "It changed nothing of this stage: look it over, then save.",
+        };
         shown.notice = Some(super::Notice {
-            what: format!(
-                "Revision {} was saved while you were typing.",
-                count(now.stored.revision)
-            ),
-            then: "It changed nothing of this stage: look it over, then save.".to_owned(),
+            what: format!("Not saved: {}.", meeting.what),
+            then: then.to_owned(),
             back: None,
         });
     }
+    shown.differ = differ(&met);
+    shown.meeting = meeting;
     shown.met = met;
     show_card(app, StatusCode::PRECONDITION_FAILED, shown).await
+}
+
+/// The stage that a new one is to follow: the one asked for, or the last before it that is still there.
+fn before(base: &Pathway, now: &Pathway, key: &str, after: &str) -> String {
+    let place = base.stages.iter().position(|stage| stage.key == key);
+    let earlier = base
+        .stages
+        .iter()
+        .take(place.unwrap_or(0))
+        .rev()
+        .map(|stage| stage.key.as_str());
+    [after]
+        .into_iter()
+        .chain(earlier)
+        .find(|key| stage_of(now, key).is_some())
+        .unwrap_or_default()
+        .to_owned()
 }
 
 /// The steering fields of a joined card: which item is which in the stage as stored now, and which are new to it.

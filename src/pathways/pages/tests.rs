@@ -151,6 +151,7 @@ pub(super) fn card<'a>(
         head: samples::head(),
         pathway,
         found,
+        tried: None,
         book: samples::book(),
         key,
         stage,
@@ -309,8 +310,15 @@ fn more(add: &mut impl FnMut(&str, askama::Result<String>)) {
         theirs: HOSTILE.to_owned(),
         mine: "3".to_owned(),
         both: true,
-        pointer: Some("/inputs/0/amount".to_owned()),
+        pointer: "/inputs/0/amount".to_owned(),
+        stands: Some(serde_json::json!(HOSTILE)),
+        other: Some(serde_json::json!(HOSTILE)),
     }];
+    met.meeting = super::meeting::Meeting {
+        what: HOSTILE.to_owned(),
+        started: "You started from, 14".to_owned(),
+        theirs: HOSTILE.to_owned(),
+    };
     add("stage_met", met.render());
 }
 

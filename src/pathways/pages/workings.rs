@@ -392,7 +392,12 @@ impl StageWork {
                 .products
                 .iter()
                 .map(|product| {
-                    let measure = format!("{} {}", significant(product.measure, 6, 6), product.unit);
+                    // Nothing is measured where nothing is shared, and of what carries no burden.
+                    let measure = match (product.measure == 0.0, product.share > 0.0) {
+                        (false, _) => format!("{} {}", significant(product.measure, 6, 6), product.unit),
+                        (true, true) => "nothing is shared: it carries all".to_owned(),
+                        (true, false) => "residue or waste: it carries none".to_owned(),
+                    };
                     (product.name.clone(), measure, product.share * 100.0)
                 })
                 .collect(),

@@ -16,16 +16,14 @@ use crate::core::documents::{canonical, rule_set};
 use crate::web::Refusal;
 use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::conditional::{IfNoneMatch, etag};
-use crate::web::extract::{JsonBody, NoQuery, Path, Query};
+use crate::web::extract::{JsonOrToml, NoQuery, Path, Query};
 use crate::web::links::segment;
-use crate::web::paging::{self, Page};
+use crate::web::paging::{self, Page, PageQuestion};
 use axum::Json;
 use axum::extract::OriginalUri;
 use axum::http::header::{ETAG, LOCATION};
 use axum::http::{HeaderValue, StatusCode};
 use axum::response::{IntoResponse, Response};
-use serde::Deserialize;
-use utoipa::IntoParams;
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
@@ -36,18 +34,6 @@ pub fn routes() -> OpenApiRouter<App> {
         .routes(routes!(read_rule_set, put_rule_set))
         .routes(routes!(rule_set_versions))
         .merge(settings::routes())
-}
-
-/// Which page of a list.
-#[derive(Debug, Deserialize, IntoParams)]
-#[serde(deny_unknown_fields)]
-#[into_params(parameter_in = Query)]
-struct PageQuestion {
-    /// Entries on the page.
-    #[param(minimum = 1, maximum = 200, default = 50)]
-    limit: Option<u32>,
-    /// `next` of the page before.
-    after: Option<String>,
 }
 
 /// Rule sets
@@ -102,10 +88,11 @@ async fn read_rule_set(
 
 /// Add a version of a rule set of one's own
 ///
-/// A version never changes; the newest one counts where a pathway names just the id. Built-in ids are refused.
+/// A version never changes; the newest one counts where a pathway names just the id. Built-in ids are refused. The body is
+/// JSON, or TOML with the same fields under the same names.
 #[utoipa::path(put, path = "/rule-sets/{id}", tag = "rule sets",
     params(("id" = String, Path, description = "Id of the rule set, as the document has it.")),
-    request_body(content = RuleSetDocument, content_type = "application/json"),
+    request_body(content((RuleSetDocument = "application/json"), (String = "application/toml"))),
     responses((status = 200, description = "The same version was there already.", body = OwnVersion,
             headers(("ETag" = String, description = "Hash of the document."))),
         (status = 201, description = "Added.", body = OwnVersion,
@@ -116,9 +103,13 @@ async fn put_rule_set(
     Actor { app, .. }: Actor<CanWrite>,
     Path(id): Path<String>,
     _: NoQuery,
-    JsonBody(body): JsonBody,
+    body: JsonOrToml,
 ) -> Result<Response, Refusal> {
-    let saved = add_version(&app, &id, &body).await?;
+    let document = match body {
+        JsonOrToml::Json(value) => value,
+        JsonOrToml::Toml(text) => rule_set::value_of_toml(&text).map_err(Refusal::not_toml)?,
+    };
+    let saved = add_version(&app, &id, &document).await?;
     let status = if saved.added {
         StatusCode::CREATED
     } else {

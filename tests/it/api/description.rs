@@ -44,6 +44,9 @@ async fn it_lists_what_there_is() {
     let expected = [
         "delete /api/v1/pathways/{id}",
         "delete /api/v1/pathways/{id}/stages/{key}",
+        "get /api/v1/audit-trail",
+        "get /api/v1/audit-trail.csv",
+        "get /api/v1/audit-trail.ndjson",
         "get /api/v1/editions",
         "get /api/v1/editions/{id}",
         "get /api/v1/editions/{id}/factors",

@@ -8,6 +8,7 @@ mod compare;
 mod defaults;
 mod description;
 mod evaluate;
+mod idempotency;
 mod pathways;
 mod published;
 mod reasons;

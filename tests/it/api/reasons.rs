@@ -48,6 +48,15 @@ async fn a_reason_stands_in_the_findings_and_nowhere_in_what_is_kept() {
     assert_eq!(saved.status, 200, "{}", saved.text());
     assert_eq!(saved.json()["reasons"][0]["when"], "2026-12-01T12:00:00Z");
     assert_eq!(saved.json()["wanting"].as_array().unwrap().len(), wanting - 1);
+    let line = app.get("/api/v1/pathways").await.json()["items"][0].clone();
+    assert_eq!(
+        (
+            line["warnings_without_reason"].as_u64(),
+            line["assessment"]["warnings"].as_u64()
+        ),
+        (Some(wanting as u64 - 1), Some(wanting as u64)),
+        "the list counts those that still want one"
+    );
 
     let with = app.get(&assessment).await;
     assert_eq!(given(&with.json(), &warning), "a trial field");

@@ -213,3 +213,30 @@ async fn another_organisation_has_its_own() {
     let basis = wheelwort::rules::basis(&app.app).await.unwrap();
     assert!(basis.book.rule_sets.contains_key("own-2027@1"));
 }
+
+#[tokio::test]
+async fn toml_says_the_same_as_json() {
+    let app = TestApp::new().await;
+    let rules =
+        wheelwort::core::documents::rule_set::from_value(&own_rules(), wheelwort::library::book()).unwrap();
+    let text = wheelwort::core::documents::rule_set::toml_of(&rules).unwrap();
+    let toml = [("content-type", "application/toml")];
+    let added = app.ask("PUT", ADDRESS, &toml, text.clone()).await;
+    assert_eq!(added.status, 201, "{}", added.text());
+    // The same as JSON is the same version: one canonical form.
+    let again = app.put(ADDRESS, "", &own_rules()).await;
+    assert_eq!(
+        (again.status.as_u16(), again.header("etag")),
+        (200, added.header("etag"))
+    );
+    let read = app.get(ADDRESS).await.json();
+    assert_eq!(read["limits"]["soil_carbon_cap"]["value"], 25.0);
+    let broken = app.ask("PUT", ADDRESS, &toml, "id = = 3").await.refused(400);
+    assert!(broken["detail"].as_str().unwrap().contains("Line 1"), "{broken}");
+    let wrong = text.replace("ethanol_water", "ethanol_wine");
+    let problem = app.ask("PUT", ADDRESS, &toml, wrong).await.refused(422);
+    assert!(pointers(&problem).contains(&"/ethanol_wine"), "{problem}");
+    let other = [("content-type", "text/plain")];
+    let refused = app.ask("PUT", ADDRESS, &other, text).await.refused(415);
+    assert!(refused["detail"].as_str().unwrap().contains("application/toml"));
+}

@@ -8,7 +8,12 @@ fn help_shows_examples_and_exit_codes() {
         &["--help"][..],
         &["serve", "--help"],
         &["demo", "--help"],
+        &["settings", "--help"],
+        &["health", "--help"],
         &["evaluate", "--help"],
+        &["check", "--help"],
+        &["backup", "--help"],
+        &["restore", "--help"],
     ] {
         let output = run(command, b"");
         let text = String::from_utf8(output.stdout).unwrap();

@@ -1,5 +1,6 @@
 //! The command line as people and scripts meet it.
 
+mod backup;
 mod evaluate;
 mod help;
 mod serve;

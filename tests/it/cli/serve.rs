@@ -8,14 +8,14 @@ use std::process::{Child, ChildStdout, Command, Stdio};
 use std::time::Duration;
 
 /// A running program; killed if the test fails before it stops it.
-struct Running {
+pub struct Running {
     child: Child,
     out: BufReader<ChildStdout>,
-    address: String,
+    pub address: String,
 }
 
 impl Running {
-    fn start(command: &mut Command) -> Running {
+    pub fn start(command: &mut Command) -> Running {
         let mut child = command
             .stdout(Stdio::piped())
             .stderr(Stdio::piped())
@@ -28,12 +28,12 @@ impl Running {
         Running { child, out, address }
     }
 
-    fn url(&self, path: &str) -> String {
+    pub fn url(&self, path: &str) -> String {
         format!("{}{path}", self.address)
     }
 
     /// Asks it to stop; its exit code, the rest of its standard output, and its standard error.
-    fn stop(mut self, signal: &str) -> (Option<i32>, String, String) {
+    pub fn stop(mut self, signal: &str) -> (Option<i32>, String, String) {
         let asked = Command::new("kill")
             .args([signal, &self.child.id().to_string()])
             .status()

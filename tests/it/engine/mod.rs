@@ -11,6 +11,7 @@ mod laws;
 mod models;
 mod own_rules;
 mod published;
+mod records;
 mod refusals;
 mod shapes;
 mod sharing;

@@ -105,6 +105,11 @@ type Spoil = fn(&mut Value);
     { "percent": 40, "applies_to": "2020-12-31", "source": "made up", "status": "own" },
     { "percent": 50, "applies_from": "2021-01-01", "source": "made up", "status": "own" },
     { "percent": 60, "started_from": "2019-01-01", "applies_from": "2030-01-01", "source": "made up", "status": "own" } ]), "/thresholds/2")]
+#[case::unknown_limit(|v: &mut Value| v["limits"]["soil_carbon_cup"] = v["limits"]["soil_carbon_cap"].clone(), "/limits/soil_carbon_cup")]
+#[case::limit_unit(|v: &mut Value| v["limits"]["soil_carbon_cap"]["unit"] = json!("kg CO2e/MJ"), "/limits/soil_carbon_cap/unit")]
+#[case::limit_source(|v: &mut Value| v["limits"]["soil_carbon_cap"]["source"] = json!(""), "/limits/soil_carbon_cap/source")]
+#[case::limits_as_a_list(|v: &mut Value| v["limits"] = json!([]), "/limits")]
+#[case::months(|v: &mut Value| v["data_months"] = json!({ "value": 0, "unit": "months", "source": "made up", "status": "own" }), "/data_months/value")]
 #[case::day(|v: &mut Value| v["thresholds"][0]["started_to"] = json!("2020-02-30"), "/thresholds/0/started_to")]
 fn refused(#[case] spoil: Spoil, #[case] pointer: &str) {
     let mut value = own();
@@ -170,6 +175,90 @@ fn it_serves_an_assessment() {
     assert_eq!(own.comparator_g_co2e_per_mj, 90.0);
     assert_eq!(own.thresholds[0].percent, 40.0);
     assert_ne!(own.saving_percent, eu.saving_percent);
+}
+
+/// Limits of deductions are those that the document carries: with none there is no cap, and no bonus either.
+#[test]
+fn an_own_rule_set_has_the_limits_that_it_carries() {
+    let mut document = chain(&Figures::usual());
+    document["rule_set"] = json!("own-2027");
+    document["stages"][0]["inputs"]
+        .as_array_mut()
+        .unwrap()
+        .push(json!({ "key": "soil", "model": {
+        "kind": "soil_carbon", "area_ha": 1, "carbon_before": { "value": 50, "unit": "t/ha" },
+        "carbon_after": { "value": 80, "unit": "t/ha" }, "years": 5, "practice": "cover_crop",
+        "practice_since": "2020-01-01", "committed_until": "2031-01-01" } }));
+    let claim = |value: &Value| {
+        let set = read(value).unwrap();
+        let mut with = book().clone();
+        with.rule_sets.insert(set.id.clone(), set);
+        let assessment = evaluate(
+            &Pathway::from_value(&document).unwrap(),
+            &with,
+            Options::default(),
+        )
+        .unwrap();
+        -assessment.terms_g_co2e_per_mj.e_sca
+    };
+    let as_the_directive = claim(&own());
+    let mut lower = own();
+    lower["limits"]["soil_carbon_cap"]["value"] = json!(10);
+    assert!(
+        (as_the_directive / claim(&lower) - 2.5).abs() < 1e-9,
+        "25 and 10 g/MJ of the fuel grown there"
+    );
+    let mut none = own();
+    none.as_object_mut().unwrap().remove("limits");
+    assert!(claim(&none) > as_the_directive);
+    document["stages"][0]["inputs"].as_array_mut().unwrap().pop();
+    document["stages"][0]["inputs"]
+        .as_array_mut()
+        .unwrap()
+        .push(json!({ "key": "land", "model": {
+        "kind": "land_use_change", "area_ha": 1, "converted_in": 2015, "degraded_land_bonus": true,
+        "before": { "carbon_t_per_ha": 70 }, "after": { "carbon_t_per_ha": 70 } } }));
+    let set = read(&none).unwrap();
+    let mut with = book().clone();
+    with.rule_sets.insert(set.id.clone(), set);
+    let problems = evaluate(
+        &Pathway::from_value(&document).unwrap(),
+        &with,
+        Options::default(),
+    )
+    .unwrap_err();
+    assert!(
+        problems
+            .list()
+            .iter()
+            .any(|problem| problem.detail.contains("knows no bonus")),
+        "{problems:?}"
+    );
+}
+
+#[test]
+fn months_of_data_are_asked_for_where_the_rule_set_names_them() {
+    let mut value = own();
+    value["data_months"] =
+        json!({ "value": 24, "unit": "months", "source": "made-up contract, point 9", "status": "own" });
+    let mut document = chain(&Figures::usual());
+    document["rule_set"] = json!("own-2027");
+    let found = |value: &Value| {
+        let set = read(value).unwrap();
+        let mut with = book().clone();
+        with.rule_sets.insert(set.id.clone(), set);
+        let assessment = evaluate(
+            &Pathway::from_value(&document).unwrap(),
+            &with,
+            Options::default(),
+        )
+        .unwrap();
+        assessment.findings.iter().any(|finding| finding.id == "E-14")
+    };
+    assert!(found(&value));
+    value["data_months"]["value"] = json!(12);
+    assert!(!found(&value));
+    assert!(!found(&own()), "the directive asks for none");
 }
 
 proptest! {

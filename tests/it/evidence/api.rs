@@ -93,6 +93,13 @@ async fn ids_are_wished_or_counted_past_wished_ones() {
     assert_eq!(counted["id"], "EV-0002");
     let taken = attach(&app, &[("id", None, b"EV-0001"), ("file", Some("c"), b"c")]).await;
     assert!(taken.refused(409)["detail"].as_str().unwrap().contains("EV-0001"));
+    // The same bytes once more under their id: a request that is sent again changes nothing.
+    let again = attach(&app, &[("id", None, b"EV-0001"), ("file", Some("a"), b"a")]).await;
+    assert_eq!(
+        (again.status.as_u16(), again.header("location")),
+        (200, "/api/v1/evidence/EV-0001")
+    );
+    assert_eq!(again.json(), wished.json());
     assert_eq!((count(&app).await, kept_files(&app).len()), (2, 2));
 }
 

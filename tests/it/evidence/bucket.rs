@@ -7,7 +7,8 @@ use axum::Extension;
 use reqwest::Method;
 use sha2::{Digest, Sha256};
 use std::sync::Arc;
-use wheelwort::app::{Bucket, EvidenceStore};
+use wheelwort::app::{EvidenceStore, S3};
+use wheelwort::config::Secret;
 use wheelwort::evidence::{FaultKind, verify};
 use wheelwort::web::actor::Asking;
 use wheelwort::web::{Shell, router};
@@ -18,7 +19,10 @@ fn endpoint() -> String {
 
 /// A request to the stand-in by somebody with a key: it asks that there is one, and looks no closer.
 async fn with_key(method: Method, address: String, body: &'static str) -> reqwest::Response {
-    let asked = client().request(method, address).header("authorization", "AWS made-up:made-up").body(body);
+    let asked = client()
+        .request(method, address)
+        .header("authorization", "AWS made-up:made-up")
+        .body(body);
     let answer = asked.send().await.expect("the stand-in answers");
     assert!(answer.status().is_success(), "{}", answer.status());
     answer
@@ -28,14 +32,14 @@ async fn with_key(method: Method, address: String, body: &'static str) -> reqwes
 async fn with_bucket(name: &str) -> TestApp {
     with_key(Method::PUT, format!("{}/{name}", endpoint()), "").await;
     let mut app = TestApp::new().await;
-    let bucket = Bucket {
+    let bucket = S3 {
         endpoint: endpoint(),
         bucket: name.to_owned(),
         region: "us-east-1".into(),
         key_id: "made-up".into(),
-        secret: "made-up".into(),
+        secret: Secret::new("made-up"),
     };
-    app.app = app.app.clone().keeping_evidence_in(EvidenceStore::Bucket(bucket));
+    app.app = app.app.clone().keeping_evidence_in(EvidenceStore::S3(bucket));
     let asking = Asking {
         organisation: app.app.organisation,
         who: Arc::new(crate::support::test_app::preparer()),
@@ -128,14 +132,14 @@ async fn altered_missing_and_unnamed_objects_are_found() {
 #[ignore = "needs a store that speaks S3: tests/evidence_store/run"]
 async fn a_store_that_refuses_is_told_and_leaves_no_row() {
     let mut app = with_bucket("refused").await;
-    let EvidenceStore::Bucket(bucket) = (*app.app.evidence_store).clone() else {
+    let EvidenceStore::S3(bucket) = (*app.app.evidence_store).clone() else {
         panic!("a bucket");
     };
-    let gone = Bucket {
+    let gone = S3 {
         bucket: "not-there".into(),
         ..bucket
     };
-    app.app = app.app.clone().keeping_evidence_in(EvidenceStore::Bucket(gone));
+    app.app = app.app.clone().keeping_evidence_in(EvidenceStore::S3(gone));
     let asking = Asking {
         organisation: app.app.organisation,
         who: Arc::new(crate::support::test_app::preparer()),

@@ -45,11 +45,11 @@ proptest! {
                 sent.extend_from_slice(piece);
             }
             let arrived = incoming.arrived().await.expect("arrived");
-            let record = keep(&app.app, arrived, Naming::default()).await.expect("kept");
-            let (name, read) = bytes_of(&app, &record.id).await;
+            let attached = keep(&app.app, arrived, Naming::default()).await.expect("kept");
+            let (name, read) = bytes_of(&app, &attached.record.id).await;
             assert_eq!(hash(&read), name);
             assert_eq!(read, sent);
-            assert_eq!(record.size, i64::try_from(sent.len()).expect("fits"));
+            assert_eq!(attached.record.size, i64::try_from(sent.len()).expect("fits"));
             assert!(verify(&app.app).await.expect("looks").is_empty());
             app.app.close().await;
         });

@@ -8,7 +8,7 @@ use wheelwort::pathways::{self, Expected, PathwayError};
 use wheelwort::store::{Store, StoreError};
 
 /// How many rows each table holds.
-const ROWS: [&str; 8] = [
+const ROWS: [&str; 9] = [
     "SELECT count(*) FROM pathway",
     "SELECT count(*) FROM revision",
     "SELECT count(*) FROM stage",
@@ -17,6 +17,7 @@ const ROWS: [&str; 8] = [
     "SELECT count(*) FROM co_product",
     "SELECT count(*) FROM factor_use",
     "SELECT count(*) FROM assessment",
+    "SELECT count(*) FROM audit_line",
 ];
 
 async fn rows(app: &App) -> Vec<i64> {

@@ -1,5 +1,6 @@
 //! The database and the use cases of pathways, with the real engine and the real library.
 
+mod backup;
 mod changes;
 mod faults;
 mod history;
@@ -7,5 +8,5 @@ mod identity;
 mod listing;
 mod records;
 mod rules;
-mod support;
+pub mod support;
 mod writing;

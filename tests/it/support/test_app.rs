@@ -40,7 +40,10 @@ impl TestApp {
     }
 
     pub async fn with(shell: Shell) -> TestApp {
-        let folder = tempfile::tempdir().expect("a folder");
+        TestApp::on(tempfile::tempdir().expect("a folder"), shell).await
+    }
+
+    async fn on(folder: TempDir, shell: Shell) -> TestApp {
         let clock = Clock::fixed("2026-12-01T12:00:00Z".parse().expect("a time"), 7);
         let app = App::open(&folder.path().join("wheelwort.db"), clock, library::book())
             .await
@@ -55,6 +58,12 @@ impl TestApp {
             router,
             _folder: folder,
         }
+    }
+
+    /// Closes the service and opens it again on the same data.
+    pub async fn restarted(self) -> TestApp {
+        self.app.close().await;
+        TestApp::on(self._folder, Shell::default()).await
     }
 
     pub async fn send(&self, request: Request<Body>) -> Answer {
@@ -118,6 +127,15 @@ impl TestApp {
         count
     }
 
+    /// The same service, asked by somebody else.
+    pub fn asked_by(&self, who: Who) -> Router {
+        let asking = Asking {
+            organisation: self.app.organisation,
+            who: Arc::new(who),
+        };
+        router(self.app.clone(), Shell::default()).layer(axum::Extension(asking))
+    }
+
     /// Serves on a socket of this machine.
     pub async fn listens(&self) -> SocketAddr {
         let listener = tokio::net::TcpListener::bind("127.0.0.1:0").await.expect("binds");
@@ -163,7 +181,8 @@ pub async fn attach_text(
         media_type: "text/plain".to_owned(),
         note: None,
     };
-    evidence::attach(app, incoming.arrived().await?, naming).await
+    let attached = evidence::attach(app, incoming.arrived().await?, naming).await?;
+    Ok(attached.record)
 }
 
 /// A client for sockets of this machine.

@@ -4,7 +4,9 @@ mod calculators;
 mod defaults;
 mod facts;
 mod form;
+mod meeting;
 mod pages;
+mod rules;
 mod stage;
 
 use crate::support::test_app::{Answer, TestApp};

@@ -141,7 +141,11 @@ async fn two_people_meet_and_nothing_of_either_is_lost() {
     assert_eq!(answer.status, 412);
     let html = answer.text();
     assert!(
-        html.contains("revision 2 was saved while you were typing"),
+        html.contains("Not saved: you saved revision 2 elsewhere while this page was open"),
+        "{html}"
+    );
+    assert!(
+        html.contains("3 fields differ.") || html.contains("2 fields differ."),
         "{html}"
     );
     let mut joined = Form::find(&html, "/stages/works");
@@ -199,4 +203,46 @@ async fn every_card_of_the_example_sent_back_untouched_changes_nothing() {
         }
     }
     assert!(cards > 20, "{cards}");
+}
+
+#[tokio::test]
+async fn a_card_is_worked_out_without_being_saved() {
+    let app = TestApp::new().await;
+    let (_, mut form, amount) = card(&app).await;
+    let twice = (form.get(&amount).parse::<f64>().expect("a figure") * 2.0).to_string();
+    form.set(&amount, &twice).set("why", "Trying").set("do", "try");
+    let answer = send(&app, &form).await;
+    assert_eq!(answer.status, 200, "{}", answer.text());
+    let html = answer.text();
+    assert!(
+        html.contains("Worked out, not saved: ") && html.contains(" against the revision"),
+        "{html}"
+    );
+    let again = Form::find(&html, "/stages/works");
+    assert_eq!((again.get(&amount), again.get("expected")), (twice.as_str(), "1"));
+    assert!(html.contains(">Trying</textarea>"), "everything typed is kept");
+    assert_eq!(app.stored().await, 1);
+    form.set(&amount, "1,5");
+    let answer = send(&app, &form).await;
+    assert_eq!(answer.status, 422);
+    assert!(
+        answer.text().contains("Not worked out: one thing does not fit"),
+        "{}",
+        answer.text()
+    );
+}
+
+#[tokio::test]
+async fn a_model_shows_its_words_its_unit_and_its_workings() {
+    let app = TestApp::new().await;
+    let (one, _) = app.stores_chain().await;
+    let html = page(&app, &format!("{}/stages/truck", of_pages(&one))).await;
+    assert!(
+        html.contains(">Comes back empty</label>") && html.contains(">Energy of the empty trip</label>"),
+        "{html}"
+    );
+    assert!(
+        html.contains("aria-label=\"Unit of Distance\"") && html.contains("<summary>Workings"),
+        "{html}"
+    );
 }

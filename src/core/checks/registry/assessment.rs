@@ -30,7 +30,7 @@ pub const A_TO_C: &[Check] = checks! {
         "SOR/2022-140 (CA) s.1 and s.161(3); 40 CFR 80.1426(f)(8)";
     "A-13" Block OnAssessment: "Gas weights come from one named set",
         "Dir. (EU) 2018/2001 Annex V C pt 4";
-    "A-14" Warn OnRequest: "Recalculation by the auditor's own script agrees",
+    "A-14" Warn OnRequest: "Recalculation by the auditor's own script agrees, when the statement and the other figures are given",
         "IR (EU) 2022/996 Art. 14(1)-(2)";
     "B-01" Block OnAssessment: "Shares add to one",
         "own; ISO 14044:2006 4.3.4 (from memory)";
@@ -60,7 +60,7 @@ pub const A_TO_C: &[Check] = checks! {
         "own";
     "C-07" Warn OnAssessment: "Output within the capacity of the plant",
         "IR (EU) 2022/996 Art. 10(2)(c) (plausibility of capacity against declared quantities)";
-    "C-08" Warn Later("earlier periods of the same works"): "Conversion factor stable",
+    "C-08" Warn OnAssessment: "Conversion factor stable, where earlier periods are entered",
         "IR (EU) 2022/996 Art. 15(d)";
     "C-09" Warn OnAssessment: "Field yield within the usual range of its crop",
         "own ranges, until statistics of a region are held";
@@ -70,11 +70,11 @@ pub const A_TO_C: &[Check] = checks! {
         "IR (EU) 2022/996 Art. 14(2) (no number given there; 30 % is our setting)";
     "C-12" Warn OnAssessment: "Steam use physically possible",
         "own";
-    "C-13" Block Later("meters and their readings"): "Meter readings never run backwards",
+    "C-13" Block OnAssessment: "Meter readings never run backwards",
         "own";
-    "C-14" Block Later("meters and their readings"): "No gaps and no overlaps in meter periods",
+    "C-14" Block OnAssessment: "No gaps and no overlaps in meter periods, which cover the period",
         "own";
-    "C-15" Warn Later("meters and their certificates"): "Meter calibration in date",
+    "C-15" Warn OnAssessment: "Meter calibration in date, where its last day is entered",
         "SOR/2022-140 (CA) Sch. 21 pt 6(e)-(f); s.161(1)(a)";
     "C-16" Block OnAssessment: "Crop carbon closes",
         "own";
@@ -88,7 +88,7 @@ pub const A_TO_C: &[Check] = checks! {
 pub const E: &[Check] = checks! {
     "E-01" Block OnAssessment: "Measured and supplied figures have evidence",
         "IR (EU) 2022/996 Art. 14(1), Art. 10(5)(b)";
-    "E-02" Block Later("audits on record"): "Actual values only after a passed audit of that skill",
+    "E-02" Block AtIssue: "Actual values only after a passed audit of that skill",
         "IR (EU) 2022/996 Art. 14(4)";
     "E-03" Block OnAssessment: "Value kind recorded for each term",
         "IR (EU) 2022/996 Annex II A pt 3(g)";
@@ -96,7 +96,7 @@ pub const E: &[Check] = checks! {
         "Dir. (EU) 2018/2001 Art. 31(1)(a); Biokraft-NachV 2021 (DE) §6(2) no.1";
     "E-05" Block OnAssessment: "One version of each edition",
         "IR (EU) 2022/996 Art. 14(1)";
-    "E-06" Warn Later("validity days of editions"): "Edition valid on the date",
+    "E-06" Warn OnAssessment: "Edition valid on the date, where its document fixes days",
         "own";
     "E-07" Warn OnAssessment: "Own factor or method in place of the standard one is explained",
         "IR (EU) 2022/996 Art. 20(2)(a)-(b), Annex VII 1.5";
@@ -108,11 +108,11 @@ pub const E: &[Check] = checks! {
         "SOR/2022-140 (CA) Sch. 21 pt 7(a)(iii),(v)";
     "E-11" Block OnRequest: "Evidence file unchanged",
         "own";
-    "E-12" Block OnRequest: "Nothing changed after the assessment",
+    "E-12" Block AtIssue: "Nothing changed after the assessment",
         "own";
-    "E-13" Block Later("statements with submitter and approver"): "Who submitted and who approved differ",
+    "E-13" Block AtIssue: "Who submitted and who approved differ",
         "own (four-eyes); compare IR Art. 11(2)";
-    "E-14" Warn Later("a rule set that asks for months of data"): "Data window long enough for an actual value",
+    "E-14" Warn OnAssessment: "Data window long enough for an actual value, where the rule set asks for months (the EU texts read ask for none)",
         "SOR/2022-140 (CA) s.76(1), s.91(1)";
 };
 

@@ -100,16 +100,16 @@ pub const H_TO_J: &[Check] = checks! {
         "IR (EU) 2022/996 Art. 10(4)(b)";
     "I-10" Block Later("certificates on record"): "Suspended issuer",
         "IR (EU) 2022/996 Art. 4(2)";
-    "J-01" Block Later("the exchange file"): "Totals of the PACT file follow from its parts",
+    "J-01" Block OnRequest: "Totals of the PACT file follow from its parts",
         "PACT v3.0.3 schema notes on the two totals";
-    "J-02" Block Later("the exchange file"): "Sign of each field",
+    "J-02" Block OnRequest: "Sign of each field",
         "PACT v3.0.3 simple types (the published patterns are loose)";
-    "J-03" Warn Later("the exchange file"): "Uptake fits carbon content",
+    "J-03" Warn OnRequest: "Uptake fits carbon content",
         "computed; 3.664 read in IR 2022/996 Annex V";
-    "J-04" Block Later("the exchange file"): "Decimals are strings without exponent",
+    "J-04" Block OnRequest: "Decimals are strings without exponent",
         "PACT v3.0.3 Decimal";
-    "J-05" Block Later("the exchange file"): "At most one geography field",
+    "J-05" Block OnRequest: "At most one geography field",
         "PACT v3.0.3 CarbonFootprint scope";
-    "J-06" Block Later("the exchange file"): "Net of a rule set is not sent as a PACT total",
+    "J-06" Block OnRequest: "Net of a rule set is not sent as a PACT total",
         "own; PACT v3.0.3 scope";
 };

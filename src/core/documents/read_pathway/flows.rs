@@ -66,7 +66,7 @@ pub fn co_product(value: &Value, at: &Place, problems: &mut Problems) -> Option<
 
 fn displaces(value: &Value, at: &Place, problems: &mut Problems) -> Option<Displaces> {
     let mut fields = Fields::open(value, at, problems)?;
-    let figure = fields.number("amount", at, problems);
+    let figure = fields.amount("amount", at, problems);
     let unit = fields.required_text("unit", at, problems);
     let factor = fields.part("factor", at, problems, |v, place, problems| {
         one_or_many(v, place, problems, factor_ref)
@@ -81,7 +81,7 @@ fn displaces(value: &Value, at: &Place, problems: &mut Problems) -> Option<Displ
 
 fn flow(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Flow {
     Flow {
-        amount: fields.number("amount", at, problems),
+        amount: fields.amount("amount", at, problems),
         unit: fields.text("unit", at, problems),
         moisture_percent: fields.number("moisture_percent", at, problems),
         carbon_percent_dry: fields.percent("carbon_percent_dry", at, problems),

@@ -1,6 +1,7 @@
 //! Reads a pathway document from JSON: its shape, its keys, its words. What the figures mean is the engine's matter.
 
 mod flows;
+mod records;
 mod stage;
 mod stated;
 
@@ -88,6 +89,7 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
     let not_covered = fields.list("not_covered", at, problems, |v, place, problems| {
         word_of(v, &kinds, place, problems)
     });
+    let audits = fields.list("audits", at, problems, records::audit);
     fields.need("stages", at, problems);
     let count = value.get("stages").and_then(Value::as_array).map_or(0, Vec::len);
     let stages = if count > MOST_STAGES {
@@ -111,6 +113,7 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
         "id",
         problems,
     );
+    records::known_stages(&audits, &stages, at, problems);
     Some(Pathway {
         format: format?,
         name: name?,
@@ -124,6 +127,7 @@ fn pathway(value: &Value, problems: &mut Problems) -> Option<Pathway> {
         materials,
         defaults,
         not_covered,
+        audits,
         stages,
     })
 }

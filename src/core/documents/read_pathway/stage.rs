@@ -1,6 +1,7 @@
 //! Reads a stage: its kind, what it takes and gives, and where its crop grew.
 
 use super::flows::{co_product, intake, output};
+use super::records::{earlier_periods, known_meters, meters};
 use super::stated::stated;
 use crate::core::documents::pathway::{Grown, Stage};
 use crate::core::documents::problem::Problems;
@@ -64,6 +65,8 @@ pub fn stage(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stage
         .collect();
     let allocation = fields.word("allocation", &methods, at, problems);
     let stated = fields.part("stated", at, problems, stated);
+    let meters = meters(&mut fields, at, problems);
+    let earlier_periods = earlier_periods(&mut fields, output.as_ref(), &intakes, at, problems);
     fields.close(at, problems);
     unique(
         inputs.iter().map(|input| input.key.as_str()),
@@ -77,7 +80,7 @@ pub fn stage(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stage
         "key",
         problems,
     );
-    Some(Stage {
+    let stage = Stage {
         key: key?,
         kind: kind?,
         name,
@@ -89,7 +92,11 @@ pub fn stage(value: &Value, at: &Place, problems: &mut Problems) -> Option<Stage
         co_products,
         allocation,
         stated,
-    })
+        meters,
+        earlier_periods,
+    };
+    known_meters(&stage, at, problems);
+    Some(stage)
 }
 
 fn grown(value: &Value, at: &Place, problems: &mut Problems) -> Option<Grown> {

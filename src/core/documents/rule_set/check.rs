@@ -4,7 +4,7 @@
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::{Place, nearest};
 use crate::core::domain::rule_set::{AllocationMethod, Standing, Threshold};
-use crate::core::domain::{Book, RuleSet};
+use crate::core::domain::{Book, Cited, RuleSet};
 use crate::core::units::rounding::plain;
 use jiff::civil::Date;
 
@@ -31,7 +31,7 @@ const fn figure(name: &'static str, unit: &'static str, least: f64, most: f64) -
 
 /// Every figure, in the order of [`RuleSet::figures`]. Spans are ours: wide enough for any rule, too narrow for a higher
 /// heating value, a figure in kg or one of another field.
-pub const FIGURES: [Figure; 10] = [
+pub const FIGURES: [Figure; 11] = [
     figure("comparator", "g CO2e/MJ", 1.0, 300.0),
     figure("petrol", "g CO2e/MJ", 1.0, 300.0),
     figure("ethanol_lhv", "MJ/kg", 25.0, 28.0),
@@ -42,6 +42,23 @@ pub const FIGURES: [Figure; 10] = [
     figure("ambient", "K", 250.0, 320.0),
     figure("building_heat_carnot", "1", 0.01, 0.99),
     figure("land_use_years", "years", 1.0, 100.0),
+    figure("data_months", "months", 1.0, 120.0),
+];
+
+/// Limits and bonuses of deductions that models ask for: what is not listed here is no limit. Spans are ours.
+pub const LIMITS: [Figure; 12] = [
+    figure("land_use_since", "year", 1900.0, 2200.0),
+    figure("degraded_land_bonus", "g CO2e/MJ", 0.0, 300.0),
+    figure("degraded_land_years", "years", 1.0, 100.0),
+    figure("iluc_cereals", "g CO2e/MJ", 0.0, 300.0),
+    figure("iluc_none", "g CO2e/MJ", 0.0, 300.0),
+    figure("iluc_sugars", "g CO2e/MJ", 0.0, 300.0),
+    figure("soil_carbon_cap", "g CO2e/MJ", 0.0, 300.0),
+    figure("soil_carbon_cap_biochar", "g CO2e/MJ", 0.0, 300.0),
+    figure("soil_carbon_practice_years", "years", 0.0, 100.0),
+    figure("soil_carbon_commitment_years", "years", 0.0, 100.0),
+    figure("soil_carbon_ban_years", "years", 0.0, 100.0),
+    figure("replacement_last_year", "year", 1900.0, 2200.0),
 ];
 
 /// Longest list of thresholds.
@@ -103,31 +120,51 @@ fn cite(source: &str, at: &Place, problems: &mut Problems) {
 }
 
 fn figures(set: &RuleSet, problems: &mut Problems) {
+    let root = Place::ROOT;
     for (wanted, (name, cited)) in FIGURES.iter().zip(set.figures()) {
-        let Some(cited) = cited else { continue };
-        let at = Place::ROOT.field(name);
-        if cited.unit != wanted.unit {
-            let detail = format!(
-                "{name} is given in {}, but counts in {}.",
-                cited.unit, wanted.unit
-            );
-            problems.add(at.field("unit"), detail, format!("Give it in {}.", wanted.unit));
-        } else if !(wanted.least..=wanted.most).contains(&cited.value) {
-            let detail = format!(
-                "{name} of {} {} is outside {} to {}.",
-                plain(cited.value),
-                cited.unit,
-                plain(wanted.least),
-                plain(wanted.most)
-            );
-            problems.add(
-                at.field("value"),
-                detail,
-                "Check the figure: heating values are lower ones.",
-            );
+        if let Some(cited) = cited {
+            one(wanted, cited, &root.field(name), problems);
         }
-        cite(&cited.source, &at, problems);
     }
+    let limits = root.field("limits");
+    for (name, cited) in &set.limits {
+        let at = limits.field(name);
+        if let Some(wanted) = LIMITS.iter().find(|limit| limit.name == name) {
+            one(wanted, cited, &at, problems);
+            continue;
+        }
+        let known = LIMITS.map(|limit| limit.name);
+        let remedy = match nearest(name, known.into_iter()) {
+            Some(near) => format!("Perhaps \"{near}\" was meant."),
+            None => format!("Take it out; known here: {}.", known.join(", ")),
+        };
+        problems.add(at, format!("Nothing asks for a limit \"{name}\"."), remedy);
+    }
+}
+
+fn one(wanted: &Figure, cited: &Cited, at: &Place, problems: &mut Problems) {
+    let name = wanted.name;
+    if cited.unit != wanted.unit {
+        let detail = format!(
+            "{name} is given in {}, but counts in {}.",
+            cited.unit, wanted.unit
+        );
+        problems.add(at.field("unit"), detail, format!("Give it in {}.", wanted.unit));
+    } else if !(wanted.least..=wanted.most).contains(&cited.value) {
+        let detail = format!(
+            "{name} of {} {} is outside {} to {}.",
+            plain(cited.value),
+            cited.unit,
+            plain(wanted.least),
+            plain(wanted.most)
+        );
+        problems.add(
+            at.field("value"),
+            detail,
+            "Check the figure: heating values are lower ones.",
+        );
+    }
+    cite(&cited.source, at, problems);
 }
 
 fn references(set: &RuleSet, book: &Book, problems: &mut Problems) {

@@ -11,7 +11,7 @@ use crate::core::domain::{Book, RuleSet};
 use serde::Serialize;
 use serde_json::Value;
 
-pub use check::{FIGURES, check, gap};
+pub use check::{FIGURES, LIMITS, check, gap};
 
 /// The format name that every rule set document carries.
 pub const FORMAT: &str = "wheelwort.rule_set/1";
@@ -50,6 +50,22 @@ pub fn from_json(bytes: &[u8], book: &Book) -> Result<RuleSet, Problems> {
 /// Everything that is wrong with it, each with its pointer.
 pub fn from_toml(text: &str, book: &Book) -> Result<RuleSet, Problems> {
     from_value(&toml_text::value(text)?, book)
+}
+
+/// The JSON value of a TOML text, for reading with [`from_value`].
+///
+/// # Errors
+/// One problem with the line, for a text that is no TOML.
+pub fn value_of_toml(text: &str) -> Result<Value, Problems> {
+    toml_text::value(text)
+}
+
+/// A rule set as TOML, which [`from_toml`] reads back the same.
+///
+/// # Errors
+/// When it cannot be written, which a rule set that was read always can.
+pub fn toml_of(set: &RuleSet) -> Result<String, toml::ser::Error> {
+    toml::to_string_pretty(&Document::of(set))
 }
 
 /// Reads an own rule set from a JSON value.

@@ -2,10 +2,11 @@
 
 use super::FORMAT;
 use crate::core::documents::problem::Problems;
-use crate::core::documents::reader::{Fields, Place, text_of, word_of};
+use crate::core::documents::reader::{Fields, Place, shape, text_of, word_of};
 use crate::core::domain::rule_set::{AllocationMethod, BiogenicCo2, EthanolWater, Standing, Threshold};
 use crate::core::domain::{Cited, RuleSet, Status, Term};
 use serde_json::Value;
+use std::collections::BTreeMap;
 
 const STATUSES: [(&str, Status); 5] = [
     ("read", Status::Read),
@@ -64,6 +65,8 @@ pub fn rule_set(value: &Value, problems: &mut Problems) -> Option<RuleSet> {
     let default_values = fields.text("default_values", at, problems);
     let soil_n2o_method = fields.required_text("soil_n2o_method", at, problems);
     let land_use_years = required_cited(&mut fields, "land_use_years", at, problems);
+    let data_months = cited(&mut fields, "data_months", at, problems);
+    let limits = limits(&mut fields, at, problems);
     let residues_by_law = texts(&mut fields, "residues_by_law", at, problems);
     let residues_source = fields.text("residues_source", at, problems);
     let thresholds = fields.list("thresholds", at, problems, threshold);
@@ -97,6 +100,8 @@ pub fn rule_set(value: &Value, problems: &mut Problems) -> Option<RuleSet> {
         default_values,
         soil_n2o_method: soil_n2o_method?,
         land_use_years: land_use_years?,
+        data_months,
+        limits,
         residues_by_law,
         residues_source,
         thresholds,
@@ -134,8 +139,27 @@ fn required_cited(
 }
 
 fn cited(fields: &mut Fields, name: &'static str, at: &Place, problems: &mut Problems) -> Option<Cited> {
-    let value = fields.take(name)?;
-    let at = &at.field(name);
+    fields.part(name, at, problems, one_cited)
+}
+
+/// Limits by symbol, each a figure with its source.
+fn limits(fields: &mut Fields, at: &Place, problems: &mut Problems) -> BTreeMap<String, Cited> {
+    let Some(value) = fields.take("limits") else {
+        return BTreeMap::new();
+    };
+    let at = at.field("limits");
+    let Value::Object(map) = value else {
+        let detail = format!("An object belongs here, not {}.", shape(value));
+        problems.add(at, detail, "Give `{ \"soil_carbon_cap\": { ... } }`.");
+        return BTreeMap::new();
+    };
+    let read = map
+        .iter()
+        .filter_map(|(name, figure)| Some((name.clone(), one_cited(figure, &at.field(name), problems)?)));
+    read.collect()
+}
+
+fn one_cited(value: &Value, at: &Place, problems: &mut Problems) -> Option<Cited> {
     let mut fields = Fields::open(value, at, problems)?;
     fields.need("value", at, problems);
     let figure = fields.number("value", at, problems);

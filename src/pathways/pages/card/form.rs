@@ -55,7 +55,8 @@ impl Form {
             .map_or(0, |last| last + 1)
     }
 
-    /// Where two people met, `pick:` and a pointer says whose figure is to stand. Theirs stands in the revision that the
+    /// Where two people met, `pick:` and a pointer says whose figure is to stand: `theirs`, `mine` (with what was typed in
+    /// `mine:` and the pointer), or `as it is` in the form. Theirs stands in the revision that the
     /// form begins from, so what was typed over it is dropped. What was picked is told once.
     pub fn settle_picks(&mut self) {
         let picks: Vec<(String, String)> = self
@@ -67,7 +68,17 @@ impl Form {
         for (name, text) in picks {
             self.0.remove(&name);
             let pointer = name.trim_start_matches("pick:");
-            if text != "theirs" || pointer.is_empty() {
+            let mine = self.0.remove(&format!("mine:{pointer}"));
+            if pointer.is_empty() || text == "as it is" {
+                continue;
+            }
+            if text != "theirs" {
+                // What was typed before the other's figure was taken over.
+                if let Some(mine) = mine {
+                    // The field of an amount carries its figure; the unit has a field of its own.
+                    let field = pointer.strip_suffix("/value").unwrap_or(pointer);
+                    self.0.insert(field.to_owned(), mine);
+                }
                 continue;
             }
             self.0.retain(|field, _| {
@@ -130,6 +141,8 @@ fn index_below(list: &str, name: &str) -> Option<usize> {
 pub enum Do {
     /// Save and work out.
     Save,
+    /// Work out and save nothing.
+    Try,
     /// Add an item to a list.
     Add(&'static str),
     /// Take an item out of a list.
@@ -146,6 +159,7 @@ impl Do {
     pub fn of(text: &str) -> Do {
         let list = |name: &str| LISTS.into_iter().find(|list| *list == name);
         match text.split_once(':') {
+            None if text == "try" => Do::Try,
             None => Do::Save,
             Some(("add", name)) => list(name).map_or(Do::Search(String::new()), Do::Add),
             Some(("remove", rest)) => rest
@@ -201,12 +215,21 @@ mod tests {
             ("/inputs/0/model/distance/unit", "km"),
             ("/inputs/1/amount", "3"),
             ("pick:/inputs/0/model/distance/value", "theirs"),
-            ("pick:/inputs/1/amount", "mine"),
+            ("pick:/inputs/1/amount", "as it is"),
+            ("pick:/inputs/2/model/distance/value", "mine"),
+            ("mine:/inputs/2/model/distance/value", "7"),
             ("pick:", "theirs"),
         ]);
         form.settle_picks();
         let left: Vec<&str> = form.0.keys().map(String::as_str).collect();
-        assert_eq!(left, ["/inputs/0/amount", "/inputs/0/was", "/inputs/1/amount"]);
+        let expected = [
+            "/inputs/0/amount",
+            "/inputs/0/was",
+            "/inputs/1/amount",
+            "/inputs/2/model/distance",
+        ];
+        assert_eq!(left, expected);
+        assert_eq!(form.get("/inputs/2/model/distance"), Some("7"));
     }
 
     #[test]

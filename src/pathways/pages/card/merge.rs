@@ -15,11 +15,42 @@ pub struct Met {
     pub mine: String,
     /// True if both changed it, differently: then what was typed stands in the form.
     pub both: bool,
-    /// Where it stands in the joined stage, if both have it there: then either can be taken.
-    pub pointer: Option<String>,
+    /// Where it stands in what was joined, as a JSON pointer.
+    pub pointer: String,
+    /// What stands there now, if anything does.
+    pub stands: Option<Value>,
+    /// What could stand there instead, if anything can.
+    pub other: Option<Value>,
 }
 
-/// Joins two versions of one stage. Where only one changed a field, that change stands; where both did, mine.
+impl Met {
+    /// True if a form can take either: both are there, and each is one text or figure.
+    pub fn can_pick(&self) -> bool {
+        let plain = |value: &Option<Value>| matches!(value, Some(Value::String(_) | Value::Number(_)));
+        plain(&self.stands) && plain(&self.other)
+    }
+
+    /// The other value as the text of a field.
+    pub fn other_text(&self) -> String {
+        match &self.other {
+            Some(Value::String(text)) => text.clone(),
+            Some(other) => other.to_string(),
+            None => String::new(),
+        }
+    }
+
+    /// What stands, as JSON; empty for nothing.
+    pub fn stands_json(&self) -> String {
+        self.stands.as_ref().map_or_else(String::new, Value::to_string)
+    }
+
+    /// The other value as JSON; empty for nothing.
+    pub fn other_json(&self) -> String {
+        self.other.as_ref().map_or_else(String::new, Value::to_string)
+    }
+}
+
+/// Joins two versions of one stage or of one document. Where only one changed a field, that change stands; where both did, mine.
 pub fn join(base: &Value, theirs: &Value, mine: &Value) -> (Value, Vec<Met>) {
     let mut met = Vec::new();
     let mut path = Path::default();
@@ -42,6 +73,11 @@ impl Path {
         self.pointer.push(pointer);
     }
 
+    fn pointer(&self) -> String {
+        let step = |name: &String| format!("/{}", name.replace('~', "~0").replace('/', "~1"));
+        self.pointer.iter().map(step).collect()
+    }
+
     fn pop(&mut self) {
         self.words.pop();
         self.pointer.pop();
@@ -49,7 +85,8 @@ impl Path {
 }
 
 fn one(path: &mut Path, base: Maybe, theirs: Maybe, mine: Maybe, met: &mut Vec<Met>) -> Option<Value> {
-    if theirs == base {
+    // Nobody else touched it, or both did the same to it.
+    if theirs == base || theirs == mine {
         return mine.cloned();
     }
     match (base, theirs, mine) {
@@ -93,16 +130,18 @@ fn one(path: &mut Path, base: Maybe, theirs: Maybe, mine: Maybe, met: &mut Vec<M
         }
         _ => {
             let both = mine != base && mine != theirs;
+            let (stands, other) = if both { (mine, theirs) } else { (theirs, mine) };
             met.push(Met {
                 field: path.words.join(", "),
                 base: shown(base),
                 theirs: shown(theirs),
                 mine: shown(mine),
                 both,
-                pointer: (both && mine.is_some() && theirs.is_some())
-                    .then(|| format!("/{}", path.pointer.join("/"))),
+                pointer: path.pointer(),
+                stands: stands.cloned(),
+                other: other.cloned(),
             });
-            if both { mine.cloned() } else { theirs.cloned() }
+            stands.cloned()
         }
     }
 }
@@ -122,7 +161,7 @@ fn union<'a>(
 
 fn key(item: &Value) -> Option<String> {
     let text = |name: &str| item.get(name).and_then(Value::as_str).map(str::to_owned);
-    text("key").or_else(|| {
+    text("key").or_else(|| text("id")).or_else(|| {
         Some(format!(
             "{} {}",
             text("from")?,
@@ -198,8 +237,10 @@ mod tests {
                 ("inputs, Gas, amount", "113.2", "104.6", "113.9", true),
             ]
         );
-        let pointers: Vec<Option<&str>> = met.iter().map(|m| m.pointer.as_deref()).collect();
-        assert_eq!(pointers, [None, Some("/inputs/0/amount")]);
+        let pointers: Vec<&str> = met.iter().map(|m| m.pointer.as_str()).collect();
+        assert_eq!(pointers, ["/co_products/0/moisture_percent", "/inputs/0/amount"]);
+        assert!(met.iter().all(Met::can_pick));
+        assert_eq!(met[1].other, Some(json!(104.6)));
     }
 
     #[test]

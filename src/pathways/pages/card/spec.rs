@@ -430,10 +430,9 @@ fn model_fields(table: &'static [Parameter], base: &str, before: &str, ground: G
 
 fn parameter(row: &'static Parameter, base: &str, before: &str, ground: Ground) -> Vec<Spec> {
     let at = format!("{base}/{}", row.name);
-    let label = if before.is_empty() {
-        named(row.name)
-    } else {
-        format!("{before}, {}", row.name.replace('_', " "))
+    let label = match (before.is_empty(), row.label()) {
+        (true, label) => label,
+        (false, label) => format!("{before}: {}", crate::web::filters::small(&label)),
     };
     let one = |shape: Shape| {
         vec![Spec {

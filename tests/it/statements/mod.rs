@@ -1,0 +1,7 @@
+//! Statements: what the file holds, and what checking it finds.
+
+mod file;
+mod made;
+mod preflight;
+mod series;
+mod tampering;
