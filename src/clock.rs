@@ -69,6 +69,16 @@ impl Clock {
         uuid::Builder::from_unix_timestamp_millis(millis, &self.ten_bytes()).into_uuid()
     }
 
+    /// A new secret of 256 bits. Only a fixed clock's can be foretold.
+    pub fn secret(&self) -> [u8; 32] {
+        let mut secret = [0; 32];
+        for part in secret.chunks_mut(8) {
+            let drawn = self.ten_bytes();
+            part.copy_from_slice(&drawn[..8]);
+        }
+        secret
+    }
+
     fn ten_bytes(&self) -> [u8; 10] {
         match &self.0 {
             #[allow(

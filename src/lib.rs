@@ -14,6 +14,7 @@ pub mod exchange;
 pub mod factors;
 pub mod library;
 pub mod pathways;
+pub mod people;
 pub mod rules;
 pub mod store;
 pub mod telemetry;
@@ -26,6 +27,7 @@ pub fn all_statements() -> Vec<&'static str> {
         audit_trail::statements(),
         evidence::statements(),
         pathways::statements(),
+        people::statements(),
         rules::statements(),
     ]
     .concat()

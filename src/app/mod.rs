@@ -1,5 +1,6 @@
 //! What every use case gets: the store, the clock, the published data, and on whose behalf records are kept.
 
+pub(crate) mod doors;
 pub mod who;
 
 use crate::clock::Clock;
@@ -9,6 +10,7 @@ use crate::core::domain::Book;
 use crate::core::evaluate::{Options, evaluate};
 use crate::store::memory::Memory;
 use crate::store::{Settings, Store, StoreError};
+use doors::Doors;
 use std::ops::Deref;
 use std::path::Path;
 use std::sync::Arc;
@@ -91,6 +93,8 @@ pub struct App {
     pub evidence_store: Arc<EvidenceStore>,
     /// Immutable bytes at hand.
     pub(crate) memory: Arc<Memory>,
+    /// Those who come in.
+    pub(crate) doors: Arc<Doors>,
 }
 
 impl App {
@@ -125,6 +129,7 @@ impl App {
             }
         };
         Ok(App {
+            doors: Arc::new(Doors::new(&clock)),
             store,
             clock,
             library,
@@ -166,6 +171,7 @@ impl App {
     /// When the file is not there, cannot be read, or belongs to another version of the program.
     pub async fn open_to_read(file: &Path, clock: Clock, library: &'static Book) -> Result<App, StoreError> {
         Ok(App {
+            doors: Arc::new(Doors::new(&clock)),
             store: Store::open_to_read(file).await?,
             clock,
             library,

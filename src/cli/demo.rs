@@ -1,11 +1,13 @@
 //! `demo`: invented data in a temporary folder, served until it is asked to stop.
 
 use super::say;
-use super::serve::{open, running, serve};
+use super::serve::{door, open, running, serve};
 use crate::config::Config;
+use crate::people::pages::gate::{DemoDoor, Door};
 use crate::{demo, telemetry};
 use anyhow::Context;
 use std::path::{Path, PathBuf};
+use std::sync::Arc;
 
 /// Runs until it is asked to stop.
 pub(super) fn run(config: &Config) -> anyhow::Result<()> {
@@ -18,8 +20,23 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         demo::load(&app)
             .await
             .context("the demonstration cannot be stored")?;
-        say("Demonstration: one invented company; nothing you do here is kept. Stop it with Ctrl+C. Open:");
-        serve(app, config).await
+        let people = demo::people(&app)
+            .await
+            .context("the people of the demonstration cannot be stored")?;
+        say(
+            "Demonstration: one invented company and invented people; nothing you do here is kept. Stop it with Ctrl+C.",
+        );
+        say(
+            "Whoever opens it on this machine is signed in as its preparer, and can be its approver or administrator at \
+             /me. Nobody else comes in, but with a token:",
+        );
+        say(&format!("a token that reads, for scripts: {}", people.token));
+        say("Open:");
+        let door = Door {
+            demo: Some(Arc::new(DemoDoor::new(people.ids))),
+            ..door(config)
+        };
+        serve(app, config, door).await
     })
 }
 

@@ -6,6 +6,7 @@ mod check;
 mod demo;
 mod evaluate;
 mod health;
+mod people;
 mod serve;
 mod verify;
 
@@ -25,6 +26,7 @@ const EXAMPLES: &str = "\
 Examples:
   wheelwort demo                            look around in invented data; nothing is kept
   wheelwort serve --data /var/lib/wheelwort keep pathways in that folder
+  wheelwort people --help                   make accounts, reset passwords, print tokens
   wheelwort evaluate wheat.json             print the assessment of a pathway file
   wheelwort evaluate - < wheat.json         the same from standard input
   wheelwort verify WW-2026-0031.json        check a statement file
@@ -137,6 +139,9 @@ enum Command {
     /// Print the assessment of pathway files.
     #[command(after_help = EVALUATE_EXAMPLES)]
     Evaluate(evaluate::Evaluate),
+    /// Make, list and change accounts, on the machine that holds the data.
+    #[command(after_help = people::EXAMPLES)]
+    People(people::People),
     /// Print the settings that `serve` would run with, and who gave each.
     #[command(after_help = SETTINGS_EXAMPLES)]
     Settings(Serve),
@@ -258,6 +263,7 @@ pub fn main() -> ExitCode {
         Command::Serve(Serve { data, common }) => with_settings(settings(data, common), serve::run),
         Command::Demo(Demo { common }) => with_settings(settings(None, common), demo::run),
         Command::Evaluate(command) => evaluate::run(&command),
+        Command::People(command) => people::run(&command),
         Command::Settings(command) => print_settings(command),
         Command::Health(command) => health::run(command),
         Command::Verify(command) => verify::run(&command),

@@ -1,9 +1,10 @@
 //! `serve`: opens the data, listens, says where, and stops in order when asked.
 
-use super::{print, say};
+use super::{people, print, say};
 use crate::app::App;
 use crate::clock::Clock;
 use crate::config::Config;
+use crate::people::pages::gate::Door;
 use crate::store::{FILE, FolderLock};
 use crate::web::extract::Limits;
 use crate::web::metrics::Metrics;
@@ -28,15 +29,27 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
         let app = open(&folder)
             .await?
             .keeping_evidence_in(config.evidence_store.clone());
-        // The demonstration says what it is in words of its own; a folder of one's own data deserves this line.
-        if config.listen.ip().is_loopback() {
-            say(
-                "Only this machine can reach it: there is no sign-in yet, so whoever uses this machine can read and \
-                 change everything.",
-            );
+        if let Some(first) = &config.first_administrator {
+            people::first_of_settings(&app, first).await?;
         }
-        serve(app, config).await
+        if !people::anybody(&app).await? {
+            say(&format!(
+                "Nobody can sign in yet. Make the first administrator: wheelwort people add --data {} --name \"NAME\" \
+                 --sign-in-name NAME --role administrator --role preparer",
+                folder.display()
+            ));
+        }
+        serve(app, config, door(config)).await
     })
+}
+
+/// How people come in, as the settings say.
+pub(super) fn door(config: &Config) -> Door {
+    Door {
+        trusted_proxies: config.trusted_proxies.clone(),
+        secure_cookies: config.cookies_are_secure(),
+        demo: None,
+    }
 }
 
 /// Runs the program's threads.
@@ -57,8 +70,8 @@ pub(super) async fn open(folder: &Path) -> anyhow::Result<App> {
 }
 
 /// Listens, says where, and serves until it is asked to stop; then finishes what runs and closes the data.
-pub(super) async fn serve(app: App, config: &Config) -> anyhow::Result<()> {
-    let served = until_asked_to_stop(app.clone(), config).await;
+pub(super) async fn serve(app: App, config: &Config, door: Door) -> anyhow::Result<()> {
+    let served = until_asked_to_stop(app.clone(), config, door).await;
     // Also after a failure: what was answered is kept either way, but an orderly end leaves one file behind.
     if tokio::time::timeout(config.stop_within, app.close())
         .await
@@ -69,15 +82,15 @@ pub(super) async fn serve(app: App, config: &Config) -> anyhow::Result<()> {
     served
 }
 
-async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
+async fn until_asked_to_stop(app: App, config: &Config, door: Door) -> anyhow::Result<()> {
     let listener = TcpListener::bind(config.listen)
         .await
         .with_context(|| format!("cannot listen on {}", config.listen))?;
     let address = listener.local_addr().context("the address is not known")?;
     if !address.ip().is_loopback() {
         say(&format!(
-            "Caution: {address} can be reached from other machines, and there is no sign-in yet: whoever reaches it \
-             can read and change everything."
+            "Caution: {address} can be reached from other machines, and passwords and tokens travel in the clear: put a \
+             proxy with TLS before it."
         ));
     }
     if let Some(address) = config.metrics_listen {
@@ -92,6 +105,7 @@ async fn until_asked_to_stop(app: App, config: &Config) -> anyhow::Result<()> {
         },
         at_once: config.requests_at_once,
         timeout: config.request_timeout,
+        door,
         ..Shell::default()
     };
     // Longer than any answer may take to begin.

@@ -5,9 +5,12 @@ mod evidence;
 pub use evidence::evidence;
 
 use crate::app::App;
+use crate::app::who::Right;
 use crate::core::documents::{Pathway, Problems};
 use crate::evidence::load_examples;
 use crate::pathways::{self, PathwayError, Saved};
+use crate::people::{self, NewPerson, NewToken, PeopleError, Role};
+use uuid::Uuid;
 
 /// The documents of the demonstration, by file name.
 pub const PATHWAYS: &[(&str, &str)] = &[
@@ -73,6 +76,51 @@ pub async fn load(app: &App) -> Result<Vec<Saved>, PathwayError> {
 /// When the database fails.
 pub async fn remove(app: &App) -> Result<u64, PathwayError> {
     pathways::remove_examples(app, &documents()?).await
+}
+
+/// The people of the demonstration.
+#[derive(Clone, Debug)]
+pub struct DemoPeople {
+    /// Public id of each, with what they are, in words; the first is whom visitors are.
+    pub ids: Vec<(Uuid, &'static str)>,
+    /// A token that reads.
+    pub token: String,
+}
+
+/// Adds the invented people of the demonstration. Nobody knows their passwords: they are signed in without.
+///
+/// # Errors
+/// When the database fails.
+pub async fn people(app: &App) -> Result<DemoPeople, PeopleError> {
+    let invented = [
+        ("Mara Ellgren", "mara.ellgren", Role::Preparer, "the preparer"),
+        ("Tomas Quarnby", "tomas.quarnby", Role::Approver, "the approver"),
+        (
+            "Ida Rosswick",
+            "ida.rosswick",
+            Role::Administrator,
+            "the administrator",
+        ),
+    ];
+    let mut ids = Vec::new();
+    for (name, sign_in_name, role, words) in invented {
+        let new = NewPerson {
+            name: name.into(),
+            sign_in_name: sign_in_name.into(),
+            roles: [role].into(),
+            audit: None,
+            password: Some(people::secrets::fresh(&app.clock)),
+        };
+        ids.push((people::add(app, new).await?.person.id, words));
+    }
+    let new = NewToken {
+        label: "demonstration".into(),
+        scopes: [Right::Read].into(),
+        days: 30,
+    };
+    let preparer = ids.first().map(|(id, _)| *id);
+    let token = people::make_token(app, preparer, new).await?.token;
+    Ok(DemoPeople { ids, token })
 }
 
 #[cfg(test)]

@@ -2,6 +2,7 @@
 
 use super::reading::{Reading, Row};
 use crate::core::documents::statement::facts::Law;
+use crate::core::domain::{Citation, Status};
 use crate::core::statement::items::{Asked, Item, Items, LawLine, Place};
 
 /// Both tables.
@@ -21,6 +22,23 @@ pub(super) fn read(reading: &mut Reading) -> Items {
 
 fn named(word: &str) -> Option<Law> {
     Law::ALL.iter().copied().find(|law| law.name() == word)
+}
+
+/// Where an item is asked for. These are no figures: one of our own is allowed, and a recalled one is said so where it
+/// stands, not in the list of figures from memory.
+fn citation(reading: &mut Reading, row: &Row) -> Citation {
+    let statuses = [Status::Read, Status::Memory, Status::Own];
+    let status = statuses
+        .into_iter()
+        .find(|status| status.word() == row.text("status"));
+    let source = row.text("source").to_owned();
+    if source.is_empty() || status.is_none() {
+        reading.problem(&row.place(), "source or status is missing or not known");
+    }
+    Citation {
+        source,
+        status: status.unwrap_or(Status::Own),
+    }
 }
 
 fn item(reading: &mut Reading, row: &Row) -> Item {
@@ -57,7 +75,7 @@ fn item(reading: &mut Reading, row: &Row) -> Item {
         why: text("why"),
         place,
         pointer: text("pointer"),
-        citation: reading.citation(row, &format!("statement item {}", row.text("id"))),
+        citation: citation(reading, row),
     }
 }
 
@@ -82,6 +100,6 @@ fn law(reading: &mut Reading, row: &Row) -> Option<LawLine> {
             .map(str::to_owned)
             .collect(),
         keep_years,
-        citation: reading.citation(row, &format!("law {} on statements", law.name())),
+        citation: citation(reading, row),
     })
 }

@@ -196,6 +196,7 @@ pub async fn assessment(
     revision: Option<i64>,
     rule_set: Option<&str>,
 ) -> Result<AssessmentBytes, PathwayError> {
+    seen(app, id)?;
     let basis = basis(app).await?;
     if revision.is_none() {
         let head = head(app, id).await?;
@@ -286,6 +287,15 @@ pub(super) fn key<'k>(document: &'k str, rule_set: &'k str, basis: &'k Basis) ->
     }
 }
 
+/// Refuses what whoever asks was not invited to, as if it were not there.
+pub(super) fn seen(app: &App, id: Uuid) -> Result<(), PathwayError> {
+    if app.who.sees_pathway(id) {
+        Ok(())
+    } else {
+        Err(PathwayError::NotFound(What::Pathway))
+    }
+}
+
 pub(super) fn missing(revision: Option<i64>) -> What {
     if revision.is_some() {
         What::Revision
@@ -310,6 +320,7 @@ fn answer(revision: i64, pathway_hash: String, rule_set: &str, kept: Kept) -> As
 /// # Errors
 /// `NotFound`, or when the database fails.
 pub async fn face(app: &App, id: Uuid) -> Result<String, PathwayError> {
+    seen(app, id)?;
     let basis = basis(app).await?;
     let head = head(app, id).await?;
     let Head {

@@ -1,6 +1,6 @@
 //! Defaults beside actuals of a stored pathway.
 
-use super::assess::{compute, document, lines, missing};
+use super::assess::{compute, document, lines, missing, seen};
 use super::{PathwayError, sql};
 use crate::app::App;
 use crate::core::documents::Pathway;
@@ -25,6 +25,7 @@ pub struct Defaults {
 /// `NotFound`; when the document cannot be evaluated under the rule set, with its defaults or without; or when the database
 /// fails.
 pub async fn defaults(app: &App, id: Uuid, rule_set: Option<&str>) -> Result<Defaults, PathwayError> {
+    seen(app, id)?;
     let basis = basis(app).await?;
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, None).await?;

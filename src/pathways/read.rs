@@ -1,6 +1,6 @@
 //! Reading pathways back: documents, history, what changed, and who uses a published row.
 
-use super::assess::{document, missing};
+use super::assess::{document, missing, seen};
 use super::rows::{self, Rows};
 use super::sql::RevisionRow;
 use super::{Change, PathwayError, Summary, What, changes as differences, public_id, sql, time};
@@ -118,6 +118,7 @@ pub async fn revision(app: &App, id: Uuid, number: i64) -> Result<Stored, Pathwa
 }
 
 async fn find(app: &App, id: Uuid, number: Option<i64>) -> Result<RevisionRow, PathwayError> {
+    seen(app, id)?;
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, number).await?;
     found.ok_or(PathwayError::NotFound(missing(number)))
@@ -139,6 +140,7 @@ pub async fn stage(app: &App, id: Uuid, key: &str) -> Result<(Stage, String), Pa
 /// # Errors
 /// `NotFound`, or when the database fails.
 pub async fn revisions(app: &App, id: Uuid) -> Result<Vec<Revision>, PathwayError> {
+    seen(app, id)?;
     let basis = basis(app).await?;
     let mut reader = app.store.reader().await?;
     let history = sql::revisions(&mut reader, app.organisation, id, &basis.settings_hash).await?;
@@ -191,7 +193,12 @@ pub async fn uses_of_factor(app: &App, factor: &str) -> Result<Vec<FactorUse>, P
             co_product: row.place.co_product_key,
         })
     };
-    uses.into_iter().map(place).collect()
+    let seen = |place: &Result<FactorUse, PathwayError>| {
+        place
+            .as_ref()
+            .map_or(true, |place| app.who.sees_pathway(place.pathway))
+    };
+    uses.into_iter().map(place).filter(seen).collect()
 }
 
 /// Makes the rows of every current document again and compares: the pathways whose rows differ.

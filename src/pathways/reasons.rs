@@ -1,7 +1,7 @@
 //! Written reasons for warnings. They stand beside the pathway: the assessment that is kept has none, so that it can be made
 //! again; they are put on its findings where it is read.
 
-use super::assess::{bare, compute};
+use super::assess::{bare, compute, seen};
 use super::{Expected, PathwayError, What, sql};
 use crate::app::App;
 use crate::audit_trail::{self, Deed};
@@ -49,6 +49,7 @@ pub struct Reasons {
 /// # Errors
 /// `NotFound`, or when the database fails.
 pub async fn reasons(app: &App, id: Uuid) -> Result<Reasons, PathwayError> {
+    seen(app, id)?;
     let mut reader = app.store.reader().await?;
     let found = sql::revision(&mut reader, app.organisation, id, None).await?;
     let found = found.ok_or(PathwayError::NotFound(What::Pathway))?;

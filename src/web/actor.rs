@@ -1,5 +1,6 @@
 //! Who asks, with the right a handler needs: `Actor<CanWrite>` in a signature is the check.
 
+use super::form_check::FormCheck;
 use super::problem::Refusal;
 use crate::app::who::{Right, Who};
 use crate::app::{App, OrganisationId};
@@ -86,6 +87,14 @@ impl<N: Needs> FromRequestParts<App> for Actor<N> {
             None => app.asked_by(app.organisation, Arc::new(Who::stranger())),
         };
         check(&app.who, N::RIGHT, N::WORDS)?;
+        // Without a word of the layer that looks at forms, nothing that changes something is believed.
+        let passed = match parts.extensions.get::<FormCheck>() {
+            Some(check) => *check == FormCheck::Passed,
+            None => parts.method.is_safe(),
+        };
+        if !passed {
+            return Err(Refusal::form_token());
+        }
         Ok(Actor {
             app,
             right: PhantomData,

@@ -1,5 +1,7 @@
 //! What stands round every page: its title, the place in the navigation, the same data as an address.
 
+use super::visitor;
+
 /// A word of the navigation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Section {
@@ -17,6 +19,12 @@ pub enum Section {
     AuditTrail,
     /// The API in words.
     Api,
+    /// One's own account.
+    Me,
+    /// The people of the organisation.
+    People,
+    /// The way in.
+    SignIn,
     /// None of them: a page that says what went wrong.
     Elsewhere,
 }
@@ -86,6 +94,16 @@ impl Frame {
     /// The address of an embedded file.
     pub fn asset(&self, name: &str) -> &'static str {
         super::assets::url(name)
+    }
+
+    /// The slot of who looks at the page.
+    pub fn visitor(&self) -> String {
+        visitor::who_slot(match self.section {
+            Section::Me => visitor::Place::Me,
+            Section::People => visitor::Place::People,
+            Section::SignIn => visitor::Place::SignIn,
+            _ => visitor::Place::Elsewhere,
+        })
     }
 
     /// The words of the navigation: address, word, whether this page is there.

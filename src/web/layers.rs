@@ -4,6 +4,7 @@
 use super::extract::{Limits, is_of_type};
 use super::metrics;
 use super::problem::{Refusal, RefusalPage, shape};
+use super::visitor;
 use axum::Router;
 use axum::extract::{DefaultBodyLimit, Extension, Request, State};
 use axum::http::header::{
@@ -95,6 +96,7 @@ pub fn around_all<S: Clone + Send + Sync + 'static>(
             .layer(from_fn(metrics::measure))
             .layer(CompressionLayer::new().compress_when(compressible))
             .layer(map_response(secured))
+            .layer(from_fn(visitor::fill))
             .layer(from_fn_with_state(page, shape))
             .layer(CatchPanicLayer::custom(panicked))
             .layer(CsrfLayer::new())

@@ -7,10 +7,12 @@ pub mod assets;
 pub mod blocking;
 pub mod calculator;
 pub mod conditional;
+pub mod cookies;
 pub mod csv;
 pub mod error_page;
 pub mod extract;
 pub mod filters;
+pub mod form_check;
 pub mod frame;
 pub mod health;
 pub mod idempotency;
@@ -24,6 +26,7 @@ pub mod patience;
 pub mod problem;
 pub mod router;
 pub mod typed;
+pub mod visitor;
 
 pub use problem::Refusal;
 pub use router::{Shell, router};
@@ -37,5 +40,6 @@ pub async fn serve(
     router: axum::Router,
     stop: impl Future<Output = ()> + Send + 'static,
 ) -> std::io::Result<()> {
-    axum::serve(listener, router).with_graceful_shutdown(stop).await
+    let service = router.into_make_service_with_connect_info::<patience::Peer>();
+    axum::serve(listener, service).with_graceful_shutdown(stop).await
 }

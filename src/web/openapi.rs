@@ -11,6 +11,9 @@ use axum::response::Response;
 use std::collections::BTreeMap;
 use std::sync::Arc;
 use utoipa::openapi::path::{Operation, ParameterBuilder, ParameterIn, PathItem};
+use utoipa::openapi::security::{
+    ApiKey, ApiKeyValue, HttpAuthScheme, HttpBuilder, SecurityRequirement, SecurityScheme,
+};
 use utoipa::openapi::{
     ContentBuilder, HeaderBuilder, InfoBuilder, Object, OpenApi, OpenApiBuilder, Ref, RefOr, ResponseBuilder,
     Schema, Type,
@@ -23,7 +26,8 @@ use utoipa_axum::routes;
 const ABOUT: &str = "Well-to-wheel greenhouse-gas accounting of fuel ethanol: documents in, assessments out. \
     Figures are JSON numbers, units are texts. Every refusal is problem JSON (RFC 9457); whatever is wrong with a \
     document is told all at once, each with its JSON pointer and a remedy. Writes name the revision they read in \
-    If-Match. There is no sign-in yet: the service answers whoever can reach it.";
+    If-Match. Scripts send a token as `Authorization: Bearer ...`: make one at /me, or with `wheelwort people token`. \
+    A page that writes with its cookie sends the token of its forms in `X-Form-Token`, or comes from the same origin.";
 
 /// The description as it is served.
 #[derive(Clone, Debug)]
@@ -85,11 +89,16 @@ fn completed(mut api: OpenApi) -> OpenApi {
     components
         .schemas
         .insert(Problem::name().into_owned(), Problem::schema());
+    components
+        .security_schemes
+        .extend(schemes().map(|(name, scheme)| (name, RefOr::T(scheme))));
+    let either = ["token", "session"].map(|name| SecurityRequirement::new(name, Vec::<String>::new()));
+    api.security = Some(either.into());
     for (path, item) in &mut api.paths.paths {
         if let Some(post) = item.post.as_mut().filter(|_| idempotency::honoured(path)) {
             takes_a_key(post);
         }
-        for (writes, operation) in operations(item) {
+        for operation in operations(item) {
             let has_body = operation.request_body.is_some();
             let named = path.contains('{');
             let compares = operation
@@ -112,8 +121,16 @@ fn completed(mut api: OpenApi) -> OpenApi {
             if named {
                 may_be.push((404, "There is nothing of that name."));
             }
-            if writes {
-                may_be.push((403, "The request was sent from the page of another site."));
+            if path.starts_with("/health/") || path == "/api/v1/openapi.json" {
+                operation.security = Some(Vec::new());
+            }
+            if !path.starts_with("/health/") {
+                may_be.push((401, "Nobody signed in, or the token is not good (any more)."));
+                may_be.push((
+                    403,
+                    "Whoever asks has not the right, or a page of another site sent it.",
+                ));
+                may_be.push((429, "Too many tries; `Retry-After` says when to come back."));
             }
             if has_body {
                 may_be.push((408, "The body did not arrive in time."));
@@ -142,6 +159,23 @@ fn completed(mut api: OpenApi) -> OpenApi {
         }
     }
     api
+}
+
+/// By what means one comes in.
+fn schemes() -> [(String, SecurityScheme); 2] {
+    let token = HttpBuilder::new()
+        .scheme(HttpAuthScheme::Bearer)
+        .bearer_format("wwt_ and 43 letters")
+        .description(Some(
+            "A token of a person, for scripts: scoped, with an end, revocable.",
+        ))
+        .build();
+    let session =
+        ApiKeyValue::with_description(super::cookies::SESSION, "The cookie of a browser that signed in.");
+    [
+        ("token".into(), SecurityScheme::Http(token)),
+        ("session".into(), SecurityScheme::ApiKey(ApiKey::Cookie(session))),
+    ]
 }
 
 /// What a POST that honours `Idempotency-Key` takes, and what it may answer because of it.
@@ -180,15 +214,10 @@ fn takes_a_key(post: &mut Operation) {
     }
 }
 
-fn operations(item: &mut PathItem) -> impl Iterator<Item = (bool, &mut Operation)> {
-    [
-        (false, &mut item.get),
-        (true, &mut item.put),
-        (true, &mut item.post),
-        (true, &mut item.delete),
-    ]
-    .into_iter()
-    .filter_map(|(writes, operation)| operation.as_mut().map(|operation| (writes, operation)))
+fn operations(item: &mut PathItem) -> impl Iterator<Item = &mut Operation> {
+    [&mut item.get, &mut item.put, &mut item.post, &mut item.delete]
+        .into_iter()
+        .filter_map(Option::as_mut)
 }
 
 fn problem(status: u16, words: &str) -> RefOr<utoipa::openapi::Response> {
@@ -199,6 +228,8 @@ fn problem(status: u16, words: &str) -> RefOr<utoipa::openapi::Response> {
         .description(words)
         .content(PROBLEM_JSON, content);
     let headers: BTreeMap<u16, (&str, &str)> = BTreeMap::from([
+        (401, ("WWW-Authenticate", "By what means to come in.")),
+        (429, ("Retry-After", "Seconds to wait.")),
         (405, ("Allow", "The methods that this address takes.")),
         (412, ("ETag", "The present revision.")),
         (503, ("Retry-After", "Seconds to wait.")),

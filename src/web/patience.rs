@@ -1,7 +1,8 @@
 //! Takes connections, as many as there are places, and hangs up on those that neither read nor write for too long:
 //! a slow or silent client must not keep a place for ever.
 
-use axum::serve::Listener;
+use axum::extract::connect_info::Connected;
+use axum::serve::{IncomingStream, Listener};
 use std::future::Future;
 use std::io;
 use std::net::SocketAddr;
@@ -57,6 +58,16 @@ impl Listener for Patient {
 
     fn local_addr(&self) -> io::Result<SocketAddr> {
         self.listener.local_addr()
+    }
+}
+
+/// The other end of a connection: a client, or a proxy before us.
+#[derive(Clone, Copy, Debug)]
+pub struct Peer(pub SocketAddr);
+
+impl Connected<IncomingStream<'_, Patient>> for Peer {
+    fn connect_info(stream: IncomingStream<'_, Patient>) -> Peer {
+        Peer(*stream.remote_addr())
     }
 }
 

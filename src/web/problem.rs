@@ -1,10 +1,12 @@
 //! What a request is answered that cannot be granted: problem JSON (RFC 9457) for programs, a page for people. Every
 //! refusal of the service goes through here, those of the router and of the layers too.
 
+use super::visitor::Visitor;
 use crate::core::documents::{Problem, Problems};
 use axum::body::Body;
 use axum::extract::{Request, State};
-use axum::http::header::{ACCEPT, ALLOW, CACHE_CONTROL, CONTENT_TYPE, ETAG, RETRY_AFTER};
+use axum::http::header::{ACCEPT, ALLOW, AUTHORIZATION, CACHE_CONTROL, CONTENT_TYPE, ETAG, RETRY_AFTER};
+use axum::http::uri::PathAndQuery;
 use axum::http::{HeaderMap, HeaderName, HeaderValue, Method, StatusCode};
 use axum::middleware::Next;
 use axum::response::{IntoResponse, Response};
@@ -155,6 +157,19 @@ impl Refusal {
             ..Refusal::of(StatusCode::FORBIDDEN)
         }
         .detail(detail)
+    }
+
+    /// The form carries no token of this visitor: 403.
+    pub fn form_token() -> Refusal {
+        Refusal {
+            kind: "form-token",
+            title: "Send it again",
+            ..Refusal::of(StatusCode::FORBIDDEN)
+        }
+        .detail(
+            "The form does not belong to your present session. Go back, load the page again, and send it from there; \
+             nothing was changed. A script sends a token as `Authorization: Bearer ...`, or the page's token in X-Form-Token.",
+        )
     }
 
     /// The same refusal of a document that stands inside another, at this pointer.
@@ -371,10 +386,24 @@ pub async fn shape(State(page): State<RefusalPage>, request: Request, next: Next
         .and_then(|id| id.header_value().to_str().ok())
         .map(str::to_owned);
     let as_page = wants_page(&path, request.headers());
-    let response = next.run(request).await;
+    let way_back =
+        (as_page && method.is_safe() && !request.headers().contains_key(AUTHORIZATION)).then(|| {
+            request
+                .uri()
+                .path_and_query()
+                .map_or("/", PathAndQuery::as_str)
+                .to_owned()
+        });
+    let mut response = next.run(request).await;
     let Some(refusal) = refusal_of(&response) else {
         return response;
     };
+    if let Some(way_back) = way_back
+        && refusal.status == StatusCode::UNAUTHORIZED
+    {
+        return super::answers::see_other(&super::links::sign_in(&way_back));
+    }
+    let visitor = response.extensions_mut().remove::<Visitor>();
     let id = id.as_deref();
     if as_page {
         let asked = Asked {
@@ -382,7 +411,11 @@ pub async fn shape(State(page): State<RefusalPage>, request: Request, next: Next
             path: &path,
             request: id,
         };
-        refusal.answer("text/html; charset=utf-8", page(&refusal, asked))
+        let mut answer = refusal.answer("text/html; charset=utf-8", page(&refusal, asked));
+        if let Some(visitor) = visitor {
+            answer.extensions_mut().insert(visitor);
+        }
+        answer
     } else {
         refusal.as_json(id)
     }

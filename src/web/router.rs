@@ -8,17 +8,20 @@ use super::problem::{Refusal, RefusalPage};
 use super::{api_page, error_page, idempotency};
 use super::{assets, health, layers};
 use crate::app::App;
-use crate::{audit_trail, calculators, demo, evidence, factors, pathways, rules};
+use crate::people::pages::gate::{Door, Gate, authenticate};
+use crate::{audit_trail, calculators, demo, evidence, factors, pathways, people, rules};
 use axum::Router;
 use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
+use axum::middleware::from_fn_with_state;
 use axum::response::Redirect;
 use axum::routing::{get, post};
+use std::sync::Arc;
 use std::time::Duration;
 use utoipa_axum::router::OpenApiRouter;
 
 /// How the shell around the use cases is set up.
-#[derive(Clone, Copy, Debug)]
+#[derive(Clone, Debug)]
 pub struct Shell {
     /// What a request may take.
     pub limits: Limits,
@@ -28,6 +31,8 @@ pub struct Shell {
     pub timeout: Duration,
     /// Makes the page of a refusal.
     pub refusal_page: RefusalPage,
+    /// How people come in.
+    pub door: Door,
 }
 
 impl Default for Shell {
@@ -37,6 +42,7 @@ impl Default for Shell {
             at_once: 256,
             timeout: Duration::from_secs(30),
             refusal_page: error_page::page,
+            door: Door::default(),
         }
     }
 }
@@ -45,13 +51,18 @@ impl Default for Shell {
 pub fn router(app: App, shell: Shell) -> Router {
     let (api, description) = api().split_for_parts();
     // Inside of the layer that knows who asks: a key belongs to a person.
-    let once = axum::middleware::from_fn_with_state(app.clone(), idempotency::layer);
+    let once = from_fn_with_state(app.clone(), idempotency::layer);
     let work = api
         .layer(once)
         .merge(pages_router())
         .merge(assets::routes())
         .fallback(nowhere)
         .layer(Extension(Document::of(description)));
+    let gate = Gate {
+        app: app.clone(),
+        door: Arc::new(shell.door),
+    };
+    let work = work.layer(from_fn_with_state(gate, authenticate));
     let work = layers::around_work(work, shell.at_once, shell.timeout, shell.limits);
     // Health stands outside: a busy program is a live one.
     let (health, _) = health::routes().split_for_parts();
@@ -71,7 +82,8 @@ fn api() -> OpenApiRouter<App> {
         .merge(factors::api::routes())
         .merge(rules::api::routes())
         .merge(calculators::api::routes())
-        .merge(audit_trail::api::routes());
+        .merge(audit_trail::api::routes())
+        .merge(people::api::routes());
     let mut all = OpenApiRouter::with_openapi(openapi::begun()).nest("/api/v1", v1);
     // Described with the rest, routed apart.
     all.get_openapi_mut().merge(health::routes().into_openapi());
@@ -90,6 +102,7 @@ pub fn pages_router() -> Router<App> {
         .merge(factors::pages::routes())
         .merge(rules::pages::routes())
         .merge(audit_trail::pages::routes())
+        .merge(people::pages::routes())
 }
 
 /// Puts the demonstration in, marked as such.

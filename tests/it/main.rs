@@ -16,6 +16,7 @@ mod evidence;
 mod exchange;
 mod faults;
 mod levers;
+mod people;
 mod statements;
 mod store;
 mod support;

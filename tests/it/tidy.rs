@@ -56,7 +56,7 @@ const ROOMS: &[(&str, &[&str])] = &[
     (
         "things",
         &[
-            "core", "library", "charts", "exchange", "store", "web", "app", "clock", "THINGS",
+            "core", "library", "charts", "exchange", "store", "web", "app", "clock", "config", "THINGS",
         ],
     ),
     (

@@ -4,6 +4,7 @@ pub(crate) mod sql;
 
 use super::assess::{Made, compute, document, keep_soon, lines, make};
 use super::{PathwayError, Summary, public_id, reasons, time};
+use crate::app::who::Sight;
 use crate::app::{App, Basis};
 use crate::core::documents::Problem;
 use crate::rules;
@@ -113,6 +114,7 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         after.as_ref(),
         i64::from(limit) + 1,
         &basis.settings_hash,
+        chosen(&app.who.sight).as_deref(),
     )
     .await?;
     drop(reader);
@@ -128,6 +130,17 @@ pub async fn list(app: &App, question: &Question) -> Result<Page, PathwayError> 
         lines.push(line(app, &basis, row).await?);
     }
     Ok(Page { lines, next })
+}
+
+/// The pathways that an auditor from outside was invited to, as a JSON list.
+fn chosen(sight: &Sight) -> Option<String> {
+    match sight {
+        Sight::All => None,
+        Sight::Chosen { pathways, .. } => {
+            let ids: Vec<_> = pathways.iter().map(|id| format!("\"{id}\"")).collect();
+            Some(format!("[{}]", ids.join(",")))
+        }
+    }
 }
 
 fn unknown_place() -> PathwayError {

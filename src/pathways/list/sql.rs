@@ -20,7 +20,8 @@ macro_rules! listed {
             "WHERE p.organisation_id = $1 AND (p.archived_at IS NOT NULL) = $3 ",
             "AND ($4 IS NULL OR p.name_folded LIKE $4 ESCAPE '\\') ",
             "AND ($5 IS NULL OR p.feedstock = $5) AND ($6 IS NULL OR p.rule_set = $6) ",
-            "AND ($7 IS NULL OR p.example = $7) AND ($8 IS NULL OR ",
+            "AND ($7 IS NULL OR p.example = $7) ",
+            "AND ($12 IS NULL OR p.public_id IN (SELECT value FROM json_each($12))) AND ($8 IS NULL OR ",
             $further,
             ") ORDER BY ",
             $order,
@@ -149,7 +150,7 @@ impl Place {
     }
 }
 
-/// The lines after a place.
+/// The lines after a place; of these pathways alone, if they are given (public ids as a JSON list).
 pub(super) async fn lines(
     c: &mut Connection,
     who: OrganisationId,
@@ -157,6 +158,7 @@ pub(super) async fn lines(
     after: Option<&Place>,
     limit: i64,
     settings: &str,
+    chosen: Option<&str>,
 ) -> Result<Vec<LineRow>, StoreError> {
     let text = match question.sort {
         Sort::Updated => BY_UPDATE,
@@ -182,6 +184,7 @@ pub(super) async fn lines(
         .bind(after.map(|place| place.id.as_str()))
         .bind(limit)
         .bind(settings)
+        .bind(chosen)
         .fetch_all(c)
         .await?)
 }

@@ -4,6 +4,7 @@ mod backup;
 mod evaluate;
 mod help;
 mod serve;
+mod verify;
 
 use std::ffi::OsStr;
 use std::io::Write;
