@@ -9,6 +9,7 @@ pub mod clock;
 pub mod config;
 pub mod core;
 pub mod demo;
+pub mod evidence;
 pub mod exchange;
 pub mod factors;
 pub mod library;
@@ -24,6 +25,7 @@ pub fn all_statements() -> Vec<&'static str> {
     [
         store::statements(),
         audit_trail::statements(),
+        evidence::statements(),
         pathways::statements(),
         people::statements(),
         rules::statements(),

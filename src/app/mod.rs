@@ -16,6 +16,7 @@ use std::path::Path;
 use std::sync::Arc;
 use who::Who;
 
+pub use crate::config::{EvidenceStore, S3};
 pub use crate::core::engine::assess::PROGRAM;
 pub use crate::store::OrganisationId;
 
@@ -86,6 +87,10 @@ pub struct App {
     pub who: Arc<Who>,
     /// The accounting.
     pub evaluate: Evaluate,
+    /// Folder of the data.
+    pub folder: Arc<Path>,
+    /// Where the files of evidence are kept.
+    pub evidence_store: Arc<EvidenceStore>,
     /// Immutable bytes at hand.
     pub(crate) memory: Arc<Memory>,
     /// Those who come in.
@@ -131,8 +136,18 @@ impl App {
             organisation,
             who: Arc::new(Who::command()),
             evaluate,
+            folder: folder_of(file),
+            evidence_store: Arc::default(),
             memory: Arc::new(Memory::default()),
         })
+    }
+
+    /// The same program with its files of evidence kept elsewhere.
+    pub fn keeping_evidence_in(self, store: EvidenceStore) -> App {
+        App {
+            evidence_store: Arc::new(store),
+            ..self
+        }
     }
 
     /// Does the accounting of a document.
@@ -163,6 +178,8 @@ impl App {
             organisation: OrganisationId::NOBODY,
             who: Arc::new(Who::command()),
             evaluate,
+            folder: folder_of(file),
+            evidence_store: Arc::default(),
             memory: Arc::new(Memory::default()),
         })
     }
@@ -187,5 +204,13 @@ impl App {
     /// Finishes the writes that wait and closes the database.
     pub async fn close(&self) {
         self.store.close().await;
+    }
+}
+
+/// The folder that a data file lies in.
+fn folder_of(file: &Path) -> Arc<Path> {
+    match file.parent() {
+        Some(folder) if folder != Path::new("") => folder.into(),
+        _ => Path::new(".").into(),
     }
 }

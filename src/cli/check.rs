@@ -3,8 +3,9 @@
 use super::{COULD_NOT, print, say};
 use crate::app::App;
 use crate::clock::Clock;
+use crate::config::Config;
 use crate::store::{FILE, StoreError};
-use crate::{audit_trail, library, pathways};
+use crate::{audit_trail, evidence, library, pathways};
 use std::path::Path;
 
 /// What was looked at, counted for the closing line.
@@ -26,10 +27,10 @@ impl Report {
 }
 
 /// Looks at the data in a folder; 0 if they are sound.
-pub(super) fn run(folder: &Path) -> u8 {
+pub(super) fn run(config: &Config) -> u8 {
     let mut report = Report::default();
     let outcome = super::serve::running(async {
-        look(folder, &mut report).await;
+        look(config, &mut report).await;
         Ok(())
     });
     if let Err(error) = outcome {
@@ -48,27 +49,28 @@ pub(super) fn run(folder: &Path) -> u8 {
     u8::from(report.findings > 0)
 }
 
-async fn look(folder: &Path, report: &mut Report) {
+async fn look(config: &Config, report: &mut Report) {
+    let folder: &Path = &config.data;
     let file = folder.join(FILE);
     if !file.is_file() {
         report.finding(&format!("{}: there is no {FILE} in it", folder.display()));
         return;
     }
     let app = match App::open_to_read(&file, Clock::system(), library::book()).await {
-        Ok(app) => app,
+        Ok(app) => app.keeping_evidence_in(config.evidence_store.clone()),
         Err(error) => {
             report.finding(&format!("{}: {error}", file.display()));
             return;
         }
     };
-    if let Err(error) = parts(&app, folder, report).await {
+    if let Err(error) = parts(&app, report).await {
         report.finding(&format!("{}: {error}", file.display()));
     }
     app.close().await;
 }
 
 /// Every part in turn; what cannot be read at all ends it.
-async fn parts(app: &App, folder: &Path, report: &mut Report) -> Result<(), StoreError> {
+async fn parts(app: &App, report: &mut Report) -> Result<(), StoreError> {
     for line in app.store.unsound().await? {
         report.finding(&format!("data file: {line}"));
     }
@@ -78,7 +80,7 @@ async fn parts(app: &App, folder: &Path, report: &mut Report) -> Result<(), Stor
         documents(&app.on_behalf_of(organisation), report).await;
     }
     report.notes.push("every revision".to_owned());
-    evidence(app, folder, report).await;
+    files(app, report).await;
     Ok(())
 }
 
@@ -113,5 +115,27 @@ async fn documents(app: &App, report: &mut Report) {
     }
 }
 
-/// The place for files of evidence: each against its hash. Nothing keeps any yet.
-async fn evidence(_app: &App, _folder: &Path, _report: &mut Report) {}
+/// Every file of evidence against its hash. One that no record names is no finding: an interrupted upload leaves it.
+async fn files(app: &App, report: &mut Report) {
+    let faults = match evidence::verify(app).await {
+        Ok(faults) => faults,
+        Err(error) => return report.finding(&format!("evidence: {error}")),
+    };
+    let (serious, others): (Vec<_>, Vec<_>) = faults.into_iter().partition(evidence::Fault::is_serious);
+    for fault in serious {
+        report.finding(&format!("evidence of {fault}"));
+    }
+    report.notes.push("every file of evidence".to_owned());
+    if !others.is_empty() {
+        let names: Vec<&str> = others.iter().map(|fault| fault.id.as_str()).collect();
+        report.notes.push(format!(
+            "{} that no record names ({})",
+            if names.len() == 1 {
+                "1 file".to_owned()
+            } else {
+                format!("{} files", names.len())
+            },
+            names.join(", ")
+        ));
+    }
+}

@@ -99,7 +99,8 @@ const CHECK_EXAMPLES: &str = "\
 Examples:
   wheelwort check --data data               also while the service runs
 
-Looks at the file, every revision against its hash, and the audit trail link by link, and changes nothing.
+Looks at the file, every revision against its hash, the audit trail link by link, and every file of evidence
+against its hash, and changes nothing. Evidence that is kept elsewhere is read there: give the settings of the service.
 One line on standard output for each finding, then a closing line; it names where the audit trail ends: noted
 elsewhere, that shows later whether the trail was cut.
 Exit codes: 0 sound; 1 not sound, or not to be read.";
@@ -152,7 +153,7 @@ enum Command {
     Verify(verify::Verify),
     /// Look whether stored data are still what was stored.
     #[command(after_help = CHECK_EXAMPLES)]
-    Check(Data),
+    Check(Check),
     /// Back up the data of a folder into one file.
     #[command(after_help = BACKUP_EXAMPLES)]
     Backup(Backup),
@@ -177,6 +178,15 @@ struct Data {
     /// Folder of the data.
     #[arg(long, value_name = "DIR", env = "WHEELWORT_DATA", default_value = "data")]
     data: PathBuf,
+}
+
+#[derive(Debug, Args)]
+struct Check {
+    #[command(flatten)]
+    data: Data,
+    /// File of settings, in TOML: says where evidence is kept, if elsewhere.
+    #[arg(long, value_name = "FILE")]
+    config: Option<PathBuf>,
 }
 
 #[derive(Debug, Args)]
@@ -257,7 +267,20 @@ pub fn main() -> ExitCode {
         Command::Settings(command) => print_settings(command),
         Command::Health(command) => health::run(command),
         Command::Verify(command) => verify::run(&command),
-        Command::Check(Data { data }) => check::run(&data),
+        Command::Check(Check { data, config }) => {
+            let common = Common {
+                listen: None,
+                config,
+                set: Vec::new(),
+            };
+            match settings(Some(data.data), common) {
+                Ok(settings) => check::run(&settings),
+                Err(error) => {
+                    say(&format!("wheelwort: {:#}", anyhow::Error::from(error)));
+                    COULD_NOT
+                }
+            }
+        }
         Command::Backup(Backup { data, file }) => backup::run(&data.data, &file),
         Command::Restore(Backup { data, file }) => backup::restore(&file, &data.data),
         Command::Openapi => print(router::description().bytes()),

@@ -26,7 +26,9 @@ pub(super) fn run(config: &Config) -> anyhow::Result<()> {
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;
         // Held until the program ends, however it ends.
         let _alone = FolderLock::take(&folder)?;
-        let app = open(&folder).await?;
+        let app = open(&folder)
+            .await?
+            .keeping_evidence_in(config.evidence_store.clone());
         if let Some(first) = &config.first_administrator {
             people::first_of_settings(&app, first).await?;
         }
@@ -98,6 +100,7 @@ async fn until_asked_to_stop(app: App, config: &Config, door: Door) -> anyhow::R
         limits: Limits {
             body_bytes: config.body_bytes,
             batch_lines: config.batch_lines,
+            evidence_bytes: config.evidence_bytes,
             ..Limits::default()
         },
         at_once: config.requests_at_once,

@@ -44,6 +44,29 @@ pub(super) fn web_address(text: &str) -> Result<String, Remedy> {
     Ok(text.trim_end_matches('/').to_owned())
 }
 
+/// The address of a store of files: `https`, or `http` on this machine. Elsewhere whoever listens on the way would read
+/// every file.
+pub(super) fn store_address(text: &str) -> Result<String, Remedy> {
+    let address = web_address(text)?;
+    match address.strip_prefix("http://") {
+        Some(rest) if !is_here(rest) => {
+            Err("give an https address; http is for a store on this machine alone".into())
+        }
+        _ => Ok(address),
+    }
+}
+
+/// True if what follows `http://` begins with a name of this machine.
+fn is_here(rest: &str) -> bool {
+    let place = rest.split('/').next().unwrap_or_default();
+    let host = match place.strip_prefix('[') {
+        Some(number) => number.split(']').next().unwrap_or_default(),
+        None => place.split(':').next().unwrap_or_default(),
+    };
+    let number = host.parse::<std::net::IpAddr>();
+    host == "localhost" || number.is_ok_and(|number| number.is_loopback())
+}
+
 /// Networks with commas between them.
 pub(super) fn networks(text: &str) -> Result<Networks, Remedy> {
     Networks::read(text).map_err(|part| {
@@ -69,4 +92,32 @@ pub(super) fn choice<T: Copy>(text: &str, choices: &[(&str, T)]) -> Result<T, Re
         let names: Vec<&str> = choices.iter().map(|(name, _)| *name).collect();
         format!("give {}", names.join(" or "))
     })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::store_address;
+
+    #[test]
+    fn http_is_for_a_store_on_this_machine() {
+        for good in [
+            "https://files.example",
+            "http://127.0.0.1:9000",
+            "http://[::1]:9000/",
+            "http://localhost:1",
+        ] {
+            assert!(store_address(good).is_ok(), "{good}");
+        }
+        for bad in [
+            "http://files.example",
+            "http://10.0.0.1",
+            "ftp://127.0.0.1",
+            "files.example",
+            "http://127.0.0.1.example",
+            "http://localhost@files.example",
+            "http://localhost.example:80",
+        ] {
+            assert!(store_address(bad).is_err(), "{bad}");
+        }
+    }
 }

@@ -27,7 +27,7 @@ fn without_a_word_only_this_machine_is_served() {
     let config = Given::default().checked().expect("the defaults hold");
     assert!(config.listen.ip().is_loopback());
     assert_eq!((config.listen.port(), config.body_bytes), (8080, 4_194_304));
-    assert_eq!(config.evidence_bytes, 25 << 20);
+    assert_eq!(config.evidence_bytes, 25_000_000);
     assert_eq!(
         (config.metrics_listen, config.first_administrator, config.oidc),
         (None, None, None)

@@ -1,8 +1,13 @@
 //! Demonstration data: one invented company. Everything in these documents is made up; published factors keep their source.
 
+mod evidence;
+
+pub use evidence::evidence;
+
 use crate::app::App;
 use crate::app::who::Right;
 use crate::core::documents::{Pathway, Problems};
+use crate::evidence::load_examples;
 use crate::pathways::{self, PathwayError, Saved};
 use crate::people::{self, NewPerson, NewToken, PeopleError, Role};
 use uuid::Uuid;
@@ -54,15 +59,18 @@ pub fn documents() -> Result<Vec<Pathway>, Problems> {
         .collect()
 }
 
-/// Stores the demonstration; what is there already stays as it is.
+/// Stores the demonstration with its evidence; what is there already stays as it is.
 ///
 /// # Errors
 /// When the database fails.
 pub async fn load(app: &App) -> Result<Vec<Saved>, PathwayError> {
-    pathways::load_examples(app, documents()?).await
+    let documents = documents()?;
+    load_examples(app, evidence()).await?;
+    pathways::load_examples(app, documents).await
 }
 
-/// Takes the demonstration out again, with what was changed in it; how many pathways went.
+/// Takes the demonstration out again, with what was changed in it and the evidence that nothing else names; how many
+/// pathways went.
 ///
 /// # Errors
 /// When the database fails.
@@ -118,6 +126,26 @@ pub async fn people(app: &App) -> Result<DemoPeople, PeopleError> {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use std::collections::BTreeSet;
+
+    #[test]
+    fn evidence_is_there_for_whatever_the_documents_name_and_for_nothing_else() {
+        let documents = documents().expect("they hold");
+        let named: BTreeSet<String> = documents
+            .iter()
+            .flat_map(|document| pathways::rows::Rows::of(document).evidence)
+            .map(|place| place.evidence)
+            .collect();
+        let there: Vec<String> = evidence().into_iter().map(|example| example.id).collect();
+        assert_eq!(there, named.into_iter().collect::<Vec<_>>());
+        for example in evidence() {
+            assert!(
+                example.text.starts_with("Invented for demonstration"),
+                "{}",
+                example.id
+            );
+        }
+    }
 
     #[test]
     fn every_document_holds_and_is_marked() {

@@ -1,6 +1,7 @@
 //! Why a use case of pathways did not do what it was asked. `Display` is for people.
 
 use crate::core::documents::Problems;
+use crate::evidence::EvidenceError;
 use crate::store::StoreError;
 use std::sync::Arc;
 use thiserror::Error;
@@ -50,6 +51,9 @@ pub enum PathwayError {
     /// The database (503 with Retry-After when [`StoreError::is_passing`], else 500).
     #[error(transparent)]
     Store(#[from] StoreError),
+    /// Evidence of the demonstration could not be kept.
+    #[error(transparent)]
+    Evidence(#[from] EvidenceError),
     /// A defect of the program (500).
     #[error("The program made a mistake while it {doing}.")]
     Defect {

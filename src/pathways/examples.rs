@@ -6,6 +6,7 @@ use crate::app::App;
 use crate::audit_trail::{self, Deed};
 use crate::core::documents::{Pathway, Problem};
 use crate::core::engine::assess::hash;
+use crate::evidence;
 use serde_json::json;
 
 /// Stores demonstration documents; those that are there already are left as they are. All are evaluated before the
@@ -39,7 +40,8 @@ pub async fn load_examples(app: &App, documents: Vec<Pathway>) -> Result<Vec<Sav
     Ok(saved)
 }
 
-/// Removes the pathways that began as one of `documents`, with their revisions, in one step; how many went. One that was
+/// Removes the pathways that began as one of `documents`, with their revisions and the evidence that nothing else names, in
+/// one step; how many pathways went. One that was
 /// once saved without the mark is a record and stays, and so does a copy that somebody brought in.
 ///
 /// # Errors
@@ -50,19 +52,26 @@ pub async fn remove_examples(app: &App, documents: &[Pathway]) -> Result<u64, Pa
     let hashes: Vec<String> = documents.iter().map(hash).collect::<Result<_, _>>()?;
     let hashes =
         serde_json::to_string(&hashes).map_err(|e| PathwayError::defect("wrote a list of hashes", e))?;
-    app.store
+    let (gone, files) = app
+        .store
         .write_then(
             move |c| {
                 Box::pin(async move {
                     let gone = sql::remove_examples(c, who, &hashes).await?;
+                    let files = evidence::remove_examples(c, who).await?;
                     if gone > 0 {
                         let deed = Deed::new("removed", "example", "", json!({ "pathways": gone }));
                         audit_trail::add(c, who, &by, now, deed).await?;
                     }
-                    Ok(gone)
+                    Ok::<_, PathwayError>((gone, files))
                 })
             },
             move |_| memory.forget_heads(),
         )
-        .await
+        .await?;
+    if let Err(error) = evidence::forget(app, files).await {
+        // The records are gone; a file that none names is told by the check and does no harm.
+        tracing::warn!(%error, "files of the demonstration were left behind");
+    }
+    Ok(gone)
 }

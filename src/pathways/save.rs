@@ -1,14 +1,16 @@
 //! Saving: a document is evaluated whole and becomes a revision, or nothing is stored at all.
 
 use super::assess::{Made, compute, document, key, lines, make};
-use super::rows::{RowTexts, Rows};
+use super::rows::{self, EvidenceUseRow, RowTexts, Rows};
 use super::{Expected, PathwayError, Saved, Summary, What, sql, time};
 use crate::app::App;
 use crate::audit_trail::{self, Deed};
 use crate::core::documents::pathway::Stage;
 use crate::core::documents::{Pathway, Problem, canonical};
+use crate::evidence;
 use crate::rules::basis;
 use crate::store::memory::{Head, Memory};
+use crate::store::{Connection, OrganisationId};
 use serde_json::json;
 use std::sync::Arc;
 use uuid::Uuid;
@@ -20,11 +22,30 @@ pub(super) struct Prepared {
     pub(super) text: String,
     pub(super) hash: String,
     pub(super) rows: RowTexts,
+    /// Where it names evidence.
+    evidence: Vec<EvidenceUseRow>,
     pub(super) assessment: Made,
 }
 
 /// Evaluates a document and works out everything that is written with it.
 pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
+    let named = rows::evidence::named(&document);
+    match computed(app, document).await {
+        // Whatever is wrong with a document is told at once.
+        Err(PathwayError::Problems(mut problems)) => {
+            let mut reader = app.store.reader().await?;
+            let missing =
+                evidence::missing(&mut reader, app.organisation, &rows::evidence::ids(&named)).await?;
+            for problem in rows::evidence::problems(&named, &missing).into_list() {
+                problems.add(problem.pointer, problem.detail, problem.remedy);
+            }
+            Err(PathwayError::Problems(problems))
+        }
+        other => other,
+    }
+}
+
+async fn computed(app: &App, document: Pathway) -> Result<Arc<Prepared>, PathwayError> {
     let basis = basis(app).await?;
     let app = app.clone();
     compute(lines(&document), move || {
@@ -38,8 +59,11 @@ pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared
             return Err(PathwayError::defect("wrote a pathway", lost));
         }
         let assessment = make(&app, &basis, &document, None)?;
-        let rows = Rows::of(&document).texts();
-        let rows = rows.map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
+        let rows = Rows::of(&document);
+        let evidence = rows.evidence.clone();
+        let rows = rows
+            .texts()
+            .map_err(|error| PathwayError::defect("wrote the rows of a pathway", error))?;
         let hash = canonical::hash(&bytes);
         let text =
             String::from_utf8(bytes).map_err(|error| PathwayError::defect("wrote a pathway", error))?;
@@ -48,6 +72,7 @@ pub(super) async fn prepare(app: &App, document: Pathway) -> Result<Arc<Prepared
             text,
             hash,
             rows,
+            evidence,
             assessment,
         }))
     })
@@ -66,6 +91,17 @@ impl Prepared {
             changed,
             assessment,
         })
+    }
+
+    /// Refuses it where it names evidence that is not there: asked in the transaction that stores it.
+    async fn backed(&self, c: &mut Connection, who: OrganisationId) -> Result<(), PathwayError> {
+        let missing = evidence::missing(c, who, &rows::evidence::ids(&self.evidence)).await?;
+        let problems = rows::evidence::problems(&self.evidence, &missing);
+        if problems.is_empty() {
+            Ok(())
+        } else {
+            Err(PathwayError::Problems(problems))
+        }
     }
 
     /// What the audit trail says of it.
@@ -119,6 +155,7 @@ pub(super) async fn create_prepared(
         .write_then(
             move |c| {
                 Box::pin(async move {
+                    made.backed(c, who).await?;
                     let pathway = sql::add_pathway(c, who, id, &made, now).await?;
                     sql::add_revision(c, who, pathway, 1, &made, reason.as_deref(), now).await?;
                     let deed = made.deed("created", id, 1).because(reason);
@@ -165,6 +202,7 @@ pub async fn replace(
                     if head.hash == job.hash {
                         return Ok((head.number, head.saved_at, false, head.reasons));
                     }
+                    job.backed(c, who).await?;
                     let number = head.number + 1;
                     sql::add_revision(c, who, head.id, number, &job, reason.as_deref(), now).await?;
                     sql::move_on(c, who, head.id, number, &job, now).await?;

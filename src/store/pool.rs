@@ -5,6 +5,7 @@ use sqlx::SqlitePool;
 use sqlx::migrate::MigrateError;
 use sqlx::sqlite::{SqliteConnectOptions, SqliteJournalMode, SqlitePoolOptions, SqliteSynchronous};
 use std::path::Path;
+use std::sync::Arc;
 use std::time::Duration;
 
 /// The tables of this version of the program.
@@ -43,12 +44,31 @@ fn pool(count: u32) -> SqlitePoolOptions {
 pub(super) async fn writer(file: &Path, settings: &Settings) -> Result<SqlitePool, StoreError> {
     let writer = pool(1)
         .connect_with(options(file, settings).create_if_missing(true))
-        .await?;
+        .await
+        .map_err(|error| match error {
+            // Nobody else is here yet: what is waited for at opening is another program's lock.
+            sqlx::Error::PoolTimedOut => StoreError::Locked(Arc::new(error)),
+            error => error.into(),
+        })?;
     if let Err(error) = MIGRATIONS.run(&writer).await {
         writer.close().await;
         return Err(error.into());
     }
+    if let Err(error) = can_write(&writer).await {
+        writer.close().await;
+        return Err(error.into());
+    }
     Ok(writer)
+}
+
+/// SQLite opens a file that it may not write for reading alone and says so at the first write: better now than when
+/// somebody saves. `BEGIN IMMEDIATE` alone passes on such a file, so this writes, and takes it back.
+async fn can_write(writer: &SqlitePool) -> Result<(), sqlx::Error> {
+    let mut connection = writer.acquire().await?;
+    for sql in ["BEGIN IMMEDIATE", "PRAGMA user_version = 1", "ROLLBACK"] {
+        sqlx::query(sql).execute(&mut *connection).await?;
+    }
+    Ok(())
 }
 
 /// Opens the connections that read and can do nothing else.

@@ -25,6 +25,8 @@ pub struct Limits {
     pub body_bytes: usize,
     /// Lines of a batch.
     pub batch_lines: usize,
+    /// Bytes of a file of evidence.
+    pub evidence_bytes: usize,
     /// A body must go on arriving: at most this long between two pieces of it.
     pub body_pause: Duration,
 }
@@ -34,6 +36,7 @@ impl Default for Limits {
         Limits {
             body_bytes: 4 << 20,
             batch_lines: 100_000,
+            evidence_bytes: 25_000_000,
             body_pause: Duration::from_secs(15),
         }
     }
@@ -275,7 +278,7 @@ fn refused_size(limits: &Limits) -> Refusal {
 }
 
 /// A size in words: MB of 1 000 000 bytes, to one decimal.
-fn megabytes(bytes: usize) -> String {
+pub fn megabytes(bytes: usize) -> String {
     // Whole tenths, so that no figure is rounded up beyond the limit.
     let tenths = bytes / 100_000;
     match (tenths / 10, tenths % 10) {

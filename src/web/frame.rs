@@ -13,6 +13,8 @@ pub enum Section {
     Calculators,
     /// Factors, materials and rule sets.
     Factors,
+    /// Files that back figures.
+    Evidence,
     /// Audit trail.
     AuditTrail,
     /// The API in words.
@@ -105,7 +107,7 @@ impl Frame {
     }
 
     /// The words of the navigation: address, word, whether this page is there.
-    pub fn words(&self) -> [(&'static str, &'static str, bool); 6] {
+    pub fn words(&self) -> [(&'static str, &'static str, bool); 7] {
         [
             ("/", "Pathways", self.section == Section::Pathways),
             ("/compare", "Compare", self.section == Section::Compare),
@@ -115,6 +117,7 @@ impl Frame {
                 self.section == Section::Calculators,
             ),
             ("/factors", "Factors", self.section == Section::Factors),
+            ("/evidence", "Evidence", self.section == Section::Evidence),
             ("/audit-trail", "Audit trail", self.section == Section::AuditTrail),
             ("/api", "API", self.section == Section::Api),
         ]

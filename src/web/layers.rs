@@ -1,7 +1,7 @@
 //! What every request passes, outermost first: request id and log, compression, security headers, the shape of
 //! refusals, panics, requests from other sites, limits; and, around the work itself, overload and time.
 
-use super::extract::Limits;
+use super::extract::{Limits, is_of_type};
 use super::metrics;
 use super::problem::{Refusal, RefusalPage, shape};
 use super::visitor;
@@ -25,7 +25,6 @@ use tower_http::compression::predicate::{DefaultPredicate, NotForContentType, Pr
 use tower_http::csrf::CsrfLayer;
 use tower_http::request_id::{MakeRequestUuid, PropagateRequestIdLayer, RequestId, SetRequestIdLayer};
 use tower_http::sensitive_headers::{SetSensitiveRequestHeadersLayer, SetSensitiveResponseHeadersLayer};
-use tower_http::timeout::TimeoutLayer;
 use tower_http::trace::{DefaultOnResponse, TraceLayer};
 use tracing::{Level, Span};
 
@@ -62,10 +61,7 @@ pub fn around_work<S: Clone + Send + Sync + 'static>(
     router.layer(
         ServiceBuilder::new()
             .layer(from_fn_with_state(places, take_place))
-            .layer(TimeoutLayer::with_status_code(
-                StatusCode::SERVICE_UNAVAILABLE,
-                timeout,
-            ))
+            .layer(from_fn_with_state(timeout, in_time))
             .layer(DefaultBodyLimit::max(limits.body_bytes)),
     )
 }
@@ -80,6 +76,8 @@ pub fn around_all<S: Clone + Send + Sync + 'static>(
         .and(NotForContentType::const_new("application/pdf"))
         .and(NotForContentType::const_new("application/vnd.openxmlformats"))
         .and(NotForContentType::const_new("font/"))
+        // Files of evidence go out as they came in.
+        .and(NotForContentType::const_new("application/octet-stream"))
         // A batch is read line by line as it is made; a compressor would hold lines back.
         .and(NotForContentType::const_new("application/x-ndjson"));
     router.layer(
@@ -132,6 +130,24 @@ async fn secured(mut response: Response) -> Response {
         .entry(CACHE_CONTROL)
         .or_insert(HeaderValue::from_static("private, no-cache"));
     response
+}
+
+/// How much longer than other answers one may take that waits for files to arrive.
+const LONGER_FOR_FILES: u32 = 10;
+
+/// Answers 503 when an answer does not begin in time. A form with files may take longer, for as long as it goes on
+/// arriving: a bill on a slow line is minutes under way.
+async fn in_time(State(timeout): State<Duration>, request: Request, next: Next) -> Response {
+    let brings_files = is_of_type(request.headers(), |kind| kind == "multipart/form-data");
+    let timeout = if brings_files {
+        timeout.saturating_mul(LONGER_FOR_FILES)
+    } else {
+        timeout
+    };
+    match tokio::time::timeout(timeout, next.run(request)).await {
+        Ok(response) => response,
+        Err(_) => Refusal::of(StatusCode::SERVICE_UNAVAILABLE).into_response(),
+    }
 }
 
 async fn take_place(State(places): State<Arc<Semaphore>>, request: Request, next: Next) -> Response {

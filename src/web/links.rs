@@ -42,6 +42,11 @@ pub fn factor(full: &str) -> String {
     format!("/factors/{}/{}", segment(edition), segment(row))
 }
 
+/// The page of a piece of evidence.
+pub fn evidence(id: &str) -> String {
+    format!("/evidence/{}", segment(id))
+}
+
 /// The page to sign in at, for somebody who then goes on to `next`.
 pub fn sign_in(next: &str) -> String {
     match next {

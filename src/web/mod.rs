@@ -19,6 +19,7 @@ pub mod idempotency;
 pub mod layers;
 pub mod links;
 pub mod metrics;
+pub mod multipart;
 pub mod openapi;
 pub mod paging;
 pub mod patience;

@@ -9,7 +9,7 @@ use super::{api_page, error_page, idempotency};
 use super::{assets, health, layers};
 use crate::app::App;
 use crate::people::pages::gate::{Door, Gate, authenticate};
-use crate::{audit_trail, calculators, demo, factors, pathways, people, rules};
+use crate::{audit_trail, calculators, demo, evidence, factors, pathways, people, rules};
 use axum::Router;
 use axum::extract::Extension;
 use axum::http::{StatusCode, Uri};
@@ -78,6 +78,7 @@ fn api() -> OpenApiRouter<App> {
     let v1 = OpenApiRouter::new()
         .merge(openapi::routes())
         .merge(pathways::api::routes())
+        .merge(evidence::api::routes())
         .merge(factors::api::routes())
         .merge(rules::api::routes())
         .merge(calculators::api::routes())
@@ -96,6 +97,7 @@ pub fn pages_router() -> Router<App> {
         .route("/example/load", post(load_example))
         .route("/example/remove", post(remove_example))
         .merge(pathways::pages::routes())
+        .merge(evidence::pages::routes())
         .merge(calculators::pages::routes())
         .merge(factors::pages::routes())
         .merge(rules::pages::routes())

@@ -103,6 +103,8 @@ impl Site {
             "/factors?q=nitrate".to_owned(),
             "/factors/eu-2022-996/fert_n_an".to_owned(),
             "/materials/wheat".to_owned(),
+            "/evidence".to_owned(),
+            "/evidence/EV-2026-201".to_owned(),
             "/rule-sets".to_owned(),
             "/rule-sets/eu-2018-2001".to_owned(),
             format!("{}/defaults", self.one),

@@ -12,6 +12,7 @@ mod api;
 mod audit_trail;
 mod cli;
 mod engine;
+mod evidence;
 mod exchange;
 mod faults;
 mod levers;

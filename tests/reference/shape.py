@@ -6,13 +6,14 @@ FLOW = {"amount", "unit", "moisture_percent", "carbon_percent_dry", "lhv", "temp
         "strength_percent_mass", "strength_percent_vol", "note", "uncertainty", "origin", "evidence"}
 FIELDS = {
     "pathway": {"format", "name", "example", "note", "feedstock", "period", "rule_set", "plant_started", "materials",
-                "stages", "defaults", "not_covered"},
-    "stage": {"key", "kind", "name", "note", "grown", "output", "intakes", "inputs", "co_products", "allocation", "stated"},
+                "stages", "defaults", "not_covered", "audits"},
+    "stage": {"key", "kind", "name", "note", "grown", "output", "intakes", "inputs", "co_products", "allocation", "stated",
+              "meters", "earlier_periods"},
     "output": FLOW | {"material"},
     "intakes": FLOW | {"from", "product"},
     "co_products": FLOW | {"material", "key", "name", "role", "displaces"},
     "inputs": {"key", "label", "amount", "unit", "factor", "gases", "model", "origin", "estimated_percent", "evidence",
-               "uncertainty", "note", "net_per_gross"},
+               "uncertainty", "note", "net_per_gross", "meter"},
 }
 
 

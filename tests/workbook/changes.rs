@@ -32,20 +32,16 @@ fn rests_on_values(stage: &Stage) -> bool {
         .any(|model| VALUES.contains(&model.kind.as_str()))
 }
 
-/// The changes that are tried on a document: of each kind the first and the last. Every one was tried once (404 workbooks);
-/// two of a kind keep the run short.
-pub fn changes(pathway: &Pathway, bytes: &[u8]) -> Vec<Change> {
-    let mut out = Vec::new();
-    let mut by_kind: BTreeMap<&str, Vec<Change>> = BTreeMap::new();
+/// The changes that are tried on a document: one of each kind, the first or the last. Every one was tried once (404
+/// workbooks); one of a kind keeps the run short.
+pub fn changes(pathway: &Pathway, bytes: &[u8], last: bool) -> Vec<Change> {
+    let mut by_kind: BTreeMap<&str, Change> = BTreeMap::new();
     for change in every(pathway, bytes) {
-        by_kind.entry(change.kind).or_default().push(change);
+        if last || !by_kind.contains_key(change.kind) {
+            by_kind.insert(change.kind, change);
+        }
     }
-    for mut some in by_kind.into_values() {
-        let last = some.pop();
-        out.extend(some.into_iter().take(1));
-        out.extend(last);
-    }
-    out
+    by_kind.into_values().collect()
 }
 
 fn every(pathway: &Pathway, bytes: &[u8]) -> Vec<Change> {

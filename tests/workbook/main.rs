@@ -125,7 +125,7 @@ fn a_changed_amount_moves_the_net_as_the_engine_says() {
     let mut books = BTreeMap::new();
     let mut wanted = BTreeMap::new();
     let mut kinds: BTreeMap<&str, (usize, usize)> = BTreeMap::new();
-    for (name, pathway) in documents() {
+    for (number, (name, pathway)) in documents().into_iter().enumerate() {
         let other = name.starts_with("mass_")
             || name.starts_with("value_")
             || name.starts_with("credit_")
@@ -135,7 +135,7 @@ fn a_changed_amount_moves_the_net_as_the_engine_says() {
         }
         let before = assessed(&pathway).unwrap();
         let bytes = workbook(&pathway, &before);
-        for change in changes::changes(&pathway, &bytes) {
+        for change in changes::changes(&pathway, &bytes, number % 2 == 1) {
             let Some(after) = assessed(&change.pathway) else {
                 continue;
             };

@@ -7,6 +7,7 @@ use crate::core::documents::pathway::ValueKind;
 use crate::core::domain::Term;
 use crate::core::engine::resolved::Resolved;
 use crate::core::units::rounding::plain_fixed;
+use jiff::civil::Date;
 use std::collections::{BTreeMap, BTreeSet};
 
 /// Runs the checks that a pathway can tell.
@@ -123,9 +124,26 @@ fn soil_editions(resolved: &Resolved) -> Vec<EditionUse> {
     uses
 }
 
+/// E-11: the file of evidence is the one that was attached on a day; `found` is the hash of what lies in its place now.
+pub fn file_unchanged(file: &str, attached: Date, hash: &str, found: Option<&str>) -> Option<Finding> {
+    let (message, remedy) = match found {
+        Some(found) if found == hash => return None,
+        Some(_) => (
+            format!("{file} is not the file that was attached on {attached}."),
+            "Restore that file, or attach this one as new evidence.",
+        ),
+        None => (
+            format!("{file}, attached on {attached}, is missing."),
+            "Restore it from a backup, or attach it once more.",
+        ),
+    };
+    Some(finding("E-11", Severity::Block, "", "evidence", message, remedy))
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
+    use jiff::civil::date;
 
     fn used(edition: &str, version: &str) -> EditionUse {
         let [edition, version] = [edition, version].map(str::to_owned);
@@ -173,5 +191,22 @@ mod tests {
         let found = one_version(&mixed);
         assert_eq!(found.len(), 1);
         assert!(found[0].message.contains("2006 and 2019"));
+    }
+
+    #[test]
+    fn a_file_is_the_one_that_was_attached() {
+        let day = date(2026, 12, 1);
+        assert_eq!(
+            file_unchanged("bill.pdf", day, "sha256:a", Some("sha256:a")),
+            None
+        );
+        let altered = file_unchanged("bill.pdf", day, "sha256:a", Some("sha256:b")).unwrap();
+        assert_eq!((altered.id.as_str(), altered.severity), ("E-11", Severity::Block));
+        assert_eq!(
+            altered.message,
+            "bill.pdf is not the file that was attached on 2026-12-01."
+        );
+        let missing = file_unchanged("bill.pdf", day, "sha256:a", None).unwrap();
+        assert_eq!(missing.message, "bill.pdf, attached on 2026-12-01, is missing.");
     }
 }

@@ -98,7 +98,7 @@ mod tests {
     use jiff::civil::date;
     use serde_json::json;
 
-    fn pathway(audits: serde_json::Value) -> Pathway {
+    fn pathway(audits: &serde_json::Value) -> Pathway {
         let document = json!({
             "format": "wheelwort.pathway/1", "name": "Invented", "feedstock": "wheat",
             "period": { "from": "2026-10-01", "to": "2027-09-30" }, "rule_set": "eu-2018-2001", "audits": audits,
@@ -113,7 +113,7 @@ mod tests {
     #[test]
     fn actual_values_come_after_an_audit() {
         let issued = date(2027, 10, 15);
-        let check = |audits| audited(&pathway(audits), issued);
+        let check = |audits: serde_json::Value| audited(&pathway(&audits), issued);
         assert_eq!(
             check(json!([])).first().map(|found| found.id.as_str()),
             Some("E-02")

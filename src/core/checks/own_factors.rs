@@ -3,6 +3,7 @@
 use super::parameters::models;
 use super::settings::Settings;
 use super::{Subject, finding};
+use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::input::{FactorRef, InlineFactor, Input, OneOrMany};
 use crate::core::documents::pathway::Stage;
@@ -130,6 +131,16 @@ fn factors_in(value: &Value, found: &mut Vec<InlineFactor>) {
         Value::Array(items) => items.iter().for_each(|value| factors_in(value, found)),
         _ => {}
     }
+}
+
+/// Every row of an edition that an own factor of the pathway is held against: a statement carries them.
+pub fn compared_rows<'b>(pathway: &Pathway, book: &'b Book, edition: &str) -> Vec<&'b Factor> {
+    let inputs = pathway
+        .stages
+        .iter()
+        .flat_map(|stage| stage.inputs.iter().map(move |input| (stage, input)));
+    let own = inputs.flat_map(|(stage, input)| own_factors(stage, input));
+    own.flat_map(|own| rows(book, edition, &own)).collect()
 }
 
 /// Rows of the standard edition that count the same thing. A mass, a volume or an area may be of anything.

@@ -4,7 +4,7 @@
 use super::settings::Settings;
 use super::{Subject, finding};
 use crate::core::documents::assessment::{Finding, Severity};
-use crate::core::documents::input::{FactorRef, Input};
+use crate::core::documents::input::{FactorRef, Input, OneOrMany};
 use crate::core::documents::pathway::{Period, Stage};
 use crate::core::domain::factor::Edition;
 use crate::core::domain::{Cited, Term};
@@ -111,7 +111,7 @@ fn edition_of(id: &str) -> Option<&str> {
 
 fn input_editions(input: &Input) -> Vec<&str> {
     let mut found = Vec::new();
-    for factor in input.factor.iter().flat_map(|factors| factors.list()) {
+    for factor in input.factor.iter().flat_map(OneOrMany::list) {
         if let FactorRef::Id(id) = factor {
             found.extend(edition_of(id));
         }
@@ -149,7 +149,7 @@ pub fn in_force(edition: &Edition, period: &Period) -> Option<Finding> {
 fn months(period: &Period) -> Option<i32> {
     let after = period.to.tomorrow().ok()?;
     let span = period.from.until((jiff::Unit::Month, after)).ok()?;
-    Some(span.get_years() as i32 * 12 + span.get_months())
+    Some(i32::from(span.get_years()) * 12 + span.get_months())
 }
 
 /// E-14: the period holds as many months as the rule set asks for an actual value.

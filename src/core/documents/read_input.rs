@@ -32,17 +32,19 @@ pub fn origins() -> Vec<(&'static str, Origin)> {
 pub fn evidence(fields: &mut Fields, at: &Place, problems: &mut Problems) -> Vec<String> {
     fields.list("evidence", at, problems, |value, place, problems| {
         let text = text_of(value, place, problems)?;
-        let fits = (1..=64).contains(&text.len())
-            && text
-                .bytes()
-                .all(|b| b.is_ascii_alphanumeric() || matches!(b, b'.' | b'_' | b'-'));
-        if !fits {
+        if !is_evidence_id(text) {
             let detail = format!("\"{text}\" is not an evidence id.");
             problems.add(place, detail, "Use 1 to 64 of A-Z a-z 0-9 . _ and -.");
             return None;
         }
         Some(text.to_owned())
     })
+}
+
+/// True if a text can be the id of evidence.
+pub fn is_evidence_id(text: &str) -> bool {
+    let plain = |b: u8| b.is_ascii_alphanumeric() || matches!(b, b'.' | b'_' | b'-');
+    (1..=64).contains(&text.len()) && text.bytes().all(plain)
 }
 
 /// A stage, input or co-product key.

@@ -66,8 +66,9 @@ pub fn is_unknown_field(problem: &Problem) -> bool {
     problem.detail.starts_with(UNKNOWN)
 }
 
-/// No amount of a pathway is larger, in whatever unit: the grain harvest of the world is 3e15 g. Our own judgement.
-const LARGEST: f64 = 1e18;
+/// No amount of a pathway is larger, in whatever unit: there is less of anything in the world, and products of a few such
+/// figures would leave what a double holds. Smaller slips are the matter of checks (C-11 and its like). Our own judgement.
+const LARGEST: f64 = 1e60;
 
 /// The fields of one object while they are being read.
 pub struct Fields<'v> {

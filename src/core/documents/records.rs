@@ -237,7 +237,7 @@ pub(crate) mod tests {
         assert_eq!(meter.amount(date(2026, 10, 1), date(2027, 5, 31)), Some(100.0));
         assert_eq!(meter.amount(date(2026, 10, 1), date(2027, 1, 18)), Some(60.0));
         assert_eq!(meter.amount(date(2026, 10, 1), date(2027, 3, 31)), None);
-        assert_eq!(meter.spans()[1].reset, true);
+        assert!(meter.spans()[1].reset);
     }
 
     #[test]

@@ -1,7 +1,7 @@
 //! Holds figures against the meters they are read from: an amount, or a parameter of a model, is what went through them in
 //! the period of the pathway.
 
-use crate::core::documents::input::{Input, ModelUse};
+use crate::core::documents::input::{Input, ModelUse, OneOrMany};
 use crate::core::documents::pathway::{Pathway, Stage};
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::Place;
@@ -30,7 +30,7 @@ pub fn agree(pathway: &Pathway, problems: &mut Problems) {
 }
 
 fn input_agrees(pathway: &Pathway, stage: &Stage, input: &Input, at: &Place, problems: &mut Problems) {
-    let named = input.meter.as_ref().map(|meter| meter.list()).unwrap_or_default();
+    let named = input.meter.as_ref().map(OneOrMany::list).unwrap_or_default();
     let meters: Vec<&Meter> = named
         .iter()
         .filter_map(|id| stage.meters.iter().find(|meter| meter.id == *id))

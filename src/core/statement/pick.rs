@@ -2,6 +2,7 @@
 //! must lead to the same assessment with nothing else at hand.
 
 use super::build::Refused;
+use crate::core::checks::own_factors::compared_rows;
 use crate::core::checks::settings::Settings;
 use crate::core::documents::statement::Data;
 use crate::core::documents::statement::data::{
@@ -135,22 +136,13 @@ fn named(pathway: &Pathway, book: &Book, data: &mut Data) {
             add(&fuel);
         }
     }
-    if words.contains("per") {
-        // Own factors are held against the rows of the standard edition.
-        let standard = data
-            .rule_set
-            .standard_factors
-            .as_ref()
-            .and_then(|id| book.editions.get(id));
-        for factor in standard.into_iter().flat_map(|edition| edition.factors.values()) {
-            if factor.usage == Use::Amount && !factors.contains_key(&factor.id) {
-                let used = FactorUsed {
-                    for_comparison: true,
-                    ..FactorUsed::of(factor)
-                };
-                factors.insert(factor.id.clone(), used);
-            }
-        }
+    // Own factors are held against rows of the standard edition.
+    let standard = data.rule_set.standard_factors.as_deref().unwrap_or_default();
+    for factor in compared_rows(pathway, book, standard) {
+        factors.entry(factor.id.clone()).or_insert_with(|| FactorUsed {
+            for_comparison: true,
+            ..FactorUsed::of(factor)
+        });
     }
     data.factors = factors.into_values().collect();
     let mut rows: BTreeMap<String, DefaultUsed> = BTreeMap::new();

@@ -5,6 +5,7 @@ use super::items::{Items, Place};
 use super::present::{Standing, standing};
 use crate::core::checks::evidence::kinds;
 use crate::core::checks::reasons::wanting;
+use crate::core::documents::amount::Origin;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::statement::facts::Law;
 use crate::core::documents::{Assessment, Pathway, Problems, StatementFacts};
@@ -101,7 +102,7 @@ pub fn preflight(draft: Draft, book: &Book, items: &Items) -> Result<Preflight, 
     let plan = resolve(pathway, Some(&assessment.rule_set), book, false)?;
     let figures = super::figures::figures(facts, assessment, &plan, None);
     let inputs = || pathway.stages.iter().flat_map(|stage| &stage.inputs);
-    let primary = || inputs().filter(|input| input.origin.is_some_and(|origin| origin.is_primary()));
+    let primary = || inputs().filter(|input| input.origin.is_some_and(Origin::is_primary));
     let subject = Subject {
         facts,
         pathway,

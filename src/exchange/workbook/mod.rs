@@ -141,13 +141,13 @@ pub fn write(
     }
     let made = ExcelDateTime::from_timestamp(about.made_at.as_second())?;
     let properties = DocProperties::new()
-        .set_title(&page::cut(&assessment.pathway_name, 200))
+        .set_title(page::cut(&assessment.pathway_name, 200))
         .set_subject(if assessment.example {
             "EXAMPLE: invented data"
         } else {
             ""
         })
-        .set_author(&page::cut(about.issuer.unwrap_or(""), 200))
+        .set_author(page::cut(about.issuer.unwrap_or(""), 200))
         .set_creation_datetime(&made);
     workbook.set_properties(&properties);
     Ok(workbook.save_to_buffer()?)

@@ -127,7 +127,7 @@ impl Page<'_> {
     /// Gives a row the height that wrapped words need: nothing but a person at a screen would do it later.
     fn make_room(&mut self, row: u32, column: u16, text: &str) -> Result<(), XlsxError> {
         let width = self.widths.get(usize::from(column)).copied().unwrap_or(10.0);
-        let of = |line: &str| (count(line.chars().count()) / (width * 1.05)).ceil().max(1.0);
+        let of = |line: &str| (count(line.chars().count()) / (width * 1.15)).ceil().max(1.0);
         let lines: f64 = text.lines().map(of).sum();
         if lines > 1.0 {
             let height = (12.5 * lines).min(400.0);

@@ -141,6 +141,6 @@ pub fn results<'a>(
 }
 
 /// The assessed input at a place of a stage.
-pub fn input_result<'a>(result: &'a StageResult, index: usize) -> Option<&'a InputResult> {
+pub fn input_result(result: &StageResult, index: usize) -> Option<&InputResult> {
     result.inputs.get(index)
 }

@@ -28,6 +28,7 @@ impl From<PathwayError> for Refusal {
             }
             PathwayError::Archived => Refusal::of(StatusCode::CONFLICT).detail(error.to_string()),
             PathwayError::Store(error) => error.into(),
+            PathwayError::Evidence(error) => error.into(),
             PathwayError::Defect { .. } => {
                 tracing::error!(error = %chain(&error), "a use case failed");
                 Refusal::of(StatusCode::INTERNAL_SERVER_ERROR)

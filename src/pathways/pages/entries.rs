@@ -226,6 +226,7 @@ impl Entries<'_> {
             list: match last {
                 "unit" => "units",
                 "material" => "materials",
+                "evidence" => "evidence",
                 _ => "",
             },
             class,

@@ -1,6 +1,7 @@
 //! Pages of pathways: view models from documents and assessments, templates beside them, handlers that only fetch.
 
 mod answers;
+mod backed;
 pub mod blend;
 pub mod carbon;
 pub mod card;

@@ -15,6 +15,7 @@ use crate::core::documents::problem::Problem;
 use crate::core::domain::{Book, StageKind};
 use crate::core::models;
 use crate::core::units::rounding::show;
+use crate::evidence::EvidenceLink;
 use crate::web::filters;
 use crate::web::frame::{Frame, Section};
 use askama::Template;
@@ -68,6 +69,8 @@ pub struct ShowStage {
     pub why: String,
     /// Ids of materials, for the fields that take one.
     pub materials: Vec<(String, String)>,
+    /// Ids of evidence that fields offer, with the names of the files.
+    pub evidence: Vec<(String, String)>,
     /// True for a stage that is not stored yet.
     pub new: bool,
     /// For a new stage: the names of those that would take from it.
@@ -124,6 +127,10 @@ pub struct Entry {
     pub at: String,
     /// Findings about the whole entry.
     pub findings: Vec<FindingRow>,
+    /// The evidence that backs it.
+    pub backed: Vec<EvidenceLink>,
+    /// Name of the field that takes a file; empty where none does.
+    pub file: String,
 }
 
 /// One choice of a selection.
@@ -296,6 +303,7 @@ impl ShowStage {
             input_kinds: input_kinds(card.typed.text("add-as")),
             why: card.typed.text("why").to_owned(),
             materials: materials(card.book, card.pathway),
+            evidence: Vec::new(),
             new: !stored,
             takers,
             title,
@@ -333,6 +341,14 @@ impl ShowStage {
             .chain(&self.intakes)
             .chain(&self.inputs)
             .chain(&self.co_products)
+    }
+
+    pub(super) fn every_entry_mut(&mut self) -> impl Iterator<Item = &mut Entry> {
+        [&mut self.about, &mut self.output]
+            .into_iter()
+            .chain(&mut self.intakes)
+            .chain(&mut self.inputs)
+            .chain(&mut self.co_products)
     }
 
     fn refusal(&self, problem: &Problem) -> Refused {

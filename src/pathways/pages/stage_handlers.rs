@@ -1,5 +1,6 @@
 //! The recipe card at work: showing it, changing its lines, looking up factors, saving, meeting somebody else's save.
 
+use super::backed::{show_card, taken};
 use super::card::form::LISTS;
 use super::card::{Do, Form, build, merge};
 use super::handlers::{REFUSED, Seen, ShowQuery, id_of, refused, saved_notice, see};
@@ -15,8 +16,9 @@ use crate::core::domain::StageKind;
 use crate::pathways::{self, Expected, PathwayError, Saved, What};
 use crate::web::Refusal;
 use crate::web::actor::{Actor, CanRead, CanWrite};
-use crate::web::extract::{Form as Posted, Path, Query};
-use answers::{page, see_other, with_status};
+use crate::web::extract::{Form as Fields, Path, Query};
+use crate::web::multipart::Posted;
+use answers::see_other;
 use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
@@ -45,7 +47,7 @@ pub(super) async fn show(
         ..card(&seen, &key, &value, &typed)
     });
     shown.notice = saved_notice(&app, &seen, query.saved).await;
-    page(&shown).map_err(IntoResponse::into_response)
+    show_card(&app, StatusCode::OK, shown).await
 }
 
 async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
@@ -117,7 +119,7 @@ pub(super) async fn begin(
         after: after.map(|stage| stage.key.as_str()),
         ..card(&seen, &key, &value, &typed)
     });
-    page(&shown).map_err(IntoResponse::into_response)
+    show_card(&app, StatusCode::OK, shown).await
 }
 
 /// A new stage hands on what it takes, until somebody says otherwise.
@@ -159,9 +161,10 @@ fn begun(key: &str, kind: StageKind, name: &str, after: Option<&Stage>) -> Value
 pub(super) async fn save(
     Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
-    Posted(pairs): Posted<Vec<(String, String)>>,
+    posted: Posted,
 ) -> Result<Response, Response> {
-    let mut form = Form::of(pairs);
+    let taken = taken(&app, posted).await.map_err(IntoResponse::into_response)?;
+    let mut form = taken.form;
     form.settle_picks();
     let asked = Do::of(form.get("do").unwrap_or("save"));
     let expected = form
@@ -207,9 +210,12 @@ pub(super) async fn save(
         page
     };
     if !to_save {
-        return page(&shown(&[], false)).map_err(IntoResponse::into_response);
+        return show_card(&app, StatusCode::OK, shown(taken.problems.list(), false)).await;
     }
     let (built, mut problems) = build::build(&stood, &form, &sources(&base.pathway, &key));
+    for problem in taken.problems.list() {
+        problems.add(&problem.pointer, problem.detail.clone(), problem.remedy.clone());
+    }
     let stage = match Stage::from_value(&built) {
         Ok(stage) => Some(stage),
         Err(more) => {
@@ -223,26 +229,33 @@ pub(super) async fn save(
         }
     };
     let (Some(stage), true) = (stage, problems.is_empty()) else {
-        return with_status(REFUSED, &shown(problems.list(), true)).map_err(IntoResponse::into_response);
+        return show_card(&app, REFUSED, shown(problems.list(), true)).await;
     };
-    let why = Some(form.text("why"))
-        .filter(|why| !why.is_empty())
+    let attached = match taken.attached.as_slice() {
+        [] => String::new(),
+        ids => format!("{} attached", ids.join(", ")),
+    };
+    let why = [form.text("why"), &attached]
+        .into_iter()
+        .find(|why| !why.is_empty())
         .map(|why| why.chars().take(1_000).collect::<String>());
     let (document, place) = with_stage(&base.pathway, stage, new.then_some(after.as_str()));
     if asked == Do::Try {
         let worked = work_out(&app, document.clone()).await;
         return match worked.map_err(IntoResponse::into_response)? {
-            Ok(assessment) => page(&ShowStage::of(&Card {
-                tried: Some(&assessment),
-                after: new.then_some(after.as_str()),
-                ..card(&base, &key, &built, &form)
-            })),
+            Ok(assessment) => {
+                let worked = ShowStage::of(&Card {
+                    tried: Some(&assessment),
+                    after: new.then_some(after.as_str()),
+                    ..card(&base, &key, &built, &form)
+                });
+                show_card(&app, StatusCode::OK, worked).await
+            }
             Err(problems) => {
                 let own = of_stage(&document, place, problems.into_list());
-                with_status(REFUSED, &shown(own.list(), true))
+                show_card(&app, REFUSED, shown(own.list(), true)).await
             }
-        }
-        .map_err(IntoResponse::into_response);
+        };
     }
     match pathways::replace(
         &app,
@@ -256,7 +269,7 @@ pub(super) async fn save(
         Ok(saved) => Ok(see_other(&after_save(&links::stage(&id, &key), &saved))),
         Err(PathwayError::Problems(problems)) => {
             let own = of_stage(&document, place, problems.into_list());
-            with_status(REFUSED, &shown(own.list(), true)).map_err(IntoResponse::into_response)
+            show_card(&app, REFUSED, shown(own.list(), true)).await
         }
         Err(PathwayError::Conflict { .. }) => {
             let base_of = if new { Value::Null } else { stood };
@@ -378,7 +391,7 @@ async fn met(app: &App, id: &str, key: &str, mine: Typed<'_>) -> Result<Response
     shown.differ = differ(&met);
     shown.meeting = meeting;
     shown.met = met;
-    with_status(StatusCode::PRECONDITION_FAILED, &shown).map_err(IntoResponse::into_response)
+    show_card(app, StatusCode::PRECONDITION_FAILED, shown).await
 }
 
 /// The stage that a new one is to follow: the one asked for, or the last before it that is still there.
@@ -436,7 +449,7 @@ pub(super) struct Remove {
 pub(super) async fn remove(
     Actor { app, .. }: Actor<CanWrite>,
     Path((id, key)): Path<(String, String)>,
-    Posted(form): Posted<Remove>,
+    Fields(form): Fields<Remove>,
 ) -> Result<Response, Response> {
     let base = seen(&app, &id, Some(form.expected)).await?;
     let Some(gone) = stage_of(&base.pathway, &key) else {
@@ -476,7 +489,7 @@ pub(super) async fn remove(
                 refused: true,
                 ..card(&base, &key, &value, &typed)
             });
-            with_status(REFUSED, &shown).map_err(IntoResponse::into_response)
+            show_card(&app, REFUSED, shown).await
         }
         Err(error) => Err(refused(&app, &id, error).await),
     }

@@ -10,6 +10,7 @@ use crate::core::domain::{Book, Gas, GasVector, Term};
 use crate::web::csv::{Cell, Table};
 use crate::web::filters::{self, Markup};
 use crate::web::frame::{Frame, Section};
+use crate::web::links as addresses;
 use askama::Template;
 
 /// The page of workings.
@@ -120,6 +121,8 @@ pub struct InputWork {
     pub steps: Vec<StepRow>,
     /// Findings about it.
     pub findings: Vec<FindingRow>,
+    /// The evidence that backs it: id, address.
+    pub evidence: Vec<(String, String)>,
 }
 
 impl ShowWorkings {
@@ -200,6 +203,20 @@ impl ShowWorkings {
         }
         table
     }
+}
+
+/// The evidence of an input; of a stated term that of the supplier's statement.
+fn evidence(pathway: &Pathway, stage: &str, input: &str) -> Vec<(String, String)> {
+    let Some(stage) = pathway.stages.iter().find(|one| one.key == stage) else {
+        return Vec::new();
+    };
+    let ids = match stage.inputs.iter().find(|one| one.key == input) {
+        Some(input) => input.evidence.as_slice(),
+        None => stage.stated.as_ref().map_or(&[][..], |stated| &stated.evidence),
+    };
+    ids.iter()
+        .map(|id| (id.clone(), addresses::evidence(id)))
+        .collect()
 }
 
 fn sum_words(found: &Assessment) -> String {
@@ -406,6 +423,7 @@ impl StageWork {
                         recipe: recipe(&input.recipe_gases_kg),
                         steps: step_rows(&input.workings, &number, book),
                         findings: said(Some(&input.key)),
+                        evidence: evidence(pathway, &stage.key, &input.key),
                         number,
                     }
                 })

@@ -1,9 +1,10 @@
 //! The rows that a document is written into beside itself, for search and for plain SQL by an auditor. Rows are made
 //! from documents, never the other way round.
 
+pub(crate) mod evidence;
 pub(crate) mod sql;
 
-pub use sql::{CoProductRow, InputRow, IntakeRow, StageRow, UseRow};
+pub use sql::{CoProductRow, EvidenceUseRow, InputRow, IntakeRow, StageRow, UseRow};
 
 use crate::core::documents::Pathway;
 use crate::core::documents::input::{FactorRef, Input, OneOrMany};
@@ -24,6 +25,8 @@ pub struct Rows {
     pub co_products: Vec<CoProductRow>,
     /// One for each place that names a published row.
     pub uses: Vec<UseRow>,
+    /// One for each place that names evidence.
+    pub evidence: Vec<EvidenceUseRow>,
 }
 
 /// The rows of a revision as JSON, ready to be written; nothing for a table without rows.
@@ -34,6 +37,7 @@ pub(super) struct RowTexts {
     pub(super) inputs: Option<String>,
     pub(super) co_products: Option<String>,
     pub(super) uses: Option<String>,
+    pub(super) evidence: Option<String>,
 }
 
 impl Rows {
@@ -53,6 +57,7 @@ impl Rows {
         for (index, stage) in pathway.stages.iter().enumerate() {
             rows.stage(index, stage);
         }
+        rows.evidence = evidence::named(pathway);
         rows
     }
 
@@ -70,6 +75,7 @@ impl Rows {
             inputs: text(&self.inputs)?,
             co_products: text(&self.co_products)?,
             uses: text(&self.uses)?,
+            evidence: text(&self.evidence)?,
         })
     }
 

@@ -27,6 +27,10 @@ const ADD_USES: &str = "\
     INSERT INTO factor_use (organisation_id, revision_id, factor, pointer, stage_key, input_key, co_product_key) \
     SELECT $1, $2, value ->> 'factor', value ->> 'pointer', value ->> 'stage_key', value ->> 'input_key', \
            value ->> 'co_product_key' FROM json_each($3)";
+const ADD_EVIDENCE_USES: &str = "\
+    INSERT INTO evidence_use (organisation_id, revision_id, evidence, pointer, stage_key, input_key) \
+    SELECT $1, $2, value ->> 'evidence', value ->> 'pointer', value ->> 'stage_key', value ->> 'input_key' \
+    FROM json_each($3)";
 const STAGES: &str = "\
     SELECT position, key, kind, name, material, amount, unit FROM stage \
     WHERE organisation_id = $1 AND revision_id = $2 ORDER BY id";
@@ -42,6 +46,9 @@ const CO_PRODUCTS: &str = "\
 const USES: &str = "\
     SELECT factor, pointer, stage_key, input_key, co_product_key FROM factor_use \
     WHERE organisation_id = $1 AND revision_id = $2 ORDER BY id";
+const EVIDENCE_USES: &str = "\
+    SELECT evidence, pointer, stage_key, input_key FROM evidence_use \
+    WHERE organisation_id = $1 AND revision_id = $2 ORDER BY id";
 const USES_OF: &str = "\
     SELECT p.public_id, p.name, p.archived_at, r.number, u.factor, u.pointer, u.stage_key, u.input_key, u.co_product_key \
     FROM factor_use u \
@@ -56,11 +63,13 @@ pub(crate) const STATEMENTS: &[&str] = &[
     ADD_INPUTS,
     ADD_CO_PRODUCTS,
     ADD_USES,
+    ADD_EVIDENCE_USES,
     STAGES,
     INTAKES,
     INPUTS,
     CO_PRODUCTS,
     USES,
+    EVIDENCE_USES,
     USES_OF,
 ];
 
@@ -130,6 +139,16 @@ pub struct UseRow {
     pub co_product_key: Option<String>,
 }
 
+/// A place that names evidence, by its public id.
+#[derive(Clone, Debug, PartialEq, Serialize, sqlx::FromRow)]
+#[allow(missing_docs, reason = "columns of the table of the same name")]
+pub struct EvidenceUseRow {
+    pub evidence: String,
+    pub pointer: String,
+    pub stage_key: String,
+    pub input_key: Option<String>,
+}
+
 /// A use with its pathway.
 #[derive(sqlx::FromRow)]
 pub(in crate::pathways) struct UseOfRow {
@@ -167,6 +186,7 @@ pub(in crate::pathways) async fn write(
         (ADD_INPUTS, &rows.inputs),
         (ADD_CO_PRODUCTS, &rows.co_products),
         (ADD_USES, &rows.uses),
+        (ADD_EVIDENCE_USES, &rows.evidence),
     ];
     for (sql, json) in tables {
         if let Some(json) = json {
@@ -209,6 +229,11 @@ pub(in crate::pathways) async fn read(
             .fetch_all(&mut *c)
             .await?,
         uses: sqlx::query_as::<_, UseRow>(USES)
+            .bind(who.0)
+            .bind(revision)
+            .fetch_all(&mut *c)
+            .await?,
+        evidence: sqlx::query_as::<_, EvidenceUseRow>(EVIDENCE_USES)
             .bind(who.0)
             .bind(revision)
             .fetch_all(&mut *c)

@@ -189,60 +189,69 @@ pub(super) fn faults(text: &str, problems: &Problems) -> Vec<Fault> {
     faults.collect()
 }
 
-/// The line where a pointer's field stands: of the first part that is named so, and from there on of the parts below it.
+/// The line where a pointer's field stands: of the first part that is named so, and from there on of the parts below it; in
+/// TOML no further than its table.
 fn line_of(text: &str, pointer: &str) -> Option<usize> {
-    let lines: Vec<&str> = text.lines().collect();
-    let mut at = None;
-    let mut from = 0;
-    let mut nth = 0_usize;
-    let mut list: Option<&str> = None;
+    let lines: Vec<&str> = text.lines().map(str::trim).collect();
+    let mut found: Option<usize> = None;
+    let mut list = "";
     for part in pointer.split('/').skip(1) {
-        if let Ok(index) = part.parse::<usize>() {
-            nth = index;
-            if let Some(name) = list {
-                let head = format!("[[{name}]]");
-                let mut heads = lines.iter().enumerate().filter(|(_, line)| line.trim() == head);
-                if let Some((found, _)) = heads.nth(nth) {
-                    at = Some(found);
-                    from = found;
-                }
+        let from = found.unwrap_or(0);
+        let next = match part.parse::<usize>() {
+            Ok(index) => {
+                let head = format!("[[{list}]]");
+                let mut heads = (0..lines.len()).filter(|k| lines.get(*k).is_some_and(|line| *line == head));
+                heads.nth(index)
             }
-            continue;
-        }
-        let names = |line: &str| {
-            let line = line.trim_start().trim_start_matches(['[', '"', '{', ' ']);
-            line.strip_prefix(part).is_some_and(|rest| {
-                rest.trim_start_matches(['"', ' '])
-                    .starts_with(['=', ':', ']', '.'])
-            }) || line
-                .split(']')
-                .next()
-                .is_some_and(|head| head.ends_with(&format!(".{part}")))
+            Err(_) => {
+                list = part;
+                let table = |k: &usize| lines.get(*k).is_some_and(|line| line.starts_with('['));
+                let end = match found.filter(table) {
+                    Some(head) => (head + 1..lines.len()).find(table).unwrap_or(lines.len()),
+                    None => lines.len(),
+                };
+                let named = |k: &usize| lines.get(*k).is_some_and(|line| names(line, part));
+                let elsewhere = || (from..lines.len()).find(|k| table(k) && named(k));
+                (from..end).find(named).or_else(elsewhere)
+            }
         };
-        match lines.iter().enumerate().skip(from).find(|(_, line)| names(line)) {
-            Some((found, _)) => {
-                at = Some(found);
-                from = found;
-            }
+        match next {
+            Some(line) => found = Some(line),
             None => break,
         }
-        list = Some(part);
     }
-    let _ = nth;
-    at.map(|line| line + 1)
+    found.map(|line| line + 1)
 }
+
+/// True if a line gives a value to a field, or begins its table.
+fn names(line: &str, field: &str) -> bool {
+    let key = line.trim_start_matches(['[', '"', '{', ' ']);
+    let begins = key.strip_prefix(field).is_some_and(|rest| {
+        rest.trim_start_matches(['"', ' '])
+            .starts_with(['=', ':', ']', '.'])
+    });
+    let ends = line.starts_with('[')
+        && line
+            .split(']')
+            .next()
+            .is_some_and(|head| head.ends_with(&format!(".{field}")));
+    begins || ends
+}
+
 #[cfg(test)]
-mod line_tests {
+mod tests {
     use super::*;
 
     #[test]
     fn pointers_find_their_lines() {
-        let text = "id = \"own\"\n\n[comparator]\nvalue = 94.0\nunit = \"g/MJ\"\n\n[[thresholds]]\npercent = 50.0\n\n[[thresholds]]\npercent = 160.0\n\n[limits.soil_carbon_cap]\nvalue = 25.0\n";
+        let text = "id = \"own\"\n\n[comparator]\nvalue = 94.0\nunit = \"g/MJ\"\n\n[[thresholds]]\npercent = 50.0\n\n[[thresholds]]\npercent = 160.0\n\n[limits.land_use_since]\nvalue = 2008.0\n[limits.soil_carbon_cap]\nvalue = 25.0\n";
         assert_eq!(line_of(text, "/id"), Some(1));
         assert_eq!(line_of(text, "/comparator/unit"), Some(5));
         assert_eq!(line_of(text, "/thresholds/1/percent"), Some(11));
-        assert_eq!(line_of(text, "/limits/soil_carbon_cap/value"), Some(14));
+        assert_eq!(line_of(text, "/limits/soil_carbon_cap/value"), Some(16));
         assert_eq!(line_of(text, "/nowhere"), None);
+        // What is missing in a table stands at its head.
+        assert_eq!(line_of(text, "/comparator/source"), Some(3));
         assert_eq!(line_of("{\n  \"id\": 3\n}", "/id"), Some(2));
     }
 

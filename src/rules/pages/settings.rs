@@ -77,7 +77,7 @@ impl SettingsPage {
             row(
                 setting.name.replace('.', "/"),
                 format!("s-{k}"),
-                setting.meaning.to_owned(),
+                setting.meaning,
                 (setting.check, setting.unit),
                 Some((setting.value)(standard)),
                 (setting.value)(settings),
@@ -103,7 +103,7 @@ impl SettingsPage {
                 let mut made = row(
                     format!("{HARVESTS}/{escaped}/{end}"),
                     format!("h-{k}-{end}"),
-                    format!("{words}, {word}"),
+                    &format!("{words}, {word}"),
                     ("C-09", "t/ha"),
                     standard.map(of),
                     figure,
@@ -216,7 +216,7 @@ impl SettingsPage {
 fn row(
     name: String,
     id: String,
-    meaning: String,
+    meaning: &str,
     (check, unit): (&'static str, &'static str),
     standard: Option<f64>,
     figure: f64,
@@ -225,7 +225,7 @@ fn row(
     SettingRow {
         name,
         id,
-        meaning: filters::capital(&meaning),
+        meaning: filters::capital(meaning),
         check,
         unit: if unit == "percent" { "%" } else { unit },
         standard: standard.map_or_else(String::new, show_all),

@@ -78,8 +78,10 @@ fn problems_stand_at_their_fields() {
     ]);
     assert_eq!((page.refused, page.faults.len()), (2, 1));
     sound("refused", &page.render().unwrap());
-    let mut other = Settings::default();
-    other.typical_low = 0.5;
+    let other = Settings {
+        typical_low: 0.5,
+        ..Settings::default()
+    };
     page.stale(&other, "def".to_owned());
     let theirs: Vec<_> = page.rows.iter().filter_map(|row| row.theirs.clone()).collect();
     assert_eq!((theirs, page.seen.as_str()), (vec!["0.5".to_owned()], "def"));

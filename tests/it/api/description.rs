@@ -1,7 +1,7 @@
 //! The description of the API says what there is, and what it says is true.
 
-use crate::support::TestApp;
 use crate::support::documents::{chain, e10, own_rules};
+use crate::support::{TestApp, attach_text};
 use serde_json::{Value, json};
 use std::collections::BTreeSet;
 
@@ -51,6 +51,9 @@ async fn it_lists_what_there_is() {
         "get /api/v1/editions",
         "get /api/v1/editions/{id}",
         "get /api/v1/editions/{id}/factors",
+        "get /api/v1/evidence",
+        "get /api/v1/evidence/{id}",
+        "get /api/v1/evidence/{id}/file",
         "get /api/v1/factors",
         "get /api/v1/factors/{edition}/{row}",
         "get /api/v1/factors/{edition}/{row}/uses",
@@ -87,6 +90,7 @@ async fn it_lists_what_there_is() {
         "post /api/v1/compare",
         "post /api/v1/evaluate",
         "post /api/v1/evaluate/batch",
+        "post /api/v1/evidence",
         "post /api/v1/pathways",
         "post /api/v1/people",
         "post /api/v1/people/{id}/password",
@@ -164,6 +168,9 @@ async fn every_described_address_is_routed() {
     let app = TestApp::new().await;
     let (address, etag) = app.stores_chain().await;
     let id = address.rsplit('/').next().unwrap();
+    attach_text(&app.app, Some("EV-1"), "bill.txt", "a bill")
+        .await
+        .expect("attached");
     let description = description(&app).await;
     // Those of people are asked by people with a session of their own: see tests/it/people.
     let of_people = |path: &str| path.contains("/people") || path.contains("/tokens");
@@ -178,6 +185,7 @@ async fn every_described_address_is_routed() {
             .replace("{edition}", "eu-2022-996")
             .replace("{row}", "fert_n_an")
             .replace("/editions/{id}", "/editions/eu-2022-996")
+            .replace("/evidence/{id}", "/evidence/EV-1")
             .replace("/materials/{id}", "/materials/wheat")
             .replace(
                 "/rule-sets/{id}",
@@ -203,11 +211,17 @@ async fn every_described_address_is_routed() {
             (_, path) if path.contains("/calculators/") => calculation(path).to_string(),
             (_, path) if path.contains("/rule-sets/") => own_rules().to_string(),
             (_, path) if path.ends_with("/settings") => json!({ "capacity_percent": 120 }).to_string(),
+            (_, path) if path.ends_with("/evidence") => {
+                "--x\r\nContent-Disposition: form-data; name=\"file\"; filename=\"a\"\r\n\r\na\r\n--x--\r\n"
+                    .to_owned()
+            }
             (_, path) if path.ends_with("/reasons") => json!({ "reasons": [] }).to_string(),
             _ => chain().to_string(),
         };
         let kind = if real.ends_with("/batch") {
             "application/x-ndjson"
+        } else if real.ends_with("/evidence") {
+            "multipart/form-data; boundary=x"
         } else {
             "application/json"
         };

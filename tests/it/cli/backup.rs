@@ -57,6 +57,9 @@ async fn filled(data: &Path) -> (uuid::Uuid, Vec<u8>) {
     let assessment = wheelwort::pathways::assessment(&app, id, None, None)
         .await
         .expect("assessed");
+    crate::support::attach_text(&app, Some("EV-1"), "bill.txt", "abc")
+        .await
+        .expect("attached");
     app.close().await;
     (id, assessment.bytes.to_vec())
 }
@@ -71,7 +74,7 @@ async fn a_restored_copy_passes_the_check_and_answers_the_same() {
     let (code, out, errors) = check(&data);
     assert_eq!(code, Some(0), "{out}{errors}");
     assert!(
-        out.starts_with("Sound: ") && out.contains("ends at line 1 with sha256:"),
+        out.starts_with("Sound: ") && out.contains("ends at line 2 with sha256:"),
         "{out}"
     );
     let file = folder.path().join("today.zip");
@@ -88,6 +91,15 @@ async fn a_restored_copy_passes_the_check_and_answers_the_same() {
     assert_eq!(code, Some(0), "{errors}");
     assert!(out.starts_with("Restored into"), "{out}");
     assert_eq!(check(&back).0, Some(0));
+    let bill = "evidence/ba/ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad";
+    std::fs::write(back.join(bill), "abd").unwrap();
+    let (code, out, _) = check(&back);
+    assert_eq!(code, Some(1));
+    assert!(
+        out.starts_with("evidence of Own organisation, EV-1: bill.txt is not the file that was attached"),
+        "{out}"
+    );
+    std::fs::write(back.join(bill), "abc").unwrap();
     let (code, _, errors) = copy("restore", &back, &file);
     assert_eq!(code, Some(1));
     assert!(errors.contains("is not empty"), "{errors}");

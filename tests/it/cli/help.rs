@@ -14,6 +14,7 @@ fn help_shows_examples_and_exit_codes() {
         &["check", "--help"],
         &["backup", "--help"],
         &["restore", "--help"],
+        &["verify", "--help"],
     ] {
         let output = run(command, b"");
         let text = String::from_utf8(output.stdout).unwrap();
@@ -31,6 +32,7 @@ fn a_wrong_command_line_ends_with_2() {
         &["serve", "--colour"][..],
         &["paint"],
         &["evaluate"],
+        &["verify"],
         &["serve", "--listen", "localhost"],
         &[],
     ] {

@@ -5,6 +5,7 @@ mod evaluate;
 mod help;
 mod people;
 mod serve;
+mod verify;
 
 use std::ffi::OsStr;
 use std::io::Write;

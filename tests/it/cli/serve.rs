@@ -215,3 +215,112 @@ async fn the_demo_shows_its_pathways_and_leaves_nothing() {
     );
     assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 0);
 }
+
+#[tokio::test]
+async fn it_is_measured_by_route_and_asked_for_its_health() {
+    let folder = tempfile::tempdir().unwrap();
+    // Port 0 would do, but then nobody outside knows it: take one that was free a moment ago.
+    let free = std::net::TcpListener::bind("127.0.0.1:0").unwrap();
+    let measured = free.local_addr().unwrap();
+    drop(free);
+    let mut command = program();
+    command
+        .arg("serve")
+        .arg("--data")
+        .arg(folder.path())
+        .args(["--listen", "127.0.0.1:0"])
+        .arg("--set")
+        .arg(format!("metrics_listen={measured}"));
+    let running = Running::start(&mut command);
+    let client = client();
+    for path in [
+        "/health/ready",
+        "/api/v1/pathways/0199-not-an-id",
+        "/nowhere/at-all",
+    ] {
+        client.get(running.url(path)).send().await.unwrap();
+    }
+    let ready = running.url("/health/ready");
+    let asked = tokio::task::spawn_blocking(move || super::run(&["health", "--url", &ready], b""))
+        .await
+        .unwrap();
+    assert_eq!(asked.status.code(), Some(0), "{asked:?}");
+    let answer = client
+        .get(format!("http://{measured}/metrics"))
+        .send()
+        .await
+        .unwrap();
+    assert_eq!(answer.status(), 200);
+    let text = answer.text().await.unwrap();
+    for line in [
+        "wheelwort_requests_total{route=\"/health/ready\",method=\"GET\",class=\"2xx\"} 2",
+        "route=\"/api/v1/pathways/{id}\",method=\"GET\",class=\"4xx\"",
+        "route=\"nowhere\",method=\"GET\",class=\"4xx\"} 1",
+        "wheelwort_request_seconds_bucket{route=\"/health/ready\",le=\"0.001\"}",
+        "wheelwort_request_seconds_count{route=\"/health/ready\"} 2",
+        "wheelwort_writes_waiting 0",
+        "wheelwort_readers_idle ",
+        "wheelwort_sign_in_refusals_total 0",
+        "# HELP wheelwort_evaluations_total",
+        "wheelwort_requests_running 0",
+    ] {
+        assert!(text.contains(line), "{line}\n{text}");
+    }
+    assert!(
+        !text.contains("0199") && !text.contains("at-all"),
+        "an address is no label\n{text}"
+    );
+    // The measurements are nowhere else.
+    assert_eq!(
+        client.get(running.url("/metrics")).send().await.unwrap().status(),
+        404
+    );
+    let gone = running.url("/health/ready");
+    assert_eq!(running.stop("-TERM").0, Some(0));
+    let asked = tokio::task::spawn_blocking(move || super::run(&["health", "--url", &gone], b""))
+        .await
+        .unwrap();
+    assert_eq!(asked.status.code(), Some(1), "{asked:?}");
+}
+
+#[test]
+fn settings_are_printed_with_who_gave_them() {
+    let folder = tempfile::tempdir().unwrap();
+    let file = folder.path().join("wheelwort.toml");
+    std::fs::write(
+        &file,
+        "connections = 300\nadministrator = \"ada\"\nadministrator_password = \"hush-hush\"",
+    )
+    .unwrap();
+    let output = program()
+        .args(["settings", "--set", "batch_lines=9", "--config"])
+        .arg(&file)
+        .env("WHEELWORT_LOG", "warn")
+        .output()
+        .unwrap();
+    let table = String::from_utf8(output.stdout).unwrap();
+    assert_eq!(output.status.code(), Some(0), "{table}");
+    for (name, words) in [
+        ("connections", ["300", "file"]),
+        ("batch_lines", ["9", "command line"]),
+        ("log", ["warn", "environment"]),
+        ("administrator_password", ["(hidden)", "file"]),
+        ("listen", ["127.0.0.1:8080", "default"]),
+    ] {
+        let row = table
+            .lines()
+            .find(|line| line.split(' ').next() == Some(name))
+            .unwrap();
+        assert!(words.iter().all(|word| row.contains(word)), "{row}");
+    }
+    assert!(!table.contains("hush"), "{table}");
+    for wrong in [
+        &["settings", "--set", "administrator_password=x"][..],
+        &["settings", "--set", "colour=red"],
+        &["settings", "--set", "connections"],
+        &["serve", "--set", "connections=0"],
+    ] {
+        let output = super::run(wrong, b"");
+        assert_eq!(output.status.code(), Some(2), "{wrong:?}");
+    }
+}

@@ -177,7 +177,7 @@ fn a_pathway_of_defaults_alone_has_its_rows() {
     let inputs = sheet(&bytes, "Inputs");
     let defaults = inputs
         .rows()
-        .filter(|row| row.iter().any(|cell| cell.to_string() == "published default"));
+        .filter(|row| row.iter().any(|cell| *cell == *"published default"));
     assert_eq!(
         defaults.count(),
         case["document"]["defaults"].as_object().unwrap().len()

@@ -8,7 +8,7 @@ use wheelwort::core::checks::settings::Settings;
 use wheelwort::core::documents::statement::{EvidenceFile, Person, Previous, Statement, StatementFacts};
 use wheelwort::core::documents::{Assessment, Pathway};
 use wheelwort::core::evaluate::{Options, evaluate};
-use wheelwort::core::statement::seal::PublicKey;
+use wheelwort::core::statement::seal::{PublicKey, hex};
 use wheelwort::core::statement::{Inputs, Refused, build, seal};
 use wheelwort::library;
 
@@ -29,33 +29,7 @@ pub fn demo(name: &str) -> Pathway {
 
 /// Facts that leave nothing out that any law here asks for.
 pub fn full_facts() -> Value {
-    json!({
-        "laws": ["DE", "UK", "CA", "CY", "ISO", "GHGP"],
-        "scheme_name": "Made-up scheme", "certificate_no": "DEMO-0001",
-        "certificate_valid_from": "2027-01-01", "certificate_valid_to": "2027-12-31",
-        "issuer": { "name": "Hollin Vale Fuels (demo)", "address": ["4 Weir Lane", "Tarn Bridge"], "country": "IE" },
-        "recipient": { "name": "Estuary Blending (demo)", "address": ["12 Quay Road", "Saltmarsh"], "country": "IE" },
-        "contact": { "name": "Quality desk", "mail": "desk@example.org" },
-        "last_supplier_confirmation": { "given": true, "on": "2027-08-28", "by": "Haulier (demo)" },
-        "consignment_id": "HV-2027-0774", "quantity": 3200, "quantity_unit": "m3", "quantity_measured_by": "meter 7",
-        "temperature_c": 20, "loaded_on": "2027-08-28", "loaded_at": "Tarn Bridge works",
-        "delivered_on": "2027-08-30", "delivered_at": "Saltmarsh depot", "use_regions": ["IE", "GB"],
-        "production_period": { "from": "2027-04-01", "to": "2027-06-30" },
-        "fuel_type": "ethanol, undenatured", "feedstock_country": "IE", "production_country": "IE",
-        "feedstock_class": "crop", "category": "food_and_feed", "strength_percent_mass": 99.8, "denaturant_percent": 0,
-        "support": { "given": false }, "iluc_group": "cereals", "deviation_reason": "abated nitrate",
-        "cutoff_percent": 0, "dq": { "technology": 1, "place": 1, "time": 2 }, "uncertainty_note": "Judged in words.",
-        "land_declarations": [ { "number": "LD-2026-0001", "criterion": "all", "met": true, "reference_date": "2008-01-15" } ],
-        "low_iluc": false, "plots": ["EV-PLOTS"],
-        "mass_balance": { "given": true, "text": "Tarn Bridge works, April to June 2027" },
-        "balance_period": { "from": "2027-04-01", "to": "2027-06-30", "rule": "IR (EU) 2022/996 Art. 19(2)(l)" },
-        "site_id": "tarn-bridge", "no_double_claim": { "given": true, "by": "I. Marsh" },
-        "plant": { "name": "Tarn Bridge works", "address": ["1 Works Road"], "country": "IE",
-                   "latitude": 53.12345, "longitude": -7.54321 },
-        "energy_sources": [ { "kind": "natural gas, combined heat and power", "share_percent": 100 } ],
-        "audits": [ { "passed_on": "2027-03-01", "by": "Auditor (demo)", "site": "tarn-bridge", "actual_values": true } ],
-        "standards": ["ISO 14067"], "change_note": "none"
-    })
+    serde_json::from_str(include_str!("../../cases/statements/facts.json")).expect("json")
 }
 
 pub fn assessed(pathway: &Pathway) -> Assessment {
@@ -156,8 +130,7 @@ pub fn again(mut document: Value) -> Vec<u8> {
     use wheelwort::core::documents::{canonical, statement::signed_bytes};
     let signed = signed_bytes(document.clone()).expect("bytes");
     document["hash"] = canonical::hash(&signed).into();
-    document["signature"]["value"] =
-        wheelwort::core::statement::seal::hex(&key().sign(&signed).to_bytes()).into();
+    document["signature"]["value"] = hex(&key().sign(&signed).to_bytes()).into();
     bytes_of(&document)
 }
 

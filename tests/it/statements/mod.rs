@@ -1,7 +1,7 @@
 //! Statements: what the file holds, and what checking it finds.
 
 mod file;
-mod made;
+pub mod made;
 mod preflight;
 mod series;
 mod tampering;

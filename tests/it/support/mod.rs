@@ -3,4 +3,4 @@
 pub mod documents;
 pub mod test_app;
 
-pub use test_app::{Answer, TestApp, client};
+pub use test_app::{Answer, TestApp, attach_text, client};

@@ -12,7 +12,10 @@ use tower::ServiceExt;
 use wheelwort::app::App;
 use wheelwort::app::who::{Right, Via, Who};
 use wheelwort::clock::Clock;
+use wheelwort::core::documents::Pathway;
+use wheelwort::evidence;
 use wheelwort::library;
+use wheelwort::pathways::rows::Rows;
 use wheelwort::web::actor::Asking;
 use wheelwort::web::{Shell, router};
 
@@ -101,8 +104,9 @@ impl TestApp {
         self.stores(&chain()).await
     }
 
-    /// Stores a document; its address and ETag.
+    /// Stores a document, with the evidence it names; its address and ETag.
     pub async fn stores(&self, document: &Value) -> (String, String) {
+        seed_evidence(&self.app, document).await;
         let answer = self.post("/api/v1/pathways", document).await;
         assert_eq!(answer.status, 201, "{}", answer.text());
         (
@@ -145,6 +149,40 @@ impl TestApp {
         ));
         address
     }
+}
+
+/// Attaches a short file under every id of evidence that a document names.
+pub async fn seed_evidence(app: &App, document: &Value) {
+    let Ok(pathway) = Pathway::from_value(document) else {
+        return;
+    };
+    for place in Rows::of(&pathway).evidence {
+        let id = place.evidence;
+        if evidence::read(app, &id).await.is_err() {
+            attach_text(app, Some(&id), "seed.txt", &format!("Backs what names {id}."))
+                .await
+                .expect("attached");
+        }
+    }
+}
+
+/// Attaches a file of text.
+pub async fn attach_text(
+    app: &App,
+    id: Option<&str>,
+    file_name: &str,
+    text: &str,
+) -> Result<evidence::Record, evidence::EvidenceError> {
+    let mut incoming = evidence::Incoming::begin(app).await?;
+    incoming.add(text.as_bytes()).await?;
+    let naming = evidence::Naming {
+        id: id.map(str::to_owned),
+        file_name: file_name.to_owned(),
+        media_type: "text/plain".to_owned(),
+        note: None,
+    };
+    let attached = evidence::attach(app, incoming.arrived().await?, naming).await?;
+    Ok(attached.record)
 }
 
 /// A client for sockets of this machine.

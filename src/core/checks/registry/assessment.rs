@@ -106,7 +106,7 @@ pub const E: &[Check] = checks! {
         "Dir. (EU) 2018/2001 Annex V C pt 11; IR (EU) 2022/996 Annex VII, electricity section (farming operations)";
     "E-10" Info OnAssessment: "No estimate hidden as a reading",
         "SOR/2022-140 (CA) Sch. 21 pt 7(a)(iii),(v)";
-    "E-11" Block Later("hashes of stored files"): "Evidence file unchanged",
+    "E-11" Block OnRequest: "Evidence file unchanged",
         "own";
     "E-12" Block AtIssue: "Nothing changed after the assessment",
         "own";

@@ -8,6 +8,7 @@
 //! `signature.public_key` is the 32-byte key and `signature.value` the 64-byte signature, both in small hexadecimal;
 //! `signature.key_id` is the first 16 hexadecimal digits of the SHA-256 of the 32 bytes of the key.
 
+mod convert;
 pub mod data;
 pub mod facts;
 pub mod figures;

@@ -160,9 +160,12 @@ fn countries(facts: &StatementFacts, at: &Place, problems: &mut Problems) {
     }
 }
 
+/// Two days in order: the object they stand in, the field of the later one, both.
+type Span<'f> = (&'f str, &'f str, (Option<Date>, Option<Date>));
+
 fn days(facts: &StatementFacts, at: &Place, problems: &mut Problems) {
     let span = |days: &Option<Days>| days.as_ref().map_or((None, None), |days| (days.from, days.to));
-    let spans: [(&str, &str, (Option<Date>, Option<Date>)); 5] = [
+    let spans: [Span; 5] = [
         ("", "valid_to", (facts.valid_from, facts.valid_to)),
         (
             "",

@@ -385,7 +385,7 @@ pub fn input(base: &str, is: &str, ground: Ground) -> Vec<Spec> {
     ));
     out.push(
         Spec::new(base, "evidence", "Documents that back it", Shape::Texts)
-            .hint("Ids, with commas between them.")
+            .hint("Ids of evidence, with commas between them.")
             .rare(),
     );
     out.push(Spec::new(base, "estimated_percent", "Estimated part, %", Shape::Number).rare());
