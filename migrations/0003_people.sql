@@ -38,6 +38,7 @@ CREATE TABLE invitation (
     until           INTEGER NOT NULL,
     UNIQUE (person_id, organisation_id, kind, thing)
 ) STRICT;
+CREATE INDEX invitation_in_order ON invitation (organisation_id, person_id);
 
 CREATE TABLE session (
     id              INTEGER PRIMARY KEY,

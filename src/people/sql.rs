@@ -28,9 +28,10 @@ const SET_PASSWORD: &str =
 const SET_DISABLED: &str = "UPDATE person SET disabled_at = $3 WHERE organisation_id = $1 AND id = $2";
 const SET_THEME: &str = "UPDATE person SET theme = $3 WHERE organisation_id = $1 AND id = $2";
 
-const ROLES: &str = "\
-    SELECT person_id, role, until FROM member WHERE organisation_id = $1 AND ($2 IS NULL OR person_id = $2) \
-    ORDER BY person_id, id";
+const ROLES: &str =
+    "SELECT person_id, role, until FROM member WHERE organisation_id = $1 ORDER BY person_id, id";
+const ROLES_OF: &str = "\
+    SELECT person_id, role, until FROM member WHERE organisation_id = $1 AND person_id = $2 ORDER BY id";
 const DROP_ROLES: &str = "DELETE FROM member WHERE organisation_id = $1 AND person_id = $2";
 const GIVE_ROLE: &str = "\
     INSERT INTO member (organisation_id, person_id, role, until, given_at) VALUES ($1, $2, $3, $4, $5)";
@@ -38,9 +39,10 @@ const ADMINISTRATORS: &str = "\
     SELECT count(*) FROM member m JOIN person p ON p.id = m.person_id \
     WHERE m.organisation_id = $1 AND m.role = 'administrator' AND p.disabled_at IS NULL AND p.id <> $2";
 
-const INVITATIONS: &str = "\
-    SELECT person_id, kind, thing, until FROM invitation \
-    WHERE organisation_id = $1 AND ($2 IS NULL OR person_id = $2) ORDER BY person_id, id";
+const INVITATIONS: &str =
+    "SELECT person_id, kind, thing, until FROM invitation WHERE organisation_id = $1 ORDER BY person_id, id";
+const INVITATIONS_OF: &str = "\
+    SELECT person_id, kind, thing, until FROM invitation WHERE organisation_id = $1 AND person_id = $2 ORDER BY id";
 const DROP_INVITATIONS: &str = "DELETE FROM invitation WHERE organisation_id = $1 AND person_id = $2";
 const INVITE: &str = "\
     INSERT INTO invitation (organisation_id, person_id, kind, thing, until) VALUES ($1, $2, $3, $4, $5)";
@@ -57,10 +59,12 @@ pub(super) const STATEMENTS: &[&str] = &[
     SET_DISABLED,
     SET_THEME,
     ROLES,
+    ROLES_OF,
     DROP_ROLES,
     GIVE_ROLE,
     ADMINISTRATORS,
     INVITATIONS,
+    INVITATIONS_OF,
     DROP_INVITATIONS,
     INVITE,
 ];
@@ -218,11 +222,13 @@ pub(super) async fn roles(
     who: OrganisationId,
     person: Option<i64>,
 ) -> Answer<Vec<RoleRow>> {
-    Ok(sqlx::query_as(ROLES)
-        .bind(who.0)
-        .bind(person)
-        .fetch_all(c)
-        .await?)
+    Ok(match person {
+        None => sqlx::query_as(ROLES).bind(who.0).fetch_all(c).await?,
+        Some(person) => {
+            let query = sqlx::query_as(ROLES_OF).bind(who.0).bind(person);
+            query.fetch_all(c).await?
+        }
+    })
 }
 
 /// Gives a person these roles in place of those they have.
@@ -266,11 +272,13 @@ pub(super) async fn invitations(
     who: OrganisationId,
     person: Option<i64>,
 ) -> Answer<Vec<InvitationRow>> {
-    Ok(sqlx::query_as(INVITATIONS)
-        .bind(who.0)
-        .bind(person)
-        .fetch_all(c)
-        .await?)
+    Ok(match person {
+        None => sqlx::query_as(INVITATIONS).bind(who.0).fetch_all(c).await?,
+        Some(person) => {
+            let query = sqlx::query_as(INVITATIONS_OF).bind(who.0).bind(person);
+            query.fetch_all(c).await?
+        }
+    })
 }
 
 /// Invites a person to these things in place of those before.

@@ -12,17 +12,21 @@ mod driver;
 use driver::{Browser, Driver, Setup};
 use serde_json::{Value, json};
 use std::net::SocketAddr;
+use std::sync::Arc;
 use wheelwort::app::App;
 use wheelwort::clock::Clock;
 use wheelwort::core::documents::Pathway;
+use wheelwort::people::pages::gate::{DemoDoor, Door};
+use wheelwort::people::{NewPerson, Role};
 use wheelwort::web::{Shell, patience::Patient, router, serve};
-use wheelwort::{demo, library, pathways};
+use wheelwort::{demo, library, pathways, people};
 
 /// The service with its demonstration data, on a free port; the pathway that is looked at.
 struct Site {
     address: SocketAddr,
     one: String,
     compare: String,
+    person: String,
     _folder: tempfile::TempDir,
 }
 
@@ -48,20 +52,34 @@ impl Site {
             ..wheat
         };
         let two = pathways::create(&app, other, None).await.expect("stored").id;
+        let person = NewPerson {
+            name: "Ines Marsh".to_owned(),
+            sign_in_name: "ines".to_owned(),
+            roles: [Role::Administrator, Role::Preparer, Role::Approver].into(),
+            audit: None,
+            password: Some("barley tram seven".to_owned()),
+        };
+        let person = people::add(&app, person).await.expect("added").person.id;
+        // Whoever comes from this machine is signed in, as in the demonstration.
+        let door = Door {
+            demo: Some(Arc::new(DemoDoor::new(vec![(person, "the preparer")]))),
+            ..Door::default()
+        };
+        let shell = Shell {
+            door,
+            ..Shell::default()
+        };
         let listener = tokio::net::TcpListener::bind("127.0.0.1:0")
             .await
             .expect("a port");
         let address = listener.local_addr().expect("an address");
         let patient = Patient::new(listener, 64, std::time::Duration::from_secs(30));
-        tokio::spawn(serve(
-            patient,
-            router(app, Shell::default()),
-            std::future::pending(),
-        ));
+        tokio::spawn(serve(patient, router(app, shell), std::future::pending()));
         Site {
             address,
             one: format!("/pathways/{one}"),
             compare: format!("/compare?ids={one},{two}"),
+            person: format!("/people/{person}"),
             _folder: folder,
         }
     }
@@ -99,6 +117,11 @@ impl Site {
             "/calculators/fermentation?starch_kg=600&efficiency_percent=92&feedstock_kg=1000".to_owned(),
             format!("/calculators/blend?pathway={}", self.one.rsplit('/').next().unwrap_or_default()),
             "/api".to_owned(),
+            "/sign-in".to_owned(),
+            "/me".to_owned(),
+            "/me/password".to_owned(),
+            "/people".to_owned(),
+            self.person.clone(),
             "/nowhere".to_owned(),
         ]
     }

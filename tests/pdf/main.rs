@@ -12,7 +12,7 @@ use std::path::{Path, PathBuf};
 use std::process::Command;
 use std::sync::LazyLock;
 use wheelwort::charts::ladder::{self, Baseline, Counted, Form, Ladder, Required, Rung};
-use wheelwort::exchange::pdf::{Chapter, PdfError, Picture, Sheet, code_text, write};
+use wheelwort::exchange::pdf::{Chapter, Day, PdfError, Picture, Sheet, code_text, write};
 
 const CASE: &str = include_str!("../cases/print/statement.json");
 /// Set in a child of these tests: the file that it writes.
@@ -257,9 +257,15 @@ fn an_empty_sheet_is_a_paper_and_a_day_that_is_none_is_refused() {
         !pages[0].contains("EXAMPLE"),
         "only demonstration data is an example"
     );
-    let mut sheet = Sheet::default();
-    sheet.day.day = 31;
-    sheet.day.month = 2;
+    let day = Day {
+        month: 2,
+        day: 31,
+        ..Day::default()
+    };
+    let sheet = Sheet {
+        day,
+        ..Sheet::default()
+    };
     assert_eq!(write(&sheet), Err(PdfError::Day(1970, 2, 31)));
 }
 

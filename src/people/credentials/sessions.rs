@@ -132,7 +132,7 @@ async fn begin(
                 if let Some(before) = before {
                     sql::end_by_secret(c, &secrets::hex(&secrets::hash(&before))).await?;
                 }
-                sql::begin_session(c, who, row.id, &new, now, now.saturating_sub(millis(IDLE))).await?;
+                sql::begin_session(c, who, row.id, &new, now).await?;
                 let held = roles(c, who, Some(row.id)).await?;
                 let held: Vec<_> = held.iter().map(|held| held.role.as_str()).collect();
                 let what = json!({ "by": means, "roles": held });

@@ -28,14 +28,13 @@ const TOKEN: &str = holder!(
 const BEGIN_SESSION: &str = "\
     INSERT INTO session (organisation_id, person_id, secret_hash, name, created_at, expires_at, last_used_at, came_from) \
     VALUES ($1, $2, $3, $4, $5, $6, $5, $7)";
-const DROP_EXPIRED: &str =
-    "DELETE FROM session WHERE organisation_id = $1 AND (expires_at <= $2 OR last_used_at <= $3)";
+const DROP_EXPIRED: &str = "DELETE FROM session WHERE organisation_id = $1 AND expires_at <= $2";
 const SESSIONS: &str = "\
     SELECT name, created_at, expires_at, last_used_at, came_from FROM session \
     WHERE organisation_id = $1 AND person_id = $2 AND expires_at > $3 AND last_used_at > $4 ORDER BY id DESC";
 const END_SESSION: &str = "DELETE FROM session WHERE organisation_id = $1 AND person_id = $2 AND name = $3";
 const END_OTHERS: &str = "DELETE FROM session WHERE organisation_id = $1 AND person_id = $2 AND name <> $3";
-const END_BY_SECRET: &str = "DELETE FROM session WHERE secret_hash = $1";
+const END_BY_SECRET: &str = "DELETE FROM session WHERE secret_hash = $1 RETURNING organisation_id";
 const TOUCH_SESSION: &str = "UPDATE session SET last_used_at = $3 WHERE organisation_id = $1 AND id = $2";
 const TOUCH_TOKEN: &str = "UPDATE token SET last_used_at = $3 WHERE organisation_id = $1 AND id = $2";
 const ADD_TOKEN: &str = "\
@@ -144,19 +143,17 @@ pub(super) async fn token(c: &mut Connection, hash: &str) -> Answer<Option<Holde
     Ok(sqlx::query_as(TOKEN).bind(hash).fetch_optional(c).await?)
 }
 
-/// Begins a session, and takes away those that have ended: expired, or not used since `idle_since`.
+/// Begins a session, and takes away those that have expired.
 pub(super) async fn begin_session(
     c: &mut Connection,
     who: OrganisationId,
     person: i64,
     new: &NewSession,
     now: i64,
-    idle_since: i64,
 ) -> Answer<()> {
     sqlx::query(DROP_EXPIRED)
         .bind(who.0)
         .bind(now)
-        .bind(idle_since)
         .execute(&mut *c)
         .await?;
     sqlx::query(BEGIN_SESSION)

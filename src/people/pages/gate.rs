@@ -65,9 +65,17 @@ impl DemoDoor {
         let Some((first, _)) = self.people.first() else {
             return Ok(None);
         };
-        *session = sign_in_as(app, *first, None, "demonstration").await?.secret;
+        let asked = app.asked_by(app.organisation, Arc::new(stranger(from)));
+        *session = sign_in_as(&asked, *first, None, "demonstration").await?.secret;
         let come = recognise_session(app, &session, from).await?;
         Ok(come.map(|come| (session.clone(), come)))
+    }
+}
+
+fn stranger(from: &str) -> Who {
+    Who {
+        from: from.to_owned(),
+        ..Who::stranger()
     }
 }
 
@@ -156,10 +164,7 @@ async fn enter(gate: &Gate, mut request: Request, next: Next) -> Result<Response
     if let Some((organisation, who, _)) = visit.come {
         request.extensions_mut().insert(Asking { organisation, who });
     } else if request.extensions().get::<Asking>().is_none() {
-        let who = Arc::new(Who {
-            from: arrival.from.clone(),
-            ..Who::stranger()
-        });
+        let who = Arc::new(stranger(&arrival.from));
         request.extensions_mut().insert(Asking {
             organisation: gate.app.organisation,
             who,
@@ -238,7 +243,7 @@ fn put_before(asking: &Asking) -> Visit {
 
 fn visitor(visit: &Visit, form_token: String) -> Visitor {
     let who = visit.come.as_ref().map(|(_, who, _)| who);
-    let known = who.filter(|who| matches!(who.via, Via::Session(_)));
+    let known = who.filter(|who| !visit.by_token && matches!(who.via, Via::Session(_)));
     Visitor {
         name: known.map(|who| who.name.clone()),
         administers: known.is_some_and(|who| who.may(Right::Administer)),

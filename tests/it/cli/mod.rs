@@ -3,6 +3,7 @@
 mod backup;
 mod evaluate;
 mod help;
+mod people;
 mod serve;
 mod verify;
 

@@ -72,6 +72,7 @@ async fn serve_keeps_its_data_over_a_stop() {
             .args(["--listen", "127.0.0.1:0"]);
         Running::start(&mut command)
     };
+    let token = super::people::preparer_of(&data);
     let client = client();
     let running = serve();
     assert!(
@@ -81,6 +82,7 @@ async fn serve_keeps_its_data_over_a_stop() {
     );
     let answer = client
         .post(running.url("/api/v1/pathways"))
+        .bearer_auth(&token)
         .json(&chain())
         .send()
         .await
@@ -89,6 +91,7 @@ async fn serve_keeps_its_data_over_a_stop() {
     let location = answer.headers()["location"].to_str().unwrap().to_owned();
     let document = client
         .get(running.url(&location))
+        .bearer_auth(&token)
         .send()
         .await
         .unwrap()
@@ -97,14 +100,21 @@ async fn serve_keeps_its_data_over_a_stop() {
         .unwrap();
     let (code, rest, log) = running.stop("-TERM");
     assert_eq!((code, rest.as_str()), (Some(0), ""), "{log}");
-    assert!(log.contains("there is no sign-in yet"), "{log}");
+    assert!(!log.contains("people add"), "somebody can sign in: {log}");
     assert!(
         !data.join("wheelwort.db-wal").exists(),
         "an orderly end leaves one file"
     );
 
     let running = serve();
-    let again = client.get(running.url(&location)).send().await.unwrap();
+    let stranger = client.get(running.url(&location)).send().await.unwrap();
+    assert_eq!(stranger.status(), 401);
+    let again = client
+        .get(running.url(&location))
+        .bearer_auth(&token)
+        .send()
+        .await
+        .unwrap();
     assert_eq!(again.bytes().await.unwrap(), document);
     assert_eq!(running.stop("-INT").0, Some(0));
 }
@@ -166,7 +176,7 @@ fn an_address_that_others_can_reach_is_cautioned() {
     let (code, _, errors) = Running::start(&mut command).stop("-TERM");
     assert_eq!(code, Some(0));
     assert!(
-        errors.contains("Caution") && errors.contains("no sign-in"),
+        errors.contains("Caution") && errors.contains("TLS") && errors.contains("Nobody can sign in yet"),
         "{errors}"
     );
 }
@@ -189,8 +199,20 @@ async fn the_demo_shows_its_pathways_and_leaves_nothing() {
         list["items"].as_array().unwrap().len(),
         wheelwort::demo::PATHWAYS.len()
     );
+    // Whoever comes through a proxy, or by another name, is not on this machine.
+    for (name, value) in [("x-forwarded-for", "192.0.2.1"), ("host", "example.org")] {
+        let asked = client().get(running.url("/api/v1/me")).header(name, value);
+        assert_eq!(asked.send().await.unwrap().status(), 401, "{name}");
+    }
+    let me = client().get(running.url("/api/v1/me")).send().await.unwrap();
+    let me: serde_json::Value = me.json().await.expect("JSON");
+    assert_eq!(me["rights"], serde_json::json!(["read", "write"]), "the preparer");
     let (code, rest, errors) = running.stop("-TERM");
     assert_eq!((code, rest.as_str()), (Some(0), ""), "{errors}");
+    assert!(
+        errors.contains("a token that reads, for scripts: wwt_"),
+        "{errors}"
+    );
     assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 0);
 }
 

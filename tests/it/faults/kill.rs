@@ -50,7 +50,7 @@ async fn writes_until_it_is_killed() {
             let document = fertilised(&format!("writer {writer}"), 100.0 + turn as f64 / 64.0);
             let saved = match kept {
                 // Every fifth write begins a new pathway.
-                Some((id, revision)) if turn % 5 != 0 => {
+                Some((id, revision)) if !turn.is_multiple_of(5) => {
                     pathways::replace(&app, id, document, Expected::Number(revision), None).await
                 }
                 _ => pathways::create(&app, document, None).await,

@@ -47,6 +47,10 @@ async fn every_statement_finds_its_rows_by_an_index() {
             "FROM own_rule_set",
             "FROM check_settings",
             "DELETE FROM assessment",
+            // The people of an organisation are few, and their page shows all.
+            "FROM person",
+            "FROM member",
+            "FROM invitation",
             // The last of a chain, by the index of the chain.
             "ORDER BY number DESC LIMIT 1",
         ];

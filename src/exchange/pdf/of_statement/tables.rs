@@ -127,9 +127,12 @@ pub(super) fn carbon(statement: &Statement) -> Table {
     }
 }
 
+/// What a declaration on land says: criterion, whether it is met, the day whose status counts.
+type Said = (Option<LandCriterion>, Option<bool>, Option<String>);
+
 /// Declarations on land, counted by what they say.
 pub(super) fn land(statement: &Statement) -> Table {
-    let mut counted: BTreeMap<(Option<LandCriterion>, Option<bool>, Option<String>), usize> = BTreeMap::new();
+    let mut counted: BTreeMap<Said, usize> = BTreeMap::new();
     for one in &statement.facts.land_declarations {
         let on = one.reference_date.map(day);
         *counted.entry((one.criterion, one.met, on)).or_default() += 1;

@@ -5,6 +5,7 @@ use super::form::{Form, LISTS};
 use super::spec::{self, Ground, Spec};
 use crate::core::documents::problem::Problems;
 use serde_json::{Map, Value, json};
+use std::collections::{BTreeMap, BTreeSet};
 
 /// The stage with its lists as the form has them: items taken out are gone, new ones are there, still empty. A form
 /// that was not posted changes nothing.
@@ -136,19 +137,55 @@ fn name_keys(stage: &mut Value, list: &str, from: &str, otherwise: &str) {
         return;
     };
     let key_of = |item: &Value| item.get("key").and_then(Value::as_str).map(str::to_owned);
-    let mut taken: Vec<String> = items.iter().filter_map(key_of).collect();
+    let mut keys = Keys {
+        taken: items.iter().filter_map(key_of).collect(),
+        ..Keys::default()
+    };
     for item in items.iter_mut().filter(|item| item.get("key").is_none()) {
         let name = item.get(from).and_then(Value::as_str).unwrap_or_default();
-        let key = free_key(name, otherwise, &taken);
-        taken.push(key.clone());
+        let key = keys.free(name, otherwise);
         if let Value::Object(object) = item {
             object.insert("key".to_owned(), Value::String(key));
         }
     }
 }
 
+/// Keys of one list. Remembers how far each name was counted: thousands of nameless items must not be counted again and again.
+#[derive(Default)]
+struct Keys {
+    taken: BTreeSet<String>,
+    next: BTreeMap<String, usize>,
+}
+
+impl Keys {
+    /// Makes a key of a name and takes it.
+    fn free(&mut self, name: &str, otherwise: &str) -> String {
+        let plain = plain_key(name, otherwise);
+        let next = self.next.entry(plain.clone()).or_insert(1);
+        loop {
+            let key = if *next == 1 {
+                plain.clone()
+            } else {
+                format!("{plain}-{next}")
+            };
+            *next += 1;
+            if self.taken.insert(key.clone()) {
+                return key;
+            }
+        }
+    }
+}
+
 /// A key made of a name, not yet taken: `Natural gas, meter 3` is `natural-gas-meter-3`.
 pub fn free_key(name: &str, otherwise: &str, taken: &[String]) -> String {
+    let mut keys = Keys {
+        taken: taken.iter().cloned().collect(),
+        ..Keys::default()
+    };
+    keys.free(name, otherwise)
+}
+
+fn plain_key(name: &str, otherwise: &str) -> String {
     let mut key = String::new();
     for c in name.to_lowercase().chars() {
         if c.is_ascii_lowercase() || (c.is_ascii_digit() && !key.is_empty()) {
@@ -159,12 +196,7 @@ pub fn free_key(name: &str, otherwise: &str, taken: &[String]) -> String {
     }
     key.truncate(34);
     let key = key.trim_end_matches('-');
-    let key = if key.is_empty() { otherwise } else { key };
-    let free = |key: &String| !taken.contains(key);
-    std::iter::once(key.to_owned())
-        .chain((2..10_000).map(|n| format!("{key}-{n}")))
-        .find(free)
-        .unwrap_or_else(|| otherwise.to_owned())
+    if key.is_empty() { otherwise } else { key }.to_owned()
 }
 
 /// A stage that begins empty, for the card of a new one.
@@ -184,6 +216,25 @@ mod tests {
     use super::*;
     use crate::core::documents::pathway::Stage;
     use crate::pathways::pages::samples;
+
+    /// A name in a form may say any number; found by the fuzz run as minutes of work for a line of text.
+    #[test]
+    fn a_number_in_a_name_asks_for_no_more_items_than_a_document_takes() {
+        let mut form = Form::default();
+        form.set("expected", "1");
+        form.set("/inputs/6666/was", "x");
+        let (stage, _) = build(&json!({ "key": "field" }), &form, &[]);
+        assert_eq!(stage.get("inputs"), None);
+        form.set("/inputs/2000/as", "factor");
+        let (stage, _) = build(&json!({ "key": "field" }), &form, &[]);
+        let inputs = stage["inputs"].as_array().expect("inputs");
+        // One more than a document takes: refused there, with the reason.
+        assert_eq!(inputs.len(), 2_001);
+        assert_eq!(
+            (&inputs[0]["key"], &inputs[2_000]["key"]),
+            (&json!("input"), &json!("input-2001"))
+        );
+    }
 
     fn post(stage: &Value, sources: &[Source]) -> Form {
         let blank = Form::default();

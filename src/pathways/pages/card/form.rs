@@ -10,6 +10,10 @@ pub struct Form(BTreeMap<String, String>);
 /// The lists of a stage that a person can add to and take from.
 pub const LISTS: [&str; 3] = ["/intakes", "/inputs", "/co_products"];
 
+/// Items of a list that are read: one more than a document takes, so that too many are refused there and not lost here.
+/// The number stands in a name of the form, so that a short one could ask for any number of items.
+const MOST_ITEMS: usize = 2_001;
+
 impl Form {
     /// The form of posted pairs; of a name that stands twice the first counts (a button's, before the field's).
     pub fn of(pairs: Vec<(String, String)>) -> Form {
@@ -133,7 +137,7 @@ fn index_below(list: &str, name: &str) -> Option<usize> {
         .next()?
         .parse::<usize>()
         .ok()
-        .filter(|index| *index < 10_000)
+        .filter(|index| *index < MOST_ITEMS)
 }
 
 /// What the pressed button asks for.
