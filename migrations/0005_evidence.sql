@@ -28,8 +28,8 @@ CREATE TABLE evidence_use (
     revision_id     INTEGER NOT NULL REFERENCES revision (id) ON DELETE CASCADE,
     evidence        TEXT    NOT NULL,                -- public id
     pointer         TEXT    NOT NULL,                -- where the document names it, as a JSON pointer
-    stage_key       TEXT    NOT NULL,
-    input_key       TEXT,                            -- none where it backs what a supplier stated of a stage
+    stage_key       TEXT,                            -- none where it backs an audit of the whole pathway
+    input_key       TEXT,                            -- none where it backs a meter, an audit, or what a supplier stated
     UNIQUE (revision_id, pointer)
 ) STRICT;
 -- The id first: an index that began with the organisation would be taken for searches by revision as well.

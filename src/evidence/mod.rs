@@ -83,12 +83,13 @@ pub struct Use {
     pub current: bool,
     /// Where the document names it, as a JSON pointer.
     pub pointer: String,
-    /// Key of the stage.
-    pub stage: String,
+    /// Key of the stage; absent where it backs an audit of the whole pathway.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub stage: Option<String>,
     /// Its name.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub stage_name: Option<String>,
-    /// Key of the input; absent where it backs what a supplier stated.
+    /// Key of the input; absent where it backs a meter, an audit, or what a supplier stated.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub input: Option<String>,
     /// Its label.

@@ -113,7 +113,7 @@ pub(super) struct UseRow {
     pub(super) number: i64,
     pub(super) current_revision: i64,
     pub(super) pointer: String,
-    pub(super) stage_key: String,
+    pub(super) stage_key: Option<String>,
     pub(super) input_key: Option<String>,
     pub(super) stage_name: Option<String>,
     pub(super) input_label: Option<String>,

@@ -79,19 +79,23 @@ impl ShowEvidence {
 impl UseRow {
     fn of(found: &Use) -> UseRow {
         let id = found.pathway.to_string();
-        let stage = found.stage_name.as_deref().unwrap_or(&found.stage);
-        let input = found.input.as_deref();
-        let place = match found.input_label.as_deref().or(input) {
-            Some(label) => format!("{stage}, {label}"),
-            None => format!("{stage}, as the supplier states"),
+        let part = match &found.input {
+            Some(key) => found.input_label.as_deref().unwrap_or(key),
+            None if found.pointer.contains("/meters/") => "a meter",
+            None if found.pointer.starts_with("/audits/") => "an audit",
+            None => "as the supplier states",
         };
-        let anchor = input.map_or_else(|| "#about".to_owned(), |key| format!("#input-{key}"));
+        let place = match (&found.stage_name, &found.stage) {
+            (Some(stage), _) | (None, Some(stage)) => format!("{stage}, {part}"),
+            (None, None) => part.to_owned(),
+        };
         let href = links::pathway(&id);
-        // An older revision has no card of its own; its page tells what it changed.
-        let at = if found.current {
-            format!("{href}/stages/{}{anchor}", links::segment(&found.stage))
-        } else {
-            format!("{href}/revisions/{}", found.revision)
+        let at = match (&found.stage, &found.input) {
+            // An older revision has no card of its own; its page tells what it changed.
+            _ if !found.current => format!("{href}/revisions/{}", found.revision),
+            (Some(stage), Some(input)) => format!("{href}/stages/{}#input-{input}", links::segment(stage)),
+            (Some(stage), None) => format!("{href}/stages/{}", links::segment(stage)),
+            (None, _) => href.clone(),
         };
         UseRow {
             pathway: found.pathway_name.clone(),

@@ -32,7 +32,7 @@ fn used(text: &str, current: bool) -> Use {
         revision: 3,
         current,
         pointer: "/stages/0/inputs/0/evidence/0".into(),
-        stage: "field".into(),
+        stage: Some("field".into()),
         stage_name: Some(text.into()),
         input: Some("n-an".into()),
         input_label: None,

@@ -1,4 +1,5 @@
-//! Where a document names evidence: at its inputs, in amounts inside their models, at what a supplier stated.
+//! Where a document names evidence: at its audits, at the meters and inputs of its stages, in amounts inside models, at
+//! what a supplier stated.
 
 use super::EvidenceUseRow;
 use crate::core::documents::Problems;
@@ -8,27 +9,38 @@ use std::collections::BTreeSet;
 
 /// Every place of a document that names evidence, in its order.
 pub fn named(pathway: &Pathway) -> Vec<EvidenceUseRow> {
-    let mut found = Vec::new();
+    let mut found = Found::default();
+    for (index, audit) in pathway.audits.iter().enumerate() {
+        found.stage.clone_from(&audit.stage);
+        found.ids(&format!("/audits/{index}/evidence"), &audit.evidence);
+    }
     for (index, stage) in pathway.stages.iter().enumerate() {
-        let at = format!("/stages/{index}");
+        found.of_stage(&format!("/stages/{index}"), stage);
+    }
+    found.rows
+}
+
+/// What was found, and where the next is.
+#[derive(Default)]
+struct Found {
+    rows: Vec<EvidenceUseRow>,
+    stage: Option<String>,
+    input: Option<String>,
+}
+
+impl Found {
+    fn of_stage(&mut self, at: &str, stage: &Stage) {
+        self.stage = Some(stage.key.clone());
+        for (index, meter) in stage.meters.iter().enumerate() {
+            self.ids(&format!("{at}/meters/{index}/evidence"), &meter.evidence);
+        }
         if let Some(stated) = &stage.stated {
-            add(
-                &mut found,
-                stage,
-                None,
-                &format!("{at}/stated/evidence"),
-                texts(&stated.evidence),
-            );
+            self.ids(&format!("{at}/stated/evidence"), &stated.evidence);
         }
         for (index, input) in stage.inputs.iter().enumerate() {
             let at = format!("{at}/inputs/{index}");
-            add(
-                &mut found,
-                stage,
-                Some(&input.key),
-                &format!("{at}/evidence"),
-                texts(&input.evidence),
-            );
+            self.input = Some(input.key.clone());
+            self.ids(&format!("{at}/evidence"), &input.evidence);
             let Some(models) = &input.model else { continue };
             for (index, model) in models.list().iter().enumerate() {
                 let at = if models.is_list() {
@@ -37,63 +49,53 @@ pub fn named(pathway: &Pathway) -> Vec<EvidenceUseRow> {
                     format!("{at}/model")
                 };
                 for (name, value) in &model.parameters {
-                    inside(
-                        &mut found,
-                        stage,
-                        &input.key,
-                        &format!("{at}/{}", escaped(name)),
-                        value,
-                    );
+                    self.inside(&format!("{at}/{}", escaped(name)), value);
                 }
             }
         }
+        self.input = None;
     }
-    found
-}
 
-fn add<'i>(
-    found: &mut Vec<EvidenceUseRow>,
-    stage: &Stage,
-    input: Option<&str>,
-    at: &str,
-    ids: impl Iterator<Item = (usize, &'i str)>,
-) {
-    for (index, id) in ids {
-        found.push(EvidenceUseRow {
-            evidence: id.to_owned(),
-            pointer: format!("{at}/{index}"),
-            stage_key: stage.key.clone(),
-            input_key: input.map(str::to_owned),
-        });
+    fn ids(&mut self, at: &str, ids: &[String]) {
+        for (index, id) in ids.iter().enumerate() {
+            self.add(format!("{at}/{index}"), id);
+        }
     }
-}
 
-fn texts(ids: &[String]) -> impl Iterator<Item = (usize, &str)> {
-    ids.iter().map(String::as_str).enumerate()
-}
-
-/// An amount of a model may say what backs it, however deep it stands.
-fn inside(found: &mut Vec<EvidenceUseRow>, stage: &Stage, input: &str, at: &str, value: &Value) {
-    match value {
-        Value::Object(fields) => {
-            for (name, value) in fields {
-                let at = format!("{at}/{}", escaped(name));
-                match value {
-                    Value::Array(ids) if name == "evidence" => {
-                        let ids = ids.iter().enumerate();
-                        let texts = ids.filter_map(|(index, id)| Some((index, id.as_str()?)));
-                        add(found, stage, Some(input), &at, texts);
+    /// An amount of a model may say what backs it, however deep it stands.
+    fn inside(&mut self, at: &str, value: &Value) {
+        match value {
+            Value::Object(fields) => {
+                for (name, value) in fields {
+                    let at = format!("{at}/{}", escaped(name));
+                    match value {
+                        Value::Array(ids) if name == "evidence" => {
+                            for (index, id) in ids.iter().enumerate() {
+                                if let Some(id) = id.as_str() {
+                                    self.add(format!("{at}/{index}"), id);
+                                }
+                            }
+                        }
+                        value => self.inside(&at, value),
                     }
-                    value => inside(found, stage, input, &at, value),
                 }
             }
-        }
-        Value::Array(items) => {
-            for (index, item) in items.iter().enumerate() {
-                inside(found, stage, input, &format!("{at}/{index}"), item);
+            Value::Array(items) => {
+                for (index, item) in items.iter().enumerate() {
+                    self.inside(&format!("{at}/{index}"), item);
+                }
             }
+            _ => {}
         }
-        _ => {}
+    }
+
+    fn add(&mut self, pointer: String, id: &str) {
+        self.rows.push(EvidenceUseRow {
+            evidence: id.to_owned(),
+            pointer,
+            stage_key: self.stage.clone(),
+            input_key: self.input.clone(),
+        });
     }
 }
 

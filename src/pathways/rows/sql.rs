@@ -145,7 +145,7 @@ pub struct UseRow {
 pub struct EvidenceUseRow {
     pub evidence: String,
     pub pointer: String,
-    pub stage_key: String,
+    pub stage_key: Option<String>,
     pub input_key: Option<String>,
 }
 

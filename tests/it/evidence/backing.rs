@@ -4,6 +4,9 @@ use crate::support::documents::{chain, chain_with};
 use crate::support::test_app::pointers;
 use crate::support::{TestApp, attach_text};
 use serde_json::{Value, json};
+use std::collections::BTreeMap;
+use wheelwort::core::documents::Pathway;
+use wheelwort::pathways::rows::Rows;
 
 /// The chain with evidence at its inputs, and at an amount inside a model.
 fn backed(ids: [&str; 3]) -> Value {
@@ -57,6 +60,55 @@ async fn a_stored_pathway_names_only_what_is_there() {
             .expect("attached");
     }
     assert_eq!(app.post("/api/v1/pathways", &document).await.status, 201);
+}
+
+/// Every list called `evidence` in a document, by pointer.
+fn lists(at: &str, value: &Value, found: &mut BTreeMap<String, String>) {
+    match value {
+        Value::Object(fields) => {
+            for (name, value) in fields {
+                let at = format!("{at}/{name}");
+                if let (Value::Array(ids), "evidence") = (value, name.as_str()) {
+                    for (index, id) in ids.iter().enumerate() {
+                        found.insert(format!("{at}/{index}"), id.as_str().expect("an id").to_owned());
+                    }
+                } else {
+                    lists(&at, value, found);
+                }
+            }
+        }
+        Value::Array(items) => {
+            for (index, item) in items.iter().enumerate() {
+                lists(&format!("{at}/{index}"), item, found);
+            }
+        }
+        _ => {}
+    }
+}
+
+/// Whatever learns to carry evidence later must be looked for, too.
+#[test]
+fn every_list_of_evidence_in_a_document_is_found() {
+    let mut document = backed(["EV-1", "EV-2", "EV-3"]);
+    document["audits"] = json!([
+        { "scope": "actual_values", "passed_on": "2026-05-04", "evidence": ["EV-4"] },
+        { "scope": "actual_values", "stage": "works", "passed_on": "2026-05-04", "evidence": ["EV-5", "EV-6"] },
+    ]);
+    document["stages"][1]["meters"] = json!([{ "id": "M-1", "unit": "TJ", "evidence": ["EV-7"] }]);
+    let demo = wheelwort::demo::PATHWAYS
+        .iter()
+        .map(|(_, text)| serde_json::from_str(text).expect("JSON"));
+    for document in std::iter::once(document).chain(demo) {
+        let mut expected = BTreeMap::new();
+        lists("", &document, &mut expected);
+        let pathway = Pathway::from_value(&document).unwrap_or_else(|error| panic!("{error:?}"));
+        let found: BTreeMap<String, String> = Rows::of(&pathway)
+            .evidence
+            .into_iter()
+            .map(|place| (place.pointer, place.evidence))
+            .collect();
+        assert_eq!(found, expected);
+    }
 }
 
 #[tokio::test]
