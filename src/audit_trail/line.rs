@@ -27,7 +27,7 @@ pub struct Deed {
 
 impl Deed {
     /// A deed without a reason.
-    pub fn new(did: &'static str, thing: &'static str, id: impl ToString, what: Value) -> Deed {
+    pub fn new(did: &'static str, thing: &'static str, id: impl std::fmt::Display, what: Value) -> Deed {
         Deed {
             did,
             thing,

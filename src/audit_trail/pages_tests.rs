@@ -108,7 +108,7 @@ fn every_sample_renders_safely() {
         from: HOSTILE.into(),
         ..Asked::default()
     };
-    let wrong = asked.filter().question().err().expect("a wrong filter");
+    let wrong = asked.filter().question().expect_err("a wrong filter");
     assert_eq!(wrong.field, "from");
     let samples = [
         full(),
