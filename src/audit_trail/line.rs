@@ -47,7 +47,6 @@ impl Deed {
 /// A line of the chain.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize, ToSchema)]
 #[schema(as = AuditLine)]
-#[serde(deny_unknown_fields)]
 pub struct Line {
     /// `wheelwort.audit-line/1`.
     pub format: String,

@@ -13,18 +13,25 @@ use crate::app::App;
 use crate::core::documents::Pathway;
 use crate::core::documents::json;
 use crate::core::documents::problem::Problem;
+use crate::exchange::workbook::{About, write};
 use crate::pathways::{self, Expected, PathwayError, What};
 use crate::rules::basis;
-use crate::web::Refusal;
 use crate::web::actor::{Actor, CanRead, CanWrite};
 use crate::web::extract::{Form, Path, Query};
 use crate::web::frame::{Frame, Section};
+use crate::web::{Refusal, blocking};
 use answers::{csv, file, page, see_other, with_status};
 use axum::http::StatusCode;
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
 use serde_json::Value;
 use std::collections::BTreeMap;
+
+/// What a reader of a workbook should be warned of.
+const CAUTIONS: [&str; 2] = [
+    "Figures for statutory reporting need verification by an accredited body. A computed saving is not a certificate.",
+    "Figures of stills and of CO2 serve accounting only, never the design or running of a plant; local codes and licensed practice come first.",
+];
 
 /// The empty form.
 pub(super) async fn new(Actor { app, .. }: Actor<CanWrite>) -> Result<Response, Refusal> {
@@ -300,13 +307,43 @@ pub(super) struct Which {
     revision: Option<i64>,
 }
 
+/// The assessment as a workbook whose formulas lead from the amounts to the net.
+async fn workbook(seen: Seen, base: &str) -> Result<Response, Response> {
+    let made = blocking::run(move || {
+        let Ok(found) = &seen.outcome else {
+            return Ok(Vec::new());
+        };
+        let about = About {
+            made_at: seen.stored.saved_at,
+            issuer: None,
+            statement: None,
+            cautions: &CAUTIONS.map(str::to_owned),
+        };
+        write(&seen.pathway, found, &seen.book, &about)
+    })
+    .await
+    .map_err(IntoResponse::into_response)?;
+    match made {
+        Ok(bytes) => Ok(file(
+            &format!("{base}.xlsx"),
+            "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet",
+            bytes,
+        )),
+        Err(error) => {
+            tracing::warn!(%error, "a workbook could not be made");
+            let detail = format!("There is no workbook of it: {error}.");
+            Err(Refusal::of(StatusCode::CONFLICT).detail(detail).into_response())
+        }
+    }
+}
+
 /// Documents and tables as files.
 pub(super) async fn download(
     Actor { app, .. }: Actor<CanRead>,
     Path((id, name)): Path<(String, String)>,
     Query(which): Query<Which>,
 ) -> Result<Response, Response> {
-    const KNOWN: [&str; 8] = [
+    const KNOWN: [&str; 9] = [
         "document.json",
         "assessment.json",
         "stages.csv",
@@ -315,6 +352,7 @@ pub(super) async fn download(
         "checks.csv",
         "workings.csv",
         "defaults.csv",
+        "workbook.xlsx",
     ];
     if !KNOWN.contains(&name.as_str()) {
         return Err(Refusal::of(StatusCode::NOT_FOUND).into_response());
@@ -340,6 +378,9 @@ pub(super) async fn download(
     if name == "assessment.json" {
         let text = serde_json::to_string_pretty(found).unwrap_or_default();
         return Ok(file(&format!("{base}-assessment.json"), "application/json", text));
+    }
+    if name == "workbook.xlsx" {
+        return workbook(seen, &base).await;
     }
     let table = if name == "workings.csv" {
         ShowWorkings::of(seen.head(), &seen.pathway, found, &seen.book, false).table()

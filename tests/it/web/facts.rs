@@ -44,6 +44,28 @@ async fn a_wrong_day_is_refused_at_its_field_and_a_stale_form_keeps_what_was_typ
 }
 
 #[tokio::test]
+async fn a_workbook_is_there_to_keep() {
+    let app = TestApp::new().await;
+    let (api, _) = app.stores_chain().await;
+    let answer = app.get(&format!("{}/workbook.xlsx", of_pages(&api))).await;
+    assert_eq!(answer.status, 200, "{}", answer.text());
+    assert!(answer.header("content-type").ends_with("spreadsheetml.sheet"));
+    assert!(
+        answer
+            .header("content-disposition")
+            .starts_with("attachment; filename=\"")
+            && answer
+                .header("content-disposition")
+                .ends_with("-revision-1.xlsx\"")
+    );
+    let again = app.get(&format!("{}/workbook.xlsx", of_pages(&api))).await;
+    assert!(
+        answer.bytes.starts_with(b"PK") && answer.bytes == again.bytes,
+        "the same bytes each time"
+    );
+}
+
+#[tokio::test]
 async fn a_copy_is_a_pathway_of_its_own() {
     let app = TestApp::new().await;
     let (api, _) = app.stores_chain().await;
