@@ -21,6 +21,11 @@ use tokio::net::TcpListener;
 pub(super) fn run(config: &Config) -> anyhow::Result<()> {
     telemetry::begin(&config.log, config.log_format)?;
     running(async {
+        // Better no start than a door that people believe to be there.
+        anyhow::ensure!(
+            config.oidc.is_none(),
+            "oidc_issuer is set, and sign-in by OpenID Connect is not built yet: take the setting out"
+        );
         let folder = config.data.clone();
         std::fs::create_dir_all(&folder)
             .with_context(|| format!("the folder {} cannot be made", folder.display()))?;

@@ -126,7 +126,7 @@ pub const SETTINGS: &[Setting] = &[
         |d, text| kinds::word(text).map(|name| d.administrator = Some(name))),
     secret("administrator_password", "a text", "password of that administrator's first sign-in",
         |d, text| kinds::word(text).map(|password| d.administrator_password = Some(Secret::new(password)))),
-    open("oidc_issuer", "", "http(s)://...", "provider of sign-in by OpenID Connect",
+    open("oidc_issuer", "", "http(s)://...", "provider of sign-in by OpenID Connect: serve refuses it until that is built",
         |d, text| kinds::web_address(text).map(|address| {
             // An issuer is compared as it is written: a slash at its end stays.
             d.oidc_issuer = Some(if text.ends_with('/') { format!("{address}/") } else { address });

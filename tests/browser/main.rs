@@ -16,6 +16,7 @@ use std::sync::Arc;
 use wheelwort::app::App;
 use wheelwort::clock::Clock;
 use wheelwort::core::documents::Pathway;
+use wheelwort::evidence;
 use wheelwort::people::pages::gate::{DemoDoor, Door};
 use wheelwort::people::{NewPerson, Role};
 use wheelwort::web::{Shell, patience::Patient, router, serve};
@@ -28,6 +29,20 @@ struct Site {
     compare: String,
     person: String,
     _folder: tempfile::TempDir,
+}
+
+/// A short file as the evidence of that id; the same again is no second one.
+async fn attach(app: &App, id: String) {
+    let mut incoming = evidence::Incoming::begin(app).await.expect("begun");
+    incoming.add(b"Made up for a test.").await.expect("taken");
+    let naming = evidence::Naming {
+        id: Some(id),
+        file_name: "bill.txt".to_owned(),
+        media_type: "text/plain".to_owned(),
+        note: None,
+    };
+    let arrived = incoming.arrived().await.expect("arrived");
+    evidence::attach(app, arrived, naming).await.expect("attached");
 }
 
 impl Site {
@@ -43,6 +58,9 @@ impl Site {
         demo::load(&app).await.expect("the demonstration");
         let sample = include_bytes!("../../src/pathways/pages/samples/wheat.json");
         let wheat = Pathway::from_bytes(sample).expect("a pathway");
+        for place in pathways::rows::Rows::of(&wheat).evidence {
+            attach(&app, place.evidence).await;
+        }
         let one = pathways::create(&app, wheat.clone(), None)
             .await
             .expect("stored")
