@@ -22,45 +22,31 @@ use axum::routing::get;
 
 type Pairs = Query<Vec<(String, String)>>;
 
+/// The calculators: the name in their address, and their page.
+const CALCULATORS: [(&str, fn(&Asked) -> Calculator); 4] = [
+    ("alcoholometry", alcoholometry::page),
+    ("distillation", distillation::page),
+    ("fermentation", fermentation::page),
+    ("dehydration", dehydration::page),
+];
+
 /// The routes of this file. The blend stands with the pathways, which it can take its ethanol from.
 pub fn routes() -> Router<App> {
-    Router::new()
-        .route(
-            "/calculators",
-            get(|_: Actor<CanRead>| async { answers::page(&Index::new()) }),
-        )
-        .route(
-            "/calculators/alcoholometry",
-            get(|_: Actor<CanRead>, query: Pairs| shown(alcoholometry::page, query)),
-        )
-        .route(
-            "/calculators/alcoholometry.csv",
-            get(|_: Actor<CanRead>, query: Pairs| file("alcoholometry", alcoholometry::page, query)),
-        )
-        .route(
-            "/calculators/distillation",
-            get(|_: Actor<CanRead>, query: Pairs| shown(distillation::page, query)),
-        )
-        .route(
-            "/calculators/distillation.csv",
-            get(|_: Actor<CanRead>, query: Pairs| file("distillation", distillation::page, query)),
-        )
-        .route(
-            "/calculators/fermentation",
-            get(|_: Actor<CanRead>, query: Pairs| shown(fermentation::page, query)),
-        )
-        .route(
-            "/calculators/fermentation.csv",
-            get(|_: Actor<CanRead>, query: Pairs| file("fermentation", fermentation::page, query)),
-        )
-        .route(
-            "/calculators/dehydration",
-            get(|_: Actor<CanRead>, query: Pairs| shown(dehydration::page, query)),
-        )
-        .route(
-            "/calculators/dehydration.csv",
-            get(|_: Actor<CanRead>, query: Pairs| file("dehydration", dehydration::page, query)),
-        )
+    let index = get(|_: Actor<CanRead>| async { answers::page(&Index::new()) });
+    CALCULATORS.into_iter().fold(
+        Router::new().route("/calculators", index),
+        |routes, (name, page)| {
+            routes
+                .route(
+                    &format!("/calculators/{name}"),
+                    get(move |_: Actor<CanRead>, query: Pairs| shown(page, query)),
+                )
+                .route(
+                    &format!("/calculators/{name}.csv"),
+                    get(move |_: Actor<CanRead>, query: Pairs| file(name, page, query)),
+                )
+        },
+    )
 }
 
 /// Works a page out where it holds up nobody: a column takes a search.
