@@ -71,30 +71,11 @@ pub struct PathwayDefaultDocument {
     /// Whether the stillage is digested to biogas; null where the row does not say.
     pub stillage_digested: Option<bool>,
     /// Default values: the only ones that serve compliance.
-    pub default: DefaultValues,
+    pub default: TermValues,
     /// Typical values: shown, never usable for compliance.
-    pub typical: DefaultValues,
+    pub typical: TermValues,
     /// Source and status.
     pub citation: Citation,
-}
-
-/// Values by term, g CO2e/MJ, and the printed saving.
-#[derive(Clone, Copy, Debug, Serialize, ToSchema)]
-pub struct DefaultValues {
-    /// Cultivation.
-    pub e_ec: f64,
-    /// Of it, soil N2O; null where it is not printed apart.
-    pub e_ec_soil_n2o: Option<f64>,
-    /// Processing.
-    pub e_p: f64,
-    /// Transport and distribution.
-    pub e_td: f64,
-    /// Of it, the final fuel alone; null where it is not printed apart.
-    pub e_td_final_fuel: Option<f64>,
-    /// Printed total.
-    pub total: f64,
-    /// Printed saving, whole %.
-    pub saving_percent: f64,
 }
 
 /// A factor.
@@ -237,27 +218,6 @@ impl PathwayDefaultDocument {
             typical,
             citation,
         } = published.clone();
-        let values = |values: TermValues| {
-            let TermValues {
-                e_ec,
-                e_ec_soil_n2o,
-                e_p,
-                e_td,
-                e_td_final_fuel,
-                total,
-                saving_percent,
-            } = values;
-            DefaultValues {
-                e_ec,
-                e_ec_soil_n2o,
-                e_p,
-                e_td,
-                e_td_final_fuel,
-                total,
-                saving_percent,
-            }
-        };
-        let (default, typical) = (values(default), values(typical));
         PathwayDefaultDocument {
             id,
             feedstock,

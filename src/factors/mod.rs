@@ -6,8 +6,7 @@ mod models;
 pub mod pages;
 
 pub use documents::{
-    DefaultValues, EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument, Split,
-    Usage,
+    EditionDocument, EditionLine, FactorDocument, GroupLine, PathwayDefaultDocument, Split, Usage,
 };
 pub use models::{ModelDocument, ParameterDocument, SpanDocument, TakesDocument, models};
 pub use pages::{ShowFactor, UseRow};

@@ -61,6 +61,11 @@ pub fn forwards(stage: &str, meter: &Meter) -> Option<Finding> {
     None
 }
 
+/// C-14, at a meter.
+fn gap(stage: &str, meter: &Meter, message: String, remedy: &str) -> Finding {
+    finding("C-14", Severity::Block, stage, &field(meter), message, remedy)
+}
+
 /// C-14: the spans of a meter meet without gap and without overlap, and their ends are those of the period.
 pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
     let spans: Vec<Span> = meter
@@ -72,14 +77,7 @@ pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
     let mut say = |what: &str, from: Date, to: Date| {
         let message = format!("Meter {} {what} from {from} to {to}.", meter.id);
         let remedy = "Correct the days, or enter an estimate with a note.";
-        found.push(finding(
-            "C-14",
-            Severity::Block,
-            stage,
-            &field(meter),
-            message,
-            remedy,
-        ));
+        found.push(gap(stage, meter, message, remedy));
     };
     let mut next = period.from;
     for (k, span) in spans.iter().enumerate() {
@@ -129,14 +127,7 @@ pub fn no_gaps(stage: &str, meter: &Meter, period: &Period) -> Vec<Finding> {
                 plain(first)
             );
             let remedy = "Correct the readings, or record a reset.";
-            found.push(finding(
-                "C-14",
-                Severity::Block,
-                stage,
-                &field(meter),
-                message,
-                remedy,
-            ));
+            found.push(gap(stage, meter, message, remedy));
         }
     }
     found

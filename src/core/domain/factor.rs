@@ -4,7 +4,7 @@ use super::citation::Citation;
 use super::gases::PublishedGases;
 use crate::core::units::Unit;
 use jiff::civil::Date;
-use serde::Serialize;
+use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
 use utoipa::ToSchema;
 
@@ -99,7 +99,7 @@ impl Factor {
 }
 
 /// Where a published pathway's process heat comes from.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, ToSchema)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize, ToSchema)]
 #[serde(rename_all = "snake_case")]
 pub enum ProcessHeat {
     /// An ordinary boiler.
@@ -134,17 +134,18 @@ pub struct PathwayDefault {
 }
 
 /// Values of one published pathway by term, g CO2e/MJ, and the printed saving, %.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, PartialEq, Serialize, ToSchema)]
+#[schema(as = DefaultValues)]
 pub struct TermValues {
     /// Cultivation.
     pub e_ec: f64,
-    /// Of it, soil N2O; none where it is not printed apart.
+    /// Of it, soil N2O; null where it is not printed apart.
     pub e_ec_soil_n2o: Option<f64>,
     /// Processing.
     pub e_p: f64,
     /// Transport and distribution.
     pub e_td: f64,
-    /// Of it, the final fuel alone; none where it is not printed apart.
+    /// Of it, the final fuel alone; null where it is not printed apart.
     pub e_td_final_fuel: Option<f64>,
     /// Printed total.
     pub total: f64,

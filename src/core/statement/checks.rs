@@ -2,10 +2,9 @@
 //! Ids are those of the checklist; each is a pure function.
 
 use crate::core::checks::finding;
-use crate::core::checks::issue::unchanged;
+use crate::core::documents::Pathway;
 use crate::core::documents::assessment::{Finding, Severity};
 use crate::core::documents::statement::facts::{Grade, StatementFacts};
-use crate::core::documents::{Assessment, Pathway};
 use crate::core::units::rounding::{plain, plain_fixed};
 use jiff::ToSpan;
 use jiff::civil::Date;
@@ -32,24 +31,6 @@ pub fn declared(
         findings.extend(audits(facts, value_kinds, today));
     }
     findings
-}
-
-/// E-12: the document is the one that was assessed.
-pub fn nothing_changed(pathway_hash: &str, assessment: &Assessment) -> Option<Finding> {
-    unchanged(pathway_hash, assessment)
-}
-
-/// E-13: who approves did not submit.
-pub fn two_people(statement: &str, submitted_by: &str, approved_by: &str, name: &str) -> Option<Finding> {
-    (submitted_by == approved_by).then(|| {
-        let message = format!("{name} submitted statement {statement} and cannot approve it.");
-        block(
-            "E-13",
-            "approved_by",
-            message,
-            "Ask another person to approve it.",
-        )
-    })
 }
 
 fn block(id: &str, field: &str, message: String, remedy: &str) -> Finding {
@@ -289,12 +270,6 @@ mod tests {
             ),
             ["I-08"]
         );
-    }
-
-    #[test]
-    fn the_same_person_cannot_approve() {
-        assert_eq!(two_people("WW-1", "a", "b", "A. Person"), None);
-        assert_eq!(two_people("WW-1", "a", "a", "A. Person").unwrap().id, "E-13");
     }
 
     #[test]

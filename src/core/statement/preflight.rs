@@ -4,6 +4,7 @@ use super::checks;
 use super::items::{Items, Place};
 use super::present::{Standing, standing};
 use crate::core::checks::evidence::kinds;
+use crate::core::checks::issue::unchanged;
 use crate::core::checks::reasons::wanting;
 use crate::core::documents::amount::Origin;
 use crate::core::documents::assessment::{Finding, Severity};
@@ -148,7 +149,7 @@ pub fn preflight(draft: Draft, book: &Book, items: &Items) -> Result<Preflight, 
     let kinds: BTreeSet<String> = kinds(&plan).into_values().flatten().map(str::to_owned).collect();
     let kinds: Vec<String> = kinds.into_iter().collect();
     let mut findings = assessment.findings.clone();
-    findings.extend(checks::nothing_changed(&hash(pathway)?, assessment));
+    findings.extend(unchanged(&hash(pathway)?, assessment));
     let audited = laws.contains(&Law::Eu) || laws.contains(&Law::De);
     findings.extend(checks::declared(facts, pathway, &kinds, audited, draft.today));
     preflight.unreasoned = wanting(&findings).cloned().collect();

@@ -1,14 +1,13 @@
 //! The published data of a statement, from the book to the file and back.
 
 use super::data::{
-    ConstantUsed, CountsUsed, DefaultUsed, FactorUsed, GwpSetUsed, HeatUsed, MaterialUsed, PropertyUsed,
-    UsageUsed, ValuesUsed,
+    ConstantUsed, CountsUsed, DefaultUsed, FactorUsed, GwpSetUsed, MaterialUsed, PropertyUsed, UsageUsed,
+    ValuesUsed,
 };
 use crate::core::domain::factor::{EngineVehicle, HaulVehicle, TermValues, Use};
 use crate::core::domain::material::Property;
 use crate::core::domain::{
-    Citation, Cited, Counts, Factor, Gas, GwpSet, Material, PathwayDefault, ProcessHeat, PublishedGases,
-    Status,
+    Citation, Cited, Counts, Factor, Gas, GwpSet, Material, PathwayDefault, PublishedGases, Status,
 };
 use crate::core::units::parse_unit;
 use std::collections::BTreeMap;
@@ -220,10 +219,7 @@ impl DefaultUsed {
             feedstock_materials: row.feedstock_materials.clone(),
             description: row.description.clone(),
             process_fuel: row.process_fuel.clone(),
-            process_heat: row.process_heat.map(|heat| match heat {
-                ProcessHeat::Boiler => HeatUsed::Boiler,
-                ProcessHeat::Chp => HeatUsed::Chp,
-            }),
+            process_heat: row.process_heat,
             stillage_digested: row.stillage_digested,
             default: values(row.default),
             typical: values(row.typical),
@@ -260,10 +256,7 @@ impl DefaultUsed {
             feedstock_materials: self.feedstock_materials.clone(),
             description: self.description.clone(),
             process_fuel: self.process_fuel.clone(),
-            process_heat: self.process_heat.map(|heat| match heat {
-                HeatUsed::Boiler => ProcessHeat::Boiler,
-                HeatUsed::Chp => ProcessHeat::Chp,
-            }),
+            process_heat: self.process_heat,
             stillage_digested: self.stillage_digested,
             default: values(self.default),
             typical: values(self.typical),

@@ -1,7 +1,7 @@
 //! The published data that a statement rests on, as the file carries them: enough to work every figure out again without
 //! any other source, and each with its source, so that it can be held against the publication.
 
-use crate::core::domain::{CarbonClass, Gas, RuleSet, Status};
+use crate::core::domain::{CarbonClass, Gas, ProcessHeat, RuleSet, Status};
 use jiff::civil::Date;
 use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
@@ -188,7 +188,7 @@ pub struct DefaultUsed {
     pub process_fuel: String,
     /// Where the process heat comes from, where the row says.
     #[serde(default, skip_serializing_if = "Option::is_none")]
-    pub process_heat: Option<HeatUsed>,
+    pub process_heat: Option<ProcessHeat>,
     /// Whether the stillage is digested, where the row says.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub stillage_digested: Option<bool>,
@@ -200,16 +200,6 @@ pub struct DefaultUsed {
     pub source: String,
     /// Whether it was read there.
     pub status: Status,
-}
-
-/// Where process heat comes from.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize, Deserialize, ToSchema)]
-#[serde(rename_all = "snake_case")]
-pub enum HeatUsed {
-    /// An ordinary boiler.
-    Boiler,
-    /// Combined heat and power.
-    Chp,
 }
 
 /// Values by term, g CO2e/MJ, and the printed saving, %.
