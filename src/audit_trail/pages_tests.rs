@@ -3,6 +3,7 @@
 use super::*;
 use crate::app::who::Who;
 use crate::audit_trail::{By, FORMAT};
+use crate::web::testing::words;
 use serde_json::json;
 
 const HOSTILE: &str = "<script>alert('1')</script> \"x\" & <b>bold</b>";
@@ -67,29 +68,6 @@ fn full() -> ShowTrail {
         &people,
         (12, format!("sha256:{}", "b2".repeat(32))),
     )
-}
-
-fn words(html: &str) -> String {
-    let mut out = String::new();
-    let mut inside = false;
-    for c in html.chars() {
-        match c {
-            '<' => inside = true,
-            '>' => {
-                inside = false;
-                out.push(' ');
-            }
-            _ if !inside => out.push(c),
-            _ => {}
-        }
-    }
-    let lines = out
-        .lines()
-        .map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
-    lines
-        .filter(|line| !line.is_empty())
-        .collect::<Vec<_>>()
-        .join("\n")
 }
 
 #[test]

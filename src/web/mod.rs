@@ -25,6 +25,8 @@ pub mod paging;
 pub mod patience;
 pub mod problem;
 pub mod router;
+#[cfg(test)]
+pub mod testing;
 pub mod typed;
 pub mod visitor;
 

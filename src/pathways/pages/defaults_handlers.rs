@@ -1,7 +1,7 @@
 //! Defaults beside actuals at work: laying the table, and putting a chosen combination into the document.
 
 use super::defaults::ShowDefaults;
-use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
+use super::handlers::{REFUSED, Seen, count, refused, seen};
 use super::{Fault, fault_rows, links};
 use crate::app::App;
 use crate::core::levers::defaults::{Answer, DefaultsTable, with_defaults};
@@ -11,14 +11,6 @@ use crate::web::answers::{page, see_other, with_status};
 use crate::web::extract::{Form, Path};
 use axum::response::{IntoResponse, Response};
 use serde::Deserialize;
-
-async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
-    let uuid = id_of(app, id).await?;
-    match see(app, uuid, revision).await {
-        Ok(seen) => Ok(seen),
-        Err(error) => Err(refused(app, id, error).await),
-    }
-}
 
 /// The table of what was seen; where the pathway cannot be worked out, its own page tells why.
 pub(super) async fn table_of(app: &App, id: &str, seen: &Seen) -> Result<DefaultsTable, Response> {
@@ -106,11 +98,7 @@ pub(super) async fn choose(
     let why = Some(why.chars().take(1_000).collect());
     let expected = Expected::Number(chosen.expected);
     match pathways::replace(&app, now.stored.id, document, expected, why).await {
-        Ok(saved) if saved.changed => Ok(see_other(&format!(
-            "{}?saved={}",
-            links::pathway(&id),
-            saved.revision
-        ))),
+        Ok(saved) if saved.changed => Ok(see_other(&links::saved(&id, saved.revision))),
         Ok(_) => Ok(see_other(&links::pathway(&id))),
         Err(PathwayError::Problems(problems)) => Ok(refuse(fault_rows(problems.list(), |pointer| {
             links::place(&id, &now.pathway, pointer)

@@ -2,7 +2,7 @@
 
 use super::card::merge;
 use super::defaults::ShowDefaults;
-use super::handlers::{REFUSED, Seen, count, id_of, refused, see};
+use super::handlers::{REFUSED, Seen, count, refused, seen, why};
 use super::meeting::{choose, differ, meeting};
 use super::new::{NewPathway, ShowDocument, Start};
 use super::revision::ShowRevision;
@@ -62,10 +62,7 @@ pub(super) async fn create(
         Err(faults) => return refuse(start, faults),
     };
     match pathways::create(&app, document, Some("Begun with a short chain".to_owned())).await {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved=1",
-            links::pathway(&saved.id.to_string())
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&saved.id.to_string(), 1))),
         Err(PathwayError::Problems(problems)) => {
             refuse(start, fault_rows(problems.list(), super::new::field))
         }
@@ -106,20 +103,9 @@ pub(super) async fn bring_in(
         Err(problems) => return refuse(typed.document, problems.list()),
     };
     match pathways::create(&app, document, Some("Brought in as a document".to_owned())).await {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved=1",
-            links::pathway(&saved.id.to_string())
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&saved.id.to_string(), 1))),
         Err(PathwayError::Problems(problems)) => refuse(typed.document, problems.list()),
         Err(error) => Err(error.into()),
-    }
-}
-
-async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
-    let uuid = id_of(app, id).await?;
-    match see(app, uuid, revision).await {
-        Ok(seen) => Ok(seen),
-        Err(error) => Err(refused(app, id, error).await),
     }
 }
 
@@ -192,9 +178,7 @@ pub(super) async fn replace(
     if !unmet.is_empty() {
         return Ok(refuse(pretty(&document), unmet.list()));
     }
-    let why = Some(text("why").trim())
-        .filter(|why| !why.is_empty())
-        .map(|why| why.chars().take(1_000).collect());
+    let why = why(&text("why"));
     let saved = pathways::replace(
         &app,
         now.stored.id,
@@ -203,11 +187,7 @@ pub(super) async fn replace(
         why,
     );
     match saved.await {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved={}",
-            links::pathway(&id),
-            saved.revision
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&id, saved.revision))),
         Err(PathwayError::Problems(problems)) => Ok(refuse(pretty(&document), problems.list())),
         Err(PathwayError::Conflict { .. }) => met(&app, &id, expected, &document, text("why")).await,
         Err(error) => Err(refused(&app, &id, error).await),
@@ -291,11 +271,7 @@ pub(super) async fn restore(
     )
     .await
     {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved={}",
-            links::pathway(&id),
-            saved.revision
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&id, saved.revision))),
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }

@@ -1,10 +1,9 @@
 //! The facts of a pathway: what it is called, what it is made of, for which days and under which rules; and a copy of it
 //! to try a change in.
 
-use super::handlers::{REFUSED, Seen, id_of, refused, see};
+use super::handlers::{REFUSED, refused, seen, why};
 use super::new::{Start, field};
 use super::{Fault, Head, answers, fault_rows, links};
-use crate::app::App;
 use crate::core::documents::Pathway;
 use crate::core::domain::Book;
 use crate::pathways::{self, Expected, PathwayError};
@@ -146,20 +145,12 @@ impl ShowFacts {
     }
 }
 
-async fn seen(app: &App, id: &str) -> Result<Seen, Response> {
-    let uuid = id_of(app, id).await?;
-    match see(app, uuid, None).await {
-        Ok(seen) => Ok(seen),
-        Err(error) => Err(refused(app, id, error).await),
-    }
-}
-
 /// The facts as stored.
 pub(super) async fn show(
     Actor { app, .. }: Actor<CanRead>,
     Path(id): Path<String>,
 ) -> Result<Response, Response> {
-    let seen = seen(&app, &id).await?;
+    let seen = seen(&app, &id, None).await?;
     let typed = Facts::of(&seen.pathway, seen.stored.revision);
     let shown = ShowFacts::of(seen.head(), &seen.pathway, typed, Vec::new(), false, &seen.book);
     page(&shown).map_err(IntoResponse::into_response)
@@ -171,7 +162,7 @@ pub(super) async fn save(
     Path(id): Path<String>,
     Form(typed): Form<Facts>,
 ) -> Result<Response, Response> {
-    let now = seen(&app, &id).await?;
+    let now = seen(&app, &id, None).await?;
     let refuse = |typed: Facts, faults: Vec<Fault>, stale: bool| -> Response {
         let shown = ShowFacts::of(now.head(), &now.pathway, typed, faults, stale, &now.book);
         with_status(REFUSED, &shown).unwrap_or_else(IntoResponse::into_response)
@@ -180,16 +171,10 @@ pub(super) async fn save(
         Ok(document) => document,
         Err(faults) => return Ok(refuse(typed, faults, false)),
     };
-    let why = Some(typed.why.trim())
-        .filter(|why| !why.is_empty())
-        .map(|why| why.chars().take(1_000).collect());
+    let why = why(&typed.why);
     let expected = Expected::Number(typed.expected);
     match pathways::replace(&app, now.stored.id, document, expected, why).await {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved={}",
-            links::pathway(&id),
-            saved.revision
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&id, saved.revision))),
         Err(PathwayError::Problems(problems)) => {
             let faults = fault_rows(problems.list(), |pointer| match field(pointer) {
                 (None, _) => links::place(&id, &now.pathway, pointer),
@@ -208,7 +193,7 @@ pub(super) async fn copy(
     Path(id): Path<String>,
     Form(Nothing {}): Form<Nothing>,
 ) -> Result<Response, Response> {
-    let now = seen(&app, &id).await?;
+    let now = seen(&app, &id, None).await?;
     let (name, revision) = (&now.pathway.name, now.stored.revision);
     let why = format!("Copy of \"{name}\", revision {revision}");
     let document = Pathway {
@@ -216,10 +201,7 @@ pub(super) async fn copy(
         ..now.pathway.clone()
     };
     match pathways::create(&app, document, Some(why)).await {
-        Ok(saved) => Ok(see_other(&format!(
-            "{}?saved=1",
-            links::pathway(&saved.id.to_string())
-        ))),
+        Ok(saved) => Ok(see_other(&links::saved(&saved.id.to_string(), 1))),
         Err(error) => Err(refused(&app, &id, error).await),
     }
 }

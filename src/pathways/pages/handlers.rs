@@ -129,6 +129,24 @@ pub(super) async fn see(app: &App, id: Uuid, revision: Option<i64>) -> Result<Se
     })
 }
 
+/// The pathway of an address, its current revision or another; or the page that says why not.
+pub(super) async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
+    let uuid = id_of(app, id).await?;
+    match see(app, uuid, revision).await {
+        Ok(seen) => Ok(seen),
+        Err(error) => Err(refused(app, id, error).await),
+    }
+}
+
+/// The reason of a save as somebody typed it; none where nothing was.
+pub(super) fn why(typed: &str) -> Option<String> {
+    let typed = typed.trim();
+    (!typed.is_empty()).then(|| typed.chars().take(MOST_WHY).collect())
+}
+
+/// Letters of a reason that are kept.
+const MOST_WHY: usize = 1_000;
+
 /// The id of an address, or the page that says what is nearest to it.
 pub(super) async fn id_of(app: &App, text: &str) -> Result<Uuid, Response> {
     match text.parse::<Uuid>() {

@@ -4,6 +4,11 @@ use crate::core::documents::Pathway;
 use crate::core::documents::pathway::Stage;
 pub use crate::web::links::{factor, material, pathway, rule_set, segment};
 
+/// The page of a pathway after a save, which tells once what it did.
+pub fn saved(id: &str, revision: i64) -> String {
+    format!("{}?saved={revision}", pathway(id))
+}
+
 /// The page of a stage.
 pub fn stage(id: &str, key: &str) -> String {
     format!("/pathways/{}/stages/{}", segment(id), segment(key))

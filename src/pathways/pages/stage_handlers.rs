@@ -3,7 +3,7 @@
 use super::backed::{show_card, taken};
 use super::card::form::LISTS;
 use super::card::{Do, Form, build, merge};
-use super::handlers::{REFUSED, Seen, ShowQuery, id_of, refused, saved_notice, see};
+use super::handlers::{REFUSED, Seen, ShowQuery, refused, saved_notice, see, seen};
 use super::meeting::{differ, meeting};
 use super::stage::{Card, ShowStage, sources, steer};
 use super::tried::work_out;
@@ -48,14 +48,6 @@ pub(super) async fn show(
     });
     shown.notice = saved_notice(&app, &seen, query.saved).await;
     show_card(&app, StatusCode::OK, shown).await
-}
-
-async fn seen(app: &App, id: &str, revision: Option<i64>) -> Result<Seen, Response> {
-    let uuid = id_of(app, id).await?;
-    match see(app, uuid, revision).await {
-        Ok(seen) => Ok(seen),
-        Err(error) => Err(refused(app, id, error).await),
-    }
 }
 
 fn no_stage() -> Response {

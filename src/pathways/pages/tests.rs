@@ -342,29 +342,11 @@ fn the_starter_chain_of_every_feedstock_can_be_worked_out() {
     }
 }
 
-/// The words of a page without its markup, one line for each of its own.
+/// The words of a page. The list of models grows with every model: it is tested where it is made.
 pub(super) fn words(html: &str) -> String {
-    let mut out = String::new();
-    let mut inside = false;
-    for c in html.chars() {
-        match c {
-            '<' => inside = true,
-            '>' => {
-                inside = false;
-                out.push(' ');
-            }
-            _ if !inside => out.push(c),
-            _ => {}
-        }
-    }
-    let lines = out
-        .lines()
-        .map(|line| line.split_whitespace().collect::<Vec<_>>().join(" "));
-    lines
-        // The list of models grows with every model: it is tested where it is made.
-        .filter(|line| !line.is_empty() && !line.starts_with("Another input is"))
-        .collect::<Vec<_>>()
-        .join("\n")
+    let words = crate::web::testing::words(html);
+    let lines = words.lines().filter(|line| !line.starts_with("Another input is"));
+    lines.collect::<Vec<_>>().join("\n")
 }
 
 #[test]
