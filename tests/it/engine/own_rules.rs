@@ -6,7 +6,7 @@ use proptest::prelude::*;
 use rstest::rstest;
 use serde_json::{Value, json};
 use wheelwort::core::documents::rule_set::{canonical_bytes, from_json, from_toml, from_value};
-use wheelwort::core::documents::{Pathway, Problems};
+use wheelwort::core::documents::{Assessment, Pathway, Problems};
 use wheelwort::core::domain::RuleSet;
 use wheelwort::core::domain::rule_set::Standing;
 use wheelwort::core::evaluate::{Options, evaluate};
@@ -28,6 +28,14 @@ fn own() -> Value {
 
 fn read(value: &Value) -> Result<RuleSet, Problems> {
     from_value(value, book())
+}
+
+/// The assessment of a document under a rule set of one's own.
+fn assessed(document: &Value, rules: &Value) -> Assessment {
+    let set = read(rules).unwrap();
+    let mut with = book().clone();
+    with.rule_sets.insert(set.id.clone(), set);
+    evaluate(&Pathway::from_value(document).unwrap(), &with, Options::default()).unwrap()
 }
 
 #[test]
@@ -190,15 +198,7 @@ fn an_own_rule_set_has_the_limits_that_it_carries() {
         "carbon_after": { "value": 80, "unit": "t/ha" }, "years": 5, "practice": "cover_crop",
         "practice_since": "2020-01-01", "committed_until": "2031-01-01" } }));
     let claim = |value: &Value| {
-        let set = read(value).unwrap();
-        let mut with = book().clone();
-        with.rule_sets.insert(set.id.clone(), set);
-        let assessment = evaluate(
-            &Pathway::from_value(&document).unwrap(),
-            &with,
-            Options::default(),
-        )
-        .unwrap();
+        let assessment = assessed(&document, value);
         -assessment.terms_g_co2e_per_mj.e_sca
     };
     let as_the_directive = claim(&own());
@@ -244,15 +244,7 @@ fn months_of_data_are_asked_for_where_the_rule_set_names_them() {
     let mut document = chain(&Figures::usual());
     document["rule_set"] = json!("own-2027");
     let found = |value: &Value| {
-        let set = read(value).unwrap();
-        let mut with = book().clone();
-        with.rule_sets.insert(set.id.clone(), set);
-        let assessment = evaluate(
-            &Pathway::from_value(&document).unwrap(),
-            &with,
-            Options::default(),
-        )
-        .unwrap();
+        let assessment = assessed(&document, value);
         assessment.findings.iter().any(|finding| finding.id == "E-14")
     };
     assert!(found(&value));

@@ -1,6 +1,7 @@
 //! Two people, one pathway: nothing typed is lost, each field can be chosen, and the other's save stays a revision.
 
 use super::form::Form;
+use super::stage::card;
 use super::{follow, of_pages, page, send};
 use crate::support::TestApp;
 use crate::support::test_app::{Answer, answer_of, preparer, request};
@@ -22,16 +23,7 @@ async fn hale_sends(app: &TestApp, form: &Form) -> Answer {
 
 /// Both open the card of the works; the name of its first amount.
 async fn cards(app: &TestApp) -> (String, Form, Form, String) {
-    let (one, _) = app.stores_chain().await;
-    let path = format!("{}/stages/works", of_pages(&one));
-    let form = Form::find(&page(app, &path).await, "/stages/works");
-    let amount = form
-        .fields
-        .iter()
-        .map(|(name, _)| name)
-        .find(|name| name.starts_with("/inputs/") && name.ends_with("/amount"))
-        .expect("an amount")
-        .clone();
+    let (path, form, amount) = card(app).await;
     (path, form.clone(), form, amount)
 }
 

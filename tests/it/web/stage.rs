@@ -5,7 +5,7 @@ use super::{follow, of_pages, page, send};
 use crate::support::test_app::TestApp;
 
 /// The first input with an amount of a stage, and its card.
-async fn card(app: &TestApp) -> (String, Form, String) {
+pub(super) async fn card(app: &TestApp) -> (String, Form, String) {
     let (one, _) = app.stores_chain().await;
     let one = of_pages(&one);
     let path = format!("{one}/stages/works");
