@@ -22,8 +22,11 @@ use axum::routing::get;
 
 type Pairs = Query<Vec<(String, String)>>;
 
+/// Makes the page of what was asked.
+type Page = fn(&Asked) -> Calculator;
+
 /// The calculators: the name in their address, and their page.
-const CALCULATORS: [(&str, fn(&Asked) -> Calculator); 4] = [
+const CALCULATORS: [(&str, Page); 4] = [
     ("alcoholometry", alcoholometry::page),
     ("distillation", distillation::page),
     ("fermentation", fermentation::page),
@@ -50,16 +53,16 @@ pub fn routes() -> Router<App> {
 }
 
 /// Works a page out where it holds up nobody: a column takes a search.
-async fn worked(page: fn(&Asked) -> Calculator, Query(pairs): Pairs) -> Result<Calculator, Refusal> {
+async fn worked(page: Page, Query(pairs): Pairs) -> Result<Calculator, Refusal> {
     let asked = Asked::of(pairs);
     blocking::run(move || page(&asked)).await
 }
 
-async fn shown(page: fn(&Asked) -> Calculator, query: Pairs) -> Result<Response, Refusal> {
+async fn shown(page: Page, query: Pairs) -> Result<Response, Refusal> {
     worked(page, query).await?.answer()
 }
 
-async fn file(name: &'static str, page: fn(&Asked) -> Calculator, query: Pairs) -> Result<Response, Refusal> {
+async fn file(name: &'static str, page: Page, query: Pairs) -> Result<Response, Refusal> {
     worked(page, query).await?.file(name)
 }
 
