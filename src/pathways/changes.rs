@@ -3,6 +3,7 @@
 
 use super::PathwayError;
 use crate::core::documents::Pathway;
+use crate::core::documents::pointer;
 use serde::Serialize;
 use serde_json::{Map, Value};
 use std::collections::BTreeSet;
@@ -67,7 +68,7 @@ struct Spot {
 
 impl Spot {
     fn field(&self, name: &str) -> Spot {
-        let step = name.replace('~', "~0").replace('/', "~1");
+        let step = pointer::step(name);
         let field = if self.field.is_empty() {
             name.to_owned()
         } else {

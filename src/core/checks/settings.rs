@@ -1,6 +1,7 @@
 //! Tolerances and usual ranges that no source fixes, as named settings with unit, limits and meaning. Purely numerical
 //! tolerances (the last digits of a sum) are no settings.
 
+use crate::core::documents::pointer;
 use crate::core::documents::problem::Problems;
 use serde::{Deserialize, Serialize};
 use std::collections::BTreeMap;
@@ -224,10 +225,7 @@ impl Settings {
         .map(|(name, range)| (format!("/{name}"), range))
         .into();
         for (crop, range) in &self.usual_yield_t_per_ha {
-            let pointer = format!(
-                "/usual_yield_t_per_ha/{}",
-                crop.replace('~', "~0").replace('/', "~1")
-            );
+            let pointer = format!("/usual_yield_t_per_ha/{}", pointer::step(crop));
             for (end, figure) in [("low", range.low), ("high", range.high)] {
                 within(
                     figure,

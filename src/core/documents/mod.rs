@@ -7,6 +7,7 @@ pub mod canonical;
 pub mod input;
 pub mod json;
 pub mod pathway;
+pub mod pointer;
 pub mod problem;
 pub mod read_input;
 pub mod read_pathway;

@@ -1,5 +1,6 @@
 //! Reads a JSON object field by field and notes everything that is wrong, each with its pointer.
 
+use super::pointer;
 use super::problem::{Problem, Problems};
 use crate::core::units::rounding::plain;
 use jiff::civil::Date;
@@ -52,7 +53,7 @@ impl fmt::Display for Place<'_> {
         }
         match self.step {
             Step::Root => Ok(()),
-            Step::Field(name) => write!(f, "/{}", name.replace('~', "~0").replace('/', "~1")),
+            Step::Field(name) => write!(f, "/{}", pointer::step(name)),
             Step::Item(index) => write!(f, "/{index}"),
         }
     }

@@ -4,6 +4,7 @@
 use super::card::merge::Met;
 use crate::app::App;
 use crate::audit_trail;
+use crate::core::documents::pointer;
 use crate::core::documents::{Problem, Problems};
 use serde_json::Value;
 use std::collections::BTreeMap;
@@ -114,7 +115,7 @@ fn put(document: &mut Value, pointer: &str, stands: Option<&Value>, other: Optio
     let Some((above, name)) = pointer.rsplit_once('/') else {
         return false;
     };
-    let name = name.replace("~1", "/").replace("~0", "~");
+    let name = pointer::name(name);
     match (document.pointer_mut(above), stands, other) {
         (Some(Value::Object(fields)), stands, other) if fields.get(&name) == stands => {
             match other {

@@ -4,6 +4,7 @@
 use super::EvidenceUseRow;
 use crate::core::documents::Problems;
 use crate::core::documents::pathway::{Pathway, Stage};
+use crate::core::documents::pointer;
 use serde_json::Value;
 use std::collections::BTreeSet;
 
@@ -49,7 +50,7 @@ impl Found {
                     format!("{at}/model")
                 };
                 for (name, value) in &model.parameters {
-                    self.inside(&format!("{at}/{}", escaped(name)), value);
+                    self.inside(&format!("{at}/{}", pointer::step(name)), value);
                 }
             }
         }
@@ -67,7 +68,7 @@ impl Found {
         match value {
             Value::Object(fields) => {
                 for (name, value) in fields {
-                    let at = format!("{at}/{}", escaped(name));
+                    let at = format!("{at}/{}", pointer::step(name));
                     match value {
                         Value::Array(ids) if name == "evidence" => {
                             for (index, id) in ids.iter().enumerate() {
@@ -97,10 +98,6 @@ impl Found {
             input_key: self.input.clone(),
         });
     }
-}
-
-fn escaped(name: &str) -> String {
-    name.replace('~', "~0").replace('/', "~1")
 }
 
 /// The ids among those places, once each.

@@ -9,6 +9,7 @@ pub use sql::{CoProductRow, EvidenceUseRow, InputRow, IntakeRow, StageRow, UseRo
 use crate::core::documents::Pathway;
 use crate::core::documents::input::{FactorRef, Input, OneOrMany};
 use crate::core::documents::pathway::{Role, Stage};
+use crate::core::documents::pointer;
 use serde::Serialize;
 use serde_json::Value;
 
@@ -210,7 +211,7 @@ const NEVER_A_REFERENCE: [&str; 5] = ["unit", "per", "citation", "note", "kind"]
 /// The published rows that a parameter of a model names, however deep. Models come and go; a reference is known by
 /// its shape, `edition/row`.
 fn inside(name: &str, value: &Value, at: &str, found: &mut Vec<(String, String)>) {
-    let at = format!("{at}/{}", name.replace('~', "~0").replace('/', "~1"));
+    let at = format!("{at}/{}", pointer::step(name));
     match value {
         Value::String(text) if is_reference(text) && !NEVER_A_REFERENCE.contains(&name) => {
             found.push((text.clone(), at));

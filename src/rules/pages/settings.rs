@@ -2,6 +2,7 @@
 
 use crate::core::checks::settings::{Range, SETTINGS, Settings};
 use crate::core::documents::Problem;
+use crate::core::documents::pointer;
 use crate::core::units::rounding::{plain, show_all};
 use crate::web::filters;
 use crate::web::frame::{Frame, Section};
@@ -94,7 +95,7 @@ impl SettingsPage {
         let mut harvests = Vec::new();
         for (k, (crop, (standard, now))) in crops.into_iter().enumerate() {
             let words = filters::capital(&crop.replace('_', " "));
-            let escaped = crop.replace('~', "~0").replace('/', "~1");
+            let escaped = pointer::step(crop);
             for (end, word) in [("low", "least"), ("high", "most")] {
                 let of = |range: Range| if end == "low" { range.low } else { range.high };
                 let Some(figure) = now.or(standard).map(of) else {
@@ -238,10 +239,7 @@ fn row(
 }
 
 fn put(document: &mut Map<String, Value>, harvests: &mut Map<String, Value>, name: &str, figure: f64) {
-    let parts: Vec<String> = name
-        .split('/')
-        .map(|part| part.replace("~1", "/").replace("~0", "~"))
-        .collect();
+    let parts: Vec<String> = name.split('/').map(pointer::name).collect();
     let (into, first, end) = match parts.as_slice() {
         [only] => {
             document.insert(only.clone(), json!(figure));

@@ -6,6 +6,7 @@ use super::{
 };
 use crate::core::documents::assessment::Assessment;
 use crate::core::documents::pathway::Pathway;
+use crate::core::documents::pointer;
 use crate::core::documents::problem::{Problem, Problems};
 use crate::core::documents::reader::{Fields, Place, is_unknown_field, object};
 use crate::core::documents::{canonical, json};
@@ -219,7 +220,7 @@ fn difference(file: &Value, ours: &Value, pointer: String) -> Option<Odd> {
     match (file, ours) {
         (Value::Object(file), Value::Object(ours)) => {
             for (name, value) in file {
-                let step = name.replace('~', "~0").replace('/', "~1");
+                let step = pointer::step(name);
                 let here = format!("{pointer}/{step}");
                 let Some(written) = ours.get(name) else {
                     return Some(match value.is_null() {

@@ -1,5 +1,6 @@
 //! Compares what a file says with what was worked out, value by value in document order.
 
+use crate::core::documents::pointer;
 use serde_json::Value;
 
 /// How closely to look.
@@ -49,7 +50,7 @@ pub(super) fn compare(at: &str, stated: &Value, found: &Value, look: Look) -> Op
                 if !look.words && WORDED.contains(&name.as_str()) {
                     return None;
                 }
-                let pointer = format!("{at}/{}", name.replace('~', "~0").replace('/', "~1"));
+                let pointer = format!("{at}/{}", pointer::step(name));
                 let (stated, found) = (theirs.get(name).unwrap_or(&null), ours.get(name).unwrap_or(&null));
                 compare(&pointer, stated, found, look)
             })

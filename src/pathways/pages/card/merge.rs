@@ -1,5 +1,6 @@
 //! Two people met: what one saved and what the other typed, joined field by field, with nothing of either lost.
 
+use crate::core::documents::pointer;
 use serde_json::{Map, Value};
 
 /// A field that somebody else changed since, or that both changed.
@@ -74,7 +75,7 @@ impl Path {
     }
 
     fn pointer(&self) -> String {
-        let step = |name: &String| format!("/{}", name.replace('~', "~0").replace('/', "~1"));
+        let step = |name: &String| format!("/{}", pointer::step(name));
         self.pointer.iter().map(step).collect()
     }
 
