@@ -6,6 +6,11 @@ use std::sync::atomic::{AtomicI64, AtomicU64, Ordering};
 use std::time::Duration;
 use uuid::Uuid;
 
+/// The calendar day of a moment, UTC.
+pub fn day_of(at: Timestamp) -> jiff::civil::Date {
+    jiff::tz::Offset::UTC.to_datetime(at).date()
+}
+
 /// Where the time and new ids come from. Cheap to clone; clones share the time.
 #[derive(Clone, Debug)]
 pub struct Clock(Source);

@@ -1,8 +1,9 @@
 //! The bytes of evidence, each file once under its hash: in the folder of the data or in a store that speaks S3. The only
 //! file that knows how they are kept.
 
-use super::incoming::{Arrived, hex};
+use super::incoming::Arrived;
 use crate::app::{App, EvidenceStore, S3};
+use crate::core::documents::canonical;
 use object_store::aws::AmazonS3Builder;
 use object_store::buffered::BufWriter;
 use object_store::local::LocalFileSystem;
@@ -102,7 +103,7 @@ impl Files {
         while let Some(piece) = pieces.next().await {
             sum.update(&piece?);
         }
-        Ok(Some(hex(sum)))
+        Ok(Some(canonical::hash_of(sum)))
     }
 
     /// The bytes under a hash, checked as they are read: the last piece comes only if all of them are those.
@@ -224,7 +225,7 @@ impl Stream for Pieces {
                     let Some(last) = self.held.take() else {
                         return Poll::Ready(None);
                     };
-                    let sound = hex(std::mem::take(&mut self.sum)) == self.hash;
+                    let sound = canonical::hash_of(std::mem::take(&mut self.sum)) == self.hash;
                     return Poll::Ready(Some(if sound { Ok(last) } else { Err(FilesError::Altered) }));
                 }
             }

@@ -4,6 +4,7 @@
 use super::EvidenceError;
 use super::files::FilesError;
 use crate::app::App;
+use crate::core::documents::canonical;
 use sha2::{Digest, Sha256};
 use std::io::SeekFrom;
 use std::path::PathBuf;
@@ -86,20 +87,9 @@ impl Incoming {
             .map_err(FilesError::from)?;
         Ok(Arrived {
             file: self.file,
-            hash: hex(self.sum),
+            hash: canonical::hash_of(self.sum),
             size: self.size,
             _left: self.left,
         })
     }
-}
-
-/// A hash as records and documents write it.
-pub(super) fn hex(sum: Sha256) -> String {
-    use std::fmt::Write;
-    let mut text = String::with_capacity(71);
-    text.push_str("sha256:");
-    for byte in sum.finalize() {
-        let _ = write!(text, "{byte:02x}");
-    }
-    text
 }

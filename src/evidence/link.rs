@@ -1,6 +1,7 @@
 //! A record as pages show it beside a figure: a link with what tells one file from another.
 
 use super::Record;
+use crate::clock::day_of;
 use crate::web::extract::megabytes;
 use crate::web::filters::short_day;
 use crate::web::links;
@@ -79,5 +80,5 @@ pub(super) fn short_hash(hash: &str) -> String {
 
 /// The day it was attached, in words.
 pub(super) fn day_words(record: &Record) -> String {
-    short_day(super::day_of(record.attached_at))
+    short_day(day_of(record.attached_at))
 }

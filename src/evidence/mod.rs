@@ -24,11 +24,11 @@ pub use verify::{Fault, FaultKind, verify};
 use crate::app::App;
 use crate::app::who::{Sight, Who};
 use crate::audit_trail::{self, Deed};
+use crate::clock::day_of;
 use crate::core::checks::evidence::file_unchanged;
 use crate::store::{Connection, OrganisationId, StoreError};
 use files::Files;
 use jiff::Timestamp;
-use jiff::civil::Date;
 use serde::Serialize;
 use serde_json::json;
 use std::collections::{BTreeMap, BTreeSet};
@@ -131,11 +131,6 @@ impl sql::EvidenceRow {
 fn time(millis: i64, table: &'static str, row: i64) -> Result<Timestamp, StoreError> {
     let column = "attached_at";
     Timestamp::from_millisecond(millis).map_err(|_| StoreError::Inconsistent { table, column, row })
-}
-
-/// The day of a time, as pages and findings name it.
-fn day_of(at: Timestamp) -> Date {
-    jiff::tz::Offset::UTC.to_datetime(at).date()
 }
 
 /// The pathways that somebody sees, as a JSON list; none for all.

@@ -3,6 +3,7 @@
 use super::files::Files;
 use super::{EvidenceError, sql};
 use crate::app::App;
+use crate::clock::day_of;
 use crate::core::checks::evidence::file_unchanged;
 use serde_json::json;
 use std::collections::BTreeSet;
@@ -85,7 +86,7 @@ pub async fn verify(app: &App) -> Result<Vec<Fault>, EvidenceError> {
                     found
                 }
             };
-            let day = super::day_of(super::time(row.attached_at, "evidence", row.id)?);
+            let day = day_of(super::time(row.attached_at, "evidence", row.id)?);
             if let Some(finding) = file_unchanged(&row.file_name, day, &row.hash, found.as_deref()) {
                 faults.push(Fault {
                     kind: if found.is_some() {

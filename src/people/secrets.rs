@@ -1,6 +1,7 @@
 //! Secrets drawn at random: those of sessions, tokens, form tokens and temporary passwords. Of each only a hash is kept.
 
 use crate::clock::Clock;
+use crate::core::documents::canonical::hex;
 use base64::Engine;
 use base64::engine::general_purpose::URL_SAFE_NO_PAD;
 use sha2::{Digest, Sha256};
@@ -27,11 +28,6 @@ pub fn is_secret(text: &str) -> bool {
 /// The hash that is kept of a secret. It has 256 bits already, so a plain hash is enough.
 pub fn hash(secret: &str) -> [u8; 32] {
     Sha256::digest(secret.as_bytes()).into()
-}
-
-/// A hash as text.
-pub fn hex(hash: &[u8; 32]) -> String {
-    hash.iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
 /// The token of forms that belongs to a secret: whoever knows one cannot tell the other.

@@ -11,6 +11,7 @@ pub use make::back_up;
 pub use restore::restore;
 
 use super::{FILE, StoreError};
+use crate::core::documents::canonical;
 use serde::{Deserialize, Serialize};
 use std::io::{Read, Write};
 use std::path::{Component, Path, PathBuf};
@@ -129,11 +130,7 @@ fn measured(from: &mut impl Read, to: &mut impl Write) -> std::io::Result<(u64, 
         to.write_all(piece)?;
         bytes += read as u64;
     }
-    let digits = hash.finalize().iter().fold(String::new(), |mut text, byte| {
-        text.push_str(&format!("{byte:02x}"));
-        text
-    });
-    Ok((bytes, format!("sha256:{digits}")))
+    Ok((bytes, canonical::hash_of(hash)))
 }
 
 /// Makes what was written in a folder last: names too.

@@ -369,7 +369,8 @@ pub fn bare_page(refusal: &Refusal, asked: Asked<'_>) -> String {
     )
 }
 
-fn escaped(text: &str) -> String {
+/// A text as HTML holds it, where no template writes it.
+pub(super) fn escaped(text: &str) -> String {
     text.replace('&', "&amp;")
         .replace('<', "&lt;")
         .replace('>', "&gt;")

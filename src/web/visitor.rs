@@ -2,7 +2,9 @@
 //! this layer fills them, so that no page has to carry it through. A slot holds a text drawn when the program starts:
 //! nobody can write one into data.
 
+use super::problem::escaped;
 use crate::clock::Clock;
+use crate::core::documents::canonical::hex;
 use axum::body::{Body, to_bytes};
 use axum::extract::Request;
 use axum::http::header::{CONTENT_LENGTH, CONTENT_TYPE, SET_COOKIE};
@@ -17,8 +19,8 @@ pub const FIELD: &str = "form_token";
 /// Begins every slot; a letter and a point follow.
 static SENTINEL: LazyLock<String> = LazyLock::new(|| {
     let secret = Clock::system().secret();
-    let hex: String = secret.iter().take(16).map(|byte| format!("{byte:02x}")).collect();
-    format!("slot-{hex}-")
+    let (half, _) = secret.split_at(16);
+    format!("slot-{}-", hex(half))
 });
 
 /// The slot of the token in a form.
@@ -146,13 +148,6 @@ fn who(out: &mut String, letter: &str, visitor: &Visitor) {
         None => {}
     }
     out.push_str("</ul><!--");
-}
-
-fn escaped(text: &str) -> String {
-    text.replace('&', "&amp;")
-        .replace('<', "&lt;")
-        .replace('>', "&gt;")
-        .replace('"', "&quot;")
 }
 
 #[cfg(test)]

@@ -62,16 +62,32 @@ fn write(value: &Value, out: &mut Vec<u8>) -> Result<(), Error> {
 
 /// `sha256:` and the hash of the bytes in hexadecimal.
 pub fn hash(bytes: &[u8]) -> String {
+    hash_of(Sha256::new_with_prefix(bytes))
+}
+
+/// The same of bytes that were added piece by piece.
+pub fn hash_of(sum: Sha256) -> String {
+    let mut text = String::with_capacity(71);
+    text.push_str("sha256:");
+    write_hex(&mut text, &sum.finalize());
+    text
+}
+
+/// Bytes in hexadecimal, small letters.
+pub fn hex(bytes: &[u8]) -> String {
+    let mut text = String::with_capacity(2 * bytes.len());
+    write_hex(&mut text, bytes);
+    text
+}
+
+fn write_hex(text: &mut String, bytes: &[u8]) {
     const DIGITS: [char; 16] = [
         '0', '1', '2', '3', '4', '5', '6', '7', '8', '9', 'a', 'b', 'c', 'd', 'e', 'f',
     ];
-    let mut text = String::with_capacity(71);
-    text.push_str("sha256:");
-    for byte in Sha256::digest(bytes) {
+    for byte in bytes {
         text.push(DIGITS[usize::from(byte >> 4)]);
         text.push(DIGITS[usize::from(byte & 15)]);
     }
-    text
 }
 
 #[cfg(test)]

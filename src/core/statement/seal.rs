@@ -2,10 +2,10 @@
 //! stands at the head of `core::documents::statement`.
 
 use crate::core::documents::canonical;
+pub use crate::core::documents::canonical::hex;
 use crate::core::documents::statement::{Signature, Statement};
 use ed25519_dalek::{Signer, SigningKey, VerifyingKey};
 use sha2::{Digest, Sha256};
-use std::fmt::Write as _;
 
 /// The only algorithm.
 pub const ALGORITHM: &str = "Ed25519";
@@ -63,15 +63,6 @@ pub fn seal(mut statement: Statement, key: &SigningKey) -> Result<Statement, ser
         value: hex(&key.sign(&bytes).to_bytes()),
     };
     Ok(statement)
-}
-
-/// Bytes in small hexadecimal.
-pub fn hex(bytes: &[u8]) -> String {
-    let mut text = String::with_capacity(2 * bytes.len());
-    for byte in bytes {
-        let _ = write!(text, "{byte:02x}");
-    }
-    text
 }
 
 /// Reads small hexadecimal of exactly so many bytes.

@@ -2,6 +2,7 @@
 
 use super::{Question, Sort};
 use crate::app::PROGRAM;
+use crate::core::documents::canonical;
 use crate::pathways::sql::{SummaryRow, fold};
 use crate::store::{Connection, OrganisationId, StoreError};
 
@@ -120,7 +121,7 @@ impl Place {
     pub(super) fn to_text(&self) -> String {
         let by = match &self.by {
             By::Time(millis) => format!("{millis:x}"),
-            By::Name(name) => name.bytes().map(|byte| format!("{byte:02x}")).collect(),
+            By::Name(name) => canonical::hex(name.as_bytes()),
             By::Figure(figure) => format!("{:x}", figure.to_bits()),
         };
         format!("{}{}.{by}", letter(self.sort), self.id)

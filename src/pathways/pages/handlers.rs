@@ -1,6 +1,6 @@
 //! Routes of the pages. A handler fetches, calls one use case, and hands the result to a page; words live in the pages.
 
-use super::home::{Asked, Home, day_of};
+use super::home::{Asked, Home};
 use super::show::ShowPathway;
 use super::workings::ShowWorkings;
 use super::{
@@ -8,6 +8,7 @@ use super::{
     factor_handlers, facts, kept, links, notices, stage_handlers,
 };
 use crate::app::{App, SharedBook};
+use crate::clock::day_of;
 use crate::core::checks::reasons::Reason;
 use crate::core::documents::problem::Problems;
 use crate::core::documents::reader::nearest;

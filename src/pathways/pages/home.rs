@@ -2,6 +2,7 @@
 
 use super::links;
 use super::verdict::{Checks, Required, Verdict};
+use crate::clock::day_of;
 use crate::core::domain::Book;
 use crate::core::units::rounding;
 use crate::pathways::{Line, Summary};
@@ -241,11 +242,6 @@ fn checks_of(found: &Summary, without_reason: u32) -> Checks {
         warns: count(without_reason),
         informs: count(found.infos),
     }
-}
-
-/// The calendar day of a moment, UTC.
-pub fn day_of(at: jiff::Timestamp) -> Date {
-    jiff::tz::Offset::UTC.to_datetime(at).date()
 }
 
 impl Scale {

@@ -6,9 +6,11 @@ use super::tokens::SCOPES;
 use crate::app::App;
 use crate::app::doors::Known;
 use crate::app::who::{Right, Role, Sight, Via, Who};
+use crate::core::documents::canonical::hex;
 use crate::people::secrets::{self, TOKEN_PREFIX};
 use crate::people::sql::{InvitationRow, invitations, roles};
 use crate::people::{PeopleError, public_id};
+use crate::store::OrganisationId;
 use std::collections::BTreeSet;
 use std::sync::Arc;
 use uuid::Uuid;
@@ -20,11 +22,7 @@ const TOUCH: i64 = 60_000;
 ///
 /// # Errors
 /// When the database fails.
-pub async fn recognise_session(
-    app: &App,
-    secret: &str,
-    from: &str,
-) -> Result<Option<(crate::store::OrganisationId, Arc<Who>, Manners)>, PeopleError> {
+pub async fn recognise_session(app: &App, secret: &str, from: &str) -> Result<Option<Come>, PeopleError> {
     if !secrets::is_secret(secret) {
         return Ok(None);
     }
@@ -36,11 +34,7 @@ pub async fn recognise_session(
 ///
 /// # Errors
 /// When the database fails; `TooOften` when too many unknown ones came from an address.
-pub async fn recognise_token(
-    app: &App,
-    token: &str,
-    from: &str,
-) -> Result<Option<(crate::store::OrganisationId, Arc<Who>, Manners)>, PeopleError> {
+pub async fn recognise_token(app: &App, token: &str, from: &str) -> Result<Option<Come>, PeopleError> {
     let known = match token.strip_prefix(TOKEN_PREFIX) {
         Some(secret) if secrets::is_secret(secret) => recognise(app, token, true).await?,
         _ => None,
@@ -54,6 +48,9 @@ pub async fn recognise_token(
     }
 }
 
+/// Somebody who was recognised: whose records are theirs to ask for, who they are, how pages treat them.
+pub type Come = (OrganisationId, Arc<Who>, Manners);
+
 /// How pages treat somebody.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Manners {
@@ -63,7 +60,7 @@ pub struct Manners {
     pub theme: String,
 }
 
-fn come_in(known: &Arc<Known>, from: &str) -> (crate::store::OrganisationId, Arc<Who>, Manners) {
+fn come_in(known: &Arc<Known>, from: &str) -> Come {
     let who = if known.who.from == from {
         known.who.clone()
     } else {
@@ -85,7 +82,7 @@ async fn recognise(app: &App, secret: &str, is_token: bool) -> Result<Option<Arc
         Ok(known) => return Ok(Some(known)),
         Err(writes) => writes,
     };
-    let text = secrets::hex(&hash);
+    let text = hex(&hash);
     let mut reader = app.store.reader().await?;
     let row = match is_token {
         true => sql::token(&mut reader, &text).await?,

@@ -4,6 +4,7 @@ use super::sql::{self, NewSession};
 use crate::app::App;
 use crate::app::who::{Via, Who};
 use crate::audit_trail::{self, Deed};
+use crate::core::documents::canonical::hex;
 use crate::people::change::own;
 use crate::people::sql::{PersonRow, named, person, roles};
 use crate::people::{PeopleError, folded, password, public_id, secrets, time};
@@ -112,7 +113,7 @@ async fn begin(
     let drawn = app.clock.id().simple().to_string();
     let name: String = drawn.chars().skip(20).collect();
     let new = NewSession {
-        secret_hash: secrets::hex(&secrets::hash(&secret)),
+        secret_hash: hex(&secrets::hash(&secret)),
         name: name.clone(),
         expires_at: now.saturating_add(millis(LONGEST)),
         came_from: app.who.from.clone(),
@@ -130,7 +131,7 @@ async fn begin(
         move |c| {
             Box::pin(async move {
                 if let Some(before) = before {
-                    sql::end_by_secret(c, &secrets::hex(&secrets::hash(&before))).await?;
+                    sql::end_by_secret(c, &hex(&secrets::hash(&before))).await?;
                 }
                 sql::begin_session(c, who, row.id, &new, now).await?;
                 let held = roles(c, who, Some(row.id)).await?;

@@ -6,6 +6,7 @@ use crate::app::App;
 use crate::app::who::{Right, Via};
 use crate::audit_trail::{self, Deed};
 use crate::core::documents::Problems;
+use crate::core::documents::canonical::hex;
 use crate::people::change::own;
 use crate::people::{PeopleError, public_id, secrets, time};
 use jiff::Timestamp;
@@ -116,7 +117,7 @@ pub async fn make_token(app: &App, person: Option<Uuid>, new: NewToken) -> Resul
     let expires_at = now.saturating_add(i64::from(new.days).saturating_mul(DAY));
     let made = sql::NewToken {
         id,
-        secret_hash: secrets::hex(&secrets::hash(&token)),
+        secret_hash: hex(&secrets::hash(&token)),
         label,
         scopes: scopes.join(" "),
         expires_at,

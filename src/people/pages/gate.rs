@@ -4,9 +4,8 @@
 use crate::app::App;
 use crate::app::who::{Right, Via, Who};
 use crate::config::Networks;
-use crate::people::credentials::recognise::Manners;
+use crate::people::credentials::recognise::{Come, Manners};
 use crate::people::{PeopleError, recognise_session, recognise_token, secrets, sign_in_as};
-use crate::store::OrganisationId;
 use crate::web::Refusal;
 use crate::web::actor::Asking;
 use crate::web::answers::see_other;
@@ -78,8 +77,6 @@ fn stranger(from: &str) -> Who {
         ..Who::stranger()
     }
 }
-
-type Come = (OrganisationId, Arc<Who>, Manners);
 
 /// What the layer needs.
 #[derive(Clone)]

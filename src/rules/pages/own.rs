@@ -1,6 +1,7 @@
 //! Pages of rule sets of one's own: the versions of one, and the form for the next.
 
 use super::super::RuleSetVersion;
+use crate::clock::day_of;
 use crate::core::documents::{Problems, rule_set};
 use crate::core::domain::RuleSet;
 use crate::core::domain::rule_set::Standing;
@@ -8,7 +9,6 @@ use crate::web::filters;
 use crate::web::frame::{Frame, Section};
 use crate::web::links;
 use askama::Template;
-use jiff::tz::Offset;
 
 /// The versions of a rule set.
 #[derive(Clone, Debug, PartialEq, Template)]
@@ -67,7 +67,7 @@ impl Versions {
                 document: format!("/api/v1/rule-sets/{}", links::segment(&id)),
                 day: line
                     .saved_at
-                    .map(|at| filters::short_day(Offset::UTC.to_datetime(at).date()))
+                    .map(|at| filters::short_day(day_of(at)))
                     .unwrap_or_default(),
                 hash: line.hash.clone(),
             }
